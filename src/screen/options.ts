@@ -1,0 +1,16 @@
+export type Criterion = "BIC" | "AICc";
+export type SampleSize = "releases" | "animals" | "intervals";
+
+export interface ScreenOptions {
+  /** Number of λ from λ_max downwards, log-equal. */
+  readonly steps: number;
+  /** λ_min / λ_max. */
+  readonly downTo: number;
+  readonly gamma: number;
+  readonly chooseBy: Criterion;
+  readonly sampleSize: SampleSize;
+  /** Where −2 log L of the criterion is taken: at the shrunken solution or at the refit. */
+  readonly fit: "shrunken" | "refit";
+  /** Permutations of years over the whole procedure. */
+  readonly permutations: number;
+}
