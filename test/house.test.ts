@@ -11,16 +11,65 @@ const EDGES: Readonly<Record<string, readonly string[]>> = {
   index: ["commands", "pipeline", "spec"],
   commands: ["pipeline", "inspect", "spec", "terminal", "publish", "effects"],
   pipeline: [
-    "spec", "workers", "report", "publish", "tables", "simulate", "compare", "screen", "survival", "solve",
-    "components", "collinearity", "covariates", "aggregate", "layers", "stations", "study", "effects",
+    "spec",
+    "workers",
+    "report",
+    "publish",
+    "tables",
+    "simulate",
+    "compare",
+    "screen",
+    "survival",
+    "solve",
+    "components",
+    "collinearity",
+    "covariates",
+    "aggregate",
+    "layers",
+    "stations",
+    "study",
+    "effects",
   ],
   terminal: ["spec", "tables", "effects"],
   inspect: ["layers", "stations", "study", "effects"],
-  spec: ["study", "stations", "layers", "aggregate", "covariates", "collinearity", "components", "survival", "screen"],
+  spec: [
+    "study",
+    "stations",
+    "layers",
+    "aggregate",
+    "covariates",
+    "collinearity",
+    "components",
+    "survival",
+    "screen",
+  ],
   workers: ["layers", "screen", "compare", "simulate", "effects"],
-  report: ["tables", "compare", "screen", "survival", "components", "collinearity", "covariates", "aggregate", "layers", "stations", "study"],
+  report: [
+    "tables",
+    "compare",
+    "screen",
+    "survival",
+    "components",
+    "collinearity",
+    "covariates",
+    "aggregate",
+    "layers",
+    "stations",
+    "study",
+  ],
   publish: ["tables", "effects"],
-  tables: ["compare", "screen", "survival", "components", "collinearity", "covariates", "aggregate", "layers", "stations", "study"],
+  tables: [
+    "compare",
+    "screen",
+    "survival",
+    "components",
+    "collinearity",
+    "covariates",
+    "aggregate",
+    "layers",
+    "stations",
+    "study",
+  ],
   simulate: ["screen", "compare", "survival"],
   compare: ["screen", "survival", "components", "collinearity"],
   screen: ["survival", "solve", "effects"],
@@ -40,7 +89,10 @@ const EDGES: Readonly<Record<string, readonly string[]>> = {
 };
 /** Edges on which only types may pass: nothing of the room is run there. */
 const TYPES_ONLY: readonly (readonly [string, string])[] = [
-  ["spec", "*"], ["report", "*"], ["tables", "*"], ["covariates", "aggregate"],
+  ["spec", "*"],
+  ["report", "*"],
+  ["tables", "*"],
+  ["covariates", "aggregate"],
 ];
 /** Real functions the page and the tables may call all the same. */
 const RUN_ALLOWED: readonly (readonly [string, string])[] = [["report", "tables"]];
@@ -120,7 +172,9 @@ function circle(edges: readonly Edge[]): string[] | undefined {
   return undefined;
 }
 
-const FILES = sources(SRC).map((path) => relative(SRC, path).split("\\").join("/")).sort();
+const FILES = sources(SRC)
+  .map((path) => relative(SRC, path).split("\\").join("/"))
+  .sort();
 const ALL = FILES.flatMap((file) => edgesOf(file, readFileSync(join(SRC, file), "utf8")));
 
 describe("the house", () => {
@@ -142,7 +196,10 @@ describe("the house", () => {
     expect(complaints(type)).toEqual(["aggregate/x.ts must not import stations/x.ts"]);
     const lazy = edgesOf("math/x.ts", 'const x = await import("../cli.ts");');
     expect(complaints(lazy)).toEqual(["math/x.ts must not import cli.ts"]);
-    const ring = [...edgesOf("data/a.ts", 'export * from "./b.ts";'), ...edgesOf("data/b.ts", 'import "./a.ts";')];
+    const ring = [
+      ...edgesOf("data/a.ts", 'export * from "./b.ts";'),
+      ...edgesOf("data/b.ts", 'import "./a.ts";'),
+    ];
     expect(circle(ring)).toEqual(["data/a.ts", "data/b.ts", "data/a.ts"]);
   });
 
@@ -155,7 +212,9 @@ describe("the house", () => {
   test("only cli.ts prints or exits, and only effects read the clock or unseeded chance", () => {
     const forbidden = /\bconsole\.|process\.(exit|stdout|stderr|env)|Math\.random|Date\.now|new Date\(\)/;
     const hits = FILES.filter(
-      (file) => !["cli.ts", "pipeline/effects.ts"].includes(file) && forbidden.test(readFileSync(join(SRC, file), "utf8")),
+      (file) =>
+        !["cli.ts", "pipeline/effects.ts"].includes(file) &&
+        forbidden.test(readFileSync(join(SRC, file), "utf8")),
     );
     expect(hits).toEqual([]);
   });

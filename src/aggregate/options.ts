@@ -27,7 +27,11 @@ export type Statistic =
   /** Days strictly below / above the threshold, in the covariate's unit before the statistic. */
   | { readonly type: "days below" | "days above"; readonly threshold: number; readonly orEqual: boolean }
   | { readonly type: "share below" | "share above"; readonly threshold: number; readonly orEqual: boolean }
-  | { readonly type: "longest run below" | "longest run above"; readonly threshold: number; readonly orEqual: boolean }
+  | {
+      readonly type: "longest run below" | "longest run above";
+      readonly threshold: number;
+      readonly orEqual: boolean;
+    }
   /** Σ max(0, min(x, cap) − base) over days. */
   | { readonly type: "degree-days"; readonly base: number; readonly cap: number };
 

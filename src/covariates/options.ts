@@ -1,7 +1,10 @@
 export type Transform = "log" | "log1p" | "square root" | "logit";
 export type Detrend = "none" | "linear" | "difference";
 export type IncompleteRule = "leave out" | "mean" | "stop";
-export type Standardise = { readonly type: "sample" } | { readonly type: "base"; readonly from: number; readonly to: number } | { readonly type: "none" };
+export type Standardise =
+  | { readonly type: "sample" }
+  | { readonly type: "base"; readonly from: number; readonly to: number }
+  | { readonly type: "none" };
 
 export interface DeriveOptions {
   readonly name: string;

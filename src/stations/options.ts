@@ -19,10 +19,7 @@ export interface DateColumn {
 }
 
 /** Where the station's id stands: in a column, the same for every row, or in the file name by a pattern with {id}. */
-export type StationOf =
-  | { readonly column: string }
-  | { readonly always: string }
-  | { readonly name: string };
+export type StationOf = { readonly column: string } | { readonly always: string } | { readonly name: string };
 
 export interface SeriesColumn {
   readonly column: string;
@@ -65,5 +62,9 @@ export type RecordOptions = LongRecords | WideRecords;
 export interface DuplicateRule {
   /** Which one of contradicting rows stands where the policy lets the run go on. */
   readonly keep: "first" | "last" | "none";
-  readonly except: readonly { readonly file: string; readonly keep: "first" | "last" | "none"; readonly note: string }[];
+  readonly except: readonly {
+    readonly file: string;
+    readonly keep: "first" | "last" | "none";
+    readonly note: string;
+  }[];
 }
