@@ -1,0 +1,171 @@
+import type { Smooth } from "../solve/smooth.ts";
+import type { Design } from "./design.ts";
+import type { SufficientStatistics } from "./statistics.ts";
+
+/**
+ * −log L of the Cormack–Jolly–Seber model as a function of (survival coefficients, recapture coefficients), without
+ * the multinomial constant (Lebreton et al. 1992; Burnham et al. 1987):
+ *
+ *     log L = Σ_t A_t log φ_t + Σ_t [B_t log p_t + C_t log q_t] + Σ_t U_t log χ_t,
+ *     χ_t = (1 − φ_t) + φ_t q_t χ_{t+1},   χ after the last occasion = 1,   q = 1 − p,
+ *     φ_t = s_t^Δt,   logit s = Xβ,   logit p = Zα,
+ *
+ * where p_t belongs to the occasion that closes interval t. One backward sweep gives χ, one forward sweep the
+ * derivatives v_t = ∂log L/∂χ_t, so value and gradient cost O(T) whatever the number of animals. The curvature is
+ * exact (observed information): the same sweeps differentiated along each coefficient's column.
+ */
+export function cjsLikelihood(data: readonly SufficientStatistics[], design: Design): Smooth {
+  const n = design.intervals;
+  const rows = design.strata * n;
+  const recapture = "known" in design.recapture ? undefined : design.recapture;
+  const known = "known" in design.recapture ? design.recapture.known : 0;
+  const survivalColumns = design.survival.columns;
+  const recaptureColumns = recapture === undefined ? [] : recapture.columns;
+  const b = survivalColumns.length;
+  const dimension = b + recaptureColumns.length;
+
+  const s1 = new Float64Array(rows); // 1 − s
+  const phi = new Float64Array(rows);
+  const die = new Float64Array(rows); // 1 − φ
+  const p = new Float64Array(rows);
+  const q = new Float64Array(rows);
+  const chi = new Float64Array(rows + design.strata); // n + 1 a stratum
+  const v = new Float64Array(rows);
+  const bySurvival = new Float64Array(rows); // ∂log L/∂ logit s
+  const byRecapture = new Float64Array(rows); // ∂log L/∂ logit p
+
+  function predictors(x: Float64Array): number {
+    let logLikelihood = 0;
+    for (let g = 0; g < design.strata; g++) {
+      const { alive, seen, passed } = data[g];
+      for (let t = 0; t < n; t++) {
+        const r = g * n + t;
+        let eta = 0;
+        for (let k = 0; k < b; k++) eta += survivalColumns[k][r] * x[k];
+        // log s = −log(1 + e^−η) without overflow or cancellation on either side
+        const small = Math.exp(-Math.abs(eta));
+        const logS = eta >= 0 ? -Math.log1p(small) : eta - Math.log1p(small);
+        const logPhi = design.lengths[t] * logS;
+        s1[r] = (eta >= 0 ? small : 1) / (1 + small);
+        phi[r] = Math.exp(logPhi);
+        die[r] = -Math.expm1(logPhi);
+        if (alive[t] > 0) logLikelihood += alive[t] * logPhi;
+        if (recapture === undefined) {
+          p[r] = known;
+          q[r] = 1 - known;
+          if (seen[t] > 0) logLikelihood += seen[t] * Math.log(known);
+          if (passed[t] > 0) logLikelihood += passed[t] * Math.log(1 - known);
+          continue;
+        }
+        let zeta = 0;
+        for (let k = 0; k < recaptureColumns.length; k++) zeta += recaptureColumns[k][r] * x[b + k];
+        const tiny = Math.exp(-Math.abs(zeta));
+        const log1 = Math.log1p(tiny);
+        p[r] = (zeta >= 0 ? 1 : tiny) / (1 + tiny);
+        q[r] = (zeta >= 0 ? tiny : 1) / (1 + tiny);
+        if (seen[t] > 0) logLikelihood += seen[t] * (zeta >= 0 ? -log1 : zeta - log1);
+        if (passed[t] > 0) logLikelihood += passed[t] * (zeta >= 0 ? -zeta - log1 : -log1);
+      }
+    }
+    return logLikelihood;
+  }
+
+  function evaluate(x: Float64Array, gradient: Float64Array): number {
+    let logLikelihood = predictors(x);
+    for (let g = 0; g < design.strata; g++) {
+      const { alive, seen, passed, lastSeen } = data[g];
+      const at = g * n;
+      const chiAt = g * (n + 1);
+      chi[chiAt + n] = 1;
+      // backwards, since χ_t needs χ_{t+1}; both terms are non-negative, so nothing cancels
+      for (let t = n - 1; t >= 0; t--) {
+        chi[chiAt + t] = die[at + t] + phi[at + t] * q[at + t] * chi[chiAt + t + 1];
+        if (lastSeen[t] > 0) logLikelihood += lastSeen[t] * Math.log(chi[chiAt + t]);
+      }
+      let carried = 0;
+      for (let t = 0; t < n; t++) {
+        const r = at + t;
+        v[r] = (lastSeen[t] > 0 ? lastSeen[t] / chi[chiAt + t] : 0) + carried;
+        carried = v[r] * phi[r] * q[r];
+        const next = chi[chiAt + t + 1];
+        const slope = design.lengths[t] * s1[r]; // d log φ / d logit s
+        // 1 − qχ written as p + q(1 − χ) would be no better: q and χ are both well away from cancelling here
+        bySurvival[r] = alive[t] * slope - v[r] * phi[r] * slope * (1 - q[r] * next);
+        byRecapture[r] = seen[t] * q[r] - passed[t] * p[r] - v[r] * phi[r] * next * p[r] * q[r];
+      }
+    }
+    for (let k = 0; k < b; k++) gradient[k] = -dot(survivalColumns[k], bySurvival);
+    for (let k = 0; k < recaptureColumns.length; k++)
+      gradient[b + k] = -dot(recaptureColumns[k], byRecapture);
+    return Number.isNaN(logLikelihood) ? Number.POSITIVE_INFINITY : -logLikelihood;
+  }
+
+  const dSurvival = new Float64Array(rows);
+  const dRecapture = new Float64Array(rows);
+  const dChi = new Float64Array(n + 1);
+
+  /** Derivatives of `bySurvival` and `byRecapture` along one coefficient's column. */
+  function along(k: number): void {
+    const column = k < b ? survivalColumns[k] : recaptureColumns[k - b];
+    const survives = k < b;
+    for (let g = 0; g < design.strata; g++) {
+      const { alive, seen, passed, lastSeen } = data[g];
+      const at = g * n;
+      const chiAt = g * (n + 1);
+      dChi[n] = 0;
+      for (let t = n - 1; t >= 0; t--) {
+        const r = at + t;
+        const dPhi = survives ? phi[r] * design.lengths[t] * s1[r] * column[r] : 0;
+        const dQ = survives ? 0 : -p[r] * q[r] * column[r];
+        const next = chi[chiAt + t + 1];
+        dChi[t] = -dPhi * (1 - q[r] * next) + phi[r] * (dQ * next + q[r] * dChi[t + 1]);
+      }
+      let dCarried = 0;
+      for (let t = 0; t < n; t++) {
+        const r = at + t;
+        const c = column[r];
+        const next = chi[chiAt + t + 1];
+        const dV = (lastSeen[t] > 0 ? (-lastSeen[t] * dChi[t]) / chi[chiAt + t] ** 2 : 0) + dCarried;
+        const slope = design.lengths[t] * s1[r];
+        const s = 1 - s1[r];
+        const dSlope = survives ? -slope * s * c : 0;
+        const dPhi = survives ? phi[r] * slope * c : 0;
+        const dQ = survives ? 0 : -p[r] * q[r] * c;
+        dCarried = dV * phi[r] * q[r] + v[r] * (dPhi * q[r] + phi[r] * dQ);
+        const escape = 1 - q[r] * next;
+        const dEscape = -(dQ * next + q[r] * dChi[t + 1]);
+        dSurvival[r] =
+          alive[t] * dSlope -
+          (dV * phi[r] * slope * escape +
+            v[r] * (dPhi * slope * escape + phi[r] * dSlope * escape + phi[r] * slope * dEscape));
+        const pq = p[r] * q[r];
+        const dPq = -dQ * (1 - 2 * p[r]); // dp = −dq
+        dRecapture[r] =
+          (seen[t] + passed[t]) * dQ -
+          (dV * phi[r] * next * pq +
+            v[r] * (dPhi * next * pq + phi[r] * dChi[t + 1] * pq + phi[r] * next * dPq));
+      }
+    }
+  }
+
+  function curvature(which: Int32Array, out: Float64Array): void {
+    const m = which.length;
+    for (let i = 0; i < m; i++) {
+      along(which[i]);
+      for (let j = i; j < m; j++) {
+        const k = which[j];
+        const value = k < b ? -dot(survivalColumns[k], dSurvival) : -dot(recaptureColumns[k - b], dRecapture);
+        out[i * m + j] = value;
+        out[j * m + i] = value;
+      }
+    }
+  }
+
+  return { dimension, evaluate, curvature };
+}
+
+function dot(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
+  return sum;
+}

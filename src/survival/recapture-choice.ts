@@ -1,0 +1,91 @@
+import { InputError } from "../errors.ts";
+import { aicc } from "./criteria.ts";
+import {
+  constantRecapture,
+  type Design,
+  effortRecapture,
+  type Frame,
+  intervalSurvival,
+  occasionRecapture,
+  type Part,
+} from "./design.ts";
+import { type Fit, fitModel, totalReleases } from "./fit.ts";
+import type { RecaptureChoice, RecapturePart } from "./options.ts";
+import type { SufficientStatistics } from "./statistics.ts";
+
+export interface RecaptureRow {
+  readonly part: RecapturePart;
+  readonly minus2LogL: number;
+  readonly parameters: number;
+  readonly aicc: number;
+}
+
+export interface RecaptureComparison {
+  readonly rows: readonly RecaptureRow[];
+  readonly chosen: RecapturePart;
+  /** The user named it, or it had the least AICc. */
+  readonly because: string;
+  /** One survival per interval with the chosen recapture part. */
+  readonly intervalFit: Fit;
+}
+
+/** Builds the design matrix part of a recapture choice. */
+export function recapturePart(frame: Frame, part: RecapturePart): Part {
+  if (part === "effort" && frame.effort !== undefined) return effortRecapture(frame, frame.effort);
+  return part === "each occasion" ? occasionRecapture(frame) : constantRecapture(frame);
+}
+
+/** A design of the frame's shape. */
+export function designOf(frame: Frame, survival: Part, recapture: Part | { readonly known: number }): Design {
+  return {
+    strata: frame.strata.length,
+    intervals: frame.intervals,
+    lengths: frame.lengths,
+    survival,
+    recapture,
+  };
+}
+
+/**
+ * Compares the recapture parts under one survival per interval, before any covariate is looked at: a weather effect on
+ * being seen passes for an effect on surviving where recapture is wrongly held constant. AICc with n = releases.
+ * Throws `survival.no-effort` if recapture by effort is asked for and the frame has none.
+ */
+export function compareRecapture(
+  data: readonly SufficientStatistics[],
+  frame: Frame,
+  choice: RecaptureChoice,
+): RecaptureComparison {
+  const releases = totalReleases(data);
+  const parts: RecapturePart[] = [
+    "constant",
+    ...(frame.effort ? (["effort"] as const) : []),
+    "each occasion",
+  ];
+  const survival = intervalSurvival(frame);
+  const fits = parts.map((part) => fitModel(data, designOf(frame, survival, recapturePart(frame, part))));
+  const rows = parts.map((part, i) => ({
+    part,
+    minus2LogL: fits[i].minus2LogL,
+    parameters: fits[i].parameters,
+    aicc: aicc(fits[i].minus2LogL, fits[i].parameters, releases),
+  }));
+  // ties and undefined values go to the simpler part, which stands first
+  const best = rows.reduce((least, row, i) => (row.aicc < rows[least].aicc ? i : least), 0);
+  const index = choice === "choose" ? best : parts.indexOf(choice);
+  if (index < 0)
+    throw new InputError({
+      name: "survival.no-effort",
+      expected: "an effort for every occasion where recapture goes by effort",
+      found: "no effort in the occasions",
+      where: { cell: "recapture" },
+      remedy: "name the effort column under occasions, or choose another recapture part",
+    });
+  return {
+    rows,
+    chosen: parts[index],
+    because:
+      choice === "choose" ? "least AICc under one survival per interval" : "named in the pipeline file",
+    intervalFit: fits[index],
+  };
+}
