@@ -35,6 +35,7 @@ export const FINDING_KINDS = [
   "not-separable",
   "recapture-varies",
   "infilled",
+  "excepted",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -1,0 +1,299 @@
+import { isoDay } from "../data/day.ts";
+import type { Series } from "../data/series.ts";
+import { InputError } from "../errors.ts";
+import { type Block, countText, type DraftFinding, NO_DAY, type RowRef, type Source } from "./block.ts";
+import type { DateColumn, DuplicateRule } from "./options.ts";
+import { convertUnit } from "./units.ts";
+
+/** A series with the row that each of its values came from. */
+export interface TracedSeries {
+  readonly series: Series;
+  readonly covers: DateColumn["covers"];
+  readonly refs: readonly RefRun[];
+  /** Per value: index into all rows of the variable's blocks. */
+  readonly rows: Uint32Array;
+}
+
+interface RefRun {
+  readonly first: number;
+  readonly source: number;
+}
+
+/** The file and row of value i. */
+export function refOf(traced: TracedSeries, i: number): RowRef {
+  return locate(traced.rows[i], traced.refs);
+}
+
+function locate(row: number, refs: readonly RefRun[]): RowRef {
+  let run = refs[0];
+  for (const one of refs) if (one.first <= row) run = one;
+  return { source: run.source, row: row - run.first };
+}
+
+/**
+ * Merges all blocks of one variable into one series per station, sorted by start, values scaled and in the first block's
+ * unit. Rows that repeat a station and period become one: a missing value gives way to a value, equal values are one, and
+ * of contradicting values `rule` says which stands (first and last by the order of `records:`, files by code unit, rows).
+ * Throws `stations.kinds-differ` and `stations.periods-overlap`.
+ */
+export function assembleVariable(
+  blocks: readonly Block[],
+  rule: DuplicateRule,
+  sources: readonly Source[],
+): { readonly traced: readonly TracedSeries[]; readonly findings: readonly DraftFinding[] } {
+  const [{ variable, unit, kind, covers }] = blocks;
+  for (const block of blocks)
+    if (block.kind !== kind)
+      throw new InputError({
+        name: "stations.kinds-differ",
+        expected: `${variable} to be a ${kind} in every records entry, as in the first`,
+        found: `${block.kind} in ${sources[block.source].file}`,
+        where: { cell: `records[${block.entry}].series.${variable}` },
+        remedy: "give the other one a name of its own",
+      });
+  const gathered = gather(blocks, unit);
+  const refs: RefRun[] = [];
+  let first = 0;
+  for (const block of blocks) {
+    refs.push({ first, source: block.source });
+    first += block.starts.length;
+  }
+  const findings: DraftFinding[] = [];
+  const traced = gathered.map((rows) => {
+    const sorted = sortRows(rows);
+    const merged = mergeRepeats(sorted, rule, variable, refs, sources);
+    findings.push(...merged.findings);
+    const kept = merged.rows;
+    const usedSources = new Set<number>();
+    let run = 0;
+    // Rows of one file follow one another mostly, so the run is looked for from where the last one was.
+    for (const row of sorted.rows) {
+      while (run > 0 && refs[run].first > row) run--;
+      while (run + 1 < refs.length && refs[run + 1].first <= row) run++;
+      usedSources.add(refs[run].source);
+    }
+    const files = [...usedSources].map((source) => sources[source].file).sort((a, b) => (a < b ? -1 : 1));
+    const series: Series = {
+      site: rows.site,
+      variable,
+      unit,
+      kind,
+      starts: kept.starts,
+      ends: kept.ends,
+      values: kept.values,
+      files: [...new Set(files)],
+    };
+    refuseOverlap(series);
+    return {
+      series,
+      covers: blocks.every((block) => block.covers === covers) ? covers : "day",
+      refs,
+      rows: kept.rows,
+    };
+  });
+  return { traced, findings };
+}
+
+interface StationRows {
+  readonly site: string;
+  readonly starts: Int32Array;
+  readonly ends: Int32Array;
+  readonly values: Float64Array;
+  readonly rows: Uint32Array;
+}
+
+/** Rows of each station in order of file and row, stations by code unit; two passes: count, then place. */
+function gather(blocks: readonly Block[], unit: string): StationRows[] {
+  const counts = new Map<string, number>();
+  for (const block of blocks) {
+    const perCode = new Float64Array(block.stations.ids.length);
+    const { codes } = block.stations;
+    for (let i = 0; i < block.starts.length; i++)
+      if (block.starts[i] !== NO_DAY) perCode[typeof codes === "number" ? codes : codes[i]]++;
+    for (const [code, n] of perCode.entries())
+      if (n > 0) counts.set(block.stations.ids[code], (counts.get(block.stations.ids[code]) ?? 0) + n);
+  }
+  counts.delete("");
+  const sites = [...counts.keys()].sort((a, b) => (a < b ? -1 : 1));
+  const into = new Map(
+    sites.map((site) => {
+      const n = counts.get(site) ?? 0;
+      return [
+        site,
+        {
+          site,
+          starts: new Int32Array(n),
+          ends: new Int32Array(n),
+          values: new Float64Array(n),
+          rows: new Uint32Array(n),
+          at: 0,
+        },
+      ];
+    }),
+  );
+  let first = 0;
+  for (const block of blocks) {
+    const targets = block.stations.ids.map((id) => into.get(id));
+    const { codes } = block.stations;
+    const values = scaled(block, unit);
+    for (let i = 0; i < block.starts.length; i++) {
+      if (block.starts[i] === NO_DAY) continue;
+      const target = targets[typeof codes === "number" ? codes : codes[i]];
+      if (target === undefined) continue;
+      const at = target.at++;
+      target.starts[at] = block.starts[i];
+      target.ends[at] = block.ends[i];
+      target.values[at] = values[i];
+      target.rows[at] = first + i;
+    }
+    first += block.starts.length;
+  }
+  return [...into.values()];
+}
+
+/** Raw × scale, in the wanted unit. */
+function scaled(block: Block, unit: string): Float64Array {
+  const { raw, scale } = block;
+  // Tenths are divided by 10, not multiplied by 0.1: 123 gives 12.3 and not 12.300000000000001.
+  const parts = Math.round(1 / scale);
+  const exact = Math.abs(parts * scale - 1) < 1e-12;
+  const values = scale === 1 ? raw : raw.map((value) => (exact ? value / parts : value * scale));
+  return block.unit === unit ? values : convertUnit(values, block.unit, unit, "reading");
+}
+
+/** By start; rows of one start keep their order. */
+function sortRows(rows: StationRows): StationRows {
+  const n = rows.starts.length;
+  let sorted = true;
+  for (let i = 1; i < n && sorted; i++) sorted = rows.starts[i] >= rows.starts[i - 1];
+  if (sorted) return rows;
+  let least = rows.starts[0];
+  for (const start of rows.starts) if (start < least) least = start;
+  // One number holds start and position (below 2^53 for 10^8 rows over 10^7 days), so the fast numeric sort is stable.
+  const keys = Float64Array.from(rows.starts, (start, i) => (start - least) * n + i).sort();
+  const order = Uint32Array.from(keys, (key) => key % n);
+  return {
+    site: rows.site,
+    starts: Int32Array.from(order, (i) => rows.starts[i]),
+    ends: Int32Array.from(order, (i) => rows.ends[i]),
+    values: Float64Array.from(order, (i) => rows.values[i]),
+    rows: Uint32Array.from(order, (i) => rows.rows[i]),
+  };
+}
+
+interface Tally {
+  count: number;
+  firstAt: number;
+  example: string;
+}
+
+function mergeRepeats(
+  rows: StationRows,
+  rule: DuplicateRule,
+  variable: string,
+  refs: readonly RefRun[],
+  sources: readonly Source[],
+): { readonly rows: StationRows; readonly findings: readonly DraftFinding[] } {
+  const { starts, ends } = rows;
+  const n = starts.length;
+  let repeats = 0;
+  for (let i = 1; i < n; i++) if (starts[i] === starts[i - 1] && ends[i] === ends[i - 1]) repeats++;
+  if (repeats === 0) return { rows, findings: [] };
+  const keep: number[] = [];
+  const values: number[] = [];
+  const tallies = new Map<string, Tally>();
+  for (let i = 0; i < n; ) {
+    let j = i + 1;
+    while (j < n && starts[j] === starts[i] && ends[j] === ends[i]) j++;
+    const finite: number[] = [];
+    for (let k = i; k < j; k++) if (!Number.isNaN(rows.values[k])) finite.push(k);
+    let stands = finite.length > 0 ? finite[0] : i;
+    let value = rows.values[stands];
+    if (j - i > 1) {
+      const contradicts = finite.some((k) => rows.values[k] !== value);
+      const places = Array.from({ length: j - i }, (_, k) => locate(rows.rows[i + k], refs).source);
+      const exception = rule.except.find((one) => places.some((source) => sources[source].file === one.file));
+      const how = exception?.keep ?? rule.keep;
+      const shown = finite.map((k) => rows.values[k]).join(" and ");
+      if (contradicts && how === "last") {
+        stands = finite[finite.length - 1];
+        value = rows.values[stands];
+      } else if (contradicts && how === "none") value = Number.NaN;
+      const sort =
+        exception !== undefined
+          ? `excepted: ${exception.note}`
+          : contradicts
+            ? `contradicting ${how}`
+            : "same";
+      const tally = tallies.get(sort);
+      if (tally === undefined)
+        tallies.set(sort, { count: 1, firstAt: i + 1, example: `${isoDay(starts[i])}: ${shown}` });
+      else tally.count++;
+    }
+    keep.push(stands);
+    values.push(value);
+    i = j;
+  }
+  return {
+    rows: {
+      site: rows.site,
+      starts: Int32Array.from(keep, (i) => starts[i]),
+      ends: Int32Array.from(keep, (i) => ends[i]),
+      values: Float64Array.from(values),
+      rows: Uint32Array.from(keep, (i) => rows.rows[i]),
+    },
+    findings: [...tallies].map(([sort, tally]) => duplicateFinding(sort, tally, variable, rows, refs)),
+  };
+}
+
+function duplicateFinding(
+  sort: string,
+  tally: Tally,
+  variable: string,
+  rows: StationRows,
+  refs: readonly RefRun[],
+): DraftFinding {
+  const subject = `${variable} at ${rows.site}`;
+  const times = `${countText(tally.count, "period")} of ${subject} stand in more than one row`;
+  const shared = {
+    subject,
+    at: locate(rows.rows[tally.firstAt], refs),
+    value: tally.example,
+    count: tally.count,
+  };
+  if (sort.startsWith("excepted: "))
+    return {
+      kind: "excepted",
+      ...shared,
+      message: `${times}; the exception for this file applies (${sort.slice(10)}).`,
+      remedy: "none needed while the exception in `findings.duplicate.except` holds",
+    };
+  if (sort === "same")
+    return {
+      kind: "duplicate",
+      ...shared,
+      message: `${times}, with the same value or with one value missing; each counts once.`,
+      remedy: "remove the repeated rows, or except the file in `findings.duplicate.except` with a note",
+    };
+  const outcome = sort.endsWith("none")
+    ? "none of the values is used"
+    : `the ${sort.split(" ")[1]} value stands`;
+  return {
+    kind: "duplicate",
+    ...shared,
+    message: `${times} with contradicting values; ${outcome}.`,
+    remedy: "correct the file, or say in `findings.duplicate` which value to keep, with a note",
+  };
+}
+
+function refuseOverlap(series: Series): void {
+  for (let i = 1; i < series.starts.length; i++)
+    if (series.starts[i] < series.ends[i - 1])
+      throw new InputError({
+        name: "stations.periods-overlap",
+        expected: `periods of ${series.variable} at ${series.site} that do not overlap`,
+        found: `one from ${isoDay(series.starts[i])} inside one from ${isoDay(series.starts[i - 1])} to ${isoDay(series.ends[i - 1] - 1)}`,
+        where: { file: series.files.join(", ") },
+        remedy: "daily and monthly values of one station need variables of their own; check `covers:`",
+      });
+}

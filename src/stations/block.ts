@@ -1,0 +1,78 @@
+import type { RawFinding } from "../data/finding.ts";
+import type { ValueKind } from "../data/series.ts";
+import type { DateColumn } from "./options.ts";
+
+/** A row without a real date; it takes part in nothing. */
+export const NO_DAY = -2_147_483_648;
+
+/** What one column of one file holds of one variable; row i of every array is row i of the file. */
+export interface Block {
+  /** Index of the file among all that were read. */
+  readonly source: number;
+  /** Index of the `records:` entry. */
+  readonly entry: number;
+  readonly variable: string;
+  readonly kind: ValueKind;
+  readonly unit: string;
+  readonly scale: number;
+  readonly covers: DateColumn["covers"];
+  readonly stations: StationColumn;
+  readonly starts: Int32Array;
+  readonly ends: Int32Array;
+  /** As written, before scale; NaN where missing. */
+  readonly raw: Float64Array;
+}
+
+/** Ids by code; one code for all rows where the whole column is one station's. */
+export interface StationColumn {
+  readonly codes: Int32Array | number;
+  readonly ids: readonly string[];
+}
+
+export function stationAt(stations: StationColumn, row: number): string {
+  return stations.ids[typeof stations.codes === "number" ? stations.codes : stations.codes[row]];
+}
+
+/** A row of a file that was read, whose physical line is looked up only if a finding needs it. */
+export interface RowRef {
+  readonly source: number;
+  readonly row: number;
+}
+
+/** A finding whose line is not known yet. */
+export interface DraftFinding extends RawFinding {
+  readonly at?: RowRef;
+}
+
+/** One file that was read. */
+export interface Source {
+  readonly file: string;
+  readonly lines: (rows: readonly number[]) => Promise<readonly number[]>;
+}
+
+/** Puts file and true physical line into the findings, reading each file at most once. */
+export async function placeFindings(
+  drafts: readonly DraftFinding[],
+  sources: readonly Source[],
+): Promise<readonly RawFinding[]> {
+  const wanted = new Map<number, Set<number>>();
+  for (const { at } of drafts)
+    if (at !== undefined) wanted.set(at.source, (wanted.get(at.source) ?? new Set()).add(at.row));
+  const lines = new Map<string, number>();
+  for (const [source, rows] of wanted) {
+    const sorted = [...rows].sort((a, b) => a - b);
+    const found = await sources[source].lines(sorted);
+    for (const [i, row] of sorted.entries()) lines.set(`${source}:${row}`, found[i]);
+  }
+  return drafts.map(({ at, ...finding }) => {
+    if (at === undefined) return finding;
+    const line = lines.get(`${at.source}:${at.row}`);
+    const where = { ...finding.where, file: sources[at.source].file };
+    return { ...finding, where: line === undefined ? where : { ...where, line } };
+  });
+}
+
+/** `1 day`, `3 days`. */
+export function countText(n: number, noun: string): string {
+  return `${n} ${noun}${n === 1 ? "" : "s"}`;
+}

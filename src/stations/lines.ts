@@ -1,0 +1,52 @@
+/**
+ * Physical lines of the wanted records of a delimited text. A record is counted as the table reader counts: blank lines are
+ * none, a quoted line break does not end one, and the records that begin at a byte of `rejected` were refused and have no
+ * row. `rows` are 0-based and ascending; `skip` lines stand above the data. Lines are 1-based.
+ */
+export function physicalLines(
+  bytes: Uint8Array,
+  skip: number,
+  rows: readonly number[],
+  rejected: ReadonlySet<number>,
+): number[] {
+  const [quote, lf, cr] = [0x22, 0x0a, 0x0d];
+  const out: number[] = [];
+  let [line, row, next] = [1, 0, 0];
+  let at = bytes[0] === 0xef && bytes[1] === 0xbb && bytes[2] === 0xbf ? 3 : 0;
+  while (at < bytes.length && next < rows.length) {
+    const begin = at;
+    const beginLine = line;
+    let quoted = false;
+    const inData = line > skip;
+    for (; at < bytes.length; at++) {
+      const byte = bytes[at];
+      if (byte === quote && inData) quoted = !quoted;
+      else if (byte === lf || (byte === cr && bytes[at + 1] !== lf)) {
+        line++;
+        if (!quoted) break;
+      }
+    }
+    const blank = isBlank(bytes, begin, at);
+    at++;
+    if (!inData || blank || rejected.has(begin)) continue;
+    while (next < rows.length && rows[next] === row) {
+      out.push(beginLine);
+      next++;
+    }
+    row++;
+  }
+  while (out.length < rows.length) out.push(line);
+  return out;
+}
+
+function isBlank(bytes: Uint8Array, begin: number, end: number): boolean {
+  return begin === end || (end - begin === 1 && bytes[begin] === 0x0d);
+}
+
+/** The 1-based physical line that holds a byte. */
+export function lineOfByte(bytes: Uint8Array, offset: number): number {
+  let line = 1;
+  for (let i = 0; i < offset && i < bytes.length; i++)
+    if (bytes[i] === 0x0a || (bytes[i] === 0x0d && bytes[i + 1] !== 0x0a)) line++;
+  return line;
+}

@@ -1,0 +1,109 @@
+import type { DuckDBConnection } from "@duckdb/node-api";
+import { literal } from "./database.ts";
+import type { LoadedTable } from "./load-table.ts";
+
+/** A text column as codes into its sorted distinct texts (blanks around them taken off; an empty cell is ""). */
+export interface CodedColumn {
+  readonly codes: Int32Array;
+  readonly texts: readonly string[];
+}
+
+/** A text of a number column that is neither a number nor declared missing. */
+export interface OddText {
+  readonly text: string;
+  readonly count: number;
+  readonly firstRow: number;
+}
+
+export interface NumberColumn {
+  /** NaN where empty, declared missing, or no number. */
+  readonly values: Float64Array;
+  readonly odd: readonly OddText[];
+}
+
+/**
+ * The text columns coded and the number columns converted, row by row as in the file. Texts become codes in the database
+ * (a station or date is written thousands of times, but parsed once per distinct text); numbers are converted there, too.
+ */
+export async function readColumns(
+  database: DuckDBConnection,
+  table: LoadedTable,
+  texts: readonly string[],
+  numbers: readonly string[],
+  missing: readonly string[],
+): Promise<{ readonly texts: readonly CodedColumn[]; readonly numbers: readonly NumberColumn[] }> {
+  const column = (name: string) => `trim(coalesce(c${table.dialect.header.indexOf(name)}, ''))`;
+  const distinct: string[][] = [];
+  for (const [i, name] of texts.entries()) {
+    await database.run(`DROP TYPE IF EXISTS text${i}`);
+    const told = await database.runAndReadAll(`SELECT DISTINCT ${column(name)} AS x FROM raw ORDER BY x`);
+    distinct.push(told.getRowsJson().map(([text]) => String(text)));
+    if (distinct[i].length > 0)
+      await database.run(`CREATE TYPE text${i} AS ENUM (${distinct[i].map(literal).join(", ")})`);
+  }
+  const number = (name: string) => numberSql(column(name), table.dialect.decimal);
+  const codes = texts.map(() => new Int32Array(table.rows));
+  const values = numbers.map(() => new Float64Array(table.rows));
+  if (table.rows > 0) {
+    const result = await database.stream(
+      `SELECT ${[
+        ...texts.map((name, i) => `enum_code(CAST(${column(name)} AS text${i}))::INTEGER`),
+        ...numbers.map((name) => `coalesce(${number(name)}, 'nan'::DOUBLE)`),
+      ].join(", ")} FROM raw`,
+    );
+    let at = 0;
+    for (;;) {
+      const chunk = await result.fetchChunk();
+      if (chunk === null || chunk.rowCount === 0) break;
+      const n = chunk.rowCount;
+      for (const [j, into] of [...codes, ...values].entries()) {
+        const vector = chunk.getColumnVector(j);
+        for (let i = 0; i < n; i++) into[at + i] = Number(vector.getItem(i));
+      }
+      at += n;
+    }
+  }
+  const declared = missing.filter((text) => text.trim() !== "").map((text) => Number(text.replace(",", ".")));
+  const odd: (readonly OddText[])[] = [];
+  for (const [j, name] of numbers.entries()) {
+    const holes = blankOut(values[j], declared);
+    odd.push(holes ? await oddTexts(database, column(name), number(name), missing) : []);
+  }
+  return {
+    texts: codes.map((one, i) => ({ codes: one, texts: distinct[i] })),
+    numbers: values.map((one, j) => ({ values: one, odd: odd[j] })),
+  };
+}
+
+/** A finite number, or NULL. The cast alone would take `1_000`, `nan` and `inf`. */
+function numberSql(text: string, decimal: "." | ","): string {
+  const plain = decimal === "," ? `replace(replace(${text}, '.', '_'), ',', '.')` : text;
+  return `CASE WHEN contains(${plain}, '_') THEN NULL ELSE nullif(nullif(nullif(TRY_CAST(${plain} AS DOUBLE), 'nan'), 'inf'), '-inf') END`;
+}
+
+/** Declared missing numbers become NaN (−9999 also where it is written −9999.0); true if any value is NaN then. */
+function blankOut(values: Float64Array, declared: readonly number[]): boolean {
+  const marks = declared.filter((one) => !Number.isNaN(one));
+  let holes = false;
+  for (let i = 0; i < values.length; i++) {
+    if (marks.includes(values[i])) values[i] = Number.NaN;
+    if (Number.isNaN(values[i])) holes = true;
+  }
+  return holes;
+}
+
+async function oddTexts(
+  database: DuckDBConnection,
+  text: string,
+  number: string,
+  missing: readonly string[],
+): Promise<readonly OddText[]> {
+  const known = ["", ...missing.map((one) => one.trim())].map(literal).join(", ");
+  const told = await database.runAndReadAll(
+    `SELECT ${text} AS t, count(*)::INTEGER, min(rowid)::INTEGER AS first FROM raw
+     WHERE ${number} IS NULL AND ${text} NOT IN (${known}) GROUP BY t ORDER BY first`,
+  );
+  return told
+    .getRowsJson()
+    .map(([odd, count, first]) => ({ text: String(odd), count: Number(count), firstRow: Number(first) }));
+}
