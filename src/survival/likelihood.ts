@@ -132,12 +132,12 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
         const dPhi = survives ? phi[r] * slope * c : 0;
         const dQ = survives ? 0 : -p[r] * q[r] * c;
         dCarried = dV * phi[r] * q[r] + v[r] * (dPhi * q[r] + phi[r] * dQ);
-        const escape = 1 - q[r] * next;
-        const dEscape = -(dQ * next + q[r] * dChi[t + 1]);
+        const away = 1 - q[r] * next;
+        const dAway = -(dQ * next + q[r] * dChi[t + 1]);
         dSurvival[r] =
           alive[t] * dSlope -
-          (dV * phi[r] * slope * escape +
-            v[r] * (dPhi * slope * escape + phi[r] * dSlope * escape + phi[r] * slope * dEscape));
+          (dV * phi[r] * slope * away +
+            v[r] * (dPhi * slope * away + phi[r] * dSlope * away + phi[r] * slope * dAway));
         const pq = p[r] * q[r];
         const dPq = -dQ * (1 - 2 * p[r]); // dp = −dq
         dRecapture[r] =

@@ -1,0 +1,119 @@
+import { InputError } from "../errors.ts";
+import { weightedL1 } from "../solve/penalty.ts";
+import { proximalNewton, type Solution } from "../solve/proximal-newton.ts";
+import type { Smooth, StopReason } from "../solve/smooth.ts";
+import { gradientTolerance } from "../survival/fit.ts";
+import { cjsLikelihood } from "../survival/likelihood.ts";
+import { covariatePositions, designWith, fullWeights, type ScreenProblem } from "./problem.ts";
+
+/** One solution of the path, with its certificate. */
+export interface PathStep {
+  readonly lambda: number;
+  /** All d coefficients: intercept, strata, forced, covariates, recapture. */
+  readonly estimates: Float64Array;
+  /** The K covariate coefficients. */
+  readonly coefficients: Float64Array;
+  /** −2 log L at this shrunken solution. */
+  readonly minus2LogL: number;
+  /** −log L + λ Σ w|β|. */
+  readonly objective: number;
+  /** Positions of the covariates that are not 0. */
+  readonly active: readonly number[];
+  /** Largest violation of the Karush–Kuhn–Tucker conditions, as a share of λ_max. */
+  readonly residual: number;
+  readonly stopped: StopReason;
+}
+
+export interface LassoPath {
+  readonly lambdaMax: number;
+  readonly weights: Float64Array;
+  readonly steps: readonly PathStep[];
+}
+
+export interface PathOptions {
+  readonly steps: number;
+  readonly downTo: number;
+  /** λ values to use instead of the grid, falling. */
+  readonly lambdas?: readonly number[];
+}
+
+/** Largest residual, relative to λ_max, that a solution may carry. */
+export const RESIDUAL_LIMIT = 1e-8;
+
+/**
+ * Minimises −log L(β0, β, α) + λ Σ_k w_k |β_k| on the total scale (no division by n) along λ falling from
+ *
+ *     λ_max = max_k |∂(−log L)/∂β_k| / w_k   at the model without covariates
+ *
+ * to `downTo`·λ_max in log-equal steps, each started from the one before. Only the covariates are penalised.
+ * The likelihood is not concave: a residual of 0 proves a stationary point, `agreeingStarts` looks for others.
+ * Throws `screen.no-optimum` where a solution does not reach the limit: such a number must not be used.
+ */
+export function lassoPath(problem: ScreenProblem, weights: Float64Array, options: PathOptions): LassoPath {
+  const smooth = cjsLikelihood(problem.data, designWith(problem));
+  const positions = covariatePositions(problem);
+  const all = fullWeights(problem, smooth.dimension, weights);
+  const nothing = solveNull(problem, smooth);
+  const lambdaMax = positions.reduce(
+    (most, k, i) => Math.max(most, Math.abs(nothing.gradient[k]) / weights[i]),
+    0,
+  );
+  const lambdas = options.lambdas ?? lambdaGrid(lambdaMax, options.steps, options.downTo);
+  let x = nothing.x;
+  const steps = lambdas.map((lambda) => {
+    const solution = proximalNewton(smooth, weightedL1(lambda, all), x, {
+      tolerance: 0.05 * RESIDUAL_LIMIT * lambdaMax,
+      iterations: 200,
+    });
+    x = solution.x;
+    return pathStep(lambda, lambdaMax, solution, positions);
+  });
+  return { lambdaMax, weights, steps };
+}
+
+/** log-equal from λ_max to `downTo`·λ_max, both included. */
+export function lambdaGrid(lambdaMax: number, steps: number, downTo: number): number[] {
+  return Array.from({ length: steps }, (_, i) =>
+    steps === 1 ? lambdaMax : lambdaMax * downTo ** (i / (steps - 1)),
+  );
+}
+
+/** The model without covariates: infinite weights keep them all at 0. */
+export function solveNull(problem: ScreenProblem, smooth: Smooth): Solution {
+  const weights = new Float64Array(problem.covariates.length).fill(Number.POSITIVE_INFINITY);
+  const solution = proximalNewton(
+    smooth,
+    weightedL1(1, fullWeights(problem, smooth.dimension, weights)),
+    new Float64Array(smooth.dimension),
+    { tolerance: gradientTolerance(problem.data), iterations: 500 },
+  );
+  if (solution.stopped !== "optimum") refuse("the model without covariates", solution);
+  return solution;
+}
+
+function pathStep(lambda: number, lambdaMax: number, solution: Solution, positions: Int32Array): PathStep {
+  const residual = lambdaMax === 0 ? 0 : solution.violation / lambdaMax;
+  if (residual > RESIDUAL_LIMIT) refuse(`λ = ${lambda}`, solution);
+  const coefficients = Float64Array.from(positions, (k) => solution.x[k]);
+  return {
+    lambda,
+    estimates: solution.x,
+    coefficients,
+    minus2LogL: 2 * solution.smooth,
+    objective: solution.objective,
+    active: Array.from(coefficients, (_, k) => k).filter((k) => coefficients[k] !== 0),
+    residual,
+    stopped: solution.stopped,
+  };
+}
+
+function refuse(what: string, solution: Solution): never {
+  throw new InputError({
+    name: "screen.no-optimum",
+    expected: `a solution at ${what} that meets the optimality conditions`,
+    found: `the solver stopped with "${solution.stopped}" at a violation of ${solution.violation}`,
+    where: { cell: "screen" },
+    remedy:
+      "look for covariates that separate seen from unseen animals, nearly equal columns or empty occasions",
+  });
+}

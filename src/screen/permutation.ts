@@ -1,0 +1,91 @@
+import { quantile7 } from "../math/quantile.ts";
+import { randomStream } from "../math/random.ts";
+import type { ScreenOptions } from "./options.ts";
+import type { ScreenProblem } from "./problem.ts";
+import { type ProcedureSetting, runProcedure } from "./procedure.ts";
+
+/** A run of replicates, small enough to send to a worker. */
+export interface PermutationChunk {
+  readonly problem: ScreenProblem;
+  readonly setting: ProcedureSetting;
+  readonly options: ScreenOptions;
+  readonly seed: number;
+  readonly from: number;
+  readonly to: number;
+}
+
+/** What the procedure found with the years of the covariates permuted. */
+export interface PermutationOutcome {
+  /** Gain of the choice by years; 0 if nothing stood. */
+  readonly gain: number;
+  readonly chosenByYears: number;
+  readonly chosenByAnimals: number;
+  /** R²_dev of the choice by years and by animals; 0 if nothing was chosen. */
+  readonly shareByYears: number;
+  readonly shareByAnimals: number;
+}
+
+export interface PermutationResult {
+  readonly replicates: number;
+  /**
+   * Family-wise p of the whole procedure that counts years: (1 + permutations whose gain is at least the observed
+   * one) / (1 + permutations); 1 where nothing stood.
+   */
+  readonly p: number;
+  /** Shares of permutations in which something was chosen, though nothing was there to be found. */
+  readonly falseByYears: number;
+  readonly falseByAnimals: number;
+  /** Medians of R²_dev over permutations of what was chosen. */
+  readonly medianShareByYears: number;
+  readonly medianShareByAnimals: number;
+  /** Largest R²_dev that 95 % of permutations stay below, by animals. */
+  readonly shareByAnimals95: number;
+}
+
+/**
+ * Permutes the rows of the covariate matrix (all covariates together, so their correlations stay) against the
+ * intervals and repeats weights, path and both choices. Replicate r uses its own random stream, so the outcome does
+ * not depend on how replicates are cut into chunks.
+ */
+export function permuteYears(chunk: PermutationChunk): PermutationOutcome[] {
+  const { problem, setting, options, seed } = chunk;
+  return Array.from({ length: chunk.to - chunk.from }, (_, i) => {
+    const order = randomStream(seed, "permutation of years", chunk.from + i).permutation(setting.intervals);
+    const covariates = problem.covariates.map((one) => ({
+      name: one.name,
+      values: Float64Array.from(order, (t) => one.values[t]),
+    }));
+    const result = runProcedure({ ...problem, covariates }, setting, options);
+    const share = (set: readonly number[]) =>
+      (result.refit([]) - result.refit(set)) / (result.refit([]) - setting.interval.minus2LogL);
+    return {
+      gain: result.byYears.gain,
+      chosenByYears: result.byYears.chosen.length,
+      chosenByAnimals: result.byAnimals.length,
+      shareByYears: share(result.byYears.chosen),
+      shareByAnimals: share(result.byAnimals),
+    };
+  });
+}
+
+export function summarisePermutations(
+  outcomes: readonly PermutationOutcome[],
+  gain: number,
+): PermutationResult {
+  const n = outcomes.length;
+  const median = (values: readonly number[]) => quantile7(values, 0.5);
+  const chosen = (key: "chosenByYears" | "chosenByAnimals") =>
+    outcomes.filter((one) => one[key] > 0).length / n;
+  return {
+    replicates: n,
+    p: (1 + outcomes.filter((one) => one.gain >= gain).length) / (1 + n),
+    falseByYears: chosen("chosenByYears"),
+    falseByAnimals: chosen("chosenByAnimals"),
+    medianShareByYears: median(outcomes.map((one) => one.shareByYears)),
+    medianShareByAnimals: median(outcomes.map((one) => one.shareByAnimals)),
+    shareByAnimals95: quantile7(
+      outcomes.map((one) => one.shareByAnimals),
+      0.95,
+    ),
+  };
+}

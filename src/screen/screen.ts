@@ -1,0 +1,198 @@
+import type { RawFinding } from "../data/finding.ts";
+import type { Effects } from "../effects/effects.ts";
+import { randomStream } from "../math/random.ts";
+import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
+import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
+import type { RecaptureComparison } from "../survival/recapture-choice.ts";
+import { chooseOnPath, type PathChoice } from "./choice.ts";
+import type { ScreenOptions } from "./options.ts";
+import type { LassoPath } from "./path.ts";
+import {
+  type PermutationOutcome,
+  type PermutationResult,
+  type permuteYears,
+  summarisePermutations,
+} from "./permutation.ts";
+import { designWith, type ScreenProblem } from "./problem.ts";
+import { type ProcedureSetting, runProcedure } from "./procedure.ts";
+import { agreeingStarts, type StartsReport } from "./starts.ts";
+import type { AdaptiveWeights } from "./weights.ts";
+import type { YearsChoice } from "./years.ts";
+
+/** A set of covariates, refitted without penalty. */
+export interface RefittedSet {
+  readonly names: readonly string[];
+  readonly fit: Fit;
+  /** R²_dev and ĉ between years; F and p of a set that was chosen on these data are not to be shown. */
+  readonly deviance: AnalysisOfDeviance;
+}
+
+export interface ScreenResult {
+  readonly options: ScreenOptions;
+  readonly names: readonly string[];
+  readonly sampleSize: number;
+  readonly releases: number;
+  readonly constantFit: Fit;
+  readonly intervalFit: Fit;
+  readonly recapture: RecaptureComparison;
+  readonly weights: AdaptiveWeights;
+  readonly path: LassoPath;
+  readonly choice: PathChoice;
+  readonly starts: StartsReport;
+  /** Distinct sets within 2 units of the criterion's least value. */
+  readonly band: readonly (readonly string[])[];
+  readonly byAnimals: RefittedSet;
+  readonly byYears: RefittedSet;
+  readonly years: YearsChoice;
+  /** Sets weighed by years, by name. */
+  readonly weighed: readonly { readonly names: readonly string[]; readonly gain: number }[];
+  /** Undefined if no permutation was asked for. */
+  readonly permutation: PermutationResult | undefined;
+}
+
+const STARTS = 12;
+/** Replicates a worker takes at a time: small enough for progress, large enough to be worth sending. */
+const CHUNK = 10;
+
+/** The task name under which workers know `permuteYears`. */
+export const PERMUTATION_TASK = "screen.permutation";
+
+/** n of the criteria by the rule asked for; animals where they are known, else releases. */
+export function sampleSizeOf(problem: ScreenProblem, options: ScreenOptions, animals: number): number {
+  if (options.sampleSize === "intervals") return problem.frame.intervals;
+  const releases = totalReleases(problem.data);
+  return options.sampleSize === "animals" && Number.isFinite(animals) ? animals : releases;
+}
+
+/** Weights, path, the two choices, their refits and the permutation of years over all of it. */
+export async function screen(
+  problem: ScreenProblem,
+  recapture: RecaptureComparison,
+  options: ScreenOptions,
+  animals: number,
+  seed: number,
+  effects: Pick<Effects, "parallel" | "progress">,
+): Promise<{ readonly result: ScreenResult; readonly findings: readonly RawFinding[] }> {
+  const constantFit = fitModel(problem.data, designWith(problem, []));
+  const intervalFit = recapture.intervalFit;
+  const setting: ProcedureSetting = {
+    intervals: problem.frame.intervals,
+    covariates: problem.covariates.length,
+    interval: { minus2LogL: intervalFit.minus2LogL, parameters: intervalFit.parameters },
+    constantParameters: constantFit.parameters,
+    sampleSize: sampleSizeOf(problem, options, animals),
+  };
+  const found = runProcedure(problem, setting, options);
+  // once more with refits for every row, which the permutations do without
+  const choice = chooseOnPath(
+    found.path,
+    setting.constantParameters,
+    setting.sampleSize,
+    options,
+    found.refit,
+  );
+  const names = problem.covariates.map((one) => one.name);
+  const named = (set: readonly number[]) => set.map((k) => names[k]);
+  const refitted = (set: readonly number[]): RefittedSet => {
+    const fit = fitModel(problem.data, designWith(problem, set));
+    return { names: named(set), fit, deviance: analysisOfDeviance(constantFit, fit, intervalFit) };
+  };
+  const chosen = found.path.steps[choice.index];
+  const bandSets = new Map(
+    choice.band.map((i) => [found.path.steps[i].active.join(","), named(found.path.steps[i].active)]),
+  );
+  const byAnimals = refitted(found.byAnimals);
+  const byYears = refitted(found.byYears.chosen);
+  const outcomes = await permutations(problem, setting, options, seed, effects);
+  const result: ScreenResult = {
+    options,
+    names,
+    sampleSize: setting.sampleSize,
+    releases: totalReleases(problem.data),
+    constantFit,
+    intervalFit,
+    recapture,
+    weights: found.weights,
+    path: found.path,
+    choice,
+    starts: agreeingStarts(problem, found.path, chosen, STARTS, randomStream(seed, "starts", 0)),
+    band: [...bandSets.values()],
+    byAnimals,
+    byYears,
+    years: found.byYears,
+    weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
+    permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
+  };
+  return { result, findings: screenFindings(result) };
+}
+
+async function permutations(
+  problem: ScreenProblem,
+  setting: ProcedureSetting,
+  options: ScreenOptions,
+  seed: number,
+  effects: Pick<Effects, "parallel" | "progress">,
+): Promise<readonly PermutationOutcome[]> {
+  if (options.permutations === 0) return [];
+  const chunks = Array.from({ length: Math.ceil(options.permutations / CHUNK) }, (_, i) => ({
+    problem,
+    setting,
+    options,
+    seed,
+    from: i * CHUNK,
+    to: Math.min((i + 1) * CHUNK, options.permutations),
+  }));
+  const step = effects.progress.start("permuting years", chunks.length);
+  const parts = await effects.parallel.map<(typeof chunks)[number], ReturnType<typeof permuteYears>>(
+    PERMUTATION_TASK,
+    chunks,
+    step,
+  );
+  step.done();
+  return parts.flat();
+}
+
+function screenFindings(result: ScreenResult): RawFinding[] {
+  const findings: RawFinding[] = [];
+  const fits: readonly (readonly [string, Fit])[] = [
+    ["one survival per interval", result.intervalFit],
+    ["the covariates chosen by years", result.byYears.fit],
+    ["the covariates chosen by animals", result.byAnimals.fit],
+  ];
+  for (const [subject, fit] of fits) {
+    if (fit.atBound.length > 0)
+      findings.push({
+        kind: "at-bound",
+        subject,
+        message: `${fit.atBound.join(", ")}: estimated at 0 or 1, so without a standard error`,
+        count: fit.atBound.length,
+        remedy: "read these as bounds; few animals speak of them",
+      });
+    for (const set of fit.notSeparable)
+      findings.push({
+        kind: "not-separable",
+        subject,
+        message: `the data cannot tell apart: ${set.join(" and ")}`,
+        count: set.length,
+        remedy: "only their product is estimated; hold the recapture part constant to separate them",
+      });
+  }
+  const { recapture } = result;
+  const best = recapture.rows.reduce((least, row) => (row.aicc < least.aicc ? row : least));
+  const used = recapture.rows.find((row) => row.part === recapture.chosen);
+  if (used !== undefined && used.aicc - best.aicc > 2)
+    findings.push({
+      kind: "recapture-varies",
+      subject: "recapture",
+      message: `recapture "${best.part}" has an AICc lower by ${(used.aicc - best.aicc).toFixed(2)} than the "${used.part}" in use: an effect on being seen could pass for one on surviving`,
+      remedy: "set recapture: choose",
+    });
+  if (result.starts.agree < result.starts.starts)
+    findings.push({
+      kind: "not-separable",
+      subject: "the screen",
+      message: `${result.starts.agree} of ${result.starts.starts} random starts ended at the chosen solution`,
+      remedy: "treat the selection with care; look for nearly equal covariates",
+    });
+  return findings;
+}
