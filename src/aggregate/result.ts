@@ -6,8 +6,11 @@ export interface WindowValue {
   readonly value: number;
   /** The window; undefined where the interval holds none. */
   readonly period: Period | undefined;
+  /** Days of the window (of all its yearly periods). */
   readonly daysDue: number;
+  /** Days with a value; of several stations, the least covered one that gave a value. */
   readonly daysCovered: number;
+  /** Longest run of days without a value; of several stations, the longest among those that gave a value. */
   readonly longestGap: number;
   /** Why the value is missing, in words; undefined if it is not. */
   readonly failed: string | undefined;
@@ -15,6 +18,10 @@ export interface WindowValue {
   readonly scaled: boolean;
   /** Stations that gave a value, sorted; empty for layers and ready-made values. */
   readonly stations: readonly string[];
+  /** How many yearly values were averaged, where the interval holds several seasons or years; else 1. */
+  readonly years?: number;
+  /** Where `years` is above 1: the yearly periods, of which `period` is the hull. */
+  readonly periods?: readonly Period[];
 }
 
 /** One covariate over all intervals, before preparation. */

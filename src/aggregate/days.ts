@@ -1,0 +1,101 @@
+import { civil, isoDay } from "../data/day.ts";
+import type { Series } from "../data/series.ts";
+import { InputError } from "../errors.ts";
+import { filesOf } from "./sites.ts";
+
+/** The stations' values on common periods: values[s][i] is station s in period i, NaN if it has none. */
+interface Grid {
+  readonly starts: Int32Array;
+  readonly ends: Int32Array;
+  readonly values: readonly Float64Array[];
+}
+
+/** The mean series of several stations, and the periods on which some of them, not all, had a value. */
+export interface MeanOfDays {
+  readonly series: Series;
+  /** True where a value was made of fewer than all stations. */
+  readonly partial: Uint8Array;
+}
+
+function align(stations: readonly Series[]): Grid {
+  const periods = new Map<number, number>();
+  for (const { site, starts, ends } of stations)
+    for (let i = 0; i < starts.length; i++) {
+      const end = periods.get(starts[i]);
+      if (end !== undefined && end !== ends[i])
+        throw new InputError({
+          name: "aggregate.periods-differ",
+          expected: "stations whose values cover the same periods",
+          found: `values of ${end - starts[i]} and of ${ends[i] - starts[i]} days from ${isoDay(starts[i])}`,
+          where: { cell: site },
+          remedy: "join them by mean of windows",
+        });
+      periods.set(starts[i], ends[i]);
+    }
+  const starts = Int32Array.from(periods.keys()).sort();
+  const ends = starts.map((start) => periods.get(start) ?? start);
+  const values = stations.map((station) => {
+    const row = new Float64Array(starts.length).fill(Number.NaN);
+    let i = 0;
+    for (let j = 0; j < station.starts.length; j++) {
+      while (starts[i] < station.starts[j]) i++;
+      row[i] = station.values[j];
+    }
+    return row;
+  });
+  return { starts, ends, values };
+}
+
+/**
+ * How far each station stands above the mean of all, per calendar month (the last slot: over the whole year),
+ * on the periods that every station has. NaN where there is no such period.
+ */
+function offsets(grid: Grid, months: Int32Array): Float64Array[] {
+  const { values } = grid;
+  const counts = new Float64Array(13);
+  const sums = values.map(() => new Float64Array(13));
+  for (let i = 0; i < grid.starts.length; i++) {
+    let total = 0;
+    for (const row of values) total += row[i];
+    if (Number.isNaN(total)) continue;
+    for (const slot of [months[i], 12]) {
+      counts[slot]++;
+      for (let s = 0; s < values.length; s++) sums[s][slot] += values[s][i] - total / values.length;
+    }
+  }
+  return sums.map((row) => row.map((sum, slot) => sum / (counts[slot] > 0 ? counts[slot] : Number.NaN)));
+}
+
+/**
+ * `mean of days`: one series, the mean of the stations on each day. Where all have a value it is the plain mean;
+ * where some lack one, the others' values are first reduced by how far each stands above the mean of all in that
+ * calendar month (on the days that all have), so that a station that is away for a while makes no step. A day is
+ * missing if no station has a value, or if no day at all is common to them. Throws `aggregate.periods-differ`.
+ */
+export function meanOfDays(stations: readonly Series[]): MeanOfDays {
+  const grid = align(stations);
+  const { starts, ends, values } = grid;
+  const months = starts.map((start) => civil(start).month - 1);
+  const above = offsets(grid, months);
+  const mean = new Float64Array(starts.length).fill(Number.NaN);
+  const partial = new Uint8Array(starts.length);
+  for (let i = 0; i < starts.length; i++) {
+    let plain = 0;
+    let adjusted = 0;
+    let count = 0;
+    for (let s = 0; s < values.length; s++) {
+      const value = values[s][i];
+      if (Number.isNaN(value)) continue;
+      const offset = above[s][months[i]];
+      plain += value;
+      adjusted += value - (Number.isNaN(offset) ? above[s][12] : offset);
+      count++;
+    }
+    if (count === 0) continue;
+    partial[i] = count < values.length ? 1 : 0;
+    mean[i] = partial[i] === 0 ? plain / count : adjusted / count;
+  }
+  const site = stations.map((one) => one.site).join(", ");
+  const series = { ...stations[0], site, starts, ends, values: mean, files: filesOf(stations) };
+  return { series, partial };
+}

@@ -1,0 +1,110 @@
+import type { Series } from "../data/series.ts";
+import { InputError } from "../errors.ts";
+import { departures } from "./anomaly.ts";
+import { judge } from "./completeness.ts";
+import { dailyFromExtremes } from "./degree-days.ts";
+import { indexStatistic, veryWetStatistic } from "./etccdi.ts";
+import type { CovariateDefinition, WindowStatistic, YearRange } from "./options.ts";
+import { bySite } from "./sites.ts";
+import { cut } from "./slice.ts";
+import { fitGamma, LEAST_BASE, standardisedIndex } from "./spi.ts";
+import { windowSum } from "./spread.ts";
+import { seasonEnding } from "./window.ts";
+
+/** One site's series with a statistic that needs nothing more than a window. */
+export interface Resolved {
+  readonly series: Series;
+  readonly statistic: WindowStatistic;
+  /** Applied to each window's statistic, e.g. a sum → its standardised index. */
+  readonly after?: (value: number) => number;
+  /** Why this site can give no value at all. */
+  readonly failed?: string;
+}
+
+/** The sites' series, put end to end, paired with their minima, and made departures, as the definition asks. */
+export function siteSeries(definition: CovariateDefinition): Series[] {
+  const { name, statistic, series, second, anomaly } = definition;
+  if (series.length === 0)
+    throw new InputError({
+      name: "aggregate.no-series",
+      expected: "at least one station or place with values",
+      found: "none",
+      where: { cell: name },
+      remedy: "name stations that have the variable, or a place inside the layer",
+    });
+  const sites = bySite(series);
+  const paired = statistic.type === "degree-days of extremes" ? pair(definition, sites, second ?? []) : sites;
+  return anomaly === undefined ? paired : paired.map((one) => departures(one, anomaly.by, anomaly.base));
+}
+
+function pair(
+  definition: CovariateDefinition,
+  maxima: readonly Series[],
+  second: readonly Series[],
+): Series[] {
+  const { name, statistic } = definition;
+  if (statistic.type !== "degree-days of extremes") return [...maxima];
+  const minima = new Map(bySite(second).map((one) => [one.site, one]));
+  return maxima.map((max) => {
+    const min = minima.get(max.site);
+    if (min !== undefined)
+      return dailyFromExtremes(max, min, statistic.base, statistic.cap, statistic.method);
+    throw new InputError({
+      name: "aggregate.second-missing",
+      expected: "daily minima beside the maxima of every station",
+      found: `no minima at ${max.site}`,
+      where: { cell: name },
+      remedy: "leave the station out, or use degree-days of the daily mean",
+    });
+  });
+}
+
+/** The sums of the same season in the base years that are complete. */
+function baseSums(definition: CovariateDefinition, series: Series, { from, to }: YearRange): number[] {
+  const sums: number[] = [];
+  for (let year = from; year <= to; year++) {
+    const period = seasonEnding(definition.window, year);
+    if (period === undefined)
+      throw new InputError({
+        name: "aggregate.spi-window",
+        expected: "a season or calendar year, which every base year has",
+        found: `a window of type ${definition.window.type}`,
+        where: { cell: definition.name },
+        remedy: "give the standardised index a season, e.g. Nov to Feb",
+      });
+    const slice = cut(series, period);
+    const { failed, scale } = judge(slice, "sum", definition.complete, true, undefined);
+    if (failed === undefined) sums.push(windowSum(slice) * scale);
+  }
+  return sums;
+}
+
+/** The definition's statistic for one site: what needs base years is fitted to the site's own here. */
+export function resolve(definition: CovariateDefinition, series: Series): Resolved {
+  const { statistic, unit, name } = definition;
+  switch (statistic.type) {
+    case "index":
+      return { series, statistic: indexStatistic(statistic.index, unit, name) };
+    case "degree-days of extremes": {
+      const { base, cap } = statistic;
+      return { series, statistic: { type: "degree-days", base, cap } };
+    }
+    case "R95pTOT": {
+      const { from, to } = statistic.base;
+      const found = veryWetStatistic(series, statistic.base);
+      if (found !== undefined) return { series, statistic: found };
+      return { series, statistic: { type: "sum" }, failed: `no wet day in the base years ${from} to ${to}` };
+    }
+    case "SPI": {
+      const sums = baseSums(definition, series, statistic.base);
+      const fit = fitGamma(sums);
+      const resolved: Resolved = { series, statistic: { type: "sum" } };
+      if (sums.length < LEAST_BASE)
+        return { ...resolved, failed: `${sums.length} complete base years (${LEAST_BASE} needed)` };
+      if (Number.isNaN(fit.shape)) return { ...resolved, failed: "base sums that do not differ" };
+      return { ...resolved, after: (sum) => standardisedIndex(sum, fit) };
+    }
+    default:
+      return { series, statistic };
+  }
+}
