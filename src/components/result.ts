@@ -20,4 +20,9 @@ export interface Components {
   readonly kept: number;
   /** Why that many, in words. */
   readonly keptBecause: string;
+  /** Mean and sample sd (n − 1) of each column of the matrix handed in, K; 0 and 1 if not said. */
+  readonly centre?: readonly number[];
+  readonly scale?: readonly number[];
+  /** Parallel analysis: the eigenvalues that chance alone gives, m. */
+  readonly parallel?: readonly number[];
 }
