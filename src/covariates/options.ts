@@ -21,3 +21,9 @@ export interface PrepareOptions {
   readonly incomplete: IncompleteRule;
   readonly standardise: Standardise;
 }
+
+/**
+ * Values of each covariate, by name, in the years of the base period (the season that ends in each year, both end
+ * years included; NaN where a year has none). A covariate whose window is counted from occasions has no entry.
+ */
+export type BaseValues = ReadonlyMap<string, ArrayLike<number>>;

@@ -1,3 +1,4 @@
+import type { RawFinding } from "../data/finding.ts";
 import type { Matrix } from "../data/matrix.ts";
 import type { Detrend, Transform } from "./options.ts";
 
@@ -10,12 +11,14 @@ export interface ColumnRecipe {
   readonly definition: string;
   readonly transform: Transform | undefined;
   readonly detrend: Detrend;
-  /** Linear trend removed: intercept and slope per year of interval mid-date index; 0, 0 if none. */
+  /** Linear trend removed: intercept and slope per year of `yearIndex` of the intervals; 0, 0 if none. */
   readonly trend: readonly [number, number];
   readonly centre: number;
   readonly scale: number;
   /** Cells that were replaced by the column mean (row indices). */
   readonly filled: readonly number[];
+  /** Smallest and largest recorded value before the transform, so that new rows beyond them can be told. */
+  readonly range?: readonly [number, number];
 }
 
 /** The prepared covariates: rows are intervals, columns covariates. */
@@ -28,4 +31,16 @@ export interface CovariateMatrix {
   readonly raw: Matrix;
   /** After transform, detrend and standardise, T−1 × K. */
   readonly standard: Matrix;
+}
+
+/** A covariate that did not enter the matrix. */
+export interface LeftOut {
+  readonly name: string;
+  readonly reason: string;
+}
+
+export interface Prepared {
+  readonly matrix: CovariateMatrix;
+  readonly leftOut: readonly LeftOut[];
+  readonly findings: readonly RawFinding[];
 }
