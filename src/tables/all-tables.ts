@@ -1,0 +1,50 @@
+import {
+  componentsTable,
+  conditionTable,
+  correlationsTable,
+  inflationTable,
+  loadingsTable,
+  scoresTable,
+} from "./collinearity-tables.ts";
+import { agreementTable, comparisonTable, effectsTable } from "./comparison-tables.ts";
+import {
+  dictionaryTable,
+  intervalValuesTable,
+  rawMatrixTable,
+  standardMatrixTable,
+} from "./covariate-tables.ts";
+import type { StudyResult } from "./study-result.ts";
+import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
+import { pathTable, recaptureTable, selectionTable, survivalTable } from "./survival-tables.ts";
+import type { Table } from "./table.ts";
+
+/** Every table of a study, in the order in which a person would read them. */
+export function allTables(study: StudyResult): readonly Table[] {
+  const { diagnosis, components, screened, comparison } = study;
+  return [
+    rawMatrixTable(study),
+    standardMatrixTable(study),
+    dictionaryTable(study),
+    intervalValuesTable(study),
+    ...(study.occasions.length > 0 ? [occasionsTable(study)] : []),
+    intervalsTable(study),
+    ...(diagnosis
+      ? [correlationsTable(diagnosis), inflationTable(diagnosis), conditionTable(diagnosis)]
+      : []),
+    ...(components
+      ? [componentsTable(components), loadingsTable(components), scoresTable(components, study.matrix.rows)]
+      : []),
+    ...(screened
+      ? [
+          recaptureTable(screened),
+          pathTable(screened),
+          selectionTable(screened),
+          survivalTable(screened, study.intervals),
+        ]
+      : []),
+    ...(comparison
+      ? [comparisonTable(comparison), effectsTable(comparison), agreementTable(comparison)]
+      : []),
+    findingsTable(study),
+  ];
+}
