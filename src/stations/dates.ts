@@ -24,7 +24,7 @@ const FIELDS: Readonly<Record<string, "year" | "month" | "day" | "yearday" | "ti
 
 /**
  * Compiles a Unicode date pattern: `yyyy` the year (four digits), `M`/`MM` month, `d`/`dd` day of the month, `D`/`DDD` day of
- * the year, `HH mm ss` a time of day that is read over (the civil date as written counts), `'…'` literal text.
+ * the year (`DDD` three digits), `HH mm ss` a time of day that is read over (the civil date as written counts), `'…'` literal text.
  * Numbers may lack their leading zero unless the next field follows without a separator.
  * Throws `stations.date-format` for other letters, or a pattern without a year.
  */
@@ -46,7 +46,7 @@ function piecesOf(format: string): readonly Piece[] {
         throw badFormat(format, run);
       const most = field === "year" ? 4 : field === "yearday" ? 3 : 2;
       const tight = at + 1 < runs.length && /^[A-Za-z]/.test(runs[at + 1]);
-      pieces.push({ field, least: field === "year" ? 4 : tight ? most : 1, most });
+      pieces.push({ field, least: field === "year" || tight || width === 3 ? most : 1, most });
     } else pieces.push({ literal: run });
   }
   if (!pieces.some((piece) => "field" in piece && piece.field === "year")) throw badFormat(format, "no year");
@@ -134,7 +134,7 @@ export const COMMON_FORMATS = [
   "yyyyMM",
   "MM/yyyy",
   "yyyy D",
-  "yyyy-D",
+  "yyyy-DDD",
   "yyyyDDD",
   "yyyy",
 ] as const;

@@ -2,7 +2,7 @@
 declare module "js-quantities" {
   interface Quantity {
     isCompatible(other: Quantity): boolean;
-    to(unit: string): Quantity;
+    to(unit: Quantity): Quantity;
     readonly scalar: number;
   }
   /** Throws its own error for text that is no unit. */

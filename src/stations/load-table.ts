@@ -102,28 +102,31 @@ async function loadUtf8(
     `SELECT line_byte_position, any_value(csv_line), any_value(error_message)
      FROM reject_errors GROUP BY line_byte_position ORDER BY line_byte_position`,
   );
-  const refusals = told.getRowsJson().map(([byte, text, why]) => ({
-    // The reader counts bytes from 1.
-    byte: Number(byte) - 1,
-    text: String(text ?? ""),
-    why: String(why ?? ""),
+  const refusedRows = told.getRowsJson();
+  const bytes = refusedRows.length > 0 ? await readWhole(effects.files, file) : new Uint8Array();
+  const refusals = refusedRows.map(([byte, text, why]) => ({
+    byte: recordStart(bytes, Number(byte) - 1),
+    text: String(text ?? "").trim(),
+    why: whyText(String(why ?? ""), dialect),
   }));
-  const bytes = refusals.length > 0 ? await readWhole(effects.files, file) : new Uint8Array();
   const rejected = new Set(refusals.map((one) => one.byte));
   return {
     file,
     dialect,
     rows,
-    refused: refusals.map(({ byte, text, why }) => ({
-      line: lineOfByte(bytes, byte),
-      text,
-      why: whyText(why, dialect),
-    })),
+    refused: refusals.map(({ byte, text, why }) => ({ line: lineOfByte(bytes, byte), text, why })),
     lines: async (wanted) =>
       wanted.length === 0
         ? []
         : physicalLines(await readWhole(effects.files, file), dialect.skip, wanted, rejected),
   };
+}
+
+/** The reader counts bytes from 1 and begins a refused record at the end of the line before, blank lines included. */
+function recordStart(bytes: Uint8Array, told: number): number {
+  let at = Math.max(0, told);
+  while (bytes[at] === 0x0a || bytes[at] === 0x0d) at++;
+  return at;
 }
 
 function whyText(message: string, dialect: Dialect): string {

@@ -29,6 +29,16 @@ const SPELLINGS: Readonly<Record<string, string>> = {
   knots: "kt",
 };
 
+/**
+ * Units whose constant in the library is rounded: the international knot is 1852 m/h, the conventional millimetre of
+ * mercury 13595.1 · 9.80665 · 10⁻³ Pa (NIST SP 811, appendix B).
+ */
+const EXACT: Readonly<Record<string, { readonly times: number; readonly unit: string }>> = {
+  kt: { times: 1.852, unit: "km/h" },
+  mmHg: { times: 133.322387415, unit: "Pa" },
+  inHg: { times: 3386.388640341, unit: "Pa" },
+};
+
 const EXAMPLES =
   "degC, degF, K, mm, cm, in, m/s, km/h, hPa, Pa, W/m2, MJ/m2, percent, 1, days, mm/day, degC days";
 
@@ -57,9 +67,12 @@ function scaleOf(unit: string): { readonly zero: number; readonly step: number }
   return TEMPERATURE[SPELLINGS[text] ?? text];
 }
 
-function quantity(unit: string): ReturnType<typeof Qty> {
+/** The library's quantity of one unit, and what to multiply it with. */
+function quantity(unit: string): { readonly one: ReturnType<typeof Qty>; readonly times: number } {
+  const exact = EXACT[SPELLINGS[unit.trim()] ?? unit.trim()];
+  if (exact !== undefined) return { one: Qty(`1 ${exact.unit}`), times: exact.times };
   try {
-    return Qty(`1 ${librarySpelling(unit) === "1" ? "" : librarySpelling(unit)}`.trim());
+    return { times: 1, one: Qty(`1 ${librarySpelling(unit) === "1" ? "" : librarySpelling(unit)}`.trim()) };
   } catch (error) {
     throw new InputError(
       {
@@ -95,7 +108,7 @@ export function isTemperature(unit: string): boolean {
 
 /** True if one unit can be converted to the other. */
 export function sameDimension(a: string, b: string): boolean {
-  return knownUnit(a) && knownUnit(b) && quantity(a).isCompatible(quantity(b));
+  return knownUnit(a) && knownUnit(b) && quantity(a).one.isCompatible(quantity(b).one);
 }
 
 /**
@@ -105,7 +118,7 @@ export function sameDimension(a: string, b: string): boolean {
 export function convertUnit(values: ArrayLike<number>, from: string, to: string, use: UnitUse): Float64Array {
   const out = Float64Array.from(values);
   const [a, b] = [quantity(from), quantity(to)];
-  if (!a.isCompatible(b))
+  if (!a.one.isCompatible(b.one))
     throw new InputError({
       name: "stations.other-dimension",
       expected: `a unit that ${JSON.stringify(from)} can be converted to`,
@@ -119,7 +132,7 @@ export function convertUnit(values: ArrayLike<number>, from: string, to: string,
     for (let i = 0; i < out.length; i++) out[i] = ((out[i] - zero[0]) * source.step) / target.step + zero[1];
     return out;
   }
-  const factor = a.to(librarySpelling(to)).scalar;
+  const factor = (a.one.to(b.one).scalar * a.times) / b.times;
   if (factor !== 1) for (let i = 0; i < out.length; i++) out[i] *= factor;
   return out;
 }
