@@ -36,6 +36,7 @@ export const FINDING_KINDS = [
   "recapture-varies",
   "infilled",
   "excepted",
+  "layer-small-place",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -1,3 +1,4 @@
+import type { Where } from "../data/place.ts";
 import type { ValueKind } from "../data/series.ts";
 
 /** What one image of a stack stands for. */
@@ -27,6 +28,8 @@ export interface LayerOptions {
   readonly kind: ValueKind;
   /** Coordinate system if the file does not say, e.g. `EPSG:32632` or a proj string. */
   readonly system?: string;
+  /** Which band of files dated by their name, from 1; needed only where they have several. */
+  readonly band?: number;
 }
 
 /** How a layer is read at a place. */
@@ -37,3 +40,9 @@ export type PlaceUse =
   | { readonly by: "area"; readonly validArea: number }
   /** Mean over a circle around a point. */
   | { readonly by: "radius"; readonly metres: number; readonly validArea: number };
+
+/** A place and how the layer is read there. */
+export interface Wanted {
+  readonly place: Where;
+  readonly use: PlaceUse;
+}

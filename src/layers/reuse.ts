@@ -1,0 +1,83 @@
+import { createHash } from "node:crypto";
+import type { Where } from "../data/place.ts";
+import type { Effects } from "../effects/effects.ts";
+import type { LayerOptions, PlaceUse } from "./options.ts";
+import { type SidePaths, sideList } from "./side.ts";
+
+/** Raised whenever the meaning of kept values changes, so that older ones are not taken for new. */
+const VERSION = 1;
+
+/** Values and valid shares of one place, image by image. */
+export interface Kept {
+  readonly values: readonly number[];
+  readonly shares: readonly number[];
+  readonly outside: number;
+  readonly pixels: number;
+}
+
+/** What is kept of one file: by place. */
+export type KeptFile = ReadonlyMap<string, Kept>;
+
+function digest(value: unknown): string {
+  return createHash("sha256").update(JSON.stringify(value)).digest("hex");
+}
+
+/** The key of a file's kept values: content of the file and of what stands beside it, and how values are formed. */
+export async function fileKey(
+  path: string,
+  side: SidePaths,
+  options: LayerOptions,
+  effects: Effects,
+): Promise<string> {
+  const sums: string[] = [];
+  for (const one of [path, ...sideList(side)]) sums.push((await effects.files.identity(one)).sha256);
+  const { scale, offset, fill, valid, system, date, band } = options;
+  // Dates do not change values, but they say which bands are read.
+  const bands = "name" in date ? (band ?? 1) : "all";
+  return `layer-${digest([VERSION, sums, scale, offset, fill, valid, system, bands].map((one) => one ?? null))}`;
+}
+
+/** The key of a place within a file: its geometry and how it is read; the threshold of valid area is applied later. */
+export function placeKey(place: Where, use: PlaceUse): string {
+  const geometry = place.type === "point" ? place.position : place.polygons;
+  return digest([place.type, geometry, use.by, use.by === "radius" ? use.metres : null]);
+}
+
+/** JSON has no NaN: null stands for it. */
+export async function readKept(key: string, effects: Effects): Promise<KeptFile> {
+  const bytes = await effects.reuse.get(key);
+  if (bytes === undefined) return new Map();
+  try {
+    const parsed: unknown = JSON.parse(new TextDecoder().decode(bytes));
+    return new Map(
+      Object.entries(parsed as object)
+        .filter(isEntry)
+        .map(([name, one]) => [name, revive(one)]),
+    );
+  } catch {
+    // A damaged store is no reason to stop: the values are read from the file again.
+    return new Map();
+  }
+}
+
+interface Written {
+  readonly values: readonly (number | null)[];
+  readonly shares: readonly number[];
+  readonly outside: number;
+  readonly pixels: number;
+}
+
+function isEntry(entry: [string, unknown]): entry is [string, Written] {
+  const one = entry[1];
+  return (
+    typeof one === "object" && one !== null && "values" in one && Array.isArray(one.values) && "shares" in one
+  );
+}
+
+function revive(one: Written): Kept {
+  return { ...one, values: one.values.map((value) => value ?? Number.NaN) };
+}
+
+export async function writeKept(key: string, kept: KeptFile, effects: Effects): Promise<void> {
+  await effects.reuse.put(key, new TextEncoder().encode(JSON.stringify(Object.fromEntries(kept))));
+}

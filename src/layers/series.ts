@@ -1,0 +1,173 @@
+import { isoDay } from "../data/day.ts";
+import type { RawFinding } from "../data/finding.ts";
+import { type Period, periodText } from "../data/period.ts";
+import type { Series } from "../data/series.ts";
+import type { ImagePeriod } from "./dates.ts";
+import type { LayerOptions, Wanted } from "./options.ts";
+import type { Kept } from "./reuse.ts";
+
+/** What one file gave: its images' periods and, place by place, their values. */
+export interface FileValues {
+  readonly path: string;
+  readonly periods: readonly ImagePeriod[];
+  readonly places: readonly (Kept | undefined)[];
+}
+
+/** One image in the order of time. */
+export interface DatedImage extends Period {
+  readonly file: number;
+  readonly image: number;
+  readonly path: string;
+}
+
+/**
+ * Puts images in order of time. An image that begins with another is left out (the first by file name stands); one
+ * that runs into the next is cut off where that begins. Both are findings, and so are days between images that none
+ * covers.
+ */
+export function orderImages(
+  name: string,
+  files: readonly { readonly path: string; readonly periods: readonly ImagePeriod[] }[],
+): { readonly images: readonly DatedImage[]; readonly findings: readonly RawFinding[] } {
+  const all = files
+    .flatMap(({ path, periods }, file) =>
+      periods.map(({ start, end }, image): DatedImage => ({ start, end, file, image, path })),
+    )
+    .sort((p, q) => p.start - q.start || p.file - q.file || p.image - q.image);
+  const images: DatedImage[] = [];
+  const findings: RawFinding[] = [];
+  const cut: DatedImage[] = [];
+  for (const one of all) {
+    const before = images[images.length - 1];
+    if (before !== undefined && before.start === one.start) {
+      findings.push({
+        kind: "layer-overlap",
+        subject: name,
+        message: `${one.path} begins on the same day (${isoDay(one.start)}) as ${before.path}, which stands`,
+        where: { file: one.path },
+        value: isoDay(one.start),
+        remedy: "take one of the two out, or mend the date pattern",
+      });
+      continue;
+    }
+    if (before !== undefined && before.end > one.start) {
+      cut.push(before);
+      images[images.length - 1] = { ...before, end: one.start };
+    } else if (before !== undefined && before.end < one.start)
+      findings.push({
+        kind: "layer-gap",
+        subject: name,
+        message: `no image covers ${periodText({ start: before.end, end: one.start })} (${one.start - before.end} days)`,
+        where: { file: one.path },
+        value: isoDay(before.end),
+        count: one.start - before.end,
+        remedy: "add the missing files, or accept the gap; windows that need these days may be incomplete",
+      });
+    images.push(one);
+  }
+  if (cut.length > 0)
+    findings.push({
+      kind: "layer-overlap",
+      subject: name,
+      message: `${cut.length} images run into the next and are cut off where it begins, the first from ${isoDay(cut[0].start)}`,
+      where: { file: cut[0].path },
+      value: isoDay(cut[0].start),
+      count: cut.length,
+      remedy:
+        "check what the images cover; composites that start anew each year overlap at its end, which is right",
+    });
+  return { images, findings };
+}
+
+/** Series and valid shares of all places from the values of all files; applies the threshold of valid area. */
+export function seriesOf(
+  name: string,
+  options: LayerOptions,
+  wanted: readonly Wanted[],
+  read: readonly FileValues[],
+): {
+  readonly series: readonly Series[];
+  readonly validShares: readonly Float64Array[];
+  readonly findings: readonly RawFinding[];
+} {
+  const { images, findings } = orderImages(name, read);
+  const starts = Int32Array.from(images, (one) => one.start);
+  const ends = Int32Array.from(images, (one) => one.end);
+  const files = [...new Set(images.map((one) => one.path))].sort((a, b) => (a < b ? -1 : 1));
+  const found: RawFinding[] = [...findings];
+  const validShares: Float64Array[] = [];
+  const series = wanted.map(({ place, use }, w): Series => {
+    const at = (one: DatedImage) => read[one.file].places[w];
+    const values = Float64Array.from(images, (one) => at(one)?.values[one.image] ?? Number.NaN);
+    const shares = Float64Array.from(images, (one) => at(one)?.shares[one.image] ?? 0);
+    validShares.push(shares);
+    const least = "validArea" in use ? use.validArea : 0;
+    const low = images.filter((_, i) => shares[i] < least || shares[i] === 0);
+    images.forEach((_, i) => {
+      if (shares[i] < least) values[i] = Number.NaN;
+    });
+    // Files of one stack share their grid as a rule; where they do not, the worst is told.
+    const first = read
+      .map((one) => one.places[w])
+      .reduce((worst, one) => ((one?.outside ?? 0) > (worst?.outside ?? 0) ? one : worst), read[0].places[w]);
+    if (first !== undefined) found.push(...placeFindings(name, place.name, first, use.by));
+    if (low.length > 0 && (first?.outside ?? 0) < 1)
+      found.push(lowFinding(name, place.name, low, images.length, least));
+    return {
+      site: place.name,
+      variable: name,
+      unit: options.unit,
+      kind: options.kind,
+      starts,
+      ends,
+      values,
+      files,
+    };
+  });
+  return { series, validShares, findings: found };
+}
+
+function lowFinding(
+  name: string,
+  place: string,
+  low: readonly DatedImage[],
+  images: number,
+  least: number,
+): RawFinding {
+  const dates = low.slice(0, 3).map((one) => isoDay(one.start));
+  return {
+    kind: "layer-valid-area",
+    subject: `${name} at ${place}`,
+    message:
+      `${low.length} of ${images} images have ${least > 0 ? `less than ${least} of the area` : "nothing"} valid ` +
+      `(${dates.join(", ")}${low.length > 3 ? ", …" : ""}) and count as missing`,
+    where: { file: low[0].path },
+    value: dates[0],
+    count: low.length,
+    remedy: "accept them as missing, or lower the valid area if part of the place will do",
+  };
+}
+
+function placeFindings(name: string, place: string, kept: Kept, by: string): RawFinding[] {
+  const out: RawFinding[] = [];
+  if (kept.outside > 1e-9)
+    out.push({
+      kind: "place-outside",
+      subject: `${name} at ${place}`,
+      message:
+        kept.outside >= 1
+          ? `the place lies outside the layer; all its values are missing`
+          : `${(100 * kept.outside).toPrecision(3)} % of the place lies outside the layer and counts as not valid`,
+      value: String(kept.outside),
+      remedy: "check the place's coordinates (longitude first) and the layer's extent",
+    });
+  else if ((by === "area" || by === "radius") && kept.pixels < 1)
+    out.push({
+      kind: "layer-small-place",
+      subject: `${name} at ${place}`,
+      message: `the place is smaller than a pixel (${kept.pixels.toPrecision(3)} of one)`,
+      value: String(kept.pixels),
+      remedy: "its values are those of the few pixels it touches; a point by bilinear may tell as much",
+    });
+  return out;
+}

@@ -1,0 +1,45 @@
+import { readFileSync } from "node:fs";
+import { describe, expect, test } from "vitest";
+import type { Where } from "../../src/data/place.ts";
+import { extractLayers } from "../../src/layers/extract.ts";
+import type { LayerOptions, PlaceUse } from "../../src/layers/options.ts";
+import { DATA, effectsBelow } from "./effects.ts";
+
+// K_layers.json: values read by GDAL, coverage by exact polygon clipping (its source is stated in the file).
+interface Case {
+  readonly file: string;
+  readonly area?: string;
+  readonly geojson_rings?: readonly (readonly (readonly [number, number])[])[];
+  readonly point?: readonly [number, number];
+  readonly mean: number;
+  readonly nearest: number;
+  readonly valid_share: number;
+}
+const { cases } = JSON.parse(
+  readFileSync(new URL("../reference/K_layers.json", import.meta.url), "utf8"),
+) as { cases: readonly Case[] };
+
+const OPTIONS: LayerOptions = {
+  files: ["luxembourg-elevation.tif"],
+  date: { first: "2000-02-11", step: "day" },
+  covers: "day",
+  unit: "m",
+  kind: "mean",
+};
+
+describe("reference values of a real elevation layer (K_layers.json, relative 1e-9)", () => {
+  const tifs = cases.filter((one) => one.file.endsWith(".tif"));
+  test("there are six GeoTIFF cases", () => expect(tifs).toHaveLength(6));
+  test.each(tifs)("$area $point", async (one) => {
+    const place: Where =
+      one.point === undefined
+        ? { type: "area", name: "here", polygons: [one.geojson_rings ?? []] }
+        : { type: "point", name: "here", position: one.point };
+    const use: PlaceUse = one.point === undefined ? { by: "area", validArea: 0 } : { by: "nearest" };
+    const { series, validShares } = await extractLayers("elevation", OPTIONS, [{ place, use }], effectsBelow(DATA));
+    const expected = one.point === undefined ? one.mean : one.nearest;
+    expect(Math.abs(series[0].values[0] / expected - 1)).toBeLessThan(1e-9);
+    if (one.point === undefined)
+      expect(Math.abs(validShares[0][0] / one.valid_share - 1)).toBeLessThan(1e-9);
+  });
+});
