@@ -188,8 +188,8 @@ export function readBlock(
 function finish(image: Image, packed: Uint8Array, row: number, step: number): Samples {
   const size = SAMPLE_BYTES[image.type];
   const bytes = packed.byteOffset % size === 0 ? packed : packed.slice();
-  // LERC has a byte order of its own, which its decoder has already turned.
-  const turned = image.littleEndian !== HOST_LITTLE && image.compression !== "LERC";
+  // LERC too: libtiff turns the samples before it packs them, though LERC has an order of its own.
+  const turned = image.littleEndian !== HOST_LITTLE;
   if (image.predictor === 3) undoFloatPlanes(bytes, row, size, step, HOST_LITTLE);
   else {
     if (turned && size > 1) swapBytes(bytes, size);

@@ -136,7 +136,9 @@ function unpackAny(
 
 function inflate(packed: Uint8Array, shape: BlockShape, path: string): Uint8Array {
   try {
-    return inflateSync(packed, { maxOutputLength: shape.most, chunkSize: Math.max(64, shape.most) });
+    const out = inflateSync(packed, { maxOutputLength: shape.most, chunkSize: Math.max(64, shape.most) });
+    // A plain array: Buffer's own slice would share its bytes where a copy is meant.
+    return new Uint8Array(out.buffer, out.byteOffset, out.byteLength);
   } catch (error) {
     throw brokenFile(path, `a deflate block that cannot be unpacked (${(error as Error).message})`);
   }
