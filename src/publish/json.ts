@@ -19,6 +19,8 @@ export function tableJsonBytes(table: Table): Uint8Array {
 function cellJson(value: string | number | boolean | undefined): string {
   if (value === undefined) return "null";
   if (typeof value !== "number") return JSON.stringify(value);
+  // Written as a fraction: readers that take -0 for a whole number lose its sign.
+  if (Object.is(value, -0)) return "-0.0";
   return Number.isFinite(value) ? numberText(value, false) : JSON.stringify(numberText(value, false));
 }
 
