@@ -35,15 +35,20 @@ export function correlationP(r: number, df: number): number {
 export function correlationTable(matrix: Matrix, names: readonly string[], method: Method): CorrelationTable {
   const exact = new Map<number, Float64Array>();
   const columns = names.map((_, j) => column(matrix, j));
+  // Columns without missing cells have the same ranks in every pair of them: take those once.
+  const whole = columns.map((one) => (one.some(isMissing) ? undefined : averageRanks(one)));
   return table(names, method, (a, b) => {
     const [x, y] = present([columns[a], columns[b]]);
     if (method === "Pearson") return withT(pearson(x, y), x.length, 0);
-    const [u, v] = [averageRanks(x), averageRanks(y)];
+    const both = whole[a] !== undefined && whole[b] !== undefined;
+    const u = (both ? whole[a] : undefined) ?? averageRanks(x);
+    const v = (both ? whole[b] : undefined) ?? averageRanks(y);
     const r = pearson(u.ranks, v.ranks);
     const n = x.length;
     if (u.tied || v.tied || n < 3 || n > exactSpearmanLimit) return withT(r, n, 0);
-    if (!exact.has(n)) exact.set(n, spearmanCounts(n));
-    return { r, n, p: spearmanExact(u.ranks, v.ranks, exact.get(n) as Float64Array) };
+    const counts = exact.get(n) ?? spearmanCounts(n);
+    exact.set(n, counts);
+    return { r, n, p: spearmanExact(u.ranks, v.ranks, counts) };
   });
 }
 
@@ -59,7 +64,7 @@ export function partialTable(
   method: Method,
 ): CorrelationTable {
   const columns = names.map((_, j) => column(matrix, j));
-  const whole = matrix.data.every((value) => !Number.isNaN(value));
+  const whole = matrix.data.every(Number.isFinite);
   // Without missing cells every pair leaves the same residuals: take them once per column.
   const left = whole ? columns.map((one) => residuals(one, [given], method)) : undefined;
   const out = table(names, method, (a, b) => {
@@ -151,13 +156,15 @@ function table(
   return { method, names, ...out };
 }
 
+/** Missing, or the infinity that a transform may have made of a value. */
+const isMissing = (value: number) => !Number.isFinite(value);
+
 /** The rows where none of the columns is missing. */
-function present(columns: readonly Float64Array[]): Float64Array[] {
-  const rows = columns[0].length;
-  const keep = Array.from({ length: rows }, (_, i) => i).filter((i) =>
-    columns.every((one) => !Number.isNaN(one[i])),
-  );
-  return columns.map((one) => (keep.length === rows ? one : Float64Array.from(keep, (i) => one[i])));
+function present(columns: readonly Float64Array[]): readonly Float64Array[] {
+  if (!columns.some((one) => one.some(isMissing))) return columns;
+  const rows = Array.from({ length: columns[0].length }, (_, i) => i);
+  const keep = rows.filter((i) => columns.every((one) => !isMissing(one[i])));
+  return columns.map((one) => Float64Array.from(keep, (i) => one[i]));
 }
 
 /** Departures from the mean as shares of the largest; undefined if they are nothing but rounding. */

@@ -93,7 +93,7 @@ function decided(names: readonly string[], factors: Float64Array, options: Colli
 function completeRows(matrix: Matrix): number[] {
   const { rows, columns, data } = matrix;
   return Array.from({ length: rows }, (_, i) => i).filter((i) =>
-    data.subarray(i * columns, (i + 1) * columns).every((value) => !Number.isNaN(value)),
+    data.subarray(i * columns, (i + 1) * columns).every(Number.isFinite),
   );
 }
 

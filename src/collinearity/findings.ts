@@ -22,7 +22,8 @@ export function collinearityFindings(
 function missingCells(matrix: Matrix, names: readonly string[], complete: number): RawFinding[] {
   return names.flatMap((subject, k) => {
     let missing = 0;
-    for (let i = 0; i < matrix.rows; i++) if (Number.isNaN(matrix.data[i * matrix.columns + k])) missing++;
+    for (let i = 0; i < matrix.rows; i++)
+      if (!Number.isFinite(matrix.data[i * matrix.columns + k])) missing++;
     if (missing === 0) return [];
     return {
       kind: "incomplete-column",

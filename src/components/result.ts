@@ -25,4 +25,36 @@ export interface Components {
   readonly scale?: readonly number[];
   /** Parallel analysis: the eigenvalues that chance alone gives, m. */
   readonly parallel?: readonly number[];
+  /** The theme of each component, where components were made within themes. */
+  readonly themes?: readonly string[];
+}
+
+/** Kept components after a varimax rotation; k of them. */
+export interface RotatedComponents {
+  readonly names: readonly string[];
+  /** `rotated 1`, … */
+  readonly labels: readonly string[];
+  /** K × k: correlation of covariate and rotated component. */
+  readonly correlations: Matrix;
+  /** k × k, orthogonal: rotated correlations = correlations × rotation. */
+  readonly rotation: Matrix;
+  /** Share of the variance of all covariates, largest first. */
+  readonly share: readonly number[];
+  /** n × k: uncorrelated, variance 1. */
+  readonly scores: Matrix;
+  /** The covariates each is named after, strongest first. */
+  readonly ledBy: readonly (readonly { readonly name: string; readonly r: number }[])[];
+}
+
+/** Bootstrap percentile intervals of loadings, axes matched; K × k each. */
+export interface LoadingIntervals {
+  readonly level: number;
+  /** Samples that count. */
+  readonly replicates: number;
+  /** Samples in which a covariate did not vary. */
+  readonly leftOut: number;
+  readonly lower: Matrix;
+  readonly upper: Matrix;
+  /** Mean congruence of the matched axes with the original one; near 1 for a component that is well defined. */
+  readonly congruence: readonly number[];
 }
