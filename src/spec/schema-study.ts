@@ -1,0 +1,129 @@
+import {
+  allStated,
+  choice,
+  column,
+  flag,
+  inputPath,
+  keys,
+  list,
+  named,
+  number,
+  oneOf,
+  prose,
+  someOf,
+  stated,
+  text,
+} from "./words.ts";
+
+export const study = keys("the study's title and how far its places are hidden", {
+  title: prose("the study's title", "An invented maternity roost"),
+  sensitive: stated(flag("whether the places must not be published, true or false"), false),
+  coarsen: stated(
+    text(
+      "to what length sensitive places are rounded in what is published",
+      "10 km",
+      /^\d+(?:\.\d+)? (?:m|km)$/,
+    ),
+    "10 km",
+  ),
+});
+
+const dateFormat = () =>
+  stated(
+    text("the pattern of dates, with yyyy, MM, dd, or D for the day of the year", "dd.MM.yyyy"),
+    "yyyy-MM-dd",
+  );
+
+export const occasions = keys("the table of occasions, a row each", {
+  file: inputPath("the CSV file of occasions", "occasions.csv"),
+  name: column("the occasion's name", "visit"),
+  start: column("the occasion's first day", "from"),
+  end: column("the occasion's last day", "to"),
+  format: dateFormat(),
+  lengths: stated(choice("how interval lengths are counted", ["exact", "whole years"]), "exact"),
+  effort: column("the effort of each occasion", "net_hours").optional(),
+});
+
+const strata = () =>
+  stated(list("the columns that split the animals", text("the name of a column", "sex"), ["sex"]), []);
+
+const lost = () =>
+  keys("how animals that were not released again are told", {
+    column: column("the animal's fate", "fate"),
+    values: someOf("the values that mean lost", text("a value that means lost", "died"), ["died"]),
+  }).optional();
+
+const captureFile = () => inputPath("the CSV file of captures", "captures.csv");
+
+export const captures = oneOf("the captures, by one of three layouts", [
+  keys("captures with a row each", {
+    layout: choice("the layout of the captures", ["dated"]),
+    file: captureFile(),
+    animal: column("the animal's mark", "ring"),
+    date: column("the date of the capture", "date"),
+    format: dateFormat(),
+    strata: strata(),
+    lost: lost(),
+  }),
+  keys("captures with a row per animal and a 0 or 1 per occasion", {
+    layout: choice("the layout of the captures", ["zero-one"]),
+    file: captureFile(),
+    animal: column("the animal's mark", "ring"),
+    number: column("how many animals share the row", "animals").optional(),
+    columns: someOf(
+      "the columns of the occasions, in order",
+      text("the name of a column", "2001"),
+    ).optional(),
+    strata: strata(),
+    lost: lost(),
+  }),
+  keys("captures as counts, a row per release occasion", {
+    layout: choice("the layout of the captures", ["counts"]),
+    file: captureFile(),
+    "released at": column("the occasion of release", "occasion"),
+    released: column("how many animals were released", "released"),
+    columns: someOf(
+      "the columns of the occasions, in order",
+      text("the name of a column", "2002"),
+    ).optional(),
+    strata: strata(),
+  }),
+]);
+
+export const place = oneOf("a feature of a GeoJSON file, or a point", [
+  keys("a feature of a GeoJSON file", {
+    file: inputPath("the GeoJSON file", "places.geojson"),
+    where: stated(
+      named(
+        "the properties that pick the feature",
+        "the name of a property",
+        text("the property's value", "roost"),
+      ),
+      {},
+    ),
+  }),
+  keys("a point in WGS 84 degrees", {
+    longitude: number("the longitude in degrees", 8.25, { min: -180, max: 180 }),
+    latitude: number("the latitude in degrees", 49.5, { min: -90, max: 90 }),
+  }),
+]);
+
+export const survival = allStated("the part of the model that speaks of survival", {
+  strata: stated(list("strata that shift survival", text("the name of a stratum", "sex"), ["sex"]), []),
+  forced: stated(
+    list("covariates that are always in the model, unpenalised", text("the name of a covariate"), [
+      "winter rain",
+    ]),
+    [],
+  ),
+});
+
+export const recapture = stated(
+  choice("the recapture part; `choose` takes the least AICc under one survival per interval", [
+    "choose",
+    "constant",
+    "each occasion",
+    "effort",
+  ]),
+  "choose",
+);
