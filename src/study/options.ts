@@ -40,6 +40,8 @@ export interface ZeroOneCaptures {
   readonly columns?: readonly string[];
   readonly strata: readonly string[];
   readonly lost?: LostOptions;
+  /** Lengths of the intervals in years where there are no dated occasions; 1 each by default. */
+  readonly lengths?: readonly number[];
 }
 
 /** Release–recapture counts: a row per release occasion, columns of later occasions. */
@@ -53,6 +55,8 @@ export interface CountCaptures {
   /** Columns of next recapture, in order of occasion; by default named as the occasions are. */
   readonly columns?: readonly string[];
   readonly strata: readonly string[];
+  /** Lengths of the intervals in years where there are no dated occasions; 1 each by default. */
+  readonly lengths?: readonly number[];
 }
 
 export type CaptureOptions = DatedCaptures | ZeroOneCaptures | CountCaptures;
@@ -61,3 +65,12 @@ export type CaptureOptions = DatedCaptures | ZeroOneCaptures | CountCaptures;
 export type PlaceOptions =
   | { readonly file: string; readonly where: Readonly<Record<string, string>> }
   | { readonly longitude: number; readonly latitude: number };
+
+/** One entry of `ready-made:`: values that already stand one per interval. */
+export interface ReadyMadeOptions {
+  readonly file: string;
+  /** Column with the interval's name, e.g. `2001 to 2002`. */
+  readonly interval: string;
+  /** Column → what it holds. */
+  readonly columns: Readonly<Record<string, { readonly unit: string }>>;
+}
