@@ -37,10 +37,12 @@ export function definitionFromKeys(keys: GeoKeys, lookup: Lookup): Built {
     }
     return undefined;
   };
+  const model = key(1024) ?? 1;
+  if (model !== 1 && model !== 2) return { refused: `a system of model type ${model}` };
   const figure = figureOf(key, lookup);
   if (figure === undefined) return { refused: "an ellipsoid or datum that the file does not describe" };
   if ((key(2054) ?? 9102) !== 9102) return { refused: `angular unit ${key(2054)}` };
-  if ((key(1024) ?? 1) === 2) return { definition: `+proj=longlat ${figure} +no_defs` };
+  if (model === 2) return { definition: `+proj=longlat ${figure} +no_defs` };
   const metre = key(3076) === USER_DEFINED ? key(3077) : TO_METRE[key(3076) ?? 9001];
   if (metre === undefined) return { refused: `linear unit ${key(3076)}` };
   const unit = metre === 1 ? "+units=m" : `+to_meter=${metre}`;

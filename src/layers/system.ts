@@ -61,7 +61,9 @@ export interface SystemSources {
 export function resolveSystem({ path, user, keys, wkt }: SystemSources): System {
   if (user !== undefined) return fromUser(user, path);
   const model = keys.numbers.get(1024);
-  const code = keys.numbers.get(3072) ?? (model === 1 ? undefined : keys.numbers.get(2048));
+  // Of a projected or user-defined system, the geographic code names but its datum.
+  const geographic = model === 2 || model === undefined ? keys.numbers.get(2048) : undefined;
+  const code = keys.numbers.get(3072) ?? geographic;
   const texts = [wkt, ...[1026, 3073, 2049].map((id) => keys.texts.get(id))];
   // A side file stands before the file's own keys, as GDAL has it.
   const fromSide = wkt === undefined ? undefined : fromWkt(wkt, path);

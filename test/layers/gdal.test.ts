@@ -46,7 +46,12 @@ const ARRAYS = {
 };
 
 /** All raw samples of a band, block by block; `never` stands for blocks that were never written. */
-function wholeBand(file: Parameters<typeof readBlock>[0], image: Image, band: number, never: number): number[] {
+function wholeBand(
+  file: Parameters<typeof readBlock>[0],
+  image: Image,
+  band: number,
+  never: number,
+): number[] {
   const out = new Array<number>(image.width * image.height).fill(Number.NaN);
   const step = samplesPerPixel(image);
   for (let row = 0; row < image.down; row++)
@@ -106,7 +111,9 @@ describe("every fixture reads bit for bit as GDAL reads it", () => {
     const { affine } = await opened(name, async (layer) => layer.grid);
     const ours = [affine.x0, affine.a, affine.b, affine.y0, affine.d, affine.e];
     ours.forEach((value, i) => {
-      expect(Math.abs(value - expected.transform[i])).toBeLessThanOrEqual(1e-9 * Math.abs(expected.transform[i]));
+      expect(Math.abs(value - expected.transform[i])).toBeLessThanOrEqual(
+        1e-9 * Math.abs(expected.transform[i]),
+      );
     });
   });
 

@@ -36,10 +36,14 @@ describe("reference values of a real elevation layer (K_layers.json, relative 1e
         ? { type: "area", name: "here", polygons: [one.geojson_rings ?? []] }
         : { type: "point", name: "here", position: one.point };
     const use: PlaceUse = one.point === undefined ? { by: "area", validArea: 0 } : { by: "nearest" };
-    const { series, validShares } = await extractLayers("elevation", OPTIONS, [{ place, use }], effectsBelow(DATA));
+    const { series, validShares } = await extractLayers(
+      "elevation",
+      OPTIONS,
+      [{ place, use }],
+      effectsBelow(DATA),
+    );
     const expected = one.point === undefined ? one.mean : one.nearest;
     expect(Math.abs(series[0].values[0] / expected - 1)).toBeLessThan(1e-9);
-    if (one.point === undefined)
-      expect(Math.abs(validShares[0][0] / one.valid_share - 1)).toBeLessThan(1e-9);
+    if (one.point === undefined) expect(Math.abs(validShares[0][0] / one.valid_share - 1)).toBeLessThan(1e-9);
   });
 });

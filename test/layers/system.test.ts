@@ -16,8 +16,22 @@ describe("examples of EPSG Guidance Note 7-2 (printed to about a centimetre)", (
     ["Lambert azimuthal equal area, ETRS89-extended", "EPSG:3035", 5, 50, 3962799.45, 2999718.85],
     ["polar stereographic variant A", "EPSG:5041", 44, 73, 3320416.75, 632668.43],
     ["polar stereographic variant B", "EPSG:3032", 120, -75, 7255380.79, 7053389.56],
-    ["Lambert conic 1SP, Jamaica", "+proj=lcc +lat_1=18 +lat_0=18 +lon_0=-77 +k_0=1 +x_0=250000 +y_0=150000 +ellps=clrk66", -dms(76, 56, 37.26), dms(17, 55, 55.8), 255966.58, 142493.51],
-    ["transverse Mercator, British National Grid", "+proj=tmerc +lat_0=49 +lon_0=-2 +k=0.9996012717 +x_0=400000 +y_0=-100000 +ellps=airy", 0.5, 50.5, 577274.99, 69740.5],
+    [
+      "Lambert conic 1SP, Jamaica",
+      "+proj=lcc +lat_1=18 +lat_0=18 +lon_0=-77 +k_0=1 +x_0=250000 +y_0=150000 +ellps=clrk66",
+      -dms(76, 56, 37.26),
+      dms(17, 55, 55.8),
+      255966.58,
+      142493.51,
+    ],
+    [
+      "transverse Mercator, British National Grid",
+      "+proj=tmerc +lat_0=49 +lon_0=-2 +k=0.9996012717 +x_0=400000 +y_0=-100000 +ellps=airy",
+      0.5,
+      50.5,
+      577274.99,
+      69740.5,
+    ],
   ] as const)("%s", (_, system, lon, lat, east, north) => {
     const [x, y] = user(system).fromLonLat(lon, lat);
     expect(Math.abs(x - east)).toBeLessThan(0.011);
@@ -29,7 +43,10 @@ interface Expected {
   readonly system?: string;
   readonly places: readonly (readonly [number, number, number, number])[];
 }
-const EXPECTED = JSON.parse(readFileSync(join(DATA, "layers/expected.json"), "utf8")) as Record<string, Expected>;
+const EXPECTED = JSON.parse(readFileSync(join(DATA, "layers/expected.json"), "utf8")) as Record<
+  string,
+  Expected
+>;
 const SYSTEMS = Object.entries(EXPECTED).filter(([, one]) => one.system !== undefined);
 
 async function systemOf(name: string) {
@@ -49,9 +66,20 @@ describe("systems as files say them, against GDAL's transformation to WGS 84", (
     const found = await systemOf(name);
     for (const [x, y, lon, lat] of places) {
       const [ourLon, ourLat] = found.toLonLat(x, y);
-      expect([system, found.definition, Math.abs(ourLon - lon) < 2e-8, Math.abs(ourLat - lat) < 2e-8, ourLon - lon, ourLat - lat].slice(0, 4)).toEqual([system, found.definition, true, true]);
+      expect(
+        [
+          system,
+          found.definition,
+          Math.abs(ourLon - lon) < 2e-8,
+          Math.abs(ourLat - lat) < 2e-8,
+          ourLon - lon,
+          ourLat - lat,
+        ].slice(0, 4),
+      ).toEqual([system, found.definition, true, true]);
       const [backX, backY] = found.fromLonLat(lon, lat);
-      expect(Math.hypot(backX - x, backY - y) * (found.geographic ? 1e5 : found.metresPerUnit)).toBeLessThan(5e-3);
+      expect(Math.hypot(backX - x, backY - y) * (found.geographic ? 1e5 : found.metresPerUnit)).toBeLessThan(
+        5e-3,
+      );
     }
   });
 });

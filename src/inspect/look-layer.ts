@@ -1,0 +1,169 @@
+import type { Files } from "../effects/effects.ts";
+import { CoveyError } from "../errors.ts";
+import { type Grid, toSystem } from "../layers/grid.ts";
+import { describeLayer, type Layer } from "../layers/layer.ts";
+import { boundsOf } from "../layers/overview.ts";
+import { scanBand } from "../layers/scan.ts";
+import { findSideFiles, sideList } from "../layers/side.ts";
+import { resolveSystem, type System } from "../layers/system.ts";
+import { valueRule } from "../layers/values.ts";
+import { layerStanza } from "./layer-stanza.ts";
+
+/** What one band says and holds. */
+export interface BandLook {
+  readonly description: string;
+  readonly unit: string;
+  readonly scale: number;
+  readonly offset: number;
+  /** NaN if none. */
+  readonly nodata: number;
+  readonly missingShare: number;
+  /** After scale and offset; NaN if nothing is valid. */
+  readonly least: number;
+  readonly mean: number;
+  readonly greatest: number;
+}
+
+export interface LayerLook {
+  readonly path: string;
+  readonly bytes: number;
+  readonly width: number;
+  readonly height: number;
+  readonly type: string;
+  readonly compression: string;
+  readonly layout: string;
+  readonly bands: readonly BandLook[];
+  /** The system's name, or why it is not known. */
+  readonly system: string;
+  readonly systemKnown: boolean;
+  readonly systemFrom: string;
+  /** Width and height of the middle pixel on the ground, in metres; NaN if the system is not known. */
+  readonly pixelMetres: readonly [number, number];
+  /** West, south, east, north in degrees; NaN if the system is not known. */
+  readonly bounds: readonly [number, number, number, number];
+  readonly nodataText: string | undefined;
+  readonly mask: "none" | "within the file" | "beside the file";
+  readonly reducedImages: number;
+  readonly beside: readonly string[];
+  /** YAML to paste into a pipeline file. */
+  readonly stanza: string;
+}
+
+/** Bands whose values are gone through; more would make a look long. */
+const MOST_BANDS = 12;
+
+/**
+ * Looks at one GeoTIFF: its layout, where it lies, what is missing and the range of its values. An unknown system is
+ * told, not thrown, since telling is what a look is for.
+ */
+export async function lookLayer(path: string, files: Files): Promise<LayerLook> {
+  const side = (await findSideFiles([path], files))(path);
+  const file = files.open(path);
+  try {
+    const layer = await describeLayer(file, files, side);
+    const { image } = layer;
+    const settled = trySystem(layer);
+    const system = typeof settled === "string" ? undefined : settled;
+    const bands: BandLook[] = [];
+    for (let band = 0; band < Math.min(image.bands, MOST_BANDS); band++) {
+      const tally = new Tally();
+      const rule = valueRule(layer, band, {});
+      await scanBand(file, files, layer, image, band, rule, (_column, _row, value) => tally.add(value));
+      const { description, unit, scale, offset } = layer.bands[band];
+      const nodata = layer.nodata[band] ?? Number.NaN;
+      bands.push({ description, unit, scale, offset, nodata, ...tally.result() });
+    }
+    const where =
+      layer.mask === undefined ? "none" : layer.mask.path === path ? "within the file" : "beside the file";
+    return {
+      path,
+      bytes: file.size,
+      width: image.width,
+      height: image.height,
+      type: image.type,
+      compression: image.compression,
+      layout: `${image.tiled ? "tiles" : "strips"} of ${image.blockWidth} × ${image.blockHeight}`,
+      bands,
+      system: system?.label ?? String(settled),
+      systemKnown: system !== undefined,
+      systemFrom: system?.from ?? "nowhere",
+      pixelMetres: system === undefined ? [Number.NaN, Number.NaN] : groundSize(layer.grid, system),
+      bounds:
+        system === undefined ? [Number.NaN, Number.NaN, Number.NaN, Number.NaN] : boundsOf(layer, system),
+      nodataText: layer.nodataText,
+      mask: where,
+      reducedImages: layer.overviews.length,
+      beside: sideList(side),
+      stanza: layerStanza(
+        path,
+        layer.bands.map((band) => band.description),
+        layer.bands[0].unit,
+        system !== undefined,
+      ),
+    };
+  } finally {
+    file.close();
+  }
+}
+
+/** The system, or in words why there is none. */
+function trySystem(layer: Layer): System | string {
+  try {
+    return resolveSystem({ path: layer.path, user: undefined, keys: layer.keys, wkt: layer.wkt });
+  } catch (error) {
+    if (error instanceof CoveyError) return `unknown (${error.facts.found})`;
+    throw error;
+  }
+}
+
+/** Sums of one pass; the mean is taken about the first value, so that large offsets cost no digits. */
+class Tally {
+  private count = 0;
+  private missing = 0;
+  private first = 0;
+  private sum = 0;
+  private least = Number.POSITIVE_INFINITY;
+  private greatest = Number.NEGATIVE_INFINITY;
+
+  add(value: number): void {
+    this.count++;
+    if (Number.isNaN(value)) {
+      this.missing++;
+      return;
+    }
+    if (this.missing === this.count - 1) this.first = value;
+    this.sum += value - this.first;
+    if (value < this.least) this.least = value;
+    if (value > this.greatest) this.greatest = value;
+  }
+
+  result() {
+    const valid = this.count - this.missing;
+    return {
+      missingShare: this.missing / this.count,
+      least: valid > 0 ? this.least : Number.NaN,
+      mean: valid > 0 ? this.first + this.sum / valid : Number.NaN,
+      greatest: valid > 0 ? this.greatest : Number.NaN,
+    };
+  }
+}
+
+const RADIANS = Math.PI / 180;
+
+/**
+ * Size of the middle pixel by the radii of curvature of WGS 84 at its latitude: M = a (1 − e²) / w³ along the
+ * meridian and N cos φ = a cos φ / w along the parallel, w = √(1 − e² sin² φ).
+ */
+function groundSize(grid: Grid, system: System): readonly [number, number] {
+  const [column, row] = [Math.floor(grid.width / 2), Math.floor(grid.height / 2)];
+  const at = (c: number, r: number) => system.toLonLat(...toSystem(grid.affine, c, r));
+  const [corner, east, south] = [at(column, row), at(column + 1, row), at(column, row + 1)];
+  const sine = Math.sin(corner[1] * RADIANS);
+  const e2 = 0.0066943799901413;
+  const w = Math.sqrt(1 - e2 * sine * sine);
+  const perLat = ((6378137 * (1 - e2)) / w ** 3) * RADIANS;
+  const perLon = ((6378137 * Math.cos(corner[1] * RADIANS)) / w) * RADIANS;
+  const length = (to: readonly [number, number]) =>
+    Math.hypot((to[0] - corner[0]) * perLon, (to[1] - corner[1]) * perLat);
+  return [length(east), length(south)];
+}

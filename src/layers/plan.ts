@@ -1,0 +1,86 @@
+import type { RawFinding } from "../data/finding.ts";
+import type { Files } from "../effects/effects.ts";
+import { periodsOf } from "./dates.ts";
+import { noFiles } from "./extract.ts";
+import { describeLayer, type Layer } from "./layer.ts";
+import type { LayerOptions } from "./options.ts";
+import { type DatedImage, orderImages } from "./series.ts";
+import { findSideFiles, sideList } from "./side.ts";
+import { resolveSystem } from "./system.ts";
+
+export interface PlannedFile {
+  readonly path: string;
+  readonly bytes: number;
+  readonly width: number;
+  readonly height: number;
+  readonly bands: number;
+  readonly type: string;
+  readonly compression: string;
+  /** Files beside it that are read with it. */
+  readonly beside: readonly string[];
+}
+
+/** What a run would read of a layer; only headers have been read for it. */
+export interface LayerPlan {
+  readonly name: string;
+  readonly files: readonly PlannedFile[];
+  /** In order of time, repeats left out and overlaps cut, as the run will have them. */
+  readonly images: readonly DatedImage[];
+  /** The systems that occur; more than one is unusual. */
+  readonly systems: readonly string[];
+  readonly findings: readonly RawFinding[];
+}
+
+/**
+ * Reads the headers of every file of a layer: sizes, dates, systems, gaps and overlaps. All that a run would refuse
+ * of headers is thrown here already: unsupported encodings, broken files, unknown systems, dates that do not stand in
+ * the names.
+ */
+export async function planLayers(name: string, options: LayerOptions, files: Files): Promise<LayerPlan> {
+  const paths = await files.list(options.files);
+  if (paths.length === 0) throw noFiles(name, options);
+  const sides = await findSideFiles(paths, files);
+  const planned: PlannedFile[] = [];
+  const dated: { path: string; periods: ReturnType<typeof periodsOf> }[] = [];
+  const systems = new Set<string>();
+  const settled = new Map<string, string>();
+  for (const path of paths) {
+    const file = files.open(path);
+    try {
+      const layer = await describeLayer(file, files, sides(path));
+      planned.push(plannedFile(layer, file.size, sideList(sides(path))));
+      dated.push({
+        path,
+        periods: periodsOf(
+          path,
+          layer.bands.map((band) => band.description),
+          options,
+        ),
+      });
+      systems.add(systemLabel(layer, options, settled));
+    } finally {
+      file.close();
+    }
+  }
+  return { name, files: planned, ...orderImages(name, dated), systems: [...systems] };
+}
+
+function plannedFile({ path, image }: Layer, bytes: number, beside: readonly string[]): PlannedFile {
+  const { width, height, bands, type, compression } = image;
+  return { path, bytes, width, height, bands, type, compression, beside };
+}
+
+/** Most files of a stack say the same of their system, which is settled once. */
+function systemLabel(layer: Layer, options: LayerOptions, settled: Map<string, string>): string {
+  const key = JSON.stringify([[...layer.keys.numbers], [...layer.keys.texts], layer.wkt]);
+  const known = settled.get(key);
+  if (known !== undefined) return known;
+  const { label } = resolveSystem({
+    path: layer.path,
+    user: options.system,
+    keys: layer.keys,
+    wkt: layer.wkt,
+  });
+  settled.set(key, label);
+  return label;
+}
