@@ -132,10 +132,12 @@ function match(root: string, pattern: string): string[] {
     fs: {
       // The library passes over folders it cannot read, and follows links anywhere: both are seen to here.
       readdirSync: ((folder: string) => {
+        const shown = relative(root, folder).split(sep).join("/") || ".";
         try {
+          if (!isInside(root, fs.realpathSync(folder))) throw outside(shown, "a link that leads out of it");
           return fs.readdirSync(folder, { withFileTypes: true }).map((entry) => tamed(root, folder, entry));
         } catch (error) {
-          failures.push(machineError(error, "list", relative(root, folder).split(sep).join("/") || "."));
+          failures.push(machineError(error, "list", shown));
           throw error;
         }
         // The adapter's type has all of readdir's overloads; the library calls this one only.

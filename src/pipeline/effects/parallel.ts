@@ -63,13 +63,18 @@ async function onThreads(
   if (signal.aborted) throw new InterruptedError();
   const { Tinypool } = await import("tinypool");
   const pool = new Tinypool({ filename: workerFile(), minThreads: threads, maxThreads: threads });
-  const stop = new AbortController();
-  const onInterrupt = () => stop.abort();
+  let stopped: Promise<void> | undefined;
+  const stop = () => {
+    stopped ??= pool.destroy();
+    return stopped;
+  };
+  // Not the pool's own signal option: it puts a listener for every task on the signal.
+  const onInterrupt = () => void stop();
   signal.addEventListener("abort", onInterrupt, { once: true });
   try {
     return await Promise.all(
       calls.map(async (call) => {
-        const outcome: TaskOutcome = await pool.run(call, { signal: stop.signal });
+        const outcome: TaskOutcome = await pool.run(call);
         if ("value" in outcome) tick();
         return outcome;
       }),
@@ -79,7 +84,7 @@ async function onThreads(
     throw lostWorker(error);
   } finally {
     signal.removeEventListener("abort", onInterrupt);
-    await pool.destroy();
+    await stop();
   }
 }
 
