@@ -1,23 +1,21 @@
 import type { Slice } from "./slice.ts";
 
-/** Sum over `days` days in a row, by its last day (its index in the series). */
-interface Stretch {
-  readonly last: number;
-  readonly sum: number;
-}
-
-/** All runs of `days` daily values without a break that lie wholly in the window. */
-function stretches(slice: Slice, days: number): Stretch[] {
+/**
+ * sums[k] over the `days` days that end with observation lo + days − 1 + k; NaN where one is missing, or where a
+ * day has no row. All lie wholly in the window.
+ */
+function stretches(slice: Slice, days: number): Float64Array {
   const { starts, values } = slice.series;
-  const found: Stretch[] = [];
-  for (let last = slice.lo + days - 1; last < slice.hi; last++) {
-    if (starts[last] - starts[last - days + 1] !== days - 1) continue;
+  const sums = new Float64Array(Math.max(0, slice.hi - slice.lo - days + 1)).fill(Number.NaN);
+  for (let k = 0; k < sums.length; k++) {
+    const first = slice.lo + k;
+    if (starts[first + days - 1] - starts[first] !== days - 1) continue;
     // Summed afresh each time: a rolling sum would carry rounding, and NaN, along.
     let sum = 0;
-    for (let i = last - days + 1; i <= last; i++) sum += values[i];
-    if (!Number.isNaN(sum)) found.push({ last, sum });
+    for (let i = first; i < first + days; i++) sum += values[i];
+    sums[k] = sum;
   }
-  return found;
+  return sums;
 }
 
 /**
@@ -30,13 +28,19 @@ export function largestSums(
   days: number,
   count: number,
 ): { readonly value: number; readonly lastDay: number } {
-  const order = stretches(slice, days).sort((a, b) => b.sum - a.sum || a.last - b.last);
-  const taken: Stretch[] = [];
-  for (const one of order) {
-    if (taken.length === count) break;
-    if (taken.every((other) => Math.abs(other.last - one.last) >= days)) taken.push(one);
+  const sums = stretches(slice, days);
+  let total = 0;
+  let lastDay = Number.NaN;
+  for (let taken = 0; taken < count; taken++) {
+    let best = -1;
+    // Comparisons with NaN are false: missing stretches, and those struck out below, are never the largest.
+    for (let k = 0; k < sums.length; k++)
+      if (sums[k] > (best < 0 ? Number.NEGATIVE_INFINITY : sums[best])) best = k;
+    if (best < 0) return { value: Number.NaN, lastDay: Number.NaN };
+    total += sums[best];
+    if (taken === 0) lastDay = slice.series.starts[slice.lo + best + days - 1];
+    // Stretches that share a day with this one begin less than `days` days from it; observations are daily here.
+    sums.fill(Number.NaN, Math.max(0, best - days + 1), best + days);
   }
-  if (taken.length < count) return { value: Number.NaN, lastDay: Number.NaN };
-  const total = taken.reduce((sum, one) => sum + one.sum, 0);
-  return { value: total / count, lastDay: slice.series.starts[taken[0].last] };
+  return { value: total / count, lastDay };
 }
