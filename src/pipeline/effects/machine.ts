@@ -16,6 +16,16 @@ const DENIED: Words = {
   found: "permission denied",
   remedy: "ask for access to it, or choose another place",
 };
+const MANY: Words = {
+  name: "machine.too-many-files",
+  found: "too many files open at once",
+  remedy: "close other programs, or raise the limit of open files",
+};
+const NO_FOLDER: Words = {
+  name: "machine.not-a-folder",
+  found: "a file where a folder should be",
+  remedy: "rename the file, or choose another place",
+};
 
 /** What the operating system's error codes mean to a person. */
 const WORDS: Readonly<Record<string, Words>> = {
@@ -34,16 +44,8 @@ const WORDS: Readonly<Record<string, Words>> = {
     found: "nothing there any more",
     remedy: "leave the files in place while covey runs, and run the same command again",
   },
-  EMFILE: {
-    name: "machine.too-many-files",
-    found: "too many files open at once",
-    remedy: "close other programs, or raise the limit of open files",
-  },
-  ENFILE: {
-    name: "machine.too-many-files",
-    found: "too many files open at once",
-    remedy: "close other programs, or raise the limit of open files",
-  },
+  EMFILE: MANY,
+  ENFILE: MANY,
   EBUSY: {
     name: "machine.busy",
     found: "held by another program",
@@ -54,11 +56,9 @@ const WORDS: Readonly<Record<string, Words>> = {
     found: "a name longer than the disk takes",
     remedy: "choose a shorter path",
   },
-  ENOTDIR: {
-    name: "machine.not-a-folder",
-    found: "a file where a folder should be",
-    remedy: "rename the file, or choose another place",
-  },
+  ENOTDIR: NO_FOLDER,
+  // From making a folder whose name a file has.
+  EEXIST: NO_FOLDER,
 };
 
 /** The system's code of an error, if it has one. */
