@@ -29,7 +29,7 @@ export function correlationP(r: number, df: number): number {
 
 /**
  * Correlation of every pair of columns over the rows where both are present. Spearman's is Pearson's of the average
- * ranks among those rows; its p is exact where no ranks are tied and n ≤ 12, else by the t distribution as for
+ * ranks among those rows; its p is exact where no ranks are tied and n ≤ 10, else by the t distribution as for
  * Pearson. Holm's (1979) adjustment runs over all pairs that have a p.
  */
 export function correlationTable(matrix: Matrix, names: readonly string[], method: Method): CorrelationTable {

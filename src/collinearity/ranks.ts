@@ -17,8 +17,8 @@ export function averageRanks(values: ArrayLike<number>): {
   return { ranks, tied };
 }
 
-/** Up to this n all permutations are counted: 12! still is a whole number in double precision. */
-export const exactSpearmanLimit = 12;
+/** Up to this n all permutations are counted (a few milliseconds); beyond it the t distribution is close. */
+export const exactSpearmanLimit = 10;
 
 /**
  * counts[s] of the n! permutations with Σd² = s (Kendall 1948, *Rank Correlation Methods*, from memory), by

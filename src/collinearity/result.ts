@@ -12,7 +12,7 @@ export interface CorrelationTable {
   /** Rows where both columns are present. */
   readonly n: Matrix;
   /**
-   * Two-sided p by the t distribution on n − 2 (n − 3 for partial ones), exact for Spearman with n ≤ 12 and no ties;
+   * Two-sided p by the t distribution on n − 2 (n − 3 for partial ones), exact for Spearman with n ≤ 10 and no ties;
    * NaN on the diagonal.
    */
   readonly p: Matrix;

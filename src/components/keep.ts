@@ -1,7 +1,7 @@
-import { Matrix as Dense, EigenvalueDecomposition } from "ml-matrix";
 import { InputError } from "../errors.ts";
 import { quantile7 } from "../math/quantile.ts";
 import type { Random } from "../math/random.ts";
+import { symmetricEigenvalues } from "./eigenvalues.ts";
 import type { KeepRule } from "./options.ts";
 
 /** How many components stay, why, and the eigenvalues that chance alone gave (parallel analysis only). */
@@ -61,17 +61,16 @@ export function noiseEigenvalues(
   // Z'Z and Z Z' share their eigenvalues: take the smaller one.
   const wide = columns > rows;
   const side = wide ? rows : columns;
-  const cross = Dense.zeros(side, side);
+  const cross = new Float64Array(side * side);
   for (let a = 0; a < side; a++)
-    for (let b = a; b < side; b++) {
+    for (let b = 0; b <= a; b++) {
       let sum = 0;
       if (wide) for (const one of unit) sum += one[a] * one[b];
       else for (let i = 0; i < rows; i++) sum += unit[a][i] * unit[b][i];
-      cross.set(a, b, sum);
-      cross.set(b, a, sum);
+      cross[a * side + b] = sum;
+      cross[b * side + a] = sum;
     }
-  const { realEigenvalues } = new EigenvalueDecomposition(cross, { assumeSymmetric: true });
-  return realEigenvalues.sort((a, b) => b - a).slice(0, Math.min(rows - 1, columns));
+  return symmetricEigenvalues(cross, side).slice(0, Math.min(rows - 1, columns));
 }
 
 /**

@@ -344,7 +344,7 @@ describe("properties", () => {
         expect(second.pruning.map((step) => step.dropped)).toEqual(first.pruning.map((step) => step.dropped));
         expect(second.allDepend).toBe(first.allDepend);
       }),
-      { seed: 1, numRuns: 150 },
+      { seed: 1, numRuns: 80 },
     );
   });
 
@@ -359,7 +359,7 @@ describe("properties", () => {
         expect(dependencies.filter((one) => one.kind === "copy").map((one) => one.names)).toEqual([pair]);
         expect(factors[original].inflation).toBe(Infinity);
       }),
-      { seed: 2, numRuns: 150 },
+      { seed: 2, numRuns: 80 },
     );
   });
 
@@ -382,7 +382,7 @@ describe("properties", () => {
         for (let k = base.length; k < more.length; k++)
           expect(after.inflation[k].inflation).toBeLessThan(Infinity);
       }),
-      { seed: 3, numRuns: 150 },
+      { seed: 3, numRuns: 80 },
     );
   });
 });

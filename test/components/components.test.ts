@@ -1,6 +1,8 @@
 import fc from "fast-check";
+import { Matrix as Dense, EVD } from "ml-matrix";
 import { describe, expect, test } from "vitest";
 import { principalComponents, scoreRows } from "../../src/components/components.ts";
+import { symmetricEigenvalues } from "../../src/components/eigenvalues.ts";
 import { brokenStick, chooseKept, noiseEigenvalues, parallelEigenvalues } from "../../src/components/keep.ts";
 import { fromColumns, fromRows, type Matrix, toRows } from "../../src/data/matrix.ts";
 import { InputError } from "../../src/errors.ts";
@@ -115,7 +117,7 @@ describe("how many to keep", () => {
   });
 
   test("parallel analysis of two variables against the exact mean and 95 % point", () => {
-    const replicates = 8000;
+    const replicates = 5000;
     for (const { n, mean_first_eigenvalue, q95_first_eigenvalue } of F.expected.parallel_analysis
       .analytic_two_variables) {
       const random = randomStream(5, "parallel", n);
@@ -139,10 +141,10 @@ describe("how many to keep", () => {
   ])("parallel analysis, %s: means within 0.01, 95 % points within their error", (_, expected) => {
     const random = randomStream(6, "parallel", 0);
     const size = { rows: expected.n, columns: expected.p };
-    const runs = Array.from({ length: 10000 }, () => noiseEigenvalues(size, random));
+    const runs = Array.from({ length: 6000 }, () => noiseEigenvalues(size, random));
     const means = runs[0].map((_, j) => mean(runs.map((run) => run[j])));
     expect(worst(means, expected.mean)).toBeLessThan(0.01);
-    const q95 = parallelEigenvalues(size, { replicates: 10000, quantile: 0.95 }, random);
+    const q95 = parallelEigenvalues(size, { replicates: 6000, quantile: 0.95 }, random);
     expect(worst(q95, expected.q95)).toBeLessThan(0.03);
   });
 
@@ -159,6 +161,27 @@ describe("how many to keep", () => {
     const eigenvalues = noiseEigenvalues({ rows: 12, columns: 30 }, randomStream(2, "wide", 0));
     expect(eigenvalues.length).toBe(11);
     expect(eigenvalues.reduce((a, b) => a + b)).toBeCloseTo(30, 10);
+  });
+
+  test("eigenvalues without vectors agree with a full decomposition; known ones of a path graph", () => {
+    for (const side of [1, 2, 3, 7, 30]) {
+      const matrix = noise(side, side, 7);
+      const dense = Dense.from1DArray(side, side, matrix.data);
+      const cross = dense.mmul(dense.transpose());
+      const { realEigenvalues } = new EVD(cross, { assumeSymmetric: true });
+      const expected = realEigenvalues.sort((a, b) => b - a);
+      expect(worst(symmetricEigenvalues(Float64Array.from(cross.to1DArray()), side), expected)).toBeLessThan(
+        1e-11 * expected[0],
+      );
+    }
+    // 2 on the diagonal, −1 beside it: 2 − 2 cos(jπ/(n + 1)) (textbook result).
+    const path = Float64Array.from({ length: 64 }, (_, at) => {
+      const gap = Math.abs(Math.floor(at / 8) - (at % 8));
+      return gap === 0 ? 2 : gap === 1 ? -1 : 0;
+    });
+    const known = Array.from({ length: 8 }, (_, j) => 2 - 2 * Math.cos(((8 - j) * Math.PI) / 9));
+    expect(worst(symmetricEigenvalues(path, 8), known)).toBeLessThan(1e-13);
+    expect(symmetricEigenvalues(Float64Array.of(3, 0, 0, 0, 5, 0, 0, 0, 3), 3)).toEqual([5, 3, 3]);
   });
 
   test("share, number, and none", () => {
