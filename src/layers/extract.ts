@@ -133,12 +133,24 @@ function prepare(
     keys: layer.keys,
     wkt: layer.wkt,
   });
-  const footprints = wanted.map(({ place, use }) => footprintOf(place, use, grid, resolved));
+  const footprints = wanted.map(({ place, use }) =>
+    naming(layer.path, () => footprintOf(place, use, grid, resolved)),
+  );
   const made = { footprints, blocks: neededBlocks(footprints, image) };
   // Stacks in which every file has a grid of its own must not pile them up.
   if (prepared.size >= 8) prepared.clear();
   prepared.set(key, made);
   return made;
+}
+
+/** Adds the file's name to errors that speak of a place only. */
+function naming<Result>(path: string, work: () => Result): Result {
+  try {
+    return work();
+  } catch (error) {
+    if (!(error instanceof InputError) || error.facts.where?.file !== undefined) throw error;
+    throw new InputError({ ...error.facts, where: { ...error.facts.where, file: path } }, error);
+  }
 }
 
 export function noFiles(name: string, options: LayerOptions): InputError {

@@ -107,3 +107,80 @@ function globMatches(path: string, pattern: string): boolean {
     .join("[^/]*");
   return new RegExp(`^${source}$`).test(path);
 }
+
+/** Effects over files in memory. */
+export function effectsOf(contents: Readonly<Record<string, Uint8Array>>): TestEffects {
+  const base = effectsBelow(DATA);
+  const bytesOf = (path: string) => {
+    const bytes = contents[path];
+    if (bytes === undefined) throw new Error(`no file ${path}`);
+    return bytes;
+  };
+  const files: Files = {
+    ...base.files,
+    list: async (patterns) =>
+      Object.keys(contents)
+        .filter((path) => patterns.some((pattern) => pattern === path || globMatches(path, pattern)))
+        .sort((a, b) => (a < b ? -1 : 1)),
+    readBytes: async (path) => bytesOf(path),
+    readText: async (path) => new TextDecoder().decode(bytesOf(path)),
+    open: (path) => {
+      base.opened.push(path);
+      return inMemory(bytesOf(path), path);
+    },
+    identity: async (path) => {
+      const bytes = bytesOf(path);
+      return { path, bytes: bytes.length, sha256: createHash("sha256").update(bytes).digest("hex") };
+    },
+  };
+  return { ...base, files };
+}
+
+/** A little-endian classic TIFF made by hand: SHORT, LONG or DOUBLE tags and blocks, to lie with. */
+export function madeTiff(
+  tags: Readonly<Record<number, readonly number[]>>,
+  blocks: readonly Uint8Array[],
+): Uint8Array {
+  const entries = Object.entries(tags)
+    .map(([tag, values]) => ({
+      tag: Number(tag),
+      values,
+      double: [33550, 33922, 34264].includes(Number(tag)),
+    }))
+    .sort((a, b) => a.tag - b.tag);
+  const dataAt = 8 + 2 + entries.length * 12 + 4;
+  const room = ({ values, double }: (typeof entries)[number]) =>
+    Math.max(values.length, blocks.length) * (double ? 8 : 4);
+  let end = dataAt + entries.reduce((sum, entry) => sum + room(entry), 0);
+  const placed = blocks.map((block) => {
+    const at = end;
+    end += block.length;
+    return at;
+  });
+  const out = new Uint8Array(end);
+  const view = new DataView(out.buffer);
+  out.set([0x49, 0x49, 42, 0, 8, 0, 0, 0]);
+  view.setUint16(8, entries.length, true);
+  let data = dataAt;
+  entries.forEach(({ tag, values, double }, i) => {
+    const at = 10 + i * 12;
+    const numbers = tag === 273 || tag === 324 ? (values.length > 0 ? values : placed) : values;
+    view.setUint16(at, tag, true);
+    view.setUint16(at + 2, double ? 12 : 4, true);
+    view.setUint32(at + 4, numbers.length, true);
+    if (!double && numbers.length === 1) {
+      view.setUint32(at + 8, numbers[0], true);
+      return;
+    }
+    view.setUint32(at + 8, data, true);
+    for (const value of numbers) {
+      if (double) view.setFloat64(data, value, true);
+      else view.setUint32(data, value, true);
+      data += double ? 8 : 4;
+    }
+  });
+  blocks.forEach((block, i) => {
+    out.set(block, placed[i]);
+  });
+  return out;
+}
