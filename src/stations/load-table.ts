@@ -1,7 +1,7 @@
 import { gunzipSync, constants as zlib } from "node:zlib";
 import type { DuckDBConnection } from "@duckdb/node-api";
 import { parse } from "csv-parse/sync";
-import type { Effects, Files } from "../effects/effects.ts";
+import type { Files } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { literal, pathLiteral } from "./database.ts";
 import { type Dialect, decodeText, sniffDialect } from "./dialect.ts";
@@ -16,7 +16,7 @@ export interface RefusedRow {
   readonly why: string;
 }
 
-/** A file's wanted columns as text in the table `raw` (columns c0, c1, … by position; rowid is the row's index). */
+/** A file's wanted columns as text without blanks around it in the table `raw` (columns c0, c1, … by position; rowid is the row's index). */
 export interface LoadedTable {
   readonly file: string;
   readonly dialect: Dialect;
@@ -62,28 +62,30 @@ export async function readWhole(files: Files, path: string): Promise<Uint8Array>
 }
 
 /**
- * Loads the wanted columns of a text table into `raw`. UTF-8 files go through the database's reader; others are decoded
+ * Loads the wanted columns (all, if none is named) of a text table into `raw`. UTF-8 files go through the database's reader; others are decoded
  * first. Rows of unequal width are refused, not guessed at.
  */
 export async function loadTable(
   database: DuckDBConnection,
-  effects: Effects,
+  files: Files,
   file: string,
   wanted: readonly string[],
   dateColumn: string | undefined,
 ): Promise<LoadedTable> {
-  const head = await readHead(effects.files, file);
+  const head = await readHead(files, file);
   const dialect = sniffDialect(head.bytes, head.cut, file, wanted, dateColumn);
-  const columns = [...new Set(wanted.map((name) => dialect.header.indexOf(name)))].sort((a, b) => a - b);
+  const positions =
+    wanted.length === 0 ? dialect.header.keys() : wanted.map((name) => dialect.header.indexOf(name));
+  const columns = [...new Set(positions)].sort((a, b) => a - b);
   await database.run("DROP TABLE IF EXISTS raw");
   return dialect.encoding === "utf-8"
-    ? loadUtf8(database, effects, file, dialect, columns)
-    : loadDecoded(database, effects, file, dialect, columns);
+    ? loadUtf8(database, files, file, dialect, columns)
+    : loadDecoded(database, files, file, dialect, columns);
 }
 
 async function loadUtf8(
   database: DuckDBConnection,
-  effects: Effects,
+  files: Files,
   file: string,
   dialect: Dialect,
   columns: readonly number[],
@@ -91,8 +93,8 @@ async function loadUtf8(
   const types = dialect.header.map((_, i) => `'c${i}': 'VARCHAR'`).join(", ");
   await database.run("DROP TABLE IF EXISTS reject_errors; DROP TABLE IF EXISTS reject_scans;");
   await database.run(
-    `CREATE TEMP TABLE raw AS SELECT ${columns.map((i) => `c${i}`).join(", ")}
-     FROM read_csv(${pathLiteral(effects.files.absolute(file))}, auto_detect = false, header = false,
+    `CREATE TEMP TABLE raw AS SELECT ${columns.map((i) => `trim(c${i}) AS c${i}`).join(", ")}
+     FROM read_csv(${pathLiteral(files.absolute(file))}, auto_detect = false, header = false,
        skip = ${dialect.skip}, delim = ${literal(dialect.delimiter)}, quote = '"', escape = '"',
        compression = '${file.endsWith(".gz") ? "gzip" : "none"}', columns = {${types}},
        store_rejects = true, rejects_limit = 0)`,
@@ -103,7 +105,7 @@ async function loadUtf8(
      FROM reject_errors GROUP BY line_byte_position ORDER BY line_byte_position`,
   );
   const refusedRows = told.getRowsJson();
-  const bytes = refusedRows.length > 0 ? await readWhole(effects.files, file) : new Uint8Array();
+  const bytes = refusedRows.length > 0 ? await readWhole(files, file) : new Uint8Array();
   const refusals = refusedRows.map(([byte, text, why]) => ({
     byte: recordStart(bytes, Number(byte) - 1),
     text: String(text ?? "").trim(),
@@ -116,9 +118,7 @@ async function loadUtf8(
     rows,
     refused: refusals.map(({ byte, text, why }) => ({ line: lineOfByte(bytes, byte), text, why })),
     lines: async (wanted) =>
-      wanted.length === 0
-        ? []
-        : physicalLines(await readWhole(effects.files, file), dialect.skip, wanted, rejected),
+      wanted.length === 0 ? [] : physicalLines(await readWhole(files, file), dialect.skip, wanted, rejected),
   };
 }
 
@@ -142,12 +142,12 @@ function widthText(cells: number, dialect: Dialect): string {
 
 async function loadDecoded(
   database: DuckDBConnection,
-  effects: Effects,
+  files: Files,
   file: string,
   dialect: Dialect,
   columns: readonly number[],
 ): Promise<LoadedTable> {
-  const text = decodeText(await readWhole(effects.files, file), dialect.encoding).replace(/^\uFEFF/, "");
+  const text = decodeText(await readWhole(files, file), dialect.encoding).replace(/^\uFEFF/, "");
   const lines: number[] = [];
   const refused: RefusedRow[] = [];
   await database.run(`CREATE TEMP TABLE raw (${columns.map((i) => `c${i} VARCHAR`).join(", ")})`);
@@ -164,7 +164,7 @@ async function loadDecoded(
       if (cells.length !== dialect.header.length)
         refused.push({ line, text: cells.join(dialect.delimiter), why: widthText(cells.length, dialect) });
       else {
-        for (const i of columns) appender.appendVarchar(cells[i]);
+        for (const i of columns) appender.appendVarchar(cells[i].trim());
         appender.endRow();
         lines.push(line);
       }

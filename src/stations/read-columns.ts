@@ -32,7 +32,8 @@ export async function readColumns(
   numbers: readonly string[],
   missing: readonly string[],
 ): Promise<{ readonly texts: readonly CodedColumn[]; readonly numbers: readonly NumberColumn[] }> {
-  const column = (name: string) => `trim(coalesce(c${table.dialect.header.indexOf(name)}, ''))`;
+  const plain = (name: string) => `c${table.dialect.header.indexOf(name)}`;
+  const column = (name: string) => `coalesce(${plain(name)}, '')`;
   const distinct: string[][] = [];
   for (const [i, name] of texts.entries()) {
     await database.run(`DROP TYPE IF EXISTS text${i}`);
@@ -41,7 +42,7 @@ export async function readColumns(
     if (distinct[i].length > 0)
       await database.run(`CREATE TYPE text${i} AS ENUM (${distinct[i].map(literal).join(", ")})`);
   }
-  const number = (name: string) => numberSql(column(name), table.dialect.decimal);
+  const number = (name: string) => numberSql(plain(name), table.dialect.decimal);
   const codes = texts.map(() => new Int32Array(table.rows));
   const values = numbers.map(() => new Float64Array(table.rows));
   if (table.rows > 0) {
@@ -67,7 +68,7 @@ export async function readColumns(
   const odd: (readonly OddText[])[] = [];
   for (const [j, name] of numbers.entries()) {
     const holes = blankOut(values[j], declared);
-    odd.push(holes ? await oddTexts(database, column(name), number(name), missing) : []);
+    odd.push(holes ? await oddTexts(database, plain(name), number(name), missing) : []);
   }
   return {
     texts: codes.map((one, i) => ({ codes: one, texts: distinct[i] })),
@@ -75,18 +76,22 @@ export async function readColumns(
   };
 }
 
-/** A finite number, or NULL. The cast alone would take `1_000`, `nan` and `inf`. */
-function numberSql(text: string, decimal: "." | ","): string {
+/** A number (perhaps not a finite one), or NULL. The cast alone would take `1_000`. */
+export function numberSql(text: string, decimal: "." | ","): string {
+  // With decimal commas a point can only part thousands: such a text is no number here.
   const plain = decimal === "," ? `replace(replace(${text}, '.', '_'), ',', '.')` : text;
-  return `CASE WHEN contains(${plain}, '_') THEN NULL ELSE nullif(nullif(nullif(TRY_CAST(${plain} AS DOUBLE), 'nan'), 'inf'), '-inf') END`;
+  return `CASE WHEN contains(${plain}, '_') THEN NULL ELSE TRY_CAST(${plain} AS DOUBLE) END`;
 }
 
-/** Declared missing numbers become NaN (−9999 also where it is written −9999.0); true if any value is NaN then. */
+/**
+ * Declared missing numbers become NaN (−9999 also where it is written −9999.0), so do `nan` and `inf`, which the cast
+ * takes; true if any value is NaN then.
+ */
 function blankOut(values: Float64Array, declared: readonly number[]): boolean {
   const marks = declared.filter((one) => !Number.isNaN(one));
   let holes = false;
   for (let i = 0; i < values.length; i++) {
-    if (marks.includes(values[i])) values[i] = Number.NaN;
+    if (!Number.isFinite(values[i]) || marks.includes(values[i])) values[i] = Number.NaN;
     if (Number.isNaN(values[i])) holes = true;
   }
   return holes;
@@ -101,7 +106,7 @@ async function oddTexts(
   const known = ["", ...missing.map((one) => one.trim())].map(literal).join(", ");
   const told = await database.runAndReadAll(
     `SELECT ${text} AS t, count(*)::INTEGER, min(rowid)::INTEGER AS first FROM raw
-     WHERE ${number} IS NULL AND ${text} NOT IN (${known}) GROUP BY t ORDER BY first`,
+     WHERE ${text} NOT IN (${known}) AND NOT coalesce(isfinite(${number}), false) GROUP BY t ORDER BY first`,
   );
   return told
     .getRowsJson()

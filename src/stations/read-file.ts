@@ -1,5 +1,5 @@
 import type { DuckDBConnection } from "@duckdb/node-api";
-import type { Effects } from "../effects/effects.ts";
+import type { Files } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import {
   type Block,
@@ -35,7 +35,7 @@ export interface FileRead {
 /** Reads one file of a records entry. `index` is its number among all files. */
 export async function readFile(
   database: DuckDBConnection,
-  effects: Effects,
+  files: Files,
   options: RecordOptions,
   entry: number,
   file: string,
@@ -46,7 +46,7 @@ export async function readFile(
     options.layout === "long" && "column" in options.station ? options.station.column : undefined;
   const texts = [options.date.column, ...(stationColumn === undefined ? [] : [stationColumn])];
   const numbers = columns.map((one) => one.column);
-  const table = await loadTable(database, effects, file, [...texts, ...numbers], options.date.column);
+  const table = await loadTable(database, files, file, [...texts, ...numbers], options.date.column);
   const read = await readColumns(database, table, texts, numbers, options.missing);
   const [dates, ids] = read.texts;
   const findings: DraftFinding[] = [

@@ -23,7 +23,7 @@ export async function readRecords(
   records: readonly RecordOptions[],
   stations: readonly Site[] | undefined,
   duplicates: DuplicateRule,
-  effects: Effects,
+  effects: Pick<Effects, "files" | "progress" | "checkInterrupted">,
 ): Promise<{
   readonly series: readonly Series[];
   readonly findings: readonly RawFinding[];
@@ -44,7 +44,7 @@ export async function readRecords(
   await withDatabase(async (database) => {
     for (const { entry, file } of plan) {
       effects.checkInterrupted();
-      const read = await readFile(database, effects, records[entry], entry, file, sources.length);
+      const read = await readFile(database, effects.files, records[entry], entry, file, sources.length);
       blocks.push(...read.blocks);
       drafts.push(...read.findings);
       sources.push(read.source);
