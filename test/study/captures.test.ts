@@ -161,7 +161,7 @@ describe("three layouts of the same animals", () => {
         expect(byDate.perOccasion).toEqual(zeroOne.perOccasion);
         expect(counts.counts).toEqual(zeroOne.counts.map((one) => ({ ...one, animals: Number.NaN })));
       }),
-      { numRuns: 150 },
+      { numRuns: 100 },
     );
   });
 
