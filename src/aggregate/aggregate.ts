@@ -10,7 +10,7 @@ import { resolve, siteSeries } from "./resolve.ts";
 import type { IntervalCovariate, WindowValue } from "./result.ts";
 import { type SiteWindow, siteWindow } from "./site-window.ts";
 import { filesOf } from "./sites.ts";
-import { cut } from "./slice.ts";
+import { cut, daysInside } from "./slice.ts";
 import { seasonEnding, type WindowPeriods, windowPeriod } from "./window.ts";
 import { definitionText, statisticUnit } from "./words.ts";
 
@@ -79,6 +79,16 @@ function emptyWindow(words: string | undefined): WindowValue {
   };
 }
 
+/** Days in the periods whose values were infilled. */
+function filledDays(series: Series, filled: Uint8Array, { periods }: WindowPeriods): number {
+  let days = 0;
+  for (const period of periods) {
+    const slice = cut(series, period);
+    for (let i = slice.lo; i < slice.hi; i++) if (filled[i] === 1) days += daysInside(slice, i);
+  }
+  return days;
+}
+
 /** True if the series has a value in any of the periods. */
 function hasValue(series: Series, windows: WindowPeriods): boolean {
   return windows.periods.some((period) => cut(series, period).observed > 0);
@@ -95,7 +105,7 @@ export function aggregateCovariate(
   intervals: readonly Interval[],
 ): Aggregated {
   const windows = intervals.map((interval) => windowPeriod(definition.window, interval));
-  const sites = siteSeries(definition);
+  const { series: sites, filled, findings: before } = siteSeries(definition);
   const names = sites.map((one) => one.site);
   const pooled = definition.join === "mean of days" && sites.length > 1 ? meanOfDays(sites) : undefined;
   const rows = siteRows(definition, pooled === undefined ? sites : [pooled.series], windows);
@@ -119,7 +129,12 @@ export function aggregateCovariate(
       pooled === undefined
         ? here.flatMap(([site, w]) => (w.failed === undefined ? [site] : []))
         : sites.filter((series) => hasValue(series, one)).map((series) => series.site);
-    return joinWindow(one, value, here, missing ? [] : gave, failed);
+    const window = joinWindow(one, value, here, missing ? [] : gave, failed);
+    if (filled.length === 0 || missing) return window;
+    const used = sites.flatMap((series, s) =>
+      gave.includes(series.site) ? [filledDays(series, filled[s], one)] : [],
+    );
+    return { ...window, daysInfilled: used.reduce((sum, days) => sum + days, 0) };
   });
 
   const partialDays = (t: number) =>
@@ -145,7 +160,7 @@ export function aggregateCovariate(
     joined,
     intervals.map((_, t) => partialDays(t)),
   );
-  return { covariate, findings };
+  return { covariate, findings: [...before, ...findings] };
 }
 
 /**

@@ -102,6 +102,14 @@ export type Completeness =
 
 export type Join = "mean of windows" | "mean of days";
 
+/** How a station's short gaps are filled from its neighbours before anything else is done (never silently). */
+export interface Infill {
+  /** `regression` on the best-correlated neighbour, or the normal-ratio method (totals only). */
+  readonly method: "regression" | "normal ratio";
+  /** Longest gap that is filled, in days. */
+  readonly longest: number;
+}
+
 /** All that is needed to make one covariate. */
 export interface CovariateDefinition {
   readonly name: string;
@@ -118,6 +126,7 @@ export interface CovariateDefinition {
   readonly second?: readonly Series[];
   /** Values become departures from the site's base mean of the calendar month, or day, before the window. */
   readonly anomaly?: { readonly by: "month" | "day"; readonly base: YearRange };
+  readonly infill?: Infill;
   /** Missing days that counts, runs and degree-days may have in a window; 0 if not said. */
   readonly allowedMissing?: number;
 }

@@ -1,9 +1,11 @@
+import type { RawFinding } from "../data/finding.ts";
 import type { Series } from "../data/series.ts";
 import { InputError } from "../errors.ts";
 import { departures } from "./anomaly.ts";
 import { judge } from "./completeness.ts";
 import { dailyFromExtremes } from "./degree-days.ts";
 import { indexStatistic, veryWetStatistic } from "./etccdi.ts";
+import { infillFindings, infillSeries } from "./infill.ts";
 import type { CovariateDefinition, WindowStatistic, YearRange } from "./options.ts";
 import { bySite } from "./sites.ts";
 import { cut } from "./slice.ts";
@@ -21,8 +23,28 @@ export interface Resolved {
   readonly failed?: string;
 }
 
-/** The sites' series, put end to end, paired with their minima, and made departures, as the definition asks. */
-export function siteSeries(definition: CovariateDefinition): Series[] {
+/** The sites' series, ready for windows, and what was infilled in them. */
+export interface Sites {
+  readonly series: readonly Series[];
+  /** filled[s][i] = 1 where value i of site s was infilled; empty without infilling. */
+  readonly filled: readonly Uint8Array[];
+  readonly findings: readonly RawFinding[];
+}
+
+/** Sites with their gaps filled, where the definition asks for it. */
+function filledSites(definition: CovariateDefinition, series: readonly Series[]): Sites {
+  const { name, infill, unit } = definition;
+  const sites = bySite(series);
+  if (infill === undefined || sites.length === 0) return { series: sites, filled: [], findings: [] };
+  const done = infillSeries(sites, infill);
+  return { ...done, findings: infillFindings(name, infill, unit, done.sites) };
+}
+
+/**
+ * The sites' series put end to end, then infilled, paired with their minima, and made departures, in this order, as
+ * the definition asks. Throws `aggregate.no-series` and what the steps throw.
+ */
+export function siteSeries(definition: CovariateDefinition): Sites {
   const { name, statistic, series, second, anomaly } = definition;
   if (series.length === 0)
     throw new InputError({
@@ -32,9 +54,17 @@ export function siteSeries(definition: CovariateDefinition): Series[] {
       where: { cell: name },
       remedy: "name stations that have the variable, or a place inside the layer",
     });
-  const sites = bySite(series);
-  const paired = statistic.type === "degree-days of extremes" ? pair(definition, sites, second ?? []) : sites;
-  return anomaly === undefined ? paired : paired.map((one) => departures(one, anomaly.by, anomaly.base));
+  const first = filledSites(definition, series);
+  const other = filledSites(definition, second ?? []);
+  const paired =
+    statistic.type === "degree-days of extremes"
+      ? pair(definition, first.series, other.series)
+      : first.series;
+  return {
+    series: anomaly === undefined ? paired : paired.map((one) => departures(one, anomaly.by, anomaly.base)),
+    filled: first.filled,
+    findings: [...first.findings, ...other.findings],
+  };
 }
 
 function pair(
@@ -44,7 +74,7 @@ function pair(
 ): Series[] {
   const { name, statistic } = definition;
   if (statistic.type !== "degree-days of extremes") return [...maxima];
-  const minima = new Map(bySite(second).map((one) => [one.site, one]));
+  const minima = new Map(second.map((one) => [one.site, one]));
   return maxima.map((max) => {
     const min = minima.get(max.site);
     if (min !== undefined)

@@ -18,6 +18,8 @@ export interface WindowValue {
   readonly scaled: boolean;
   /** Stations that gave a value, sorted; empty for layers and ready-made values. */
   readonly stations: readonly string[];
+  /** Station-days in the window whose values were infilled, of the stations that gave a value; 0 if not said. */
+  readonly daysInfilled?: number;
   /** How many yearly values were averaged, where the interval holds several seasons or years; else 1. */
   readonly years?: number;
   /** Where `years` is above 1: the yearly periods, of which `period` is the hull. */
