@@ -1,6 +1,9 @@
 import { isMap, isScalar, type Pair, parseDocument, visit, type YAMLMap } from "yaml";
-import { coarsen } from "../data/coarsen.ts";
+import type { Position } from "../data/place.ts";
 import { InputError } from "../errors.ts";
+
+/** Puts a coarser position in the place of a fine one. The map must use the same, or two grids tell more than one. */
+export type Coarsen = (position: Position) => Position;
 
 /** Put in the place of a text that holds coordinates. */
 export const WITHHELD = "[place withheld]";
@@ -13,12 +16,12 @@ const COORDINATES =
   /-?\d{1,3}\.\d{3,}°?\s*[NSEWnsew]?\s*[,;/\s]\s*-?\d{1,3}\.\d{3,}|\d{1,3}\s*°\s*\d{1,2}\s*['′]/;
 
 /**
- * The text of a pipeline file as it may be shown when places are sensitive: coordinates given as numbers become the
- * centre of their grid cell of `metres` (`coarsen`), texts that hold coordinates are withheld, and comments, where
+ * The text of a pipeline file as it may be shown when places are sensitive: coordinates given as numbers
+ * (WGS 84 degrees) are coarsened, texts that hold coordinates are withheld, and comments, where
  * coordinates could hide, are left out. Places that stand in files of their own are not part of the text.
  * A value that stands under a key like `longitude` without a latitude beside it is withheld too.
  */
-export function redactPipeline(text: string, metres: number): string {
+export function redactPipeline(text: string, coarsen: Coarsen): string {
   const document = parseDocument(text, { keepSourceTokens: false });
   if (document.errors.length > 0)
     throw new InputError({
@@ -35,7 +38,7 @@ export function redactPipeline(text: string, metres: number): string {
       node.commentBefore = null;
     },
   });
-  visit(document, { Map: (_, map) => coarsenMap(map, metres) });
+  visit(document, { Map: (_, map) => coarsenMap(map, coarsen) });
   visit(document, {
     Scalar: (_, scalar) => {
       if (typeof scalar.value === "string" && COORDINATES.test(scalar.value)) {
@@ -48,7 +51,7 @@ export function redactPipeline(text: string, metres: number): string {
       const numbers = seq.items.map((item) => (isScalar(item) ? item.value : undefined));
       if (seq.items.length >= 2 && numbers.every(isFine)) {
         const [longitude, latitude] = numbers as [number, number];
-        const spot = Math.abs(latitude) <= 90 ? coarsen([longitude, latitude], metres) : [WITHHELD, WITHHELD];
+        const spot = Math.abs(latitude) <= 90 ? coarsen([longitude, latitude]) : [WITHHELD, WITHHELD];
         seq.items.forEach((item, i) => {
           if (isScalar(item)) setScalar(item, spot[i] ?? 0);
         });
@@ -63,13 +66,14 @@ function isFine(value: unknown): boolean {
   return typeof value === "number" && /\.\d{3,}$/.test(String(value));
 }
 
-function coarsenMap(map: YAMLMap, metres: number): void {
+function coarsenMap(map: YAMLMap, coarsen: Coarsen): void {
   const find = (pattern: RegExp) => map.items.find((pair) => pattern.test(String(keyOf(pair))));
   const [eastPair, northPair] = [find(LONGITUDE), find(LATITUDE)];
+  for (const pair of [eastPair, northPair]) if (looksLikeDegrees(pair)) setPair(pair, WITHHELD);
   const [east, north] = [numberIn(eastPair), numberIn(northPair)];
   if (east === undefined && north === undefined) return;
   if (east !== undefined && north !== undefined && Math.abs(east) <= 360 && Math.abs(north) <= 90) {
-    const [longitude, latitude] = coarsen([east, north], metres);
+    const [longitude, latitude] = coarsen([east, north]);
     setPair(eastPair, longitude);
     setPair(northPair, latitude);
     return;
@@ -88,6 +92,12 @@ function numberIn(pair: Pair | undefined): number | undefined {
   const { value } = pair.value;
   if (typeof value === "number") return value;
   return typeof value === "string" && /^\s*[-+]?\d+(\.\d+)?\s*$/.test(value) ? Number(value) : undefined;
+}
+
+/** Text such as `6.12345 E` or `6° 7′`, which is not a plain number and not a column's name either. */
+function looksLikeDegrees(pair: Pair | undefined): boolean {
+  if (pair === undefined || !isScalar(pair.value) || typeof pair.value.value !== "string") return false;
+  return numberIn(pair) === undefined && /\d[.,]\d|\d\s*°/.test(pair.value.value);
 }
 
 function setPair(pair: Pair | undefined, value: string | number): void {
