@@ -51,22 +51,38 @@ export function noiseEigenvalues(
   { rows, columns }: { readonly rows: number; readonly columns: number },
   random: Random,
 ): number[] {
-  const unit = Array.from({ length: columns }, () => {
-    const values = Float64Array.from({ length: rows }, () => random.normal());
-    const mean = values.reduce((sum, value) => sum + value, 0) / rows;
-    const centred = values.map((value) => value - mean);
-    const length = Math.sqrt(centred.reduce((sum, value) => sum + value * value, 0));
-    return centred.map((value) => value / length);
-  });
-  // Z'Z and Z Z' share their eigenvalues: take the smaller one.
+  // Z'Z and Z Z' share their eigenvalues: take the smaller one, of columns or of rows. Plain loops and one array
+  // throughout: this runs hundreds of times.
   const wide = columns > rows;
-  const side = wide ? rows : columns;
+  const vectors = Array.from(
+    { length: wide ? rows : columns },
+    () => new Float64Array(wide ? columns : rows),
+  );
+  const one = new Float64Array(rows);
+  for (let k = 0; k < columns; k++) {
+    let sum = 0;
+    for (let i = 0; i < rows; i++) {
+      one[i] = random.normal();
+      sum += one[i];
+    }
+    let squares = 0;
+    for (let i = 0; i < rows; i++) {
+      one[i] -= sum / rows;
+      squares += one[i] * one[i];
+    }
+    const length = Math.sqrt(squares);
+    for (let i = 0; i < rows; i++)
+      if (wide) vectors[i][k] = one[i] / length;
+      else vectors[k][i] = one[i] / length;
+  }
+  const side = vectors.length;
   const cross = new Float64Array(side * side);
   for (let a = 0; a < side; a++)
     for (let b = 0; b <= a; b++) {
+      const x = vectors[a];
+      const y = vectors[b];
       let sum = 0;
-      if (wide) for (const one of unit) sum += one[a] * one[b];
-      else for (let i = 0; i < rows; i++) sum += unit[a][i] * unit[b][i];
+      for (let i = 0; i < x.length; i++) sum += x[i] * y[i];
       cross[a * side + b] = sum;
       cross[b * side + a] = sum;
     }
