@@ -98,7 +98,7 @@ function changingFinding(
   if (joined.changing.length > 0) {
     const told = joined.changing.map((t) => {
       const away = taking.filter((row) => Number.isNaN(row.windows[t]?.value ?? Number.NaN));
-      return `${intervals[t].name} lacks ${few(away.map((row) => row.site))}`;
+      return `${intervals[t].name} lacks ${away.map((row) => row.site).join(", ")}`;
     });
     const message =
       `the stations change in ${joined.changing.length} of ${intervals.length} intervals (${few(told)}); ` +

@@ -149,6 +149,13 @@ describe("mean of days", () => {
     expect(series.values[40]).toBeCloseTo(a[40], 12);
   });
 
+  test("a month without a common day takes the offset of all common days", () => {
+    const a = Array.from({ length: 59 }, (_, k) => k % 7);
+    const b = a.map((x, k) => (k >= 31 ? null : x + 4));
+    const { series } = meanOfDays([daily("2001-01-01", a), daily("2001-01-01", b)]);
+    for (let k = 31; k < 59; k++) expect(series.values[k]).toBeCloseTo(a[k] + 2, 12);
+  });
+
   test("records that begin and end apart; days nobody has stay missing", () => {
     const { series } = meanOfDays([
       daily("2001-01-01", [1, 2, 3, null, 5]),
