@@ -37,6 +37,9 @@ export const FINDING_KINDS = [
   "infilled",
   "excepted",
   "layer-small-place",
+  "flagged",
+  "flat-run",
+  "spike",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -16,6 +16,8 @@ export interface Block {
   readonly unit: string;
   readonly scale: number;
   readonly covers: DateColumn["covers"];
+  /** The user's own least and greatest possible value, in `unit`. */
+  readonly limits?: readonly [number, number];
   readonly stations: StationColumn;
   readonly starts: Int32Array;
   readonly ends: Int32Array;

@@ -12,6 +12,8 @@ export interface StationListOptions {
 
 export interface DateColumn {
   readonly column: string;
+  /** Further columns of a date that is split, joined to the first by blanks: `yyyy M d` for year, month and day. */
+  readonly with?: readonly string[];
   /** Unicode date pattern (yyyy, MM, dd, D for the day of the year), e.g. `dd.MM.yyyy`, `yyyy-MM`. */
   readonly format: string;
   /** What one row stands for. */
@@ -29,6 +31,12 @@ export interface SeriesColumn {
   readonly day: number;
   /** Multiplied with every value before the unit is read (e.g. 0.1 for tenths); 1 by default. */
   readonly scale: number;
+  /** A text that stands for an amount too small to measure, and the value it is given, as if written in its place. */
+  readonly trace?: { readonly text: string; readonly value: number };
+  /** A column of quality flags and the flags whose values pass; all others are read as missing, and counted. */
+  readonly quality?: { readonly column: string; readonly pass: readonly string[] };
+  /** Least and greatest possible value, in the column's unit, instead of the usual limits. */
+  readonly limits?: readonly [number, number];
 }
 
 /** Long: a row per station and date, a column per variable. */

@@ -15,6 +15,12 @@ export interface OddText {
   readonly firstRow: number;
 }
 
+/** A column of numbers to be read; the trace text stands for its value. */
+export interface NumberSource {
+  readonly column: string;
+  readonly trace?: { readonly text: string; readonly value: number };
+}
+
 export interface NumberColumn {
   /** NaN where empty, declared missing, or no number. */
   readonly values: Float64Array;
@@ -22,34 +28,39 @@ export interface NumberColumn {
 }
 
 /**
- * The text columns coded and the number columns converted, row by row as in the file. Texts become codes in the database
+ * The text columns (each one column, or several joined by blanks) coded and the number columns converted, row by row as in the file. Texts become codes in the database
  * (a station or date is written thousands of times, but parsed once per distinct text); numbers are converted there, too.
  */
 export async function readColumns(
   database: DuckDBConnection,
   table: LoadedTable,
-  texts: readonly string[],
-  numbers: readonly string[],
+  texts: readonly (readonly string[])[],
+  numbers: readonly NumberSource[],
   missing: readonly string[],
 ): Promise<{ readonly texts: readonly CodedColumn[]; readonly numbers: readonly NumberColumn[] }> {
   const plain = (name: string) => `c${table.dialect.header.indexOf(name)}`;
   const column = (name: string) => `coalesce(${plain(name)}, '')`;
+  const joined = (names: readonly string[]) => names.map(column).join(" || ' ' || ");
   const distinct: string[][] = [];
-  for (const [i, name] of texts.entries()) {
+  for (const [i, names] of texts.entries()) {
     await database.run(`DROP TYPE IF EXISTS text${i}`);
-    const told = await database.runAndReadAll(`SELECT DISTINCT ${column(name)} AS x FROM raw ORDER BY x`);
+    const told = await database.runAndReadAll(`SELECT DISTINCT ${joined(names)} AS x FROM raw ORDER BY x`);
     distinct.push(told.getRowsJson().map(([text]) => String(text)));
     if (distinct[i].length > 0)
       await database.run(`CREATE TYPE text${i} AS ENUM (${distinct[i].map(literal).join(", ")})`);
   }
-  const number = (name: string) => numberSql(plain(name), table.dialect.decimal);
+  const number = ({ column, trace }: NumberSource) => {
+    const sql = numberSql(plain(column), table.dialect.decimal);
+    if (trace === undefined) return sql;
+    return `CASE WHEN ${plain(column)} = ${literal(trace.text)} THEN ${trace.value}::DOUBLE ELSE ${sql} END`;
+  };
   const codes = texts.map(() => new Int32Array(table.rows));
   const values = numbers.map(() => new Float64Array(table.rows));
   if (table.rows > 0) {
     const result = await database.stream(
       `SELECT ${[
-        ...texts.map((name, i) => `enum_code(CAST(${column(name)} AS text${i}))::INTEGER`),
-        ...numbers.map((name) => `coalesce(${number(name)}, 'nan'::DOUBLE)`),
+        ...texts.map((names, i) => `enum_code(CAST(${joined(names)} AS text${i}))::INTEGER`),
+        ...numbers.map((one) => `coalesce(${number(one)}, 'nan'::DOUBLE)`),
       ].join(", ")} FROM raw`,
     );
     let at = 0;
@@ -66,9 +77,9 @@ export async function readColumns(
   }
   const declared = missing.filter((text) => text.trim() !== "").map((text) => Number(text.replace(",", ".")));
   const odd: (readonly OddText[])[] = [];
-  for (const [j, name] of numbers.entries()) {
+  for (const [j, one] of numbers.entries()) {
     const holes = blankOut(values[j], declared);
-    odd.push(holes ? await oddTexts(database, plain(name), number(name), missing) : []);
+    odd.push(holes ? await oddTexts(database, plain(one.column), number(one), missing) : []);
   }
   return {
     texts: codes.map((one, i) => ({ codes: one, texts: distinct[i] })),

@@ -12,6 +12,7 @@ import {
 import { compileDateFormat, coveredPeriod, recogniseFormats } from "./dates.ts";
 import { type LoadedTable, loadTable } from "./load-table.ts";
 import type { DateColumn, RecordOptions, SeriesColumn, StationOf } from "./options.ts";
+import { passFlags } from "./quality-flags.ts";
 import { type CodedColumn, type NumberColumn, readColumns } from "./read-columns.ts";
 import { knownUnit, sameDimension } from "./units.ts";
 
@@ -44,15 +45,29 @@ export async function readFile(
   const columns = valueColumns(options);
   const stationColumn =
     options.layout === "long" && "column" in options.station ? options.station.column : undefined;
-  const texts = [options.date.column, ...(stationColumn === undefined ? [] : [stationColumn])];
-  const numbers = columns.map((one) => one.column);
-  const table = await loadTable(database, files, file, [...texts, ...numbers], options.date.column);
-  const read = await readColumns(database, table, texts, numbers, options.missing);
-  const [dates, ids] = read.texts;
+  const dateColumns = [options.date.column, ...(options.date.with ?? [])];
+  const flagColumns = [
+    ...new Set(columns.flatMap(({ quality }) => (quality === undefined ? [] : [quality.column]))),
+  ];
+  const texts = [
+    dateColumns,
+    ...flagColumns.map((name) => [name]),
+    ...(stationColumn === undefined ? [] : [[stationColumn]]),
+  ];
+  const wanted = [...texts.flat(), ...columns.map((one) => one.column)];
+  const table = await loadTable(database, files, file, wanted, options.date.column);
+  const read = await readColumns(database, table, texts, columns, options.missing);
+  const dates = read.texts[0];
+  const ids = read.texts[texts.length - 1];
+  const refusals = columns.flatMap((column, j) => {
+    const flags = read.texts[1 + flagColumns.indexOf(column.quality?.column ?? "")];
+    return column.quality === undefined ? [] : passFlags(read.numbers[j].values, flags, column, index, file);
+  });
   const findings: DraftFinding[] = [
     ...refusedFindings(table),
     ...unitsRowFindings(table, columns),
     ...dateFindings(dates, options.date, table, index),
+    ...refusals,
     ...columns.flatMap((column, j) => oddFindings(read.numbers[j], column, index, file)),
   ];
   const fixed = options.layout === "long" ? fixedStation(options.station, file) : undefined;
@@ -71,6 +86,7 @@ export async function readFile(
       unit: column.unit,
       scale: column.scale,
       covers: options.date.covers,
+      ...(column.limits === undefined ? {} : { limits: column.limits }),
       stations,
       ...known,
       raw: read.numbers[j].values,

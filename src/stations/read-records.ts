@@ -11,6 +11,7 @@ import { gapFindings } from "./gaps.ts";
 import { unknownStations } from "./known-stations.ts";
 import type { DuplicateRule, RecordOptions } from "./options.ts";
 import { readFile } from "./read-file.ts";
+import { streakFindings } from "./streaks.ts";
 import { suspectFindings } from "./suspect-values.ts";
 import { checkUnit } from "./units.ts";
 
@@ -61,7 +62,7 @@ export async function readRecords(
   );
   const traced = assembled.flatMap((one) => one.traced);
   drafts.push(...assembled.flatMap((one) => one.findings));
-  drafts.push(...traced.flatMap(gapFindings), ...crossedFindings(traced));
+  drafts.push(...traced.flatMap(gapFindings), ...crossedFindings(traced), ...traced.flatMap(streakFindings));
   return {
     series: traced.map((one) => one.series),
     findings: await placeFindings(drafts, sources),

@@ -31,10 +31,15 @@ export function limitsOf(unit: string, kind: ValueKind): Limits | undefined {
   return undefined;
 }
 
+function ownLimits([least, greatest]: readonly [number, number]): Limits {
+  return { least, greatest, words: `outside the stated limits ${least} to ${greatest}` };
+}
+
 /** All columns of one variable in one records entry: sentinels that were not declared, impossible values, a wrong unit. */
 export function suspectFindings(blocks: readonly Block[]): readonly DraftFinding[] {
   const [{ variable, unit, kind, scale, covers }] = blocks;
-  const limits = limitsOf(unit, kind);
+  const own = blocks[0].limits;
+  const limits = own === undefined ? limitsOf(unit, kind) : ownLimits(own);
   const outside = (value: number) =>
     limits !== undefined && (value < limits.least || value > limits.greatest);
   const marks = new Map<number, { count: number; first: RowRef }>();

@@ -225,6 +225,26 @@ const CASES: readonly Case[] = [
     rows: ["Ash 2001-01-01 1", "Ash 2001-01-02 NaN", "Beck 2001-01-01 2", "Beck 2001-01-02 3"],
   },
   {
+    name: "traces, and dates split over columns",
+    files: { "a.csv": "site,year,month,day,rain\nAsh,2000,2,29,T\nAsh,2000,3,1,1.5\nAsh,2000,3,32,1\n" },
+    options: long({
+      date: { column: "year", with: ["month", "day"], format: "yyyy M d", covers: "day" },
+      series: { rain: { ...MM, trace: { text: "T", value: 0.05 } } },
+    }),
+    rows: ["Ash 2000-02-29 0.05", "Ash 2000-03-01 1.5"],
+    findings: ["bad-date a.csv:4 1 2000 3 32"],
+  },
+  {
+    name: "quality flags that pass and that do not",
+    files: {
+      "a.csv":
+        "site,day,rain,q\nAsh,2001-01-01,1,\nAsh,2001-01-02,2,S\nAsh,2001-01-03,3,ok\nAsh,2001-01-04,,X\n",
+    },
+    options: long({ series: { rain: { ...MM, quality: { column: "q", pass: ["", "ok"] } } } }),
+    rows: ["Ash 2001-01-01 1", "Ash 2001-01-02 NaN", "Ash 2001-01-03 3", "Ash 2001-01-04 NaN"],
+    findings: ["flagged a.csv:3 1 S 1", "gap a.csv:2 1 2001-01-02"],
+  },
+  {
     name: "a header and no rows",
     files: { "a.csv": "site,day,rain\n" },
     rows: [],

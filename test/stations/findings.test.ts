@@ -110,6 +110,37 @@ describe("values a person should look at", () => {
     ]);
   });
 
+  test("stated limits take the place of the usual ones", async () => {
+    const text = `site,day,rain\n${daily(5, (i) => (i === 2 ? "250" : "1"))}`;
+    const narrow = { rain: { ...RAIN.rain, limits: [0, 200] as const } };
+    const { findings } = await read({ "a.csv": text }, narrow);
+    expect(findings.map(short)).toEqual(["bad-value | rain at Ash | a.csv:4 | 1 | 250"]);
+    expect(findings[0].message).toContain("outside the stated limits 0 to 200");
+  });
+
+  // Twenty equal days and 25 degC for one day: Durre et al. (2010), from memory.
+  test("flat runs of 20 days, not of 19, and not of dry days; spikes of 25 degC, not of 24.9", async () => {
+    const one = { t: column("t", "degC", "mean") };
+    const wave = (i: number) => (10 + Math.sin(i)).toFixed(2);
+    const at = async (value: (i: number) => string, series = one as Record<string, SeriesColumn>) => {
+      const name = Object.values(series)[0].column;
+      const { findings } = await read({ "a.csv": `site,day,${name}\n${daily(60, value)}` }, series);
+      return findings.map(short);
+    };
+    expect(await at((i) => (i >= 10 && i < 30 ? "7.5" : wave(i)))).toEqual([
+      "flat-run | t at Ash | a.csv:12 | 20 | 7.5",
+    ]);
+    expect(await at((i) => (i >= 10 && i < 29 ? "7.5" : wave(i)))).toEqual([]);
+    expect(await at(() => "0", RAIN)).toEqual([]);
+    expect(await at((i) => (i < 20 ? "3" : "0"), RAIN)).toEqual([
+      "flat-run | rain at Ash | a.csv:2 | 20 | 3",
+    ]);
+    expect(await at((i) => (i === 10 ? "-15" : i % 2 ? "10" : "10.1"))).toEqual([
+      "spike | t at Ash | a.csv:12 | 1 | -15",
+    ]);
+    expect(await at((i) => (i === 10 ? "-14.9" : i % 2 ? "10" : "10.1"))).toEqual([]);
+  });
+
   test("a suspected unit: Fahrenheit, Kelvin, tenths; none where the values fit", async () => {
     const season = (i: number) => 10 - 15 * Math.cos((2 * Math.PI * i) / 365);
     const one = { t: column("t", "degC", "mean") };
