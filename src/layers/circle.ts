@@ -20,7 +20,7 @@ export function circleAround([lon, lat]: Position, metres: number, place: string
     });
   const step = (2 * Math.PI) / CORNERS;
   const radius = metres * Math.sqrt(step / Math.sin(step));
-  const local = proj4(`+proj=aeqd +lat_0=${lat} +lon_0=${lon} +datum=WGS84 +units=m +no_defs`);
+  const local = proj4(`+proj=aeqd +lat_0=${lat} +lon_0=${lon} +x_0=0 +y_0=0 +datum=WGS84 +units=m`);
   const corners: Position[] = Array.from({ length: CORNERS }, (_, i) => {
     const [x, y] = local.inverse([radius * Math.cos(i * step), radius * Math.sin(i * step)]);
     return [x, y];

@@ -22,7 +22,7 @@ interface NamedDate {
 
 /**
  * A pattern as a search: {yyyy}, {MM}, {dd}, {DDD} (day of the year), {dekad} (1–3 in the month {MM}, else 1–36 in the
- * year); all else stands for itself. A run of digits must not go on before or after the pattern.
+ * year); all else stands for itself. A run of digits must not go on before or after a pattern that begins or ends with a part of the date.
  * Throws `layers.date-pattern`.
  */
 export function compilePattern(pattern: string): RegExp {
@@ -52,7 +52,10 @@ export function compilePattern(pattern: string): RegExp {
   if (!seen.has("yyyy")) throw refuse("no {yyyy}");
   if (seen.has("dd") && !seen.has("MM")) throw refuse("{dd} without {MM}");
   if (seen.has("DDD") && seen.has("MM")) throw refuse("both {DDD} and {MM}");
-  return new RegExp(`(?<!\\d)${source}(?!\\d)`, "g");
+  // Where the pattern itself begins or ends in digits, the name's run of digits must begin or end there too.
+  const before = /^[{\d]/.test(pattern) ? "(?<!\\d)" : "";
+  const after = /[}\d]$/.test(pattern) ? "(?!\\d)" : "";
+  return new RegExp(`${before}${source}${after}`, "g");
 }
 
 /** The date that a text holds by a pattern. `where` is a file or band, for the error. */

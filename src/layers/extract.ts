@@ -12,7 +12,7 @@ import type { LayerOptions, Wanted } from "./options.ts";
 import { fileKey, type Kept, placeKey, readKept, writeKept } from "./reuse.ts";
 import { type FileValues, seriesOf } from "./series.ts";
 import { findSideFiles } from "./side.ts";
-import { resolveSystem } from "./system.ts";
+import { checkFit, resolveSystem } from "./system.ts";
 import { valueRule } from "./values.ts";
 
 export interface LayerExtraction {
@@ -133,6 +133,7 @@ function prepare(
     keys: layer.keys,
     wkt: layer.wkt,
   });
+  checkFit(grid, resolved, layer.path);
   const footprints = wanted.map(({ place, use }) =>
     naming(layer.path, () => footprintOf(place, use, grid, resolved)),
   );

@@ -1,6 +1,6 @@
 import type { Files, RandomAccess } from "../effects/effects.ts";
 import type { Footprint } from "./area.ts";
-import type { NeededBlock } from "./blocks.ts";
+import type { BlockPart, NeededBlock } from "./blocks.ts";
 import { readBlock, samplesPerPixel } from "./image.ts";
 import type { Layer } from "./layer.ts";
 import { type MaskReader, maskReader } from "./mask.ts";
@@ -31,6 +31,7 @@ export async function gather(
   const places = footprints.length;
   const sums = new Float64Array(bands.length * places);
   const weights = new Float64Array(bands.length * places);
+  const bases = new Float64Array(bands.length * places).fill(Number.NaN);
   const maskFile =
     layer.mask === undefined || layer.mask.path === layer.path ? file : files.open(layer.mask.path);
   try {
@@ -50,7 +51,8 @@ export async function gather(
             mask === undefined
               ? undefined
               : maskOfBlock(mask, block, image.blockWidth, image.blockHeight, band);
-          const added = addUp(samples, step, shift, part.offsets, part.weights, rule, masked);
+          const added = addUp(samples, step, shift, part, rule, masked, bases[at]);
+          bases[at] = added.base;
           sums[at] += added.sum;
           weights[at] += added.weight;
         }
@@ -60,7 +62,10 @@ export async function gather(
     if (maskFile !== file) maskFile.close();
   }
   const shares = weights.map((weight, i) => Math.min(1, weight / footprints[i % places].total));
-  return { values: sums.map((sum, i) => (weights[i] > 0 ? sum / weights[i] : Number.NaN)), shares };
+  return {
+    values: sums.map((sum, i) => (weights[i] > 0 ? bases[i] + sum / weights[i] : Number.NaN)),
+    shares,
+  };
 }
 
 type BlockMask = (offset: number) => boolean;
@@ -76,23 +81,28 @@ function maskOfBlock(
   return (offset) => mask(left + (offset % blockWidth), top + Math.floor(offset / blockWidth), band);
 }
 
+/**
+ * Σ w (v − base) and Σ w over the valid pixels of a part. The base is the first valid value of the place, so that a
+ * constant layer gives its constant, a single pixel its value, and large offsets cost no digits.
+ */
 function addUp(
   samples: Samples,
   step: number,
   shift: number,
-  offsets: Int32Array,
-  weights: Float64Array,
+  { offsets, weights }: BlockPart,
   rule: ValueRule,
   masked: BlockMask | undefined,
-): { sum: number; weight: number } {
+  known: number,
+): { readonly sum: number; readonly weight: number; readonly base: number } {
   let sum = 0;
   let weight = 0;
+  let base = known;
   for (let i = 0; i < offsets.length; i++) {
     const value = unpacked(samples[offsets[i] * step + shift], rule);
     if (Number.isNaN(value) || (masked !== undefined && !masked(offsets[i]))) continue;
-    // A single pixel's value passes through unchanged: v · 1 / 1.
-    sum += weights[i] * value;
+    if (Number.isNaN(base)) base = value;
+    sum += weights[i] * (value - base);
     weight += weights[i];
   }
-  return { sum, weight };
+  return { sum, weight, base };
 }

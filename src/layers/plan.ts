@@ -6,7 +6,7 @@ import { describeLayer, type Layer } from "./layer.ts";
 import type { LayerOptions } from "./options.ts";
 import { type DatedImage, orderImages } from "./series.ts";
 import { findSideFiles, sideList } from "./side.ts";
-import { resolveSystem } from "./system.ts";
+import { checkFit, resolveSystem } from "./system.ts";
 
 export interface PlannedFile {
   readonly path: string;
@@ -72,15 +72,12 @@ function plannedFile({ path, image }: Layer, bytes: number, beside: readonly str
 
 /** Most files of a stack say the same of their system, which is settled once. */
 function systemLabel(layer: Layer, options: LayerOptions, settled: Map<string, string>): string {
-  const key = JSON.stringify([[...layer.keys.numbers], [...layer.keys.texts], layer.wkt]);
+  const key = JSON.stringify([layer.grid, [...layer.keys.numbers], [...layer.keys.texts], layer.wkt]);
   const known = settled.get(key);
   if (known !== undefined) return known;
-  const { label } = resolveSystem({
-    path: layer.path,
-    user: options.system,
-    keys: layer.keys,
-    wkt: layer.wkt,
-  });
+  const system = resolveSystem({ path: layer.path, user: options.system, keys: layer.keys, wkt: layer.wkt });
+  checkFit(layer.grid, system, layer.path);
+  const { label } = system;
   settled.set(key, label);
   return label;
 }

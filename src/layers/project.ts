@@ -4,14 +4,14 @@ import { type Grid, type Pair, toPixel } from "./grid.ts";
 import type { System } from "./system.ts";
 
 /** How far, in pixels, a projected edge may lie from the straight pieces that stand for it. */
-const TOLERANCE = 1e-5;
+const TOLERANCE = 1e-6;
 const DEEPEST = 24;
 /** Longest piece of an edge, in degrees, that is trusted to be bent to one side only. */
 const LONGEST = 0.5;
 
 /**
  * A ring in pixel coordinates, x and y in turn. Edges are straight in longitude and latitude; where the system bends
- * them they are halved until the middle lies within 1e-5 pixels of its chord. Throws `layers.area-off-projection`
+ * them they are halved until the middle lies within 1e-6 pixels of its chord. Throws `layers.area-off-projection`
  * where an edge runs over the projection's own seam or out of its domain.
  */
 export function projectRing(

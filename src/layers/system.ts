@@ -2,7 +2,7 @@ import proj4 from "proj4";
 import definitions from "proj4js-definitions";
 import { InputError } from "../errors.ts";
 import { definitionFromKeys } from "./definition.ts";
-import type { Pair } from "./grid.ts";
+import { type Grid, type Pair, toSystem } from "./grid.ts";
 import type { GeoKeys } from "./keys.ts";
 
 /** A coordinate system that a layer lies in, against longitude and latitude in WGS 84. */
@@ -115,8 +115,9 @@ function build(definition: string, label: string, from: System["from"], path: st
   let converter: Converter;
   let described: ReturnType<typeof describe>;
   try {
-    converter = proj4(definition) as unknown as Converter; // its types want mutable pairs
-    described = describe(definition);
+    const whole = withDefaults(definition);
+    converter = proj4(whole) as unknown as Converter; // its types want mutable pairs
+    described = describe(whole);
   } catch (error) {
     // The library throws bare strings for some definitions.
     throw unknownSystem(
@@ -150,6 +151,36 @@ function build(definition: string, label: string, from: System["from"], path: st
     toLonLat: plain ? (x, y) => [x, y] : lonLat,
     fromLonLat: plain ? (lon, lat) => [lon, lat] : forward,
   };
+}
+
+/** PROJ's defaults of 0 written out: without them the library gives NaN for some projections. */
+function withDefaults(definition: string): string {
+  if (!/^\s*\+proj=/.test(definition) || /\+proj=(longlat|latlong|utm)\b/.test(definition)) return definition;
+  const missing = ["x_0", "y_0", "lon_0", "lat_0"].filter(
+    (key) => !new RegExp(`\\+${key}=`).test(definition),
+  );
+  return [definition, ...missing.map((key) => `+${key}=0`)].join(" ");
+}
+
+/**
+ * Throws `layers.system-does-not-fit` where the layer's pixels have no longitude and latitude in this system: metres
+ * read as degrees, or a system of another part of the world.
+ */
+export function checkFit(grid: Grid, system: System, path: string): void {
+  const pieces = 8;
+  for (let i = 0; i <= pieces; i++)
+    for (let j = 0; j <= pieces; j++) {
+      const at = toSystem(grid.affine, (grid.width * i) / pieces, (grid.height * j) / pieces);
+      const [lon, lat] = system.toLonLat(...at);
+      if (Math.abs(lon) <= 540 && Math.abs(lat) <= 90 + 1e-6) return;
+    }
+  throw new InputError({
+    name: "layers.system-does-not-fit",
+    expected: `pixels that have a place in ${system.label}`,
+    found: `a layer whose first corner is at ${grid.affine.x0}, ${grid.affine.y0}`,
+    where: { file: path },
+    remedy: "write the system the coordinates are in, e.g. system: EPSG:32632",
+  });
 }
 
 /** A pair of finite numbers, or NaN; the library throws outside a projection's domain. */

@@ -1,7 +1,6 @@
 import { readFileSync } from "node:fs";
 import { join } from "node:path";
 import { describe, expect, test } from "vitest";
-import { InputError } from "../../src/errors.ts";
 import { NO_KEYS } from "../../src/layers/keys.ts";
 import { describeLayer } from "../../src/layers/layer.ts";
 import { findSideFiles } from "../../src/layers/side.ts";
