@@ -129,7 +129,7 @@ function chooseAll(scenario: Scenario, index: number, replicate: number): Record
 }
 
 describe("how often each rule selects rightly and wrongly", () => {
-  const far: string[] = [];
+  const far: { readonly text: string; readonly away: number }[] = [];
   let compared = 0;
   test.each(
     file.expected.scenarios.map(
@@ -154,8 +154,8 @@ describe("how often each rule selects rightly and wrongly", () => {
         // the pooled share's standard error, since one of 0 or 1 in the file's 400 would claim none
         const pooled = (here * REPLICATES + there * scenario.replicates) / (REPLICATES + scenario.replicates);
         const se = Math.sqrt(pooled * (1 - pooled) * (1 / REPLICATES + 1 / scenario.replicates));
-        if (Math.abs(here - there) > 3 * se)
-          far.push(`${index} ${rule} ${key}: ${here} here, ${there} in the file`);
+        const away = Math.abs(here - there) / se;
+        if (away > 3) far.push({ text: `${index} ${rule} ${key}: ${here} here, ${there} in the file`, away });
       }
     }
     console.log(
@@ -163,9 +163,14 @@ describe("how often each rule selects rightly and wrongly", () => {
     );
   });
 
-  test("every share agrees within 3 combined Monte Carlo standard errors", () => {
-    console.log(`${compared} shares compared, ${far.length} beyond 3 s.e.`);
-    expect(compared).toBeGreaterThan(200);
-    expect(far).toEqual([]);
+  test("shares agree within 3 combined Monte Carlo standard errors", () => {
+    // 13 scenarios of some 7 rules that are not copies of each other: a quarter of a scenario is expected beyond 3 s.e. by
+    // chance alone. At most one may have any, and none may be beyond 4.
+    const scenarios = new Set(far.map((one) => one.text.split(" ")[0]));
+    console.log(`${compared} shares compared, ${far.length} beyond 3 s.e., in ${scenarios.size} scenarios`);
+    for (const one of far) console.log(one.text);
+    expect(compared).toBeGreaterThan(500);
+    expect(scenarios.size).toBeLessThanOrEqual(1);
+    expect(far.filter((one) => one.away > 4)).toEqual([]);
   });
 });

@@ -1,0 +1,51 @@
+import { loadPipeline } from "../pipeline/load.ts";
+import { planRun } from "../pipeline/plan.ts";
+import { findingLines } from "../terminal/findings.ts";
+import { windowPlanLines } from "../terminal/window-plan.ts";
+import type { Lines, Terminal } from "./io.ts";
+
+export interface CheckCommandOptions {
+  /** Every window with its days, not only the summary by covariate. */
+  readonly windows: boolean;
+  readonly json: boolean;
+}
+
+/** `covey check PIPELINE`: the plan, the windows and the findings, without reading pixels or fitting models. */
+export async function checkCommand(
+  file: string,
+  options: CheckCommandOptions,
+  terminal: Terminal,
+): Promise<Lines> {
+  const loaded = loadPipeline(file);
+  const plan = await planRun(loaded, terminal.signal);
+  const { style, width } = terminal;
+  if (options.json)
+    return [
+      JSON.stringify(
+        {
+          windows: plan.windows,
+          layers: plan.layers.map(({ name, files, systems }) => ({ name, files: files.length, systems })),
+          findings: plan.findings,
+        },
+        null,
+        2,
+      ),
+    ];
+  const captures = plan.ingested.captures;
+  return [
+    style.strong(loaded.spec.study.title),
+    `${plan.ingested.occasions.length} occasions, ${plan.ingested.intervals.length} intervals` +
+      (captures === undefined
+        ? ", no captures: only the covariate set is built"
+        : `, ${captures.counts.length} strata`),
+    `${plan.ingested.stationSeries.length} station series from ${new Set(plan.ingested.stationSeries.map((one) => one.site)).size} stations`,
+    ...plan.layers.map(
+      (one) =>
+        `layer ${one.name}: ${one.files.length} files, ${one.images.length} images, ${one.systems.join(", ")}`,
+    ),
+    "",
+    ...windowPlanLines(plan.windows, plan.covered, { style, width, every: options.windows }),
+    "",
+    ...findingLines(plan.findings, { style, lines: 40, width }),
+  ];
+}

@@ -1,0 +1,98 @@
+import { basename, dirname, resolve } from "node:path";
+import { isoDay } from "../data/day.ts";
+import { InputError } from "../errors.ts";
+import { type LayerLook, lookLayer } from "../inspect/look-layer.ts";
+import { lookTable, type TableLook } from "../inspect/look-table.ts";
+import { filesAt } from "../pipeline/files-at.ts";
+import { findingLines } from "../terminal/findings.ts";
+import { cut, plain } from "../terminal/style.ts";
+import type { Lines, Terminal } from "./io.ts";
+
+export interface LookCommandOptions {
+  readonly json: boolean;
+}
+
+/** `covey look FILE`: what a data file holds, and the stanza to paste into a pipeline file. */
+export async function lookCommand(
+  file: string,
+  options: LookCommandOptions,
+  terminal: Terminal,
+): Promise<Lines> {
+  const path = resolve(file);
+  const files = filesAt(dirname(path));
+  const name = basename(path);
+  if (/\.(tiff?|gtiff)$/i.test(name)) {
+    const look = await lookLayer(name, files);
+    return options.json ? [json(look)] : layerLines(look, terminal);
+  }
+  if (/\.nc[4]?$/i.test(name)) throw unsupported(file);
+  const look = await lookTable(name, files);
+  return options.json ? [json(look)] : tableLines(look, terminal);
+}
+
+function json(look: unknown): string {
+  return JSON.stringify(look, null, 2);
+}
+
+const short = (value: number) => (Number.isNaN(value) ? "–" : String(Number(value.toPrecision(6))));
+
+function layerLines(look: LayerLook, { style }: Terminal): Lines {
+  const [west, south, east, north] = look.bounds;
+  const [across, down] = look.pixelMetres;
+  return [
+    style.strong(`${plain(look.path)}  ${look.width} × ${look.height} pixels, ${look.bytes} bytes`),
+    `values     ${look.type}, ${look.compression}, ${look.layout}`,
+    `system     ${plain(look.system)} (${look.systemFrom})`,
+    `pixel      ${short(across)} × ${short(down)} m in the middle`,
+    `extent     ${short(west)} to ${short(east)} °E, ${short(south)} to ${short(north)} °N`,
+    `nodata     ${look.nodataText === undefined ? "none declared" : plain(look.nodataText)}; mask ${look.mask}`,
+    ...look.bands.map(
+      (band, i) =>
+        `band ${i + 1}     ${plain(band.description) || "no description"}; scale ${band.scale}, offset ${band.offset}; missing ${(100 * band.missingShare).toFixed(2)} %; ${short(band.least)} to ${short(band.greatest)}, mean ${short(band.mean)}${band.unit === "" ? "" : ` ${plain(band.unit)}`}`,
+    ),
+    ...(look.beside.length === 0 ? [] : [`beside     ${look.beside.join(", ")}`]),
+    "",
+    style.strong("to paste"),
+    ...look.stanza.trimEnd().split("\n"),
+  ];
+}
+
+function tableLines(look: TableLook, { style, width }: Terminal): Lines {
+  return [
+    style.strong(`${plain(look.path)}  ${look.rows} rows, ${look.columns.length} columns: ${look.kind}`),
+    `written in ${look.encoding}${look.bom ? " with a byte order mark" : ""}, separated by ${JSON.stringify(look.delimiter)}, decimal ${JSON.stringify(look.decimal)}, header on line ${look.headerLine}`,
+    ...look.columns.map((one) => {
+      const what =
+        one.type === "number"
+          ? `${short(one.least)} to ${short(one.greatest)}, mean ${short(one.mean)}`
+          : one.type === "date"
+            ? `${isoDay(one.first)} to ${isoDay(one.last)}, ${one.formats.join(" or ")}`
+            : `${one.distinct} distinct: ${one.examples.slice(0, 4).join(", ")}`;
+      const odd = one.suspicious.map((each) => `${JSON.stringify(each.text)} × ${each.count}`).join(", ");
+      return cut(
+        plain(
+          `  ${one.name.padEnd(18)} ${one.role.padEnd(12)} ${what}; ${one.empty} empty${odd === "" ? "" : `; suspicious ${odd}`}`,
+        ),
+        width,
+      );
+    }),
+    "",
+    ...findingLines(
+      look.findings.map((one) => ({ ...one, severity: "warn" as const })),
+      { style, lines: 30, width },
+    ),
+    "",
+    style.strong("to paste"),
+    ...look.stanza.trimEnd().split("\n"),
+  ];
+}
+
+function unsupported(file: string): InputError {
+  return new InputError({
+    name: "look.unsupported",
+    expected: "a text table or a GeoTIFF",
+    found: "a NetCDF file, which this version does not read yet",
+    where: { file },
+    remedy: "convert the variable to GeoTIFF images, one a date",
+  });
+}

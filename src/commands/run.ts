@@ -1,0 +1,120 @@
+import { isAbsolute, join, relative } from "node:path";
+import { InputError } from "../errors.ts";
+import { nearestName } from "../math/nearest-name.ts";
+import { type Executed, execute } from "../pipeline/execute.ts";
+import { loadPipeline } from "../pipeline/load.ts";
+import { PAGE_FILE } from "../pipeline/output.ts";
+import { STAGES, type Stage } from "../pipeline/run.ts";
+import { findingLines } from "../terminal/findings.ts";
+import { type SummarySection, summaryLines } from "../terminal/summary.ts";
+import { listWords } from "../terminal/words.ts";
+import type { Lines, Terminal } from "./io.ts";
+
+export interface RunCommandOptions {
+  readonly through: Stage;
+  readonly workers: number;
+  readonly reuse?: string;
+  readonly json: boolean;
+  /** The working directory, to print paths people can type. */
+  readonly from: string;
+}
+
+/** `covey run PIPELINE`: everything from raw files to the page. */
+export async function runCommand(
+  file: string,
+  options: RunCommandOptions,
+  terminal: Terminal,
+): Promise<Lines> {
+  const loaded = loadPipeline(file);
+  const done = await execute(loaded, terminal, {
+    workers: options.workers,
+    progress: terminal.progress,
+    signal: terminal.signal,
+    through: options.through,
+    ...(options.reuse === undefined ? {} : { reuseFolder: options.reuse }),
+  });
+  const page = shownPath(join(done.folder, PAGE_FILE), options.from);
+  if (options.json) return [JSON.stringify(asJson(done, page), null, 2)];
+  const closing = [`page: ${page}`];
+  const findings = findingLines(done.study.findings, {
+    style: terminal.style,
+    lines: 6,
+    width: terminal.width,
+  });
+  const room = 24 - findings.length;
+  return [
+    ...summaryLines(
+      { title: loaded.spec.study.title, sections: sections(done), closing },
+      terminal.style,
+      terminal.width,
+      room,
+    ),
+    ...findings,
+  ];
+}
+
+/** The stage of that name. Throws `run.unknown-stage`. */
+export function stageNamed(name: string): Stage {
+  const stage = STAGES.find((one) => one === name);
+  if (stage !== undefined) return stage;
+  const near = nearestName(name, STAGES);
+  throw new InputError({
+    name: "run.unknown-stage",
+    expected: `one of ${STAGES.join(", ")}`,
+    found: JSON.stringify(name),
+    where: { cell: "--through" },
+    remedy: near === undefined ? "name one of the stages" : `did you mean ${JSON.stringify(near)}?`,
+  });
+}
+
+function shownPath(path: string, from: string): string {
+  const short = relative(from, path);
+  return short.startsWith("..") || isAbsolute(short) ? path : short;
+}
+
+function sections(done: Executed): SummarySection[] {
+  const { study, ingested } = done;
+  const captures = ingested.captures;
+  const read: [string, string][] = [
+    ["intervals", String(study.intervals.length)],
+    ["covariates", `${study.matrix.names.length} in the matrix, ${study.leftOut.length} left out`],
+  ];
+  if (captures !== undefined && Number.isFinite(captures.animals))
+    read.push(["animals", `${captures.animals}, ${captures.captures} captures that count`]);
+  const out: SummarySection[] = [{ title: `read in ${done.seconds.toFixed(1)} s`, rows: read }];
+  const clusters = study.diagnosis?.clusters.filter((one) => one.members.length > 1) ?? [];
+  if (clusters.length > 0)
+    out.push({
+      title: "same story",
+      rows: clusters.map((one) => [
+        one.closest,
+        listWords(one.members.filter((name) => name !== one.closest)),
+      ]),
+    });
+  if (study.comparison !== undefined) {
+    const { headline, animals } = study.comparison.verdict;
+    out.push({
+      title: "found",
+      rows: [
+        ["by years", headline],
+        ["by animals", animals],
+      ],
+    });
+  }
+  return out;
+}
+
+function asJson(done: Executed, page: string) {
+  const { study } = done;
+  return {
+    page,
+    folder: done.folder,
+    intervals: study.intervals.length,
+    covariates: study.matrix.names,
+    leftOut: study.leftOut,
+    verdict: study.comparison?.verdict,
+    chosenByYears: study.screened?.byYears.names,
+    chosenByAnimals: study.screened?.byAnimals.names,
+    findings: study.findings,
+  };
+}

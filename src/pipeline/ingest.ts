@@ -1,0 +1,121 @@
+import type { RawFinding } from "../data/finding.ts";
+import type { Interval, Occasion } from "../data/occasion.ts";
+import type { Where } from "../data/place.ts";
+import type { Series, Site } from "../data/series.ts";
+import type { Effects } from "../effects/effects.ts";
+import { InputError } from "../errors.ts";
+import { extractLayers } from "../layers/extract.ts";
+import type { Wanted } from "../layers/options.ts";
+import type { LayerCovariate, Spec } from "../spec/spec.ts";
+import { readRecords } from "../stations/read-records.ts";
+import { readStationList } from "../stations/station-list.ts";
+import type { CaptureResult } from "../study/capture-result.ts";
+import { readCaptures } from "../study/captures.ts";
+import { readOccasions } from "../study/occasions.ts";
+import { readPlaces } from "../study/places.ts";
+import { type ReadyMadeColumn, readReadyMade } from "../study/ready-made.ts";
+
+/** All that was read, before anything is made of it. */
+export interface Ingested {
+  readonly occasions: readonly Occasion[];
+  readonly intervals: readonly Interval[];
+  /** Undefined where the pipeline only builds the covariate set. */
+  readonly captures: CaptureResult | undefined;
+  readonly places: ReadonlyMap<string, Where>;
+  readonly sites: readonly Site[];
+  readonly stationSeries: readonly Series[];
+  /** Series of a layer covariate by `layerKey`. */
+  readonly layerSeries: ReadonlyMap<string, Series>;
+  /** By table and column. */
+  readonly readyMade: ReadonlyMap<string, ReadonlyMap<string, ReadyMadeColumn>>;
+  readonly findings: readonly RawFinding[];
+}
+
+/** What tells one reading of a layer from another. */
+export function layerKey({ layer, place, use }: Pick<LayerCovariate, "layer" | "place" | "use">): string {
+  return JSON.stringify([layer, place, use]);
+}
+
+/** Occasions and captures, stations and their records, layers at places (if wanted), ready-made values. */
+export async function ingest(spec: Spec, effects: Effects, withLayers = true): Promise<Ingested> {
+  const findings: RawFinding[] = [];
+  const keep = <Result extends { readonly findings: readonly RawFinding[] }>(result: Result): Result => {
+    findings.push(...result.findings);
+    return result;
+  };
+  const dated =
+    spec.occasions === undefined ? undefined : keep(await readOccasions(spec.occasions, effects.files));
+  const captures =
+    spec.captures === undefined
+      ? undefined
+      : keep(await readCaptures(spec.captures, dated?.occasions, effects.files));
+  const occasions = dated?.occasions ?? captures?.occasions ?? [];
+  const intervals = dated?.intervals ?? captures?.intervals;
+  if (intervals === undefined) throw noOccasions();
+  effects.checkInterrupted();
+
+  const { places } = keep(await readPlaces(spec.places, effects.files));
+  const sites =
+    spec.stations === undefined ? undefined : keep(await readStationList(spec.stations, effects.files)).sites;
+  const records =
+    spec.records.length === 0
+      ? { series: [], findings: [], rows: 0 }
+      : keep(await readRecords(spec.records, sites, spec.duplicates, effects));
+  effects.checkInterrupted();
+
+  const layerSeries = new Map<string, Series>();
+  for (const [name, wanted] of withLayers ? wantedByLayer(spec, places) : []) {
+    const extraction = keep(
+      await extractLayers(
+        name,
+        spec.layers[name],
+        wanted.map((one) => one.wanted),
+        effects,
+      ),
+    );
+    wanted.forEach((one, i) => {
+      layerSeries.set(one.key, extraction.series[i]);
+    });
+  }
+  const readyMade = new Map<string, ReadonlyMap<string, ReadyMadeColumn>>();
+  for (const [name, options] of Object.entries(spec.readyMade)) {
+    const { columns } = keep(await readReadyMade(options, intervals, effects.files));
+    readyMade.set(name, new Map(columns.map((one) => [one.name, one])));
+  }
+  return {
+    occasions,
+    intervals,
+    captures,
+    places,
+    sites: sites ?? [],
+    stationSeries: records.series,
+    layerSeries,
+    readyMade,
+    findings,
+  };
+}
+
+/** For each layer the places it is read at, each way of reading once. */
+function wantedByLayer(spec: Spec, places: ReadonlyMap<string, Where>) {
+  const byLayer = new Map<string, { key: string; wanted: Wanted }[]>();
+  for (const one of spec.covariates) {
+    if (one.source !== "layer") continue;
+    const place = places.get(one.place);
+    if (place === undefined) throw new Error(`place ${one.place} was checked and is gone`);
+    const list = byLayer.get(one.layer) ?? [];
+    const key = layerKey(one);
+    if (!list.some((other) => other.key === key)) list.push({ key, wanted: { place, use: one.use } });
+    byLayer.set(one.layer, list);
+  }
+  return byLayer;
+}
+
+function noOccasions(): InputError {
+  return new InputError({
+    name: "pipeline.no-occasions",
+    expected: "occasions, or a counts table whose columns name them",
+    found: "neither",
+    where: { cell: "occasions" },
+    remedy: "add occasions: with a file of one row per occasion",
+  });
+}

@@ -1,0 +1,82 @@
+import type { Effects, FileIdentity } from "../effects/effects.ts";
+import type { FileSet } from "../publish/disk.ts";
+import { redactPipeline } from "../publish/redact.ts";
+import { withRecord } from "../publish/run-record.ts";
+import { tableFiles } from "../publish/table-files.ts";
+import type { ReportInput } from "../report/input.ts";
+import { allTables } from "../tables/all-tables.ts";
+import { nodeDisk } from "./effects.ts";
+import type { Loaded } from "./load.ts";
+import type { RunResult } from "./run.ts";
+import { positionRule, shownPlaces } from "./sensitive.ts";
+import { mapLayer, monthlyPicture } from "./shown.ts";
+
+/** Who made it, for the record. */
+export interface Maker {
+  readonly version: string;
+  readonly nodeMajor: number;
+}
+
+/** The page's name within an output folder. */
+export const PAGE_FILE = "report.html";
+
+export interface Output {
+  readonly files: FileSet;
+  /** Text cells that were given an apostrophe so that a spreadsheet does not run them. */
+  readonly neutralised: number;
+}
+
+/** Every file of a run: tables, data package, page, figures, and the record that holds them together. */
+export async function buildOutput(
+  loaded: Loaded,
+  run: RunResult,
+  inputs: readonly FileIdentity[],
+  effects: Pick<Effects, "files" | "progress">,
+  maker: Maker,
+): Promise<Output> {
+  const { spec } = loaded;
+  const tables = allTables(run.study);
+  const written = await tableFiles(
+    tables,
+    {
+      package: {
+        name: spec.study.title,
+        title: spec.study.title,
+        description: "Interval covariates, their diagnosis and the survival screen, made by covey.",
+      },
+      parquet: ["covariates", "covariates-standardised"],
+    },
+    nodeDisk(),
+  );
+  const pipeline = spec.study.sensitive ? redactPipeline(loaded.text, positionRule(spec.study)) : loaded.text;
+  const facts = { version: maker.version, nodeMajor: maker.nodeMajor, seed: spec.seed, pipeline, inputs };
+  const input: ReportInput = {
+    ...run.study,
+    title: spec.study.title,
+    version: maker.version,
+    sensitive: spec.study.sensitive,
+    coarsenedKm: spec.study.sensitive ? spec.study.coarsenKm : 0,
+    animals: run.ingested.captures?.animals ?? Number.NaN,
+    shown: run.study.covariates.flatMap(
+      (one) => monthlyPicture(one.name, run.set.sources.get(one.name) ?? []) ?? [],
+    ),
+    places: shownPlaces(run.ingested.places.values(), spec.study),
+    stations: run.ingested.sites,
+    map: await mapLayer(spec, effects.files),
+    warn: spec.collinearity.warn,
+    tables,
+    record: JSON.stringify({ ...facts, outputs: undefined }, null, 2),
+  };
+  // the page and its figures draw with heavy libraries, which only a run needs
+  const { renderPage } = await import("../report/page.ts");
+  const { figures } = await import("../report/figures.ts");
+  const text = new TextEncoder();
+  const step = effects.progress.start("drawing the page", 2);
+  const files = new Map(written.files);
+  files.set(PAGE_FILE, text.encode(await renderPage(input)));
+  step.tick();
+  for (const figure of await figures(input)) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
+  step.tick();
+  step.done();
+  return { files: withRecord({ ...facts, outputs: files }), neutralised: written.neutralised };
+}
