@@ -144,11 +144,14 @@ function modelProblems(spec: Spec): Problem[] {
   const { prepare, collinearity, survival } = spec;
   const names = [...spec.covariates, ...prepare.derive].map(({ name }) => name);
   const problems: Problem[] = [];
-  const know = (path: KeyPath, name: string) => {
+  const know = (path: KeyPath, name: string, atKey = false) => {
     if (names.includes(name)) return;
-    problems.push(unknownName(path, "a covariate", name, names, "name a covariate of this file"));
+    problems.push({
+      ...unknownName(path, "a covariate", name, names, "name a covariate of this file"),
+      atKey,
+    });
   };
-  for (const name of Object.keys(prepare.transform)) know(["prepare", "transform", name], name);
+  for (const name of Object.keys(prepare.transform)) know(["prepare", "transform", name], name, true);
   const dropped = new Set<string>();
   collinearity.decisions.forEach(({ drop, keep }, i) => {
     const path = ["collinearity", "decisions", i];

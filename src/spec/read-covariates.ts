@@ -24,7 +24,9 @@ export function unknownName(
   how: string,
 ): Problem {
   const near = nearestName(found, known);
-  const names = known.length === 0 ? "there are none" : known.map((name) => JSON.stringify(name)).join(", ");
+  const shown = known.slice(0, 20).map((name) => JSON.stringify(name));
+  const more = known.length > 20 ? [`${known.length - 20} more`] : [];
+  const names = known.length === 0 ? "there are none" : [...shown, ...more].join(", ");
   return {
     name: "spec.unknown-name",
     path,

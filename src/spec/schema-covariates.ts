@@ -1,7 +1,7 @@
 import { z } from "zod";
 import { unit } from "./schema-records.ts";
 import { MONTH_DAY } from "./windows.ts";
-import { choice, flag, keys, list, number, oneOf, someOf, stated, text } from "./words.ts";
+import { choice, flag, keys, list, number, oneOf, shared, someOf, stated, text } from "./words.ts";
 
 const SPAN_END = /^(?:start|end|[1-9]\d{0,3} days? (?:before|after) (?:start|end))$/;
 const SEASON = new RegExp(`^${MONTH_DAY}(?: to ${MONTH_DAY})?$`);
@@ -139,8 +139,8 @@ const name = () => text("the covariate's name", "winter rain");
 const theme = () => text("the covariate's theme, a word for what it is about", "rain");
 
 const values = {
-  window,
-  statistic,
+  window: shared("window", window),
+  statistic: shared("statistic", statistic),
   complete: completeness,
   unit: unit("the values before the statistic; if left out, the unit they are read in").optional(),
   departures: keys(

@@ -12,6 +12,7 @@ import {
   number,
   oneOf,
   prose,
+  shared,
   stated,
   text,
 } from "./words.ts";
@@ -127,33 +128,48 @@ export const screen = allStated("the adaptive-lasso screen", {
 
 const SEVERITIES = ["accept", "warn", "stop"] as const;
 const KEEP = ["first", "last", "none"] as const;
-const severity = (kind: FindingKind) => stated(choice("what is done", SEVERITIES), DEFAULT_SEVERITY[kind]);
+const severity = shared("severity", choice("what is done about findings of a kind", SEVERITIES));
 const note = () => prose("the reason", "typed twice");
+const exceptionFile = () => inputPath("the file it holds for", "stations/upland.csv");
+
+const exceptions = stated(
+  list(
+    "exceptions",
+    shared(
+      "exception",
+      keys("an exception for a file or a subject", {
+        file: exceptionFile().optional(),
+        subject: text("the station, covariate, animal or layer it holds for", "Ash").optional(),
+        do: stated(choice("what is done instead", SEVERITIES), "accept"),
+        note: note(),
+      }),
+    ),
+  ),
+  [],
+);
+
+const duplicateSettings = {
+  keep: stated(choice("which of contradicting rows stands", KEEP), "none"),
+  except: stated(
+    list(
+      "exceptions",
+      keys("an exception for a file", {
+        file: exceptionFile(),
+        keep: choice("which of contradicting rows stands", KEEP),
+        note: note(),
+      }),
+    ),
+    [],
+  ),
+};
 
 function policy(kind: FindingKind) {
-  const what = `what is done about findings of the kind ${kind}`;
-  const exception =
-    kind === "duplicate"
-      ? keys("an exception", {
-          file: inputPath("the file it holds for", "stations/upland.csv"),
-          keep: choice("which of contradicting rows stands", KEEP),
-          note: note(),
-        })
-      : keys("an exception", {
-          file: inputPath("the file it holds for", "stations/upland.csv").optional(),
-          subject: text("the station, covariate, animal or layer it holds for", "Ash").optional(),
-          do: stated(choice("what is done", SEVERITIES), "accept"),
-          note: note(),
-        });
-  const settings = {
-    do: severity(kind),
-    ...(kind === "duplicate"
-      ? { keep: stated(choice("which of contradicting rows stands", KEEP), "none") }
-      : {}),
-    except: stated(list("exceptions", exception), []),
-  };
+  const settings = kind === "duplicate" ? duplicateSettings : { except: exceptions };
   return stated(
-    oneOf(`${what}: accept, warn, stop or a mapping`, [choice(what, SEVERITIES), keys(what, settings)]),
+    oneOf(`what is done about findings of the kind ${kind}: accept, warn, stop, or { do: …, except: … }`, [
+      severity,
+      keys("what is done, with exceptions", { do: stated(severity, DEFAULT_SEVERITY[kind]), ...settings }),
+    ]),
     DEFAULT_SEVERITY[kind],
   );
 }

@@ -11,6 +11,7 @@ import {
   someOf,
   stated,
   text,
+  word,
 } from "./words.ts";
 
 export const unit = (what: string) => text(`the unit of ${what}, "1" for a plain number`, "mm");
@@ -66,7 +67,7 @@ const dayOffset = stated(
 const scale = () => stated(number("what each value is multiplied by before its unit is read", 0.1), 1);
 
 const longRecords = keys("records with a row per station and date", {
-  layout: stated(choice("the layout of the records", ["long"]), "long"),
+  layout: stated(word("the layout of the records", "long"), "long"),
   files: files("stations/lowland_*.csv"),
   station: oneOf(
     "where the station's identifier stands: { column: … }, { always: … } or { name: … } with {id}",
@@ -99,7 +100,7 @@ const longRecords = keys("records with a row per station and date", {
 });
 
 const wideRecords = keys("records with a row per date and a column per station", {
-  layout: choice("the layout of the records", ["wide"]),
+  layout: word("the layout of the records", "wide"),
   files: files("stations/wide.csv"),
   date,
   missing,

@@ -13,6 +13,7 @@ import {
   someOf,
   stated,
   text,
+  word,
 } from "./words.ts";
 
 export const study = keys("the study's title and how far its places are hidden", {
@@ -57,7 +58,7 @@ const captureFile = () => inputPath("the CSV file of captures", "captures.csv");
 
 export const captures = oneOf("the captures, by one of three layouts", [
   keys("captures with a row each", {
-    layout: choice("the layout of the captures", ["dated"]),
+    layout: word("the layout of the captures", "dated"),
     file: captureFile(),
     animal: column("the animal's mark", "ring"),
     date: column("the date of the capture", "date"),
@@ -66,7 +67,7 @@ export const captures = oneOf("the captures, by one of three layouts", [
     lost: lost(),
   }),
   keys("captures with a row per animal and a 0 or 1 per occasion", {
-    layout: choice("the layout of the captures", ["zero-one"]),
+    layout: word("the layout of the captures", "zero-one"),
     file: captureFile(),
     animal: column("the animal's mark", "ring"),
     number: column("how many animals share the row", "animals").optional(),
@@ -78,7 +79,7 @@ export const captures = oneOf("the captures, by one of three layouts", [
     lost: lost(),
   }),
   keys("captures as counts, a row per release occasion", {
-    layout: choice("the layout of the captures", ["counts"]),
+    layout: word("the layout of the captures", "counts"),
     file: captureFile(),
     "released at": column("the occasion of release", "occasion"),
     released: column("how many animals were released", "released"),

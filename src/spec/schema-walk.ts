@@ -19,7 +19,7 @@ export function exampleOf(schema: z.ZodType): unknown {
   return Array.isArray(examples) ? examples[0] : undefined;
 }
 
-/** The keys of a mapping; for a union those of all its mappings. */
+/** The keys of a mapping. */
 export function shapeOf(schema: z.ZodType): Readonly<Record<string, z.ZodType>> | undefined {
   const bare = bareSchema(schema);
   if (bare instanceof z.ZodObject) return bare.shape as Record<string, z.ZodType>;
@@ -32,11 +32,16 @@ function step(schema: z.ZodType, part: string | number): z.ZodType | undefined {
   if (bare instanceof z.ZodRecord) return bare.valueType as z.ZodType;
   if (bare instanceof z.ZodArray) return bare.element as z.ZodType;
   if (bare instanceof z.ZodTuple) return bare._zod.def.items[Number(part)] as z.ZodType;
-  if (bare instanceof z.ZodUnion)
-    for (const option of bare.options as readonly z.ZodType[]) {
-      const found = step(option, part);
-      if (found !== undefined) return found;
-    }
+  return undefined;
+}
+
+/** How far along a path the first union stands; undefined if there is none. */
+export function firstUnion(schema: z.ZodType, path: KeyPath): number | undefined {
+  let at: z.ZodType | undefined = schema;
+  for (let length = 0; length <= path.length && at !== undefined; length++) {
+    if (bareSchema(at) instanceof z.ZodUnion) return length;
+    at = length < path.length ? step(at, path[length]) : undefined;
+  }
   return undefined;
 }
 

@@ -56,6 +56,11 @@ export function choice<const W extends readonly [string, ...string[]]>(descripti
   return tell(z.enum(words), `${description}: ${words.join(", ")}`, undefined);
 }
 
+/** The one word that tells which of several kinds of mapping is meant. */
+export function word<const W extends string>(description: string, only: W) {
+  return tell(z.literal(only), description, undefined);
+}
+
 export function list<S extends z.ZodType>(description: string, of: S, example?: unknown) {
   return tell(z.array(of).max(2000), description, example);
 }
@@ -82,9 +87,15 @@ export function oneOf<const S extends readonly [z.ZodType, ...z.ZodType[]]>(
   return tell(z.union(options), description, example);
 }
 
+/** A piece that the published schema writes once, under `definitions`, and refers to. */
+export function shared<S extends z.ZodType>(id: string, schema: S): S {
+  return schema.meta({ ...schema.meta(), id });
+}
+
 /** The value that holds where the key is left out, told in the description and in the schema's `default`. */
 export function stated<S extends z.ZodType>(schema: S, value: z.output<S> & z.input<S>) {
-  const meta = schema.meta() ?? {};
+  // Pieces under `definitions` are told apart by id; this copy is another piece.
+  const { id: _, ...meta } = schema.meta() ?? {};
   const shown = typeof value === "string" ? value : JSON.stringify(value);
   const described = schema.meta({
     ...meta,

@@ -1,4 +1,14 @@
-import { isAlias, isMap, isScalar, isSeq, LineCounter, type Node, parseDocument, type Scalar } from "yaml";
+import {
+  isAlias,
+  isMap,
+  isNode,
+  isScalar,
+  isSeq,
+  LineCounter,
+  type Node,
+  parseDocument,
+  type Scalar,
+} from "yaml";
 import { type ErrorFacts, InputError, type Place } from "../errors.ts";
 import { cellText, type KeyPath, pathKey } from "./path.ts";
 import { guardText } from "./yaml-guard.ts";
@@ -78,6 +88,16 @@ export function readYaml(text: string, file: string): YamlText {
         },
         error.pos[0],
       );
+    if (error.code === "BLOCK_AS_IMPLICIT_KEY")
+      refuse(
+        {
+          name: "spec.yaml",
+          expected: "one key and its value on a line",
+          found: "a second colon",
+          remedy: "quote the text if the colon belongs to it, or begin a new line",
+        },
+        error.pos[0],
+      );
     refuse(
       {
         name: "spec.yaml",
@@ -96,7 +116,7 @@ export function readYaml(text: string, file: string): YamlText {
   let count = 0;
 
   const readKey = (node: unknown, path: KeyPath, fallback: number): string => {
-    const offset = isScalar(node) ? (node.range?.[0] ?? fallback) : fallback;
+    const offset = (isNode(node) ? node.range?.[0] : undefined) ?? fallback;
     if (!isScalar(node) || node.tag !== undefined || node.value === null || node.value === "")
       return refuse(
         {
@@ -154,7 +174,7 @@ export function readYaml(text: string, file: string): YamlText {
           name: "spec.number",
           expected: "a finite number that can be held exactly",
           found: written,
-          remedy: `write a smaller number, or quote it if it is a name: "${written}"`,
+          remedy: `write another number, or quote it if it is a name: "${written}"`,
         },
         offset,
         path,
