@@ -1,7 +1,7 @@
 import type { DuckDBConnection } from "@duckdb/node-api";
 import { type Day, isoDay } from "../data/day.ts";
 import { compileDateFormat, recogniseFormats } from "../stations/dates.ts";
-import type { LoadedTable } from "../stations/load-table.ts";
+import type { LoadedTable } from "../stations/loaded-table.ts";
 import { numberSql } from "../stations/read-columns.ts";
 import { SENTINELS } from "../stations/suspect-values.ts";
 

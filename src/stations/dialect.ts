@@ -161,7 +161,8 @@ function decimalMark(lines: readonly string[], delimiter: string): "." | "," {
   return thousands > 0 && delimiter !== "," ? "," : ".";
 }
 
-function checkColumn(header: readonly string[], name: string, file: string, line: number): void {
+/** Throws `stations.column-missing` or `stations.repeated-column`. */
+export function checkColumn(header: readonly string[], name: string, file: string, line: number): void {
   const first = header.indexOf(name);
   if (first < 0)
     throw new InputError({

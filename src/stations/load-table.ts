@@ -1,69 +1,17 @@
-import { gunzipSync, constants as zlib } from "node:zlib";
 import type { DuckDBConnection } from "@duckdb/node-api";
 import { parse } from "csv-parse/sync";
 import type { Files } from "../effects/effects.ts";
-import { InputError } from "../errors.ts";
 import { literal, pathLiteral } from "./database.ts";
 import { type Dialect, decodeText, sniffDialect } from "./dialect.ts";
 import { lineOfByte, physicalLines } from "./lines.ts";
-
-const HEAD_BYTES = 1 << 18;
-
-/** A row that the reader refused because it has too many or too few cells or a broken quote. */
-export interface RefusedRow {
-  readonly line: number;
-  readonly text: string;
-  readonly why: string;
-}
-
-/** A file's wanted columns as text without blanks around it in the table `raw` (columns c0, c1, … by position; rowid is the row's index). */
-export interface LoadedTable {
-  readonly file: string;
-  readonly dialect: Dialect;
-  readonly rows: number;
-  readonly refused: readonly RefusedRow[];
-  /** True physical lines of rows, given as ascending 0-based indices. Reads the file again: only for findings. */
-  readonly lines: (rows: readonly number[]) => Promise<readonly number[]>;
-}
-
-/** The first bytes of a file, unpacked if its name ends in .gz. */
-export async function readHead(files: Files, path: string): Promise<{ bytes: Uint8Array; cut: boolean }> {
-  const access = files.open(path);
-  try {
-    const size = Math.min(access.size, HEAD_BYTES);
-    const bytes = access.read(0, size);
-    const cut = size < access.size;
-    if (!path.endsWith(".gz")) return { bytes, cut };
-    // Sync flush: give what can be unpacked of a stream that ends early.
-    const whole = gunzipSync(bytes, { finishFlush: zlib.Z_SYNC_FLUSH });
-    return { bytes: whole, cut };
-  } catch (error) {
-    if (error instanceof Error && "code" in error && String(error.code).startsWith("Z_"))
-      throw new InputError(
-        {
-          name: "stations.broken-gzip",
-          expected: "a gzip file, as its name says",
-          found: error.message,
-          where: { file: path },
-          remedy: "pack it again, or take the .gz off its name",
-        },
-        error,
-      );
-    throw error;
-  } finally {
-    access.close();
-  }
-}
-
-/** All bytes, unpacked if the name ends in .gz. */
-export async function readWhole(files: Files, path: string): Promise<Uint8Array> {
-  const bytes = await files.readBytes(path);
-  return path.endsWith(".gz") ? gunzipSync(bytes) : bytes;
-}
+import { loadParquet } from "./load-parquet.ts";
+import { type LoadedTable, type RefusedRow, readOrExplain } from "./loaded-table.ts";
+import { checkPacked, readHead, readWhole } from "./packed.ts";
 
 /**
- * Loads the wanted columns (all, if none is named) of a text table into `raw`. UTF-8 files go through the database's reader; others are decoded
- * first. Rows of unequal width are refused, not guessed at.
+ * Loads the wanted columns (all, if none is named) of a table into `raw`. UTF-8 files go through the database's reader,
+ * others are decoded first; Parquet is known by its ending. Rows of unequal width are refused, not guessed at.
+ * Throws `stations.unreadable`, `stations.broken-gzip`, and those of `sniffDialect`.
  */
 export async function loadTable(
   database: DuckDBConnection,
@@ -72,7 +20,9 @@ export async function loadTable(
   wanted: readonly string[],
   dateColumn: string | undefined,
 ): Promise<LoadedTable> {
-  const head = await readHead(files, file);
+  if (file.endsWith(".parquet")) return loadParquet(database, files, file, wanted);
+  await checkPacked(files, file);
+  const head = readHead(files, file);
   const dialect = sniffDialect(head.bytes, head.cut, file, wanted, dateColumn);
   const positions =
     wanted.length === 0 ? dialect.header.keys() : wanted.map((name) => dialect.header.indexOf(name));
@@ -92,7 +42,9 @@ async function loadUtf8(
 ): Promise<LoadedTable> {
   const types = dialect.header.map((_, i) => `'c${i}': 'VARCHAR'`).join(", ");
   await database.run("DROP TABLE IF EXISTS reject_errors; DROP TABLE IF EXISTS reject_scans;");
-  await database.run(
+  await readOrExplain(
+    database,
+    file,
     `CREATE TEMP TABLE raw AS SELECT ${columns.map((i) => `trim(c${i}) AS c${i}`).join(", ")}
      FROM read_csv(${pathLiteral(files.absolute(file))}, auto_detect = false, header = false,
        skip = ${dialect.skip}, delim = ${literal(dialect.delimiter)}, quote = '"', escape = '"',
@@ -101,10 +53,16 @@ async function loadUtf8(
   );
   const rows = await countRows(database);
   const told = await database.runAndReadAll(
-    `SELECT line_byte_position, any_value(csv_line), any_value(error_message)
+    `SELECT line_byte_position, any_value(csv_line), any_value(error_message),
+       bool_or(error_type = 'INVALID ENCODING')
      FROM reject_errors GROUP BY line_byte_position ORDER BY line_byte_position`,
   );
   const refusedRows = told.getRowsJson();
+  // The head was UTF-8, a later row is not: then the whole file is in the older encoding.
+  if (refusedRows.some(([, , , encoding]) => encoding === true)) {
+    await database.run("DROP TABLE raw");
+    return loadDecoded(database, files, file, { ...dialect, encoding: "windows-1252" }, columns);
+  }
   const bytes = refusedRows.length > 0 ? await readWhole(files, file) : new Uint8Array();
   const refusals = refusedRows.map(([byte, text, why]) => ({
     byte: recordStart(bytes, Number(byte) - 1),

@@ -1,6 +1,6 @@
 import type { DuckDBConnection } from "@duckdb/node-api";
 import { literal } from "./database.ts";
-import type { LoadedTable } from "./load-table.ts";
+import type { LoadedTable } from "./loaded-table.ts";
 
 /** A text column as codes into its sorted distinct texts (blanks around them taken off; an empty cell is ""). */
 export interface CodedColumn {

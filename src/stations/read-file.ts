@@ -10,7 +10,8 @@ import {
   type StationColumn,
 } from "./block.ts";
 import { compileDateFormat, coveredPeriod, recogniseFormats } from "./dates.ts";
-import { type LoadedTable, loadTable } from "./load-table.ts";
+import { loadTable } from "./load-table.ts";
+import type { LoadedTable } from "./loaded-table.ts";
 import type { DateColumn, RecordOptions, SeriesColumn, StationOf } from "./options.ts";
 import { passFlags } from "./quality-flags.ts";
 import { type CodedColumn, type NumberColumn, readColumns } from "./read-columns.ts";

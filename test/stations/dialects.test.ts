@@ -245,6 +245,23 @@ const CASES: readonly Case[] = [
     findings: ["flagged a.csv:3 1 S 1", "gap a.csv:2 1 2001-01-02"],
   },
   {
+    name: "Latin-1 letters that first come after a quarter of a megabyte",
+    files: {
+      "a.csv": iconv.encode(
+        `site,day,rain,note\nAsh,2001-01-01,1,${"x".repeat(300_000)}\nAsh,2001-01-02,2,Höhe\n`,
+        "latin1",
+      ),
+    },
+    rows: ["Ash 2001-01-01 1", "Ash 2001-01-02 2"],
+    findings: [],
+  },
+  {
+    name: "gzip that is cut off",
+    files: { "a.csv.gz": gzipSync(PLAIN.repeat(50)).subarray(0, 90) },
+    error:
+      "a.csv.gz: expected a whole gzip file, as its name says, found unexpected end of file; fetch or pack it again, or take the .gz off its name if it is not packed",
+  },
+  {
     name: "a header and no rows",
     files: { "a.csv": "site,day,rain\n" },
     rows: [],
@@ -290,7 +307,7 @@ const CASES: readonly Case[] = [
     name: "gzip in name only",
     files: { "a.csv.gz": PLAIN },
     error:
-      "a.csv.gz: expected a gzip file, as its name says, found incorrect header check; pack it again, or take the .gz off its name",
+      "a.csv.gz: expected a whole gzip file, as its name says, found incorrect header check; fetch or pack it again, or take the .gz off its name if it is not packed",
   },
   {
     name: "a file name that the pattern does not fit",
