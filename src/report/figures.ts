@@ -1,0 +1,47 @@
+import { castOf } from "./cast.ts";
+import type { Draw, Figure } from "./figure.ts";
+import { completeness } from "./figures/completeness.ts";
+import { correlationMap } from "./figures/correlation.ts";
+import { criterion } from "./figures/criterion.ts";
+import { effects } from "./figures/effects.ts";
+import { evidence } from "./figures/evidence.ts";
+import { inflation } from "./figures/inflation.ts";
+import { loadings } from "./figures/loadings.ts";
+import { placesMap } from "./figures/map.ts";
+import { paths } from "./figures/paths.ts";
+import { ribbon } from "./figures/ribbon.ts";
+import { seriesFigure } from "./figures/series.ts";
+import { survival } from "./figures/survival.ts";
+import { values } from "./figures/values.ts";
+import { variance } from "./figures/variance.ts";
+import type { ReportInput } from "./input.ts";
+
+/** In the order in which the page shows them. */
+const ALL: readonly Draw[] = [
+  ribbon,
+  placesMap,
+  values,
+  seriesFigure,
+  completeness,
+  correlationMap,
+  inflation,
+  variance,
+  loadings,
+  criterion,
+  paths,
+  evidence,
+  survival,
+  effects,
+];
+
+/** Every figure that this study has, ready to be saved as a file of its own. */
+export async function figures(input: ReportInput): Promise<readonly Figure[]> {
+  const cast = castOf(input);
+  const out: Figure[] = [];
+  // one after the other: the plot library counts its ids globally
+  for (const draw of ALL) {
+    const figure = await draw(input, cast);
+    if (figure !== undefined) out.push(figure);
+  }
+  return out;
+}

@@ -1,0 +1,86 @@
+import type { Cast } from "../cast.ts";
+import { belongs, drawing, type Figure, fitted, label, marker, segment } from "../figure.ts";
+import { html } from "../html.ts";
+import type { ReportInput } from "../input.ts";
+import { brief, counted, px } from "../numbers.ts";
+import { ink } from "../palette.ts";
+import { shortR, signedLegend, signedSquare } from "./signed.ts";
+
+const LEFT = 190;
+
+/** Correlations of the covariates, ordered so that those of one cluster stand together. */
+export function correlationMap(input: ReportInput, cast: Cast): Figure | undefined {
+  const { diagnosis } = input;
+  if (diagnosis === undefined || diagnosis.pearson.names.length < 2) return undefined;
+  const { names, r } = diagnosis.pearson;
+  const order = diagnosis.order;
+  const K = names.length;
+  const cell = K <= 24 ? 34 : K <= 45 ? 18 : 9;
+  const numbers = K <= 24;
+  const top = 24;
+  const size = K <= 45 ? 12 : 8;
+  const at = (i: number) => LEFT + (i + 0.5) * cell;
+  const down = (i: number) => top + (i + 0.5) * cell;
+  const value = (i: number, j: number) => r.data[order[i] * K + order[j]];
+  const rows = order.map((k, i) => {
+    const member = cast.byName.get(names[k]);
+    const text = fitted(names[k], LEFT - 34, size);
+    return belongs(member, [
+      member !== undefined && marker(member.theme, LEFT - 14, down(i), size / 3),
+      label(LEFT - 24, down(i) + size / 3, text, { anchor: "end", size }),
+      order.slice(0, i).map((_, j) => signedSquare(value(i, j), at(j), down(i), cell)),
+      K <= 45
+        ? label(at(i), down(i) + 4, K <= 24 ? String(i + 1) : "", {
+            anchor: "middle",
+            fill: "muted",
+            size: 11,
+          })
+        : html``,
+      numbers &&
+        order.slice(i + 1).map((_, j) =>
+          label(at(i + 1 + j), down(i) + 4, shortR(value(i, i + 1 + j)), {
+            anchor: "middle",
+            size: 11,
+            weight: Math.abs(value(i, i + 1 + j)) > input.warn.correlation ? 700 : 400,
+          }),
+        ),
+    ]);
+  });
+  const position = (name: string) => order.indexOf(names.indexOf(name));
+  const frames = diagnosis.clusters
+    .filter((one) => one.members.length > 1)
+    .map((one) => {
+      const places = one.members.map(position);
+      const [a, b] = [Math.min(...places), Math.max(...places)];
+      const side = (b - a + 1) * cell;
+      return html`<rect x="${px(LEFT + a * cell)}" y="${px(top + a * cell)}" width="${px(side)}" height="${px(side)}" fill="none" stroke="${ink("mark")}" stroke-width="2"/>`;
+    });
+  const pairs = [];
+  for (let i = 0; i < K; i++)
+    for (let j = 0; j < i; j++)
+      if (Math.abs(r.data[i * K + j]) > input.warn.correlation)
+        pairs.push({ a: names[i], b: names[j], r: r.data[i * K + j] });
+  pairs.sort((a, b) => Math.abs(b.r) - Math.abs(a.r));
+  const many = diagnosis.clusters.filter((one) => one.members.length > 1).length;
+  const strongest = pairs.slice(0, 8).map((one) => `${one.a} and ${one.b} ${shortR(one.r)}`);
+  return {
+    name: "correlation",
+    title: "Which covariates tell the same story",
+    caption: `Pearson correlation of the covariates over intervals, in the order of clusters${numbers ? "; the same values as numbers above the diagonal, bold where |r| is above the limit" : ""}. Frames hold the clusters (${counted(many, "cluster")} of two or more).`,
+    svg: drawing(
+      Math.max(LEFT + K * cell + 12, 640),
+      top + K * cell + 36,
+      "Correlation of the covariates",
+      `${counted(K, "covariate")}; ${counted(pairs.length, "pair")} with |r| above ${brief(input.warn.correlation)}${strongest.length > 0 ? `: ${strongest.join(", ")}` : ""}`,
+      [
+        segment(LEFT, top, LEFT + K * cell, top, "rule"),
+        ...order.map((_, i) =>
+          segment(LEFT, top + (i + 1) * cell, LEFT + K * cell, top + (i + 1) * cell, "rule", 0.5),
+        ),
+        ...rows,
+        ...frames,
+        signedLegend(LEFT, top + K * cell + 24),
+      ],
+    ),
+  };
+}

@@ -1,0 +1,29 @@
+import type { ScreenResult } from "../../screen/screen.ts";
+
+/** Width of the two figures along the path, so that they line up below each other. */
+export const PATH_WIDTH = 700;
+
+export const LAMBDA_TITLE = "penalty λ (log scale, weaker to the right)";
+
+/** The penalty falls from left to right, as the path is walked. */
+export function lambdaScale(screened: ScreenResult) {
+  const { steps } = screened.path;
+  const [first, last] = [steps[0].lambda, steps[steps.length - 1].lambda];
+  // one step alone still needs a range
+  const domain: [number, number] = first > last ? [first, last] : [first * 1.1, first / 1.1];
+  return { type: "log" as const, domain, nice: false as const };
+}
+
+/** The axis both figures share: 1-2-5 labels, no grid, and the same room on the left. */
+export function lambdaAxis(screened: ScreenResult) {
+  const [high, low] = lambdaScale(screened).domain;
+  const values: number[] = [];
+  for (let power = Math.floor(Math.log10(low)); power <= Math.log10(high); power++)
+    for (const lead of [1, 2, 5]) {
+      const value = Number((lead * 10 ** power).toPrecision(3));
+      if (value >= low && value <= high) values.push(value);
+    }
+  return { values, format: "~g", grid: false };
+}
+
+export const PATH_EXTENT = 58;

@@ -1,0 +1,50 @@
+import type { Cast } from "../cast.ts";
+import type { Figure } from "../figure.ts";
+import { html } from "../html.ts";
+import type { ReportInput } from "../input.ts";
+import { brief, counted, percent, show } from "../numbers.ts";
+import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+
+const ABSENT = "was not asked for in this run.";
+
+export function storySection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
+  const { diagnosis, warn } = input;
+  const head = { id: "same-story", title: "Same story" };
+  if (diagnosis === undefined) return { ...head, body: html`<p>A diagnosis of collinearity ${ABSENT}</p>` };
+  const groups = diagnosis.clusters.filter((one) => one.members.length > 1);
+  const { indices, names, proportions } = diagnosis.condition;
+  const rows = indices.map((index, i) => {
+    const involved = names.filter((_, k) => proportions.data[i * proportions.columns + k] > 0.5);
+    const marked = index > warn.condition && involved.length >= 2;
+    return {
+      best: marked,
+      cells: [
+        String(i + 1),
+        show(index),
+        involved.length === 0 ? "–" : covariateList(cast, involved),
+        marked ? "yes" : "no",
+      ],
+    };
+  });
+  return {
+    ...head,
+    body: html`<p>Covariates that rise and fall together cannot be told apart by any screen: what one of them is chosen for, its companions may have done. ${groups.length === 0 ? "No two covariates stand close enough to form a cluster." : `${counted(groups.length, "cluster")} of two or more:`}</p>
+${groups.length > 0 && html`<ul>${groups.map((one) => html`<li>${covariateList(cast, one.members)}; closest to all the others: ${covariateName(cast, one.closest)}</li>`)}</ul>`}
+${diagnosis.allDepend ? html`<p class="note">There are as many covariates as intervals, or more, so every covariate is an exact sum of the others and all inflation is infinite.</p>` : diagnosis.dependencies.length > 0 && html`<p class="note">Exact dependencies:</p><ul>${diagnosis.dependencies.map((one) => html`<li>${one.relation ?? covariateList(cast, one.names)}</li>`)}</ul>`}
+${figureBlock(figures, "correlation")}${figureBlock(figures, "inflation")}
+${grid(cast, "Condition indices", [{ text: "dimension", look: "n" }, { text: "condition index", look: "n" }, { text: "more than half the variance of", look: "w" }, { text: "above the limit" }], rows)}
+<p>Condition indices are those of the columns scaled to unit length, with the intercept; above ${brief(warn.condition)} with two or more proportions above 0.5 is the usual warning. The condition number of the correlation matrix, which is another thing, is ${show(diagnosis.correlationCondition)}.</p>
+${diagnosis.pruning.length > 0 && html`<h3>Pruning</h3><ol>${diagnosis.pruning.map((one) => html`<li>${covariateName(cast, one.dropped)} (inflation ${show(one.inflation)}): ${one.reason}</li>`)}</ol><p>Left after pruning: ${covariateList(cast, diagnosis.kept)}.</p>`}`,
+  };
+}
+
+export function componentsSection(input: ReportInput, figures: readonly Figure[]): Section {
+  const { components } = input;
+  const head = { id: "components", title: "Components" };
+  if (components === undefined) return { ...head, body: html`<p>A component analysis ${ABSENT}</p>` };
+  const together = components.kept > 0 ? components.cumulative[components.kept - 1] : 0;
+  return {
+    ...head,
+    body: html`<p>Principal components of the correlation matrix sum up the covariates without a look at survival. ${counted(components.kept, "component")} of ${components.labels.length} kept, carrying ${percent(together)} of the variance together.</p>${figureBlock(figures, "component-variance")}${figureBlock(figures, "component-loadings")}`,
+  };
+}

@@ -1,0 +1,99 @@
+import type { Finding, FindingKind, Severity } from "../../data/finding.ts";
+import { placeText } from "../../errors.ts";
+import type { Cast } from "../cast.ts";
+import { type Html, html } from "../html.ts";
+import type { ReportInput } from "../input.ts";
+import { counted, whole } from "../numbers.ts";
+import { grid, type Section } from "../parts.ts";
+
+/** Findings of one kind that go onto the page; the table in the files holds them all. */
+const MOST = 100;
+
+/** Kinds without words of their own are called by their name. */
+const WORDS: Readonly<Partial<Record<FindingKind, string>>> = {
+  gap: "Gaps in records",
+  duplicate: "Repeated rows",
+  "bad-value": "Values that cannot be read",
+  "bad-date": "Dates that cannot be read",
+  sentinel: "Declared missing values",
+  unit: "Units",
+  "unknown-station": "Stations not in the list",
+  "capture-outside": "Captures outside every occasion",
+  "capture-repeat": "Repeated captures within an occasion",
+  "capture-after-loss": "Captures after loss",
+  "strata-conflict": "Animals in two strata",
+  "never-recaptured": "Never seen again",
+  "layer-gap": "Missing layers",
+  "layer-overlap": "Overlapping layers",
+  "layer-valid-area": "Layers with too little valid area",
+  "place-outside": "Places outside a layer",
+  "window-empty": "Intervals without a window",
+  "window-leak": "Windows beyond their interval",
+  incomplete: "Incomplete windows",
+  "changing-stations": "Changing sets of stations",
+  "constant-column": "Covariates that do not vary",
+  "incomplete-column": "Covariates with missing intervals",
+  correlated: "Close correlations",
+  inflated: "Variance inflation",
+  "ill-conditioned": "Ill-conditioned combinations",
+  "exact-dependency": "Exact dependencies",
+  "at-bound": "Estimates at a bound",
+  "not-separable": "What the data cannot tell apart",
+  "recapture-varies": "Recapture varies",
+  infilled: "Infilled values",
+  flagged: "Values flagged at the source",
+  "flat-run": "Long runs of one value",
+  "layer-small-place": "Places smaller than a pixel",
+  spike: "Spikes",
+  excepted: "Exceptions made",
+};
+
+const SEVERITIES: Readonly<Record<Severity, string>> = {
+  stop: "stops the run",
+  warn: "warning",
+  accept: "accepted",
+};
+
+export function findingsSection(input: ReportInput, cast: Cast): Section {
+  const head = { id: "findings", title: "Findings" };
+  if (input.findings.length === 0)
+    return { ...head, body: html`<p>Nothing was found that a person should know.</p>` };
+  const kinds = new Map<FindingKind, Finding[]>();
+  for (const one of input.findings) kinds.set(one.kind, [...(kinds.get(one.kind) ?? []), one]);
+  return {
+    ...head,
+    body: html`<p>${counted(input.findings.length, "thing")} to know about the data and the models, in ${counted(kinds.size, "kind")}. Each says where it was found and what can be done.</p><div class="findings">${[...kinds].map(([kind, found]) => group(cast, kind, found))}</div>`,
+  };
+}
+
+function group(cast: Cast, kind: FindingKind, found: readonly Finding[]): Html {
+  const shown = found.slice(0, MOST);
+  const words = WORDS[kind] ?? kind.replace(/-/g, " ");
+  const worst: Severity =
+    (["stop", "warn", "accept"] as const).find((one) => found.some((finding) => finding.severity === one)) ??
+    "accept";
+  return html`<details data-kind="${kind}"${found.length <= 6 && html` open`}><summary>${words}<small>${whole(found.length)}, ${SEVERITIES[worst]}</small></summary><div class="in">${grid(
+    cast,
+    words,
+    [
+      { text: "about", look: "w" },
+      { text: "what was found", look: "w" },
+      { text: "where", look: "w" },
+      { text: "value" },
+      { text: "how many", look: "n" },
+      { text: "what to do", look: "w" },
+      { text: "policy" },
+    ],
+    shown.map((one) => ({
+      cells: [
+        one.subject,
+        one.message,
+        one.where === undefined ? "–" : html`<code>${placeText(one.where)}</code>`,
+        one.value ?? "–",
+        whole(one.count ?? 1),
+        one.remedy,
+        html`<span class="severity ${one.severity}">${SEVERITIES[one.severity]}</span>`,
+      ],
+    })),
+  )}${shown.length < found.length && html`<p>The first ${shown.length} of ${whole(found.length)}; the table of findings in the files holds them all.</p>`}</div></details>`;
+}
