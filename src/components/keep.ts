@@ -106,7 +106,8 @@ export function chooseKept(
   switch (rule.type) {
     case "broken stick": {
       const sticks = brokenStick(m);
-      const kept = leading(m, (j) => share[j] > sticks[j]);
+      // A stick in one piece is no contest, and rounding must not decide one either.
+      const kept = m === 1 ? 1 : leading(m, (j) => share[j] > sticks[j] + 1e-12);
       const told = (j: number) => `${percent(share[j])} against ${percent(sticks[j])}`;
       return { kept, keptBecause: because("broken stick", "share of variance", kept, m, told) };
     }

@@ -28,7 +28,7 @@ export function loadingIntervals(
   const draws: Float64Array[][] = [];
   for (let replicate = 0; replicate < options.replicates; replicate++) {
     const axes = resampledAxes(standard, random);
-    if (axes !== undefined) draws.push(matched(original, axes));
+    if (axes !== undefined) draws.push(matchAxes(original, axes));
   }
   const tail = (1 - options.level) / 2;
   const lower = zeros(K, k);
@@ -73,7 +73,7 @@ function resampledAxes(standard: Matrix, random: Random): Float64Array[] | undef
 }
 
 /** One axis for each original one, turned to its side; an original axis without a partner left gets zeros. */
-function matched(original: readonly Float64Array[], axes: readonly Float64Array[]): Float64Array[] {
+export function matchAxes(original: readonly Float64Array[], axes: readonly Float64Array[]): Float64Array[] {
   const pairs = original.flatMap((axis, j) => axes.map((other, at) => ({ j, at, cos: dot(axis, other) })));
   pairs.sort((a, b) => Math.abs(b.cos) - Math.abs(a.cos) || a.j - b.j || a.at - b.at);
   const out: Float64Array[] = original.map((axis) => new Float64Array(axis.length));

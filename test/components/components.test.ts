@@ -199,6 +199,7 @@ describe("how many to keep", () => {
       keptBecause: "broken stick: 0 of 4 kept; share of variance of component 1: 25.0 % against 52.1 %",
     });
     expect(chooseKept({ type: "eigenvalue" }, [1, 1, 1, 1], size).kept).toBe(0);
+    expect(chooseKept(STICK, [1], { rows: 20, columns: 1 }).kept).toBe(1);
   });
 
   test("senseless rules are the user's mistake, told with the value", () => {

@@ -1,7 +1,7 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { principalComponents, scoreRows } from "../../src/components/components.ts";
-import { loadingIntervals } from "../../src/components/resample.ts";
+import { loadingIntervals, matchAxes } from "../../src/components/resample.ts";
 import { rotateComponents, varimax } from "../../src/components/rotate.ts";
 import { componentsWithin } from "../../src/components/within.ts";
 import { fromColumns, fromRows, type Matrix, pickColumns, toRows } from "../../src/data/matrix.ts";
@@ -124,11 +124,25 @@ describe("components within themes", () => {
     const stick = componentsWithin(matrix, names(6), themes, STICK);
     expect(stick.labels.slice(0, stick.kept)).toEqual(["rain 1", "snow 1", "people 1"]);
     expect(stick.keptBecause).toContain("people: a single covariate");
+    // An eigenvalue of 1 is not above 1, so by the rule alone it would go.
+    const above = componentsWithin(matrix, names(6), themes, { type: "eigenvalue" });
+    expect(above.labels.slice(0, above.kept)).toContain("people 1");
   });
 });
 
 describe("resampled loadings", () => {
-  test("two factors of equal strength change places in samples; matched axes stay narrow", () => {
+  test("axes that changed places or sides are put back; one without a partner is zero", () => {
+    const [x, y, z] = [
+      [1, 0, 0],
+      [0, 0.8, 0.6],
+      [0, 0.6, -0.8],
+    ].map((axis) => Float64Array.from(axis));
+    const found = matchAxes([x, y, z], [y.map((value) => -value), z, x]);
+    expect(found.map((axis) => Array.from(axis))).toEqual([x, y, z].map((axis) => Array.from(axis)));
+    expect(matchAxes([x, y], [y]).map((axis) => Array.from(axis))).toEqual([[0, 0, 0], Array.from(y)]);
+  });
+
+  test("two strong factors: intervals hold the loadings, the same for the same stream", () => {
     const random = randomStream(4, "resample", 0);
     const n = 80;
     const [u, v] = [noise(random, n), noise(random, n)];
