@@ -58,8 +58,11 @@ function seriesProblems(spec: Spec): Problem[] {
     return variables.flatMap(({ path, name, kind, kindPath }): Problem[] => {
       const earlier = kinds.get(name);
       kinds.set(name, earlier ?? kind);
-      if (Object.hasOwn(spec.layers, name))
-        return [conflict(path, "a name that no layer has", quote(name), "rename the variable or the layer")];
+      if (Object.hasOwn(spec.layers, name)) {
+        const atKey = record.layout === "long";
+        const remedy = "rename the variable or the layer";
+        return [{ ...conflict(path, "a name that no layer has", quote(name), remedy), atKey }];
+      }
       if (earlier === undefined || earlier === kind) return [];
       return [
         conflict(

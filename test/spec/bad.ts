@@ -1072,7 +1072,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "      snow: {",
     name: "spec.conflict",
     message:
-      'p.yaml:23:13 (records > #1 > series > snow): expected a name that no layer has, found "snow"; rename the variable or the layer (and 1 more problem below)',
+      'p.yaml:23:7 (records > #1 > series > snow): expected a name that no layer has, found "snow"; rename the variable or the layer (and 1 more problem below)',
   },
   {
     title: "needs: effort without effort",
