@@ -17,7 +17,7 @@ export interface Verdict {
  * The share of days that a span which is no whole months needs where the pipeline names none. Common practice,
  * no source: the WMO rule speaks of calendar months only.
  */
-export const SPAN_SHARE = 0.9;
+const SPAN_SHARE = 0.9;
 
 interface MonthRule {
   readonly missing: number;

@@ -4,7 +4,7 @@ import { align, type Grid } from "./grid.ts";
 import { filesOf } from "./sites.ts";
 
 /** The mean series of several stations, and the periods on which some of them, not all, had a value. */
-export interface MeanOfDays {
+interface MeanOfDays {
   readonly series: Series;
   /** True where a value was made of fewer than all stations. */
   readonly partial: Uint8Array;

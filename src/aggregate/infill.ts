@@ -11,7 +11,7 @@ const LEAST_COMMON = 30;
 const RATIO_NEIGHBOURS = 3;
 
 /** What was filled at one station, and how well the same procedure gives back values that are known. */
-export interface SiteInfill {
+interface SiteInfill {
   readonly site: string;
   readonly days: number;
   readonly gaps: number;
@@ -24,7 +24,7 @@ export interface SiteInfill {
   readonly tested: number;
 }
 
-export interface Infilled {
+interface Infilled {
   /** The stations, on common periods, with filled values. */
   readonly series: readonly Series[];
   /** filled[s][i] = 1 where value i of station s was infilled. */

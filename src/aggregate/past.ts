@@ -64,7 +64,7 @@ export function longestRun(slice: Slice, past: Past): Run {
 }
 
 /** The first run of at least `days` days, counting from `from` on. */
-export function firstRun(slice: Slice, past: Past, days: number, from: Day): Run {
+function firstRun(slice: Slice, past: Past, days: number, from: Day): Run {
   for (const run of runs(slice, past)) {
     const start = Math.max(run.start, from);
     if (run.end - start >= days) return { days: run.end - start, start, end: run.end };

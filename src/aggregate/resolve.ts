@@ -24,7 +24,7 @@ export interface Resolved {
 }
 
 /** The sites' series, ready for windows, and what was infilled in them. */
-export interface Sites {
+interface Sites {
   readonly series: readonly Series[];
   /** filled[s][i] = 1 where value i of site s was infilled; empty without infilling. */
   readonly filled: readonly Uint8Array[];

@@ -6,7 +6,7 @@ import { mean } from "../math/quantile.ts";
 export const LEAST_BASE = 20;
 
 /** A gamma distribution of the sums above 0 beside the share of sums that are 0. */
-export interface GammaFit {
+interface GammaFit {
   readonly shape: number;
   readonly scale: number;
   readonly zeros: number;

@@ -32,7 +32,7 @@ function dateIn(year: number, date: MonthDay): Day {
 }
 
 /** The season that begins in `year`. It crosses the new year where its last date stands before its first. */
-export function seasonBeginning(year: number, from: MonthDay, to: MonthDay): Period {
+function seasonBeginning(year: number, from: MonthDay, to: MonthDay): Period {
   const order = (date: MonthDay) => date.month * 40 + (date.day === 0 ? 31 : date.day);
   const crosses = order(to) < order(from);
   return { start: dateIn(year, from), end: dateIn(crosses ? year + 1 : year, to) + 1 };

@@ -10,7 +10,7 @@ function pastText(
 }
 
 /** A statistic in words, to be followed by `of` and the variable. */
-export function statisticText(statistic: Statistic, unit: string): string {
+function statisticText(statistic: Statistic, unit: string): string {
   switch (statistic.type) {
     case "sd":
       return "standard deviation (n − 1)";

@@ -11,7 +11,7 @@ import { differences, fitLine, type Line, withoutLine, yearIndex } from "./time.
 import { transformed } from "./transform.ts";
 
 /** Fewest base years that give a mean and sd worth standardising by (methods §4). */
-export const LEAST_BASE_YEARS = 20;
+const LEAST_BASE_YEARS = 20;
 /** A column whose sd is below this share of its largest value differs by rounding alone. */
 const CONSTANT = 1e-12;
 

@@ -60,7 +60,7 @@ export function undoRecipe(
 }
 
 /** An effect in terms a reader can use. */
-export interface UnitEffect {
+interface UnitEffect {
   readonly value: number;
   /** What it is per, e.g. `per mm`, `per doubling`. */
   readonly per: string;

@@ -247,6 +247,13 @@ describe("statistics that need more than a window", () => {
     expect(dry.covariate.values[0].failed).toBe("no wet day in the base years 1991 to 1993");
   });
 
+  test("R95pTOT: the percentile is that of wet days alone", () => {
+    // Wet days of 1 … 20 mm: type 7 gives 19.05, so 20 mm alone counts; of all 365 days it would be some 2 mm.
+    const values = Array.from({ length: 365 }, (_, k) => (k % 18 === 0 && k < 360 ? k / 18 + 1 : 0.5));
+    const statistic: Statistic = { type: "R95pTOT", base: { from: 2001, to: 2001 } };
+    expect(numbers({ ...rain, statistic, series: [rainfall(values)] }, years.slice(0, 1))).toEqual([20]);
+  });
+
   test("temperature indices are strict: 0, 20 and 25 themselves do not count", () => {
     const cycle = [-5, 0, 20, 20.1, 25, 25.1, 30];
     const values = Array.from({ length: DAYS }, (_, k) => cycle[k % 7]);
@@ -298,6 +305,20 @@ describe("statistics that need more than a window", () => {
     expect(numbers({ ...winter, series, anomaly }, intervals.slice(1, 3))).toEqual([3, 3]);
   });
 
+  test("anomalies by calendar day: a value that depends on month and day alone leaves nothing", () => {
+    const values = Array.from({ length: DAYS }, (_, k) => {
+      const { month, day } = civil(on("2001-01-01") + k);
+      return month * day + (k >= 730 ? 1 : 0);
+    });
+    const anomaly = { by: "day", base: { from: 2001, to: 2002 } } as const;
+    const series = [daily("2001-01-01", values)];
+    const range = { ...winter, series, anomaly, statistic: { type: "range" } } as const;
+    expect(numbers(range, intervals.slice(0, 1))).toEqual([0]);
+    expect(numbers({ ...winter, series, anomaly }, intervals.slice(2, 3))).toEqual([1]); // but 29 February 2004
+    const { covariate } = aggregateCovariate({ ...winter, series, anomaly }, intervals.slice(2, 3));
+    expect(covariate.values[0]).toMatchObject({ daysDue: 121, daysCovered: 120 }); // the base has no such day
+  });
+
   test("no series at all is refused; parts that overlap too", () => {
     expect(errorName(() => numbers({ ...winter, series: [] }))).toBe("aggregate.no-series");
     expect(errorName(() => numbers({ ...winter, series: [stations[0], stations[0]] }))).toBe(
@@ -311,6 +332,8 @@ describe("statistics that need more than a window", () => {
     expect(
       baseValues({ ...winter, window: { type: "interval", lag: 0 } }, { from: 2002, to: 2006 }),
     ).toBeUndefined();
+    const lagged = { ...winter, window: { ...winter.window, lag: 2 }, series: [stations[0]] };
+    expect(baseValues(lagged, { from: 2002, to: 2006 })).toEqual(values);
     const before = baseValues({ ...winter, series: [stations[0]] }, { from: 2000, to: 2002 });
     expect(Array.from(before ?? [], Number.isNaN)).toEqual([true, true, false]);
   });
