@@ -93,7 +93,7 @@ export function sniffDialect(
     encoding,
     bom,
     delimiter,
-    decimal: decimalMark(lines.slice(below.skip, below.skip + 500), delimiter),
+    decimal: decimalMark(lines.slice(below.skip), delimiter, header.indexOf(dateColumn ?? "")),
     headerLine: at + 1,
     header,
     ...below,
@@ -147,17 +147,20 @@ function unitsRow(
     : { skip: at + 1, units: undefined };
 }
 
-/** Comma where cells read `2,5` and none reads `2.5`; `1,234` alone is thousands in a comma-separated table. */
-function decimalMark(lines: readonly string[], delimiter: string): "." | "," {
+/**
+ * Comma where more cells read `2,5` than `2.5` (dates apart: `2001.05` is none); `1,234` alone is thousands in a
+ * comma-separated table.
+ */
+function decimalMark(lines: readonly string[], delimiter: string, dateIndex: number): "." | "," {
   let [points, commas, thousands] = [0, 0, 0];
   for (const line of lines)
-    for (const cell of splitLine(line, delimiter)) {
+    for (const [i, cell] of splitLine(line, delimiter).entries()) {
+      if (i === dateIndex) continue;
       if (/^[-+]?\d*\.\d+$/.test(cell)) points++;
       else if (/^[-+]?\d{1,3}(,\d{3})+$/.test(cell)) thousands++;
       else if (/^[-+]?\d*,\d+$/.test(cell)) commas++;
     }
-  if (points > 0) return ".";
-  if (commas > 0) return ",";
+  if (points + commas > 0) return commas > points ? "," : ".";
   return thousands > 0 && delimiter !== "," ? "," : ".";
 }
 

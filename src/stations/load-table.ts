@@ -20,6 +20,7 @@ export async function loadTable(
   wanted: readonly string[],
   dateColumn: string | undefined,
 ): Promise<LoadedTable> {
+  await database.run("DROP TABLE IF EXISTS raw");
   if (file.endsWith(".parquet")) return loadParquet(database, files, file, wanted);
   await checkPacked(files, file);
   const head = readHead(files, file);
@@ -27,7 +28,6 @@ export async function loadTable(
   const positions =
     wanted.length === 0 ? dialect.header.keys() : wanted.map((name) => dialect.header.indexOf(name));
   const columns = [...new Set(positions)].sort((a, b) => a - b);
-  await database.run("DROP TABLE IF EXISTS raw");
   return dialect.encoding === "utf-8"
     ? loadUtf8(database, files, file, dialect, columns)
     : loadDecoded(database, files, file, dialect, columns);

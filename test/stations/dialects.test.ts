@@ -256,6 +256,25 @@ const CASES: readonly Case[] = [
     findings: [],
   },
   {
+    name: "months written 2001.05 beside decimal commas, the first of them far down",
+    files: {
+      "a.csv": `site;day;rain\n${Array.from({ length: 600 }, (_, i) => `Ash;${1901 + Math.floor(i / 12)}.${String((i % 12) + 1).padStart(2, "0")};${i === 598 ? "2,5" : ""}\n`).join("")}Beck;2001.05;3\n`,
+    },
+    options: long({
+      station: { column: "site" },
+      date: { column: "day", format: "yyyy.MM", covers: "month" },
+      missing: [""],
+    }),
+    rows: [
+      ...Array.from({ length: 600 }, (_, i) => {
+        const end = new Date(Date.UTC(1901, i + 1, 0)).toISOString().slice(0, 10);
+        return `Ash ${end.slice(0, 8)}01..${end} ${i === 598 ? 2.5 : Number.NaN}`;
+      }),
+      "Beck 2001-05-01..2001-05-31 3",
+    ],
+    findings: [],
+  },
+  {
     name: "gzip that is cut off",
     files: { "a.csv.gz": gzipSync(PLAIN.repeat(50)).subarray(0, 90) },
     error:

@@ -15,6 +15,11 @@ test("Parquet: typed columns are read as the same series, findings tell the row"
        FROM range(4) t(i)) TO ${literal(path)} (FORMAT parquet)`,
     ),
   );
+  await withDatabase((database) =>
+    database.run(
+      `COPY (SELECT 'Beck' AS site, DATE '2001-02-27' AS day, 5 AS rain) TO ${literal(path.replace("a.p", "b.p"))} (FORMAT parquet)`,
+    ),
+  );
   const { series, findings, rows } = await readRecords(
     [
       {
@@ -31,10 +36,11 @@ test("Parquet: typed columns are read as the same series, findings tell the row"
     effects,
   );
   expect([rows, Array.from(series[0].starts, isoDay)]).toEqual([
-    4,
+    5,
     ["2001-02-27", "2001-02-28", "2001-03-01", "2001-03-02"],
   ]);
   expect(Array.from(series[0].values)).toEqual([0, -1, Number.NaN, 1]);
+  expect([series[1].site, Array.from(series[1].values)]).toEqual(["Beck", [5]]);
   expect(findings.map(({ kind, where }) => [kind, where?.line])).toEqual([
     ["bad-value", 2],
     ["gap", 2],
