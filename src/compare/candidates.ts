@@ -82,7 +82,7 @@ export function buildCandidates(
   const fitScores = (which: readonly number[]) => fitModel(problem.data, designWith(scores, which));
   const kept = Array.from({ length: components.kept }, (_, j) => j);
   if (components.labels.length > 0) add("first component", fitScores([0]), false);
-  if (kept.length <= room) add("components kept", fitScores(kept), false);
+  if (kept.length > 0 && kept.length <= room) add("components kept", fitScores(kept), false);
   const setting: ProcedureSetting = {
     intervals: problem.frame.intervals,
     covariates: scores.covariates.length,

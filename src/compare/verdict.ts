@@ -78,7 +78,8 @@ function animalsSentence(screened: ScreenResult): string {
 
 function agreementSentence(agreed: Agreement): string {
   const pair = agreed.survival.find((one) => one.a === "chosen by animals" && one.b === "components kept");
-  if (pair === undefined) return "No component-based model was asked for, or none fits into these intervals.";
+  if (pair === undefined)
+    return "There is no component-based model to set beside the selection: the rule kept no component, or too many for these intervals.";
   if (Number.isNaN(pair.r))
     return "Selection and components cannot be set side by side: one of them leaves survival the same in every interval.";
   const story =

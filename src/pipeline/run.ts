@@ -2,9 +2,10 @@ import { diagnose } from "../collinearity/diagnose.ts";
 import { type Comparison, compare } from "../compare/compare.ts";
 import { principalComponents } from "../components/components.ts";
 import type { Components } from "../components/result.ts";
+import type { CovariateMatrix } from "../covariates/result.ts";
 import { yearIndex } from "../covariates/time.ts";
 import type { Finding, RawFinding } from "../data/finding.ts";
-import { pickColumns } from "../data/matrix.ts";
+import { type Matrix, pickColumns } from "../data/matrix.ts";
 import type { Effects } from "../effects/effects.ts";
 import { randomStream } from "../math/random.ts";
 import { screen } from "../screen/screen.ts";
@@ -14,6 +15,15 @@ import { type Ingested, ingest } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { judge, stopIfAsked } from "./policy.ts";
 import { candidateColumns, poseScreen } from "./survival-problem.ts";
+
+/** The columns after transform and detrending but in their own units: centre + scale · standardised value. */
+function beforeStandardising({ standard, recipes }: CovariateMatrix): Matrix {
+  const data = standard.data.map((value, at) => {
+    const { centre, scale } = recipes[at % standard.columns];
+    return centre + scale * value;
+  });
+  return { ...standard, data };
+}
 
 /** How far a run goes. Each stage includes those before it. */
 export const STAGES = ["ingest", "aggregate", "diagnose", "reduce", "screen", "compare"] as const;
@@ -56,7 +66,10 @@ export async function runStages(
   const enough = matrix.names.length > 0 && ingested.intervals.length >= 3;
   const diagnosed =
     goes("diagnose") && enough
-      ? diagnose(matrix.standard, matrix.names, spec.collinearity, { time, uncentred: matrix.raw })
+      ? diagnose(matrix.standard, matrix.names, spec.collinearity, {
+          time,
+          uncentred: beforeStandardising(matrix),
+        })
       : undefined;
   judged(diagnosed?.findings ?? []);
 

@@ -1,11 +1,10 @@
-import { bic } from "../survival/criteria.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
 import type { ScreenOptions } from "./options.ts";
 import { type LassoPath, lassoPath, solveNull } from "./path.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
 import { type Refits, refitsOf } from "./refits.ts";
-import { type AdaptiveWeights, adaptiveWeights } from "./weights.ts";
+import { type AdaptiveWeights, adaptiveWeights, ridgeEstimates, weightsFrom } from "./weights.ts";
 import { chooseByYears, type YearsChoice, type YearsSetting } from "./years.ts";
 
 /** What does not change when years are permuted. */
@@ -39,7 +38,12 @@ export function runProcedure(
   const choice = chooseOnPath(path, setting.constantParameters, setting.sampleSize, options, (active) =>
     options.fit === "refit" ? refit(active) : Number.NaN,
   );
-  const candidates = distinctSets(path);
+  // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
+  // candidates, and what is weighed by years may come from either path.
+  const ridge = weights.by === "ridge" ? weights.first : ridgeEstimates(problem, nothing.x);
+  const second =
+    weights.by === "ridge" ? path : lassoPath(problem, weightsFrom(ridge, options.gamma), options);
+  const candidates = distinctSets([...path.steps, ...second.steps]);
   return {
     weights,
     path,
@@ -50,14 +54,9 @@ export function runProcedure(
   };
 }
 
-/** The distinct active sets of a path, in the order in which they appear. */
-export function distinctSets(path: LassoPath): (readonly number[])[] {
+/** The distinct active sets among steps, in the order in which they appear. */
+function distinctSets(steps: LassoPath["steps"]): (readonly number[])[] {
   const sets = new Map<string, readonly number[]>();
-  for (const step of path.steps) sets.set(step.active.join(","), step.active);
+  for (const step of steps) sets.set(step.active.join(","), step.active);
   return [...sets.values()];
-}
-
-/** BIC at a refit, for the small table of candidates. */
-export function refitBic(refit: Refits, active: readonly number[], setting: ProcedureSetting): number {
-  return bic(refit(active), setting.constantParameters + active.length, setting.sampleSize);
 }

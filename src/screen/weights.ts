@@ -35,23 +35,33 @@ export function adaptiveWeights(
   const tolerance = gradientTolerance(problem.data);
   const x0 = start ?? new Float64Array(smooth.dimension);
   const condition = { value: Number.POSITIVE_INFINITY };
-  let solved = proximalNewton(smooth, noPenalty, x0, { tolerance, iterations: 60 });
+  const solved = proximalNewton(smooth, noPenalty, x0, { tolerance, iterations: 60 });
   if (solved.stopped === "optimum") condition.value = conditionAt(smooth, solved.x);
   const trusted = condition.value <= CONDITION_LIMIT;
-  if (!trusted) {
-    const strength = RIDGE * totalReleases(problem.data);
-    solved = proximalNewton(withRidge(smooth, positions, strength), noPenalty, x0, {
-      tolerance,
-      iterations: 500,
-    });
-  }
-  const first = Float64Array.from(positions, (k) => solved.x[k]);
+  const first = trusted ? Float64Array.from(positions, (k) => solved.x[k]) : ridgeEstimates(problem, x0);
   return {
-    weights: first.map((value) => 1 / Math.abs(value) ** gamma),
+    weights: weightsFrom(first, gamma),
     first,
     by: trusted ? "maximum likelihood" : "ridge",
     condition: condition.value,
   };
+}
+
+/** w_k = 1/|β̃_k|^γ. */
+export function weightsFrom(first: Float64Array, gamma: number): Float64Array {
+  return first.map((value) => 1 / Math.abs(value) ** gamma);
+}
+
+/** The K covariate coefficients that minimise −log L / n_releases + 0.005 Σβ². */
+export function ridgeEstimates(problem: ScreenProblem, start: Float64Array): Float64Array {
+  const smooth = cjsLikelihood(problem.data, designWith(problem));
+  const positions = covariatePositions(problem);
+  const strength = RIDGE * totalReleases(problem.data);
+  const solved = proximalNewton(withRidge(smooth, positions, strength), noPenalty, start, {
+    tolerance: gradientTolerance(problem.data),
+    iterations: 500,
+  });
+  return Float64Array.from(positions, (k) => solved.x[k]);
 }
 
 /** f(x) + strength · Σ x_k² over the coordinates given. */

@@ -32,7 +32,7 @@ export interface YearsChoice {
  * residual sum of squares over intervals, so that a term's evidence is its analysis-of-deviance F on the intervals
  * that are left (Skalski 1996), and unexplained variation between years raises the bar for everything.
  *
- * 1. Candidates: the distinct active sets of the lasso path with |S| ≤ ⌊(n − 2)/3⌋.
+ * 1. Candidates: the distinct active sets of the lasso paths (adaptive weights, and ridge weights) with |S| ≤ ⌊(n − 2)/3⌋.
  * 2. Prune: drop the term with the largest p until every p < α = min(.045, .1/K), with
  *    F_k = ν [(D_{S∖k} − D_t)/(D_S − D_t) − 1], ν = r_t − r_S, p_k = P(F_{1,ν} > F_k).
  * 3. Choose the set with the least n log(D_S − D_t) + Σ_{j≤|S|} c_j, c_j = n log[1 + F_{α;1,ν_j}/ν_j], ν_j the degrees
