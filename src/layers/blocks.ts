@@ -14,6 +14,8 @@ export interface BlockPart {
 export interface NeededBlock {
   readonly column: number;
   readonly row: number;
+  /** First and last pixel that is needed, within the block. */
+  readonly span: readonly [number, number];
   readonly parts: readonly BlockPart[];
 }
 
@@ -46,5 +48,19 @@ export function neededBlocks(footprints: readonly Footprint[], image: Image): re
     }
   });
   // In the order they stand in the file's tables, which is that of the file in most.
-  return [...blocks.entries()].sort(([a], [b]) => a - b).map(([, block]) => block);
+  return [...blocks.entries()]
+    .sort(([a], [b]) => a - b)
+    .map(([, block]) => ({ ...block, span: spanOf(block.parts) }));
+}
+
+/** Bounds of all offsets; places that cross the antimeridian may have theirs out of order. */
+function spanOf(parts: readonly BlockPart[]): readonly [number, number] {
+  let first = Number.POSITIVE_INFINITY;
+  let last = 0;
+  for (const { offsets } of parts)
+    for (const offset of offsets) {
+      if (offset < first) first = offset;
+      if (offset > last) last = offset;
+    }
+  return [first, last];
 }

@@ -25,6 +25,11 @@ export interface LayerExtraction {
   readonly filesRead: number;
 }
 
+/** A wanted place with the key it is kept by. */
+interface Keyed extends Wanted {
+  readonly key: string;
+}
+
 /** Footprints and blocks of all wanted places on one grid; stacks share one grid, so it is worked out once. */
 interface Prepared {
   readonly footprints: readonly Footprint[];
@@ -46,7 +51,8 @@ export async function extractLayers(
   const paths = await effects.files.list(options.files);
   if (paths.length === 0) throw noFiles(name, options);
   const sides = await findSideFiles(paths, effects.files);
-  const keys = wanted.map(({ place, use }) => placeKey(place, use));
+  // One hash a place, not one a place and file.
+  const keyed = wanted.map((one) => ({ ...one, key: placeKey(one.place, one.use) }));
   const prepared = new Map<string, Prepared>();
   const read: FileValues[] = [];
   let filesRead = 0;
@@ -64,7 +70,7 @@ export async function extractLayers(
       );
       const key = await fileKey(path, side, options, effects);
       const kept = new Map(await readKept(key, effects));
-      const absent = wanted.filter((_, i) => !isWhole(kept.get(keys[i]), periods));
+      const absent = keyed.filter(({ key: one }) => !isWhole(kept.get(one), periods));
       if (absent.length > 0) {
         filesRead++;
         for (const [place, values] of await readPlaces(
@@ -79,7 +85,7 @@ export async function extractLayers(
           kept.set(place, values);
         await writeKept(key, kept, effects);
       }
-      read.push({ path, periods, places: keys.map((one) => kept.get(one)) });
+      read.push({ path, periods, places: keyed.map((one) => kept.get(one.key)) });
     } finally {
       file.close();
     }
@@ -98,33 +104,31 @@ async function readPlaces(
   file: RandomAccess,
   layer: Layer,
   periods: readonly ImagePeriod[],
-  wanted: readonly Wanted[],
+  wanted: readonly Keyed[],
   options: LayerOptions,
   prepared: Map<string, Prepared>,
   effects: Effects,
 ): Promise<readonly (readonly [string, Kept])[]> {
-  const keys = wanted.map(({ place, use }) => placeKey(place, use));
-  const { footprints, blocks } = prepare(layer, wanted, keys, options, prepared);
+  const { footprints, blocks } = prepare(layer, wanted, options, prepared);
   const bands = periods.map(({ band }) => ({ band, rule: valueRule(layer, band, options) }));
   const { values, shares } = await gather(file, effects.files, layer, bands, blocks, footprints);
-  return wanted.map((_, w) => {
+  return wanted.map(({ key }, w) => {
     const pick = (from: Float64Array) => periods.map((_period, image) => from[image * wanted.length + w]);
     const { outside, pixels } = footprints[w];
-    return [keys[w], { values: pick(values), shares: pick(shares), outside, pixels }] as const;
+    return [key, { values: pick(values), shares: pick(shares), outside, pixels }] as const;
   });
 }
 
 function prepare(
   layer: Layer,
-  wanted: readonly Wanted[],
-  keys: readonly string[],
+  wanted: readonly Keyed[],
   options: LayerOptions,
   prepared: Map<string, Prepared>,
 ): Prepared {
   const { image, grid } = layer;
   const system = [[...layer.keys.numbers], [...layer.keys.texts], layer.wkt, options.system];
   const shape = [grid, image.blockWidth, image.blockHeight];
-  const key = JSON.stringify([shape, system, keys]);
+  const key = JSON.stringify([shape, system, wanted.map((one) => one.key)]);
   const held = prepared.get(key);
   if (held !== undefined) return held;
   const resolved = resolveSystem({

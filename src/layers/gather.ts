@@ -1,10 +1,9 @@
 import type { Files, RandomAccess } from "../effects/effects.ts";
 import type { Footprint } from "./area.ts";
 import type { BlockPart, NeededBlock } from "./blocks.ts";
-import { readBlock, samplesPerPixel } from "./image.ts";
+import { type Pixels, readPixels, samplesPerPixel } from "./image.ts";
 import type { Layer } from "./layer.ts";
 import { type MaskReader, maskReader } from "./mask.ts";
-import type { Samples } from "./samples.ts";
 import { readyFor } from "./unpack.ts";
 import { unpacked, type ValueRule } from "./values.ts";
 
@@ -39,11 +38,12 @@ export async function gather(
     const mask = layer.mask === undefined ? undefined : maskReader(maskFile, layer.mask.image);
     const step = samplesPerPixel(image);
     for (const block of blocks) {
-      let samples: Samples | undefined;
+      let pixels: Pixels | undefined;
       for (let i = 0; i < bands.length; i++) {
         const { band, rule } = bands[i];
-        if (i === 0 || image.planar) samples = readBlock(file, image, block.column, block.row, band);
-        if (samples === undefined) continue;
+        if (i === 0 || image.planar)
+          pixels = readPixels(file, image, block.column, block.row, band, block.span);
+        if (pixels === undefined) continue;
         const shift = image.planar ? 0 : band;
         for (const part of block.parts) {
           const at = i * places + part.place;
@@ -51,7 +51,7 @@ export async function gather(
             mask === undefined
               ? undefined
               : maskOfBlock(mask, block, image.blockWidth, image.blockHeight, band);
-          const added = addUp(samples, step, shift, part, rule, masked, bases[at]);
+          const added = addUp(pixels, step, shift, part, rule, masked, bases[at]);
           bases[at] = added.base;
           sums[at] += added.sum;
           weights[at] += added.weight;
@@ -86,7 +86,7 @@ function maskOfBlock(
  * constant layer gives its constant, a single pixel its value, and large offsets cost no digits.
  */
 function addUp(
-  samples: Samples,
+  { samples, from }: Pixels,
   step: number,
   shift: number,
   { offsets, weights }: BlockPart,
@@ -98,7 +98,7 @@ function addUp(
   let weight = 0;
   let base = known;
   for (let i = 0; i < offsets.length; i++) {
-    const value = unpacked(samples[offsets[i] * step + shift], rule);
+    const value = unpacked(samples[(offsets[i] - from) * step + shift], rule);
     if (Number.isNaN(value) || (masked !== undefined && !masked(offsets[i]))) continue;
     if (Number.isNaN(base)) base = value;
     sum += weights[i] * (value - base);

@@ -27,8 +27,9 @@ const MOST_DIRECTORIES = 2000;
 interface Field {
   readonly type: number;
   readonly count: number;
-  /** Where its bytes stand, in the entry itself or elsewhere. */
+  /** Where its bytes stand, if not in the entry itself. */
   readonly at: number;
+  readonly inEntry: Uint8Array | undefined;
 }
 
 /** One image file directory; values are read when they are asked for. */
@@ -121,13 +122,14 @@ function readDirectory(file: RandomAccess, at: number, big: boolean, little: boo
       ? whole(view.getBigUint64(start + 4, little), file.path)
       : view.getUint32(start + 4, little);
     const slot = start + (big ? 12 : 8);
+    const inEntry = count * size <= inline ? bytes.subarray(slot, slot + count * size) : undefined;
     const place =
-      count * size <= inline
-        ? at + countBytes + slot
+      inEntry !== undefined
+        ? 0
         : big
           ? whole(view.getBigUint64(slot, little), file.path)
           : view.getUint32(slot, little);
-    fields.set(view.getUint16(start, little), { type, count, at: place });
+    fields.set(view.getUint16(start, little), { type, count, at: place, inEntry });
   }
   const end = entries * entryBytes;
   const next = big ? whole(view.getBigUint64(end, little), file.path) : view.getUint32(end, little);
@@ -136,7 +138,7 @@ function readDirectory(file: RandomAccess, at: number, big: boolean, little: boo
 
 function directoryOf(file: RandomAccess, fields: ReadonlyMap<number, Field>, little: boolean): Directory {
   const bytesOf = (tag: number, field: Field) =>
-    readChecked(file, field.at, field.count * TYPE_BYTES[field.type], `tag ${tag}`);
+    field.inEntry ?? readChecked(file, field.at, field.count * TYPE_BYTES[field.type], `tag ${tag}`);
   const numbers = (tag: number) => {
     const field = fields.get(tag);
     return field === undefined ? undefined : numbersOf(bytesOf(tag, field), field, little, file.path);

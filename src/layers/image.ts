@@ -163,9 +163,7 @@ export function readBlock(
   blockRow: number,
   band: number,
 ): Samples | undefined {
-  const plane = image.planar ? band * image.across * image.down : 0;
-  const index = plane + blockRow * image.across + blockColumn;
-  const [offset, count] = [image.offsets[index], image.counts[index]];
+  const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
   if (count === 0) return undefined;
   const rows = blockRows(image, blockRow);
   const row = rowBytes(image);
@@ -182,6 +180,49 @@ export function readBlock(
   const bytes = unpack(packed, image.compression, shape, image.path).subarray(0, shape.least);
   if (image.oneBit) return spreadBits(bytes, image.blockWidth * shape.samples, rows);
   return finish(image, bytes, row, shape.samples);
+}
+
+/** Pixels of a block from pixel `from` on. */
+export interface Pixels {
+  readonly samples: Samples;
+  readonly from: number;
+}
+
+/**
+ * The pixels `first` to `last` (both included, row-major within the block) at least. Uncompressed samples are read
+ * from where they stand, all others with their whole block. The block must be whole in the file either way.
+ */
+export function readPixels(
+  file: RandomAccess,
+  image: Image,
+  blockColumn: number,
+  blockRow: number,
+  band: number,
+  [first, last]: readonly [number, number],
+): Pixels | undefined {
+  if (image.compression !== "none" || image.predictor !== 1 || image.oneBit) {
+    const samples = readBlock(file, image, blockColumn, blockRow, band);
+    return samples === undefined ? undefined : { samples, from: 0 };
+  }
+  const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
+  if (count === 0) return undefined;
+  const least = rowBytes(image) * blockRows(image, blockRow);
+  if (count < least || offset + count > file.size)
+    throw brokenFile(
+      image.path,
+      `a block ${index} of ${count} bytes at ${offset} that should hold ${least}, in a file of ${file.size} bytes`,
+    );
+  const pixel = SAMPLE_BYTES[image.type] * samplesPerPixel(image);
+  const bytes = readChecked(file, offset + first * pixel, (last - first + 1) * pixel, `block ${index}`);
+  // A copy where bytes are turned: the reader may own what it handed out.
+  const own = image.littleEndian === HOST_LITTLE ? bytes : new Uint8Array(bytes);
+  return { samples: finish(image, own, own.length, samplesPerPixel(image)), from: first };
+}
+
+function blockPlace(image: Image, blockColumn: number, blockRow: number, band: number) {
+  const plane = image.planar ? band * image.across * image.down : 0;
+  const index = plane + blockRow * image.across + blockColumn;
+  return { index, offset: image.offsets[index], count: image.counts[index] };
 }
 
 /** Byte order, then the predictor: differences are of values, so the bytes must be in order before they are summed. */

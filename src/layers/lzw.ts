@@ -3,8 +3,8 @@ const END = 257;
 
 // A code's string is a stretch of what has been written already: where it starts and how long it is. One table
 // serves every call, since decoding never yields.
-const startOf = new Int32Array(4096);
-const lengthOf = new Int32Array(4096);
+const startOf = new Int32Array(4097);
+const lengthOf = new Int32Array(4097);
 
 /**
  * TIFF's LZW (TIFF 6.0 §13): codes of 9 to 12 bits, most significant bit first, the width growing one code early.
@@ -12,44 +12,48 @@ const lengthOf = new Int32Array(4096);
  * but its start and length is kept. Returns the bytes written (at most out.length), or −1 if a code is impossible.
  */
 export function unpackLzw(packed: Uint8Array, out: Uint8Array): number {
+  // Three bytes always hold a code of up to 12 bits; the padding lets the last one be read like any other.
+  const bytes = new Uint8Array(packed.length + 3);
+  bytes.set(packed);
+  const bits = packed.length * 8;
+  const size = out.length;
   let written = 0;
   let next = 258;
   let width = 9;
-  let held = 0;
-  let bits = 0;
   let before = -1;
   let beforeLength = 0;
   let at = 0;
-  while (written < out.length) {
-    while (bits < width) {
-      if (at >= packed.length) return written;
-      held = ((held << 8) | packed[at++]) & 0xffffff;
-      bits += 8;
-    }
-    const code = (held >>> (bits - width)) & ((1 << width) - 1);
-    bits -= width;
-    if (code === CLEAR) {
-      next = 258;
-      width = 9;
-      before = -1;
-      continue;
-    }
-    if (code === END) return written;
+  while (written < size) {
+    if (at + width > bits) return written;
+    const byte = at >> 3;
+    const three = (bytes[byte] << 16) | (bytes[byte + 1] << 8) | bytes[byte + 2];
+    const code = (three >> (24 - width - (at & 7))) & ((1 << width) - 1);
+    at += width;
     const here = written;
     let length = 1;
     if (code < 256) {
       out[written++] = code;
+    } else if (code === CLEAR) {
+      next = 258;
+      width = 9;
+      before = -1;
+      continue;
+    } else if (code === END) {
+      return written;
     } else {
-      // The code being defined by this very step is allowed (its string starts with the one before).
-      if (code > next || (code === next && before < 0) || before < 0) return -1;
-      const own = code === next;
-      const from = own ? before : startOf[code];
-      length = own ? beforeLength + 1 : lengthOf[code];
-      const stop = Math.min(written + length, out.length);
-      if (length > 24 && from + length <= written) {
-        out.copyWithin(written, from, from + (stop - written));
+      if (before < 0 || code > next) return -1;
+      // The code being defined by this very step is allowed: its string starts with the one before.
+      let from = before;
+      if (code === next) length = beforeLength + 1;
+      else {
+        from = startOf[code];
+        length = lengthOf[code];
+      }
+      const stop = Math.min(written + length, size);
+      if (length > 32 && from + length <= written) {
+        out.copyWithin(written, from, from + stop - written);
         written = stop;
-      } else for (let source = from; written < stop; ) out[written++] = out[source++];
+      } else while (written < stop) out[written++] = out[from++];
     }
     if (before >= 0 && next < 4096) {
       startOf[next] = before;

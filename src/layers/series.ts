@@ -101,7 +101,8 @@ export function seriesOf(
     const values = Float64Array.from(images, (one) => at(one)?.values[one.image] ?? Number.NaN);
     const shares = Float64Array.from(images, (one) => at(one)?.shares[one.image] ?? 0);
     validShares.push(shares);
-    const least = "validArea" in use ? use.validArea : 0;
+    // Shares are sums of weights in another order than the whole; a wholly valid place must pass a threshold of 1.
+    const least = "validArea" in use ? use.validArea - 1e-9 : 0;
     const low = images.filter((_, i) => shares[i] < least || shares[i] === 0);
     images.forEach((_, i) => {
       if (shares[i] < least) values[i] = Number.NaN;
@@ -112,7 +113,7 @@ export function seriesOf(
       .reduce((worst, one) => ((one?.outside ?? 0) > (worst?.outside ?? 0) ? one : worst), read[0].places[w]);
     if (first !== undefined) found.push(...placeFindings(name, place.name, first, use.by));
     if (low.length > 0 && (first?.outside ?? 0) < 1)
-      found.push(lowFinding(name, place.name, low, images.length, least));
+      found.push(lowFinding(name, place.name, low, images.length, "validArea" in use ? use.validArea : 0));
     return {
       site: place.name,
       variable: name,

@@ -1,4 +1,3 @@
-import { join } from "node:path";
 import { describe, expect, test } from "vitest";
 import { parse } from "yaml";
 import { guessPattern, layerStanza } from "../../src/inspect/layer-stanza.ts";

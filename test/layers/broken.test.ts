@@ -228,7 +228,7 @@ describe("random damage", () => {
       const random = randomStream(1, name, 0);
       const whole = fixture(name);
       let errors = 0;
-      for (let i = 0; i < 60; i++) {
+      for (let i = 0; i < 40; i++) {
         const bytes = random.uniform() < 0.2 ? whole.slice(0, random.below(whole.length)) : whole.slice();
         // Half of the flips go to the first bytes, where the headers stand.
         for (let flips = 0; flips < 3 && bytes.length > 0; flips++)

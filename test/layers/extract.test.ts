@@ -107,6 +107,32 @@ describe("a stack at places", () => {
     expect(filesRead).toBe(4);
   });
 
+  test("a wholly valid place passes a valid area of 1, whatever its edges", async () => {
+    const odd: Where = {
+      type: "area",
+      name: "odd",
+      polygons: [
+        [
+          [
+            [0.13, 0.21],
+            [3.77, 0.4],
+            [3.3, 2.91],
+            [1.1, 2.2],
+            [0.13, 0.21],
+          ],
+        ],
+      ],
+    };
+    const { series, findings } = await extractLayers(
+      "green",
+      { ...OPTIONS, files: ["g_2001_01.tif"] },
+      [{ place: odd, use: { by: "area", validArea: 1 } }],
+      effectsOf(stack),
+    );
+    expect([...series[0].values]).toEqual([10]);
+    expect(findings).toEqual([]);
+  });
+
   test("each block is read once for all places, and each file opened once", async () => {
     const reads: number[] = [];
     const effects = effectsOf(stack);

@@ -38,6 +38,22 @@ describe("examples of EPSG Guidance Note 7-2 (printed to about a centimetre)", (
   });
 });
 
+describe("what users write", () => {
+  test("WKT without a code: a geographic system needs no shift, a projected one agrees with its code", () => {
+    const degrees = `GEOGCS["WGS 84",DATUM["WGS_1984",SPHEROID["WGS 84",6378137,298.257223563]],PRIMEM["Greenwich",0],UNIT["degree",0.0174532925199433]]`;
+    expect(user(degrees)).toMatchObject({ geographic: true, plain: true });
+    const utm = `PROJCS["zone 32",${degrees},PROJECTION["Transverse_Mercator"],PARAMETER["latitude_of_origin",0],PARAMETER["central_meridian",9],PARAMETER["scale_factor",0.9996],PARAMETER["false_easting",500000],PARAMETER["false_northing",0],UNIT["metre",1]]`;
+    const [x, y] = user(utm).fromLonLat(11, 48);
+    const [u, v] = user("EPSG:32632").fromLonLat(11, 48);
+    expect(Math.hypot(x - u, y - v)).toBeLessThan(1e-6);
+    expect(user(utm).metresPerUnit).toBe(1);
+  });
+
+  test("PROJ text without false origins means 0, not NaN", () => {
+    expect(user("+proj=laea +lat_0=50 +lon_0=10 +datum=WGS84 +units=m").fromLonLat(10, 50)).toEqual([0, 0]);
+  });
+});
+
 interface Expected {
   readonly system?: string;
   readonly places: readonly (readonly [number, number, number, number])[];
