@@ -266,16 +266,18 @@ function rangeProblems(spec: Spec): Problem[] {
         ),
       );
   });
-  for (const [name, { valid }] of Object.entries(spec.layers))
-    if (valid !== undefined && valid[0] >= valid[1])
+  const ordered = (path: KeyPath, pair: readonly [number, number] | undefined) => {
+    if (pair !== undefined && pair[0] >= pair[1])
       problems.push(
-        conflict(
-          ["layers", name, "valid"],
-          "a least value below the greatest",
-          `[${valid[0]}, ${valid[1]}]`,
-          "exchange the two",
-        ),
+        conflict(path, "a least value below the greatest", `[${pair[0]}, ${pair[1]}]`, "exchange the two"),
       );
+  };
+  for (const [name, { valid }] of Object.entries(spec.layers)) ordered(["layers", name, "valid"], valid);
+  spec.records.forEach((record, i) => {
+    if (record.layout === "long")
+      for (const [name, { limits }] of Object.entries(record.series))
+        ordered(["records", i, "series", name, "limits"], limits);
+  });
   return problems;
 }
 

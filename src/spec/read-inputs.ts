@@ -1,10 +1,10 @@
 import type { ImageCover, LayerOptions } from "../layers/options.ts";
 import type { RecordOptions } from "../stations/options.ts";
-import type { CaptureOptions } from "../study/options.ts";
+import type { CaptureOptions, ReadyMadeOptions } from "../study/options.ts";
 import { given, mapValues } from "./given.ts";
 import type { KeyPath } from "./path.ts";
 import type { RawPipeline } from "./schema.ts";
-import type { ReadyMadeOptions, StudyOptions } from "./spec.ts";
+import type { StudyOptions } from "./spec.ts";
 import { readMetres } from "./windows.ts";
 import type { YamlText } from "./yaml.ts";
 
@@ -30,7 +30,11 @@ export function readRecords(
   yaml: YamlText,
   path: KeyPath,
 ): RecordOptions {
-  return { ...raw, missing: missingTexts(raw.missing, yaml, [...path, "missing"]) };
+  const missing = missingTexts(raw.missing, yaml, [...path, "missing"]);
+  const date = given(raw.date);
+  return raw.layout === "wide"
+    ? { ...raw, date, missing }
+    : { ...raw, date, missing, series: mapValues(raw.series, (one) => given(one)) };
 }
 
 function readCover(text: string): ImageCover {

@@ -8,6 +8,7 @@ import {
   named,
   number,
   oneOf,
+  pair,
   someOf,
   stated,
   text,
@@ -38,6 +39,11 @@ const date = keys(
   "the column of dates",
   {
     column: column("the date", "day"),
+    with: someOf(
+      "further columns of a date that is split, joined to the first by blanks",
+      text("the name of a column", "month"),
+      ["month", "day"],
+    ).optional(),
     format: stated(
       text("the pattern of dates, with yyyy, MM, dd, or D for the day of the year", "dd.MM.yyyy"),
       "yyyy-MM-dd",
@@ -93,6 +99,20 @@ const longRecords = keys("records with a row per station and date", {
         kind: valueKind(),
         day: dayOffset,
         scale: scale(),
+        trace: keys("a text that stands for an amount too small to measure", {
+          text: text("the text", "T"),
+          value: number("the value it is given, as if written in its place", 0.1),
+        }).optional(),
+        quality: keys("a column of quality flags", {
+          column: column("the flags", "quality"),
+          pass: someOf("the flags whose values pass", text("a flag", "A"), ["A"]),
+        }).optional(),
+        limits: pair(
+          "the least and greatest possible value, in the column's unit",
+          "the least possible value",
+          "the greatest possible value",
+          [-60, 60],
+        ).optional(),
       },
       { column: "precip", unit: "mm", kind: "total" },
     ),
@@ -154,13 +174,17 @@ export const layer = keys("a stack of images", {
   scale: number("what raw values are multiplied by, instead of what the file says", 0.0001).optional(),
   offset: number("what is added after the scale, instead of what the file says", 0).optional(),
   fill: number("the raw value that means missing, beside the file's own", -3000).optional(),
-  valid: z
-    .tuple([number("the least valid value", -0.2), number("the greatest valid value", 1)])
-    .meta({
-      description: "the least and greatest valid value, after scale and offset",
-      examples: [[-0.2, 1]],
-    })
-    .optional(),
+  valid: pair(
+    "the least and greatest valid value, after scale and offset",
+    "the least valid value",
+    "the greatest valid value",
+    [-0.2, 1],
+  ).optional(),
+  band: number("which band of files with several, from 1", 1, {
+    min: 1,
+    max: 10_000,
+    whole: true,
+  }).optional(),
   unit: unit("the layer"),
   kind: valueKind(),
   system: text("the coordinate system, where the file does not say it", "EPSG:32632").optional(),

@@ -54,6 +54,13 @@ const lost = () =>
     values: someOf("the values that mean lost", text("a value that means lost", "died"), ["died"]),
   }).optional();
 
+const lengths = () =>
+  someOf(
+    "the lengths of the intervals in years where occasions have no dates; 1 each if left out",
+    number("a length in years", 1, { above: 0, max: 100 }),
+    [1, 1, 2],
+  ).optional();
+
 const captureFile = () => inputPath("the CSV file of captures", "captures.csv");
 
 export const captures = oneOf("the captures, by one of three layouts", [
@@ -76,6 +83,7 @@ export const captures = oneOf("the captures, by one of three layouts", [
       text("the name of a column", "2001"),
     ).optional(),
     strata: strata(),
+    lengths: lengths(),
     lost: lost(),
   }),
   keys("captures as counts, a row per release occasion", {
@@ -88,6 +96,7 @@ export const captures = oneOf("the captures, by one of three layouts", [
       text("the name of a column", "2002"),
     ).optional(),
     strata: strata(),
+    lengths: lengths(),
   }),
 ]);
 

@@ -6,7 +6,7 @@ import type { FindingKind, Severity } from "../data/finding.ts";
 import type { LayerOptions, PlaceUse } from "../layers/options.ts";
 import type { ScreenOptions } from "../screen/options.ts";
 import type { DuplicateRule, RecordOptions, StationListOptions } from "../stations/options.ts";
-import type { CaptureOptions, OccasionOptions, PlaceOptions } from "../study/options.ts";
+import type { CaptureOptions, OccasionOptions, PlaceOptions, ReadyMadeOptions } from "../study/options.ts";
 import type { RecaptureChoice, SurvivalOptions } from "../survival/options.ts";
 
 export interface StudyOptions {
@@ -15,15 +15,6 @@ export interface StudyOptions {
   readonly sensitive: boolean;
   /** To how many kilometres sensitive places are rounded. */
   readonly coarsenKm: number;
-}
-
-/** A CSV with a row per interval and a column per covariate. */
-export interface ReadyMadeOptions {
-  readonly file: string;
-  /** Column with the interval's name. */
-  readonly interval: string;
-  /** Column → its unit. */
-  readonly columns: Readonly<Record<string, { readonly unit: string }>>;
 }
 
 interface CovariateName {

@@ -109,3 +109,8 @@ export function allStated<const S extends z.ZodRawShape>(description: string, sh
   const schema = keys(description, shape);
   return schema.prefault({} as z.input<typeof schema>);
 }
+
+/** Two numbers, e.g. least and greatest. */
+export function pair(description: string, first: string, second: string, example: readonly [number, number]) {
+  return tell(z.tuple([number(first, example[0]), number(second, example[1])]), description, example);
+}

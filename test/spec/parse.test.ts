@@ -234,6 +234,31 @@ describe("good pipelines", () => {
     expect(parsePipeline(edited("by: area", text), "p.yaml").covariates[2]).toMatchObject({ use });
   });
 
+  test("split dates, traces, quality flags, limits and bands", () => {
+    const text = edited(
+      "date: { column: day }",
+      "date: { column: year, with: [month, day], format: yyyy M d }",
+    )
+      .replace(
+        "kind: total }",
+        "kind: total, trace: { text: T, value: 0.1 }, quality: { column: q, pass: [A] }, limits: [0, 500] }",
+      )
+      .replace("covers: month", "covers: month\n    band: 2");
+    const spec = parsePipeline(text, "p.yaml");
+    expect(spec.records[0].date).toEqual({
+      column: "year",
+      with: ["month", "day"],
+      format: "yyyy M d",
+      covers: "day",
+    });
+    expect(spec.records[0]).toMatchObject({
+      series: {
+        rain: { trace: { text: "T", value: 0.1 }, quality: { column: "q", pass: ["A"] }, limits: [0, 500] },
+      },
+    });
+    expect(spec.layers.snow.band).toBe(2);
+  });
+
   test("images of 16 days", () => {
     expect(parsePipeline(edited("covers: month", "covers: 16 days"), "p.yaml").layers.snow.covers).toEqual({
       days: 16,

@@ -1,4 +1,4 @@
-import { readFileSync } from "node:fs";
+import { readdirSync, readFileSync } from "node:fs";
 import { Ajv } from "ajv";
 import { describe, expect, test } from "vitest";
 import { parse } from "yaml";
@@ -52,7 +52,13 @@ test("a default that is told is the default that holds", () => {
 
 describe("an independent validator agrees with the code", () => {
   test("good pipelines pass", () => {
-    for (const text of [GOOD, readFileSync(new URL("vocabulary.yaml", import.meta.url), "utf8")]) {
+    const folder = new URL("../../pipelines/", import.meta.url);
+    const shipped = readdirSync(folder).filter((name) => name.endsWith(".yaml"));
+    const files = [
+      new URL("vocabulary.yaml", import.meta.url),
+      ...shipped.map((name) => new URL(name, folder)),
+    ];
+    for (const text of [GOOD, ...files.map((file) => readFileSync(file, "utf8"))]) {
       validate(parse(text));
       expect(validate.errors ?? []).toEqual([]);
     }
