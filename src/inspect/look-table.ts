@@ -8,7 +8,7 @@ import type { RecordOptions, SeriesColumn } from "../stations/options.ts";
 import { readRecords } from "../stations/read-records.ts";
 import { type ColumnFacts, columnFacts } from "./column-facts.ts";
 import { guessRoles, guessValue, type Role, type TableKind } from "./guess-roles.ts";
-import { stanzaFor } from "./stanza.ts";
+import { stanzaFor, stem } from "./stanza.ts";
 
 export interface ColumnLook extends ColumnFacts {
   readonly role: Role;
@@ -106,7 +106,7 @@ function recordsFor(
   return {
     layout: "long",
     ...shared,
-    station: station === undefined ? { always: path } : { column: station.name },
+    station: station === undefined ? { always: stem(path) } : { column: station.name },
     series,
   };
 }

@@ -175,6 +175,6 @@ function stationsStanza(input: StanzaInput): string[] {
 }
 
 /** The file's name without folder and endings. */
-function stem(path: string): string {
+export function stem(path: string): string {
   return path.slice(path.lastIndexOf("/") + 1).replace(/(\.[A-Za-z]+)+$/, "");
 }

@@ -254,7 +254,7 @@ function duplicateFinding(
   refs: readonly RefRun[],
 ): DraftFinding {
   const subject = `${variable} at ${rows.site}`;
-  const times = `${countText(tally.count, "period")} of ${subject} stand in more than one row`;
+  const times = `${countText(tally.count, "period")} of ${subject} ${tally.count === 1 ? "stands" : "stand"} in more than one row`;
   const shared = {
     subject,
     at: locate(rows.rows[tally.firstAt], refs),

@@ -62,7 +62,7 @@ describe("rows that repeat a station and day", () => {
       "duplicate | rain at Ash | a.csv:6 | 1 | 2001-01-03: 3 and 4",
     ]);
     expect(findings[1].message).toBe(
-      "1 period of rain at Ash stand in more than one row with contradicting values; the first value stands.",
+      "1 period of rain at Ash stands in more than one row with contradicting values; the first value stands.",
     );
   });
 
