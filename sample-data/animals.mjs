@@ -12,11 +12,17 @@ export function visits(random) {
   });
 }
 
-/** Chance of being caught again at each occasion after the first, from the log of the effort. */
+/** Centred, divided by the sample standard deviation (n − 1). */
+export function standardised(values) {
+  const mean = values.reduce((sum, value) => sum + value, 0) / values.length;
+  const sd = Math.sqrt(values.reduce((sum, value) => sum + (value - mean) ** 2, 0) / (values.length - 1));
+  return values.map((value) => (value - mean) / sd);
+}
+
+/** Chance of being caught again at each occasion after the first, by the effort. */
 export function recapture(occasions, effects) {
-  const logs = occasions.slice(1).map(({ netHours }) => Math.log(netHours));
-  const centre = logs.reduce((sum, value) => sum + value, 0) / logs.length;
-  return logs.map((value) => logistic(effects.intercept + effects.logEffort * (value - centre)));
+  const efforts = standardised(occasions.slice(1).map(({ netHours }) => netHours));
+  return efforts.map((effort) => logistic(effects.intercept + effects.effortPerSd * effort));
 }
 
 /** Apparent annual survival per interval for animals ringed as adults and as young. */
