@@ -51,13 +51,17 @@ async function evidence(seed, folder) {
     effort: Float64Array.from(standardised(occasions.slice(1).map((one) => one.effort))),
   };
   const recapture = recapturePart(frame, "effort");
-  const fit = (survival) => fitModel(data, designOf(frame, survival, recapture));
+  const fitted = (survival) => fitModel(data, designOf(frame, survival, recapture));
   const drivers = ["winter rain", "spring green"].map((name) => ({
     name,
     values: Float64Array.from(truth, (row) => row[`${name} standardised`]),
   }));
-  const both = fit(covariateSurvival(frame, drivers));
-  const { f } = analysisOfDeviance(fit(covariateSurvival(frame, [])), both, fit(intervalSurvival(frame)));
+  const both = fitted(covariateSurvival(frame, drivers));
+  const { f } = analysisOfDeviance(
+    fitted(covariateSurvival(frame, [])),
+    both,
+    fitted(intervalSurvival(frame)),
+  );
   const effects = drivers.map(({ name }) => both.estimates[both.names.indexOf(name)]);
   return { seed, f, effects };
 }
