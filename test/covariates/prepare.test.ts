@@ -54,6 +54,13 @@ describe("standardise", () => {
     expect(matrix.standard.data[0]).toBeCloseTo((51 - centre) / sd, 12);
   });
 
+  test("base: the base years are transformed as the column is", () => {
+    const standardise = { type: "base", from: 1912, to: 1941 } as const;
+    const logs = NH.slice(0, 30).map(Math.log);
+    const { matrix } = prepare([51, 52, 53], { standardise, transform: { rain: "log" } }, NH.slice(0, 30));
+    expect(matrix.recipes[0].centre).toBeCloseTo(logs.reduce((a, b) => a + b) / 30, 12);
+  });
+
   test("base: refused with 19 complete years, without base years, and beside detrending", () => {
     const standardise = { type: "base", from: 1912, to: 1941 } as const;
     const short = [...NH.slice(0, 19), ...new Array(11).fill(NaNs)];
