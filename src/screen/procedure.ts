@@ -1,3 +1,4 @@
+import { mean } from "../math/quantile.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
 import type { ScreenOptions } from "./options.ts";
@@ -49,7 +50,7 @@ export function runProcedure(
     path,
     choice,
     byAnimals: path.steps[choice.index].active,
-    byYears: chooseByYears(candidates, refit, setting),
+    byYears: chooseByYears(candidates, refit, setting, correlationOf(problem)),
     refit,
   };
 }
@@ -59,4 +60,19 @@ function distinctSets(steps: LassoPath["steps"]): (readonly number[])[] {
   const sets = new Map<string, readonly number[]>();
   for (const step of steps) sets.set(step.active.join(","), step.active);
   return [...sets.values()];
+}
+
+/** Pearson correlation of two covariates over the intervals. */
+function correlationOf({ covariates }: ScreenProblem): (a: number, b: number) => number {
+  return (a, b) => {
+    const [x, y] = [covariates[a].values, covariates[b].values];
+    const [mx, my] = [mean(x), mean(y)];
+    let [xy, xx, yy] = [0, 0, 0];
+    for (let t = 0; t < x.length; t++) {
+      xy += (x[t] - mx) * (y[t] - my);
+      xx += (x[t] - mx) ** 2;
+      yy += (y[t] - my) ** 2;
+    }
+    return xy / Math.sqrt(xx * yy);
+  };
 }
