@@ -64,3 +64,8 @@ function raised(power: number): string {
 function grouped(text: string): string {
   return text.length < 5 || text.includes(".") ? text : text.replace(/\B(?=(\d{3})+$)/g, "\u202F");
 }
+
+/** A sentence begins with a capital. */
+export function sentence(text: string): string {
+  return text.slice(0, 1).toUpperCase() + text.slice(1);
+}

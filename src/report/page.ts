@@ -40,7 +40,7 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
     survivalSection(drawn),
     comparisonSection(input, cast),
     agreementSection(input, cast, drawn),
-    findingsSection(input, cast),
+    findingsSection(input),
     cautionsSection(input),
     methodsSection(input),
     tablesSection(input),

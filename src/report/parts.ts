@@ -44,7 +44,7 @@ export function figureBlock(figures: readonly Figure[], name: string): Html | un
       "<svg ",
       `<svg style="max-width:${width}px;min-width:${Math.round(Math.min(width, Math.max(520, 0.74 * width)))}px" `,
     );
-  return html`<figure id="figure-${name}"><div class="scroll" tabindex="0" role="group" aria-label="${figure.title}">${markup(sized)}</div><figcaption><b>${figure.title}</b> ${figure.caption}</figcaption></figure>`;
+  return html`<figure id="figure-${name}"${width <= 760 && html` class="narrow"`}><div class="scroll" tabindex="0" role="group" aria-label="${figure.title}">${markup(sized)}</div><figcaption><b>${figure.title}</b> ${figure.caption}</figcaption></figure>`;
 }
 
 export interface Head {

@@ -67,7 +67,7 @@ for (const table of all("main table")) {
     button.textContent = "Copied";
     setTimeout(() => { button.textContent = "Copy as CSV"; }, 1600);
   });
-  table.closest(".scroll").before(button);
+  table.closest(".scroll").after(button);
 }
 
 const groups = all(".findings > details");

@@ -8,6 +8,7 @@ export const STYLE = `
 :root{color-scheme:light dark;${variables("light")}}
 @media screen and (prefers-color-scheme:dark){:root{${variables("dark")}}}
 *{box-sizing:border-box}
+[hidden]{display:none!important}
 html{scroll-padding-top:1rem;-webkit-text-size-adjust:100%}
 body{margin:0;background:var(--page);color:var(--ink);font:16px/1.55 ${SANS};font-variant-numeric:tabular-nums}
 a{color:var(--mark)}
@@ -37,7 +38,7 @@ nav{position:sticky;top:1.2rem;align-self:start;border-left:2px solid var(--rule
 nav li{position:relative}nav a{padding:.28rem 0 .28rem 1.1rem}
 nav li::before{content:"";position:absolute;left:-2px;top:.95rem;width:.7rem;border-top:2px solid var(--rule)}
 nav li:has(.here)::before,nav li:hover::before{border-color:var(--mark)}}
-.headline{font-size:clamp(1.25rem,2.6vw,1.72rem);line-height:1.32;max-width:46ch;margin:.2rem 0 1.4rem;text-wrap:pretty}
+.headline{font-size:clamp(1.25rem,2.6vw,1.72rem);line-height:1.32;max-width:54ch;margin:.2rem 0 1.6rem;text-wrap:pretty}
 .grade{display:flex;flex-wrap:wrap;align-items:baseline;gap:.3rem 1rem;margin:0 0 1.1rem;padding:0;max-width:none}
 .grade span{color:var(--muted)}
 .grade b{font-weight:600;background:var(--mark);color:var(--panel);padding:.1rem .7rem .16rem;border-radius:2px}
@@ -50,15 +51,19 @@ figure .scroll{padding:0 1.1rem;overflow-x:auto;overflow-y:hidden}
 figure svg{display:block;height:auto;width:100%;margin:0 auto 0 0}
 figcaption{padding:.8rem 1.1rem 0;max-width:78ch;color:var(--muted)}
 figcaption b{display:block;color:var(--ink);font-family:${SERIF};font-size:1.08rem;font-weight:600}
+@media (min-width:1180px){figure.narrow{display:grid;grid-template-columns:minmax(0,max-content) minmax(15rem,1fr);align-items:start}figure.narrow figcaption{padding:.6rem 1.4rem 0 .4rem}}
 .grid{margin:1rem 0 1.6rem}
-.scroll{overflow-x:auto;overflow-y:hidden;max-width:100%}
-table{border-collapse:collapse;background:var(--panel);font-size:.92rem;line-height:1.4}
-caption{text-align:left;font-family:${SERIF};font-weight:600;font-size:1.08rem;padding:0 0 .5rem}
-th,td{text-align:left;vertical-align:top;padding:.38rem .8rem;border-bottom:1px solid var(--rule)}
+.scroll{overflow-x:auto;overflow-y:hidden;max-width:100%;background:linear-gradient(90deg,var(--panel) 30%,transparent) left/3rem 100% no-repeat local,linear-gradient(270deg,var(--panel) 30%,transparent) right/3rem 100% no-repeat local,linear-gradient(90deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) left/.8rem 100% no-repeat,linear-gradient(270deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) right/.8rem 100% no-repeat}
+.scroll{background-color:var(--panel)}.grid .scroll{width:fit-content}
+table{border-collapse:collapse;font-size:.9rem;line-height:1.4}
+caption{text-align:left;background:var(--page);font-family:${SERIF};font-weight:600;font-size:1.08rem;padding:0 0 .5rem}
+th,td{text-align:left;vertical-align:top;padding:.36rem .6rem;border-bottom:1px solid var(--rule)}
 thead th{font-weight:600;border-bottom:2px solid var(--rule);vertical-align:bottom;background:var(--wash)}
 thead small{display:block;font-weight:400;color:var(--muted)}
 .n{text-align:right;white-space:nowrap}
-td.w,th.w{min-width:13rem}
+th.n{white-space:normal;min-width:5rem}
+td.w,th.w{min-width:11rem}
+.n small{white-space:normal;display:inline-block;max-width:6rem;line-height:1.25}
 td small{color:var(--muted)}
 tr.best td{background:var(--wash)}
 .cov{white-space:nowrap;border-radius:2px}
@@ -72,15 +77,18 @@ summary small{font-weight:400;color:var(--muted);margin-left:.5rem}
 details>.in{padding:0 1rem 1rem}
 pre{overflow-x:auto;margin:0;font:13px/1.5 ui-monospace,"SF Mono",Menlo,Consolas,"Liberation Mono",monospace;white-space:pre-wrap;overflow-wrap:anywhere}
 code{font:.9em ui-monospace,"SF Mono",Menlo,Consolas,"Liberation Mono",monospace;overflow-wrap:anywhere}
+.found{list-style:none;padding:0;max-width:none;margin:0}.found li{display:grid;grid-template-columns:minmax(0,15rem) minmax(0,1fr);gap:0 1.6rem;border-top:1px solid var(--rule);padding:.6rem 0}.found p{margin:0}.found .do{color:var(--muted)}
+@media (max-width:720px){.found li{grid-template-columns:1fr;gap:.3rem}}
 .severity{font-weight:600}.severity.stop{color:var(--less)}
 button,select,input{font:inherit;color:inherit}
 button,select{background:var(--panel);border:1px solid var(--muted);border-radius:2px;padding:.2rem .7rem;cursor:pointer}
-button.copy{font-size:.85rem;margin:.1rem 0 .6rem}
+button.copy{font-size:.82rem;margin:.5rem 0 0;border-color:var(--rule);color:var(--muted)}button.copy:hover,button.copy:focus-visible{color:var(--ink);border-color:var(--muted)}
 .tools{display:flex;flex-wrap:wrap;gap:.6rem 1rem;align-items:center;margin:.8rem 0}
 .lit [data-covariate]{opacity:.22;transition:opacity .12s}
 .lit [data-covariate].on{opacity:1}
 .lit tr[data-covariate],.lit .cov{opacity:.55}.lit tr.on,.lit .cov.on{opacity:1}
 .pin{position:fixed;right:1rem;bottom:1rem;background:var(--panel);border:2px solid var(--mark);border-radius:3px;padding:.5rem .8rem;display:flex;gap:.8rem;align-items:center;z-index:4;max-width:calc(100vw - 2rem)}
+.walk{background:var(--panel);border:1px solid var(--rule);border-radius:3px;padding:.2rem 1.1rem .6rem;margin:1.6rem 0 2rem}.walk h3{margin-top:.8rem}
 .walk input{width:min(100%,44rem);accent-color:var(--mark);display:block}
 .walk output{display:block;min-height:3.2em}
 @media (prefers-reduced-motion:reduce){*{transition:none!important}}

@@ -83,7 +83,7 @@ export async function effects({ comparison }: ReportInput, cast: Cast): Promise<
     name: "effects",
     title,
     caption:
-      "Effect of each covariate on logit apparent annual survival, per standard deviation: the lasso at its chosen penalty, the refit of what it chose without penalty , and the kept components carried back to the covariates. Where a way gives a covariate no effect it has no mark.",
+      "Effect of each covariate on logit apparent annual survival, per standard deviation: the lasso at its chosen penalty, the refit of what it chose without penalty, and the kept components carried back to the covariates. Where a way gives a covariate no effect it has no mark.",
     svg,
   };
 }

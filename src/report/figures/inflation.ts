@@ -51,7 +51,7 @@ export async function inflation(input: ReportInput, cast: Cast): Promise<Figure 
   } as const;
   const description = { field: "mark" } as const;
   const svg = await chart("inflation", title, says, {
-    width: 560,
+    width: 500,
     height: { step: rows.length > 40 ? 14 : 22 },
     data: { values: data },
     layer: [
@@ -78,6 +78,18 @@ export async function inflation(input: ReportInput, cast: Cast): Promise<Figure 
           shape: { field: "shape", type: "nominal", scale: null },
           description,
         },
+      },
+      {
+        mark: {
+          type: "text",
+          align: "left",
+          dx: 9,
+          fontSize: 11,
+          color: ink("panel"),
+          stroke: ink("panel"),
+          strokeWidth: 4,
+        },
+        encoding: { y, x, text: { field: "text" }, description },
       },
       {
         mark: { type: "text", align: "left", dx: 9, fontSize: 11, color: ink("ink") },

@@ -18,7 +18,7 @@ export function ribbon(input: ReportInput, cast: Cast): Figure | undefined {
   if (input.intervals.length === 0) return undefined;
   const axis = timeAxis(input, LEFT, WIDTH - 14);
   const rows = rowsOf(input);
-  const top = input.caught.length > 0 ? CATCH + 26 : 26;
+  const top = input.caught.length > 0 ? CATCH + 6 : 4;
   const bandY = top;
   const rowsY = bandY + 34;
   const bottom = rowsY + rows.length * ROW + 6;

@@ -1,6 +1,6 @@
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
-import { percent } from "../numbers.ts";
+import { percent, sentence } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { chart } from "../vega.ts";
 
@@ -70,7 +70,7 @@ export async function variance({ components }: ReportInput): Promise<Figure | un
   return {
     name: "component-variance",
     title,
-    caption: `Bars: the share of the covariates' variance that each component carries; solid ones are kept. Dashed: ${chance === undefined ? "the shares of a stick broken at random" : "what independent columns give by chance (parallel analysis)"}. ${components.keptBecause}.`,
+    caption: `Bars: the share of the covariates' variance that each component carries; solid ones are kept. Dashed: ${chance === undefined ? "the shares of a stick broken at random" : "what independent columns give by chance (parallel analysis)"}. ${sentence(components.keptBecause)}.`,
     svg,
   };
 }

@@ -13,9 +13,11 @@ export function storySection(input: ReportInput, cast: Cast, figures: readonly F
   if (diagnosis === undefined) return { ...head, body: html`<p>A diagnosis of collinearity ${ABSENT}</p>` };
   const groups = diagnosis.clusters.filter((one) => one.members.length > 1);
   const { indices, names, proportions } = diagnosis.condition;
-  const rows = indices.map((index, i) => {
+  const rows = indices.flatMap((index, i) => {
     const involved = names.filter((_, k) => proportions.data[i * proportions.columns + k] > 0.5);
     const marked = index > warn.condition && involved.length >= 2;
+    // where there are many, those that say nothing are left to the tables
+    if (indices.length > 16 && index <= warn.condition && involved.length < 2) return [];
     return {
       best: marked,
       cells: [
@@ -32,7 +34,7 @@ export function storySection(input: ReportInput, cast: Cast, figures: readonly F
 ${groups.length > 0 && html`<ul>${groups.map((one) => html`<li>${covariateList(cast, one.members)}; closest to all the others: ${covariateName(cast, one.closest)}</li>`)}</ul>`}
 ${diagnosis.allDepend ? html`<p class="note">There are as many covariates as intervals, or more, so every covariate is an exact sum of the others and all inflation is infinite.</p>` : diagnosis.dependencies.length > 0 && html`<p class="note">Exact dependencies:</p><ul>${diagnosis.dependencies.map((one) => html`<li>${one.relation ?? covariateList(cast, one.names)}</li>`)}</ul>`}
 ${figureBlock(figures, "correlation")}${figureBlock(figures, "inflation")}
-${grid(cast, "Condition indices", [{ text: "dimension", look: "n" }, { text: "condition index", look: "n" }, { text: "more than half the variance of", look: "w" }, { text: "above the limit" }], rows)}
+${grid(cast, "Condition indices", [{ text: "dimension", look: "n" }, { text: "condition index", look: "n" }, { text: "more than half the variance of", look: "w" }, { text: "warning" }], rows)}
 <p>Condition indices are those of the columns scaled to unit length, with the intercept; above ${brief(warn.condition)} with two or more proportions above 0.5 is the usual warning. The condition number of the correlation matrix, which is another thing, is ${show(diagnosis.correlationCondition)}.</p>
 ${diagnosis.pruning.length > 0 && html`<h3>Pruning</h3><ol>${diagnosis.pruning.map((one) => html`<li>${covariateName(cast, one.dropped)} (inflation ${show(one.inflation)}): ${one.reason}</li>`)}</ol><p>Left after pruning: ${covariateList(cast, diagnosis.kept)}.</p>`}`,
   };

@@ -1,10 +1,9 @@
 import type { Finding, FindingKind, Severity } from "../../data/finding.ts";
 import { placeText } from "../../errors.ts";
-import type { Cast } from "../cast.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
-import { counted, whole } from "../numbers.ts";
-import { grid, type Section } from "../parts.ts";
+import { counted, sentence, whole } from "../numbers.ts";
+import type { Section } from "../parts.ts";
 
 /** Findings of one kind that go onto the page; the table in the files holds them all. */
 const MOST = 100;
@@ -54,7 +53,7 @@ const SEVERITIES: Readonly<Record<Severity, string>> = {
   accept: "accepted",
 };
 
-export function findingsSection(input: ReportInput, cast: Cast): Section {
+export function findingsSection(input: ReportInput): Section {
   const head = { id: "findings", title: "Findings" };
   if (input.findings.length === 0)
     return { ...head, body: html`<p>Nothing was found that a person should know.</p>` };
@@ -62,38 +61,21 @@ export function findingsSection(input: ReportInput, cast: Cast): Section {
   for (const one of input.findings) kinds.set(one.kind, [...(kinds.get(one.kind) ?? []), one]);
   return {
     ...head,
-    body: html`<p>${counted(input.findings.length, "thing")} to know about the data and the models, in ${counted(kinds.size, "kind")}. Each says where it was found and what can be done.</p><div class="findings">${[...kinds].map(([kind, found]) => group(cast, kind, found))}</div>`,
+    body: html`<p>${counted(input.findings.length, "thing")} to know about the data and the models, in ${counted(kinds.size, "kind")}. Each says where it was found and what can be done.</p><div class="findings">${[...kinds].map(([kind, found]) => group(kind, found))}</div>`,
   };
 }
 
-function group(cast: Cast, kind: FindingKind, found: readonly Finding[]): Html {
+function group(kind: FindingKind, found: readonly Finding[]): Html {
   const shown = found.slice(0, MOST);
   const words = WORDS[kind] ?? kind.replace(/-/g, " ");
   const worst: Severity =
     (["stop", "warn", "accept"] as const).find((one) => found.some((finding) => finding.severity === one)) ??
     "accept";
-  return html`<details data-kind="${kind}"${found.length <= 6 && html` open`}><summary>${words}<small>${whole(found.length)}, ${SEVERITIES[worst]}</small></summary><div class="in">${grid(
-    cast,
-    words,
-    [
-      { text: "about", look: "w" },
-      { text: "what was found", look: "w" },
-      { text: "where", look: "w" },
-      { text: "value" },
-      { text: "how many", look: "n" },
-      { text: "what to do", look: "w" },
-      { text: "policy" },
-    ],
-    shown.map((one) => ({
-      cells: [
-        one.subject,
-        one.message,
-        one.where === undefined ? "–" : html`<code>${placeText(one.where)}</code>`,
-        one.value ?? "–",
-        whole(one.count ?? 1),
-        one.remedy,
-        html`<span class="severity ${one.severity}">${SEVERITIES[one.severity]}</span>`,
-      ],
-    })),
-  )}${shown.length < found.length && html`<p>The first ${shown.length} of ${whole(found.length)}; the table of findings in the files holds them all.</p>`}</div></details>`;
+  return html`<details data-kind="${kind}"${found.length <= 6 && html` open`}><summary>${words}<small>${whole(found.length)}, ${SEVERITIES[worst]}</small></summary><div class="in"><ul class="found">${shown.map(item)}</ul>${shown.length < found.length && html`<p>The first ${shown.length} of ${whole(found.length)}; the table of findings in the files holds them all.</p>`}</div></details>`;
+}
+
+function item(one: Finding): Html {
+  const value = one.value === undefined ? undefined : html`; value <code>${one.value}</code>`;
+  const times = one.count === undefined || one.count === 1 ? undefined : `; ${whole(one.count)} times`;
+  return html`<li><div><p><b>${one.subject}</b></p>${one.where !== undefined && html`<p><code>${placeText(one.where)}</code></p>`}</div><div><p>${one.message}</p><p class="do"><span class="severity ${one.severity}">${sentence(SEVERITIES[one.severity])}</span>${value}${times}. To do: ${one.remedy}.</p></div></li>`;
 }

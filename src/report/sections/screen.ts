@@ -4,7 +4,7 @@ import { unitText } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
-import { counted, percent, pText, show } from "../numbers.ts";
+import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
 import { walkBlock } from "./walk.ts";
 
@@ -17,7 +17,7 @@ export function screenSection(input: ReportInput, cast: Cast, figures: readonly 
   const worst = Math.max(...path.steps.map((one) => one.residual));
   return {
     ...head,
-    body: html`<p>An adaptive lasso walks from a penalty under which no covariate stands (λ = ${show(path.lambdaMax)}) down to ${show(options.downTo)} of it, in ${counted(path.steps.length, "step")}. Two choices are made from that path. One counts animals, and takes every animal for a witness of its own; the other counts years, because animals of one year share that year's weather and all else that went with it. The verdict rests on the years.</p>
+    body: html`<p>An adaptive lasso walks from a penalty under which no covariate stands (λ = ${show(path.lambdaMax)}) down to ${brief(options.downTo)} of it, in ${counted(path.steps.length, "step")}. Two choices are made from that path. One counts animals, and takes every animal for a witness of its own; the other counts years, because animals of one year share that year's weather and all else that went with it. The verdict rests on the years.</p>
 <dl class="said"><div><dt>Counting years</dt><dd>${covariateList(cast, byYears.names)}</dd></div><div><dt>Counting animals</dt><dd>${covariateList(cast, byAnimals.names)}</dd></div></dl>
 ${figureBlock(figures, "criterion")}${figureBlock(figures, "coefficient-paths")}${walkBlock(input)}
 ${band(screened, cast)}

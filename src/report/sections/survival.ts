@@ -50,7 +50,7 @@ ${grid(
     { text: "above the least", look: "n" },
     { text: "BIC", look: "n" },
     { text: "above the least", look: "n" },
-    { text: "share of deviance", unit: "R²_dev", look: "n" },
+    { text: "share of deviance", unit: "R² of deviance", look: "n" },
     { text: "F", unit: "(df)", look: "n" },
     { text: "p", look: "n" },
   ],
@@ -85,7 +85,7 @@ function termWords(one: Candidate): Html | undefined {
 function tested(one: Candidate): readonly Piece[] {
   if (one.chosenOnData) return ["–", html`<small>chosen on these data</small>`];
   const { f, df1, df2, p } = one.deviance;
-  return Number.isFinite(f) ? [`${show(f)} (${df1}, ${df2})`, pText(p)] : ["–", "–"];
+  return Number.isFinite(f) ? [html`${show(f)} <small>(${df1}, ${df2})</small>`, pText(p)] : ["–", "–"];
 }
 
 export function agreementSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
