@@ -6,8 +6,8 @@ export function ticks(low: number, high: number, count: number): number[] {
   const lead = raw / power;
   const step = (lead < 1.5 ? 1 : lead < 3.5 ? 2 : lead < 7.5 ? 5 : 10) * power;
   const out: number[] = [];
-  for (let i = Math.ceil(low / step - 1e-9); i * step <= high + 1e-9 * step; i++)
-    // the division keeps 0.3 from becoming 0.30000000000000004
+  for (let i = Math.ceil(low / step - 1e-9) + 0; i * step <= high + 1e-9 * step; i++)
+    // "+ 0" above turns −0 into 0; the division keeps 0.3 from becoming 0.30000000000000004
     out.push(step < 1 ? i / Math.round(1 / step) : i * step);
   return out;
 }

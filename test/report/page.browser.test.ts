@@ -1,0 +1,172 @@
+import { existsSync } from "node:fs";
+import { mkdtemp, rm, writeFile } from "node:fs/promises";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
+import { pathToFileURL } from "node:url";
+import { type Browser, chromium, type Page } from "playwright-core";
+import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { renderPage } from "../../src/report/page.ts";
+import { reportInput } from "./fixture.ts";
+
+const FOUND = ["/usr/bin/chromium", "/usr/bin/chromium-browser", "/usr/bin/google-chrome"].find((path) =>
+  existsSync(path),
+);
+const HOSTILE = `<img src=x onerror="document.title='broken in'"></script>`;
+
+describe.runIf(FOUND !== undefined)("the page in a browser", () => {
+  let browser: Browser;
+  let folder: string;
+  let address: string;
+  let hostile: string;
+  const said: string[] = [];
+  const asked: string[] = [];
+
+  beforeAll(async () => {
+    folder = await mkdtemp(join(tmpdir(), "covey-page-"));
+    const put = async (name: string, html: string) => {
+      await writeFile(join(folder, name), html);
+      return pathToFileURL(join(folder, name)).href;
+    };
+    address = await put("page.html", await renderPage(await reportInput({ permutations: 3 })));
+    hostile = await put(
+      "hostile.html",
+      await renderPage(await reportInput({ hostile: HOSTILE, permutations: 0 })),
+    );
+    browser = await chromium.launch({
+      ...(FOUND === undefined ? {} : { executablePath: FOUND }),
+      args: [
+        "--no-sandbox",
+        "--disable-gpu",
+        "--disable-quic",
+        "--no-first-run",
+        "--disable-background-networking",
+        "--disable-component-update",
+        "--disable-sync",
+      ],
+    });
+  });
+
+  afterAll(async () => {
+    await browser?.close();
+    await rm(folder, { recursive: true, force: true });
+  });
+
+  async function open(width: number, where = address, script = true): Promise<Page> {
+    const context = await browser.newContext({ viewport: { width, height: 900 }, javaScriptEnabled: script });
+    const page = await context.newPage();
+    page.on("console", (message) => said.push(message.text()));
+    page.on("pageerror", (error) => said.push(error.message));
+    page.on("request", (request) => asked.push(request.url()));
+    await page.goto(where);
+    return page;
+  }
+
+  test.each([1400, 900, 420])("at %d pixels nothing makes the page wider than the window", async (width) => {
+    const page = await open(width);
+    const wide = await page.evaluate(() => [
+      document.documentElement.scrollWidth,
+      document.documentElement.clientWidth,
+    ]);
+    expect(wide[0]).toBeLessThanOrEqual(wide[1]);
+    await page.context().close();
+  });
+
+  test("a covariate is lit everywhere by keyboard, held by Enter, let go by Escape", async () => {
+    const page = await open(1400);
+    const first = page.locator("#inputs td .cov[role=button]").first();
+    await first.focus();
+    const index = await first.getAttribute("data-covariate");
+    expect(await page.locator("body.lit").count()).toBe(1);
+    const lit = await page.locator(`[data-covariate="${index}"].on`).count();
+    expect(lit).toBe(await page.locator(`[data-covariate="${index}"]`).count());
+    expect(
+      await page
+        .locator(
+          `#figure-coefficient-paths [data-covariate="${index}"].on, #figure-correlation [data-covariate="${index}"].on, #figure-time-ribbon [data-covariate="${index}"].on`,
+        )
+        .count(),
+    ).toBeGreaterThan(1);
+    await page.keyboard.press("Enter");
+    expect(await first.getAttribute("aria-pressed")).toBe("true");
+    await page.locator("h1").hover();
+    expect(await page.locator("body.lit").count()).toBe(1);
+    await page.keyboard.press("Escape");
+    expect(await page.locator("body.lit").count()).toBe(0);
+    await page.context().close();
+  });
+
+  test("Tab reaches the skip link, the sections and beyond, always where it can be seen", async () => {
+    const page = await open(1400);
+    const reached: string[] = [];
+    for (let i = 0; i < 24; i++) {
+      await page.keyboard.press("Tab");
+      reached.push(
+        await page.evaluate(() => {
+          const one = document.activeElement;
+          const style = one === null ? undefined : getComputedStyle(one);
+          return `${one?.tagName} ${one?.getAttribute("href") ?? ""} ${style?.outlineStyle}`;
+        }),
+      );
+    }
+    expect(reached[0]).toBe("A #verdict solid");
+    expect(reached).toContain("A #record solid");
+    expect(reached.some((one) => one.startsWith("SPAN"))).toBe(true);
+    expect(reached.filter((one) => one.endsWith("none"))).toEqual([]);
+    await page.context().close();
+  });
+
+  test("walking the path changes which covariates stand; findings are filtered by kind", async () => {
+    const page = await open(900);
+    const range = page.locator(".walk input");
+    const before = await page.locator(".walk output").textContent();
+    await range.focus();
+    await page.keyboard.press("Home");
+    expect(await page.locator(".walk output").textContent()).toContain("no covariate stands");
+    expect(before).toContain("(chosen)");
+    await page.locator("#findings select").selectOption("duplicate");
+    expect(await page.locator(".findings > details:visible").count()).toBe(1);
+    await page.context().close();
+  });
+
+  test("a table is copied as CSV with every digit", async () => {
+    const page = await open(1400);
+    await page.evaluate(() => {
+      Object.defineProperty(navigator, "clipboard", {
+        value: {
+          writeText: async (text: string) => {
+            document.body.dataset.copied = text;
+          },
+        },
+      });
+    });
+    await page.locator("#tables summary").first().click();
+    await page.locator("#tables button.copy").first().click();
+    const rows = (await page.evaluate(() => document.body.dataset.copied ?? "")).trim().split("\r\n");
+    expect(rows).toHaveLength(21);
+    const cells = rows[1].split(",");
+    expect(cells[1]).toMatch(/^-?\d+\.\d{6,}$/);
+    await page.context().close();
+  });
+
+  test("without JavaScript the page is whole", async () => {
+    const page = await open(900, address, false);
+    expect(await page.locator("section").count()).toBe(16);
+    expect(await page.locator("figure svg").first().isVisible()).toBe(true);
+    expect(await page.locator(".walk").isVisible()).toBe(false);
+    await page.context().close();
+  });
+
+  test("names that look like markup run nothing", async () => {
+    const page = await open(900, hostile);
+    expect(await page.title()).toBe(HOSTILE);
+    expect(await page.locator("img").count()).toBe(0);
+    expect(await page.locator("h1").textContent()).toBe(HOSTILE);
+    await page.context().close();
+  });
+
+  test("nothing was said on the console and nothing asked of the network", () => {
+    expect(said).toEqual([]);
+    expect(asked.length).toBeGreaterThan(0);
+    expect(asked.filter((url) => !url.startsWith("file:") && !url.startsWith("data:"))).toEqual([]);
+  });
+});
