@@ -10,6 +10,8 @@ import { type SummarySection, summaryLines } from "../terminal/summary.ts";
 import { listWords } from "../terminal/words.ts";
 import type { Lines, Terminal } from "./io.ts";
 
+type Screened = NonNullable<Executed["study"]["screened"]>;
+
 export interface RunCommandOptions {
   readonly through: Stage;
   readonly workers: number;
@@ -91,17 +93,29 @@ function sections(done: Executed): SummarySection[] {
         listWords(one.members.filter((name) => name !== one.closest)),
       ]),
     });
-  if (study.comparison !== undefined) {
-    const { headline, animals } = study.comparison.verdict;
-    out.push({
-      title: "found",
-      rows: [
-        ["by years", headline],
-        ["by animals", animals],
-      ],
-    });
-  }
+  if (study.screened !== undefined)
+    out.push({ title: "found", rows: foundRows(study.screened, study.comparison?.verdict.grade) });
   return out;
+}
+
+/** The answer in lines short enough for a terminal; the page has the sentences. */
+function foundRows(screened: Screened, grade: string | undefined): [string, string][] {
+  const { byYears, byAnimals, permutation, rivals } = screened;
+  const rival = (name: string) => rivals.find((one) => one.chosen === name)?.others ?? [];
+  const years = byYears.names.map((name) => [name, ...rival(name)].join(" or "));
+  const rows: [string, string][] = [
+    ["counting years", byYears.names.length === 0 ? "no covariate stands" : listWords(years)],
+  ];
+  if (byYears.names.length > 0)
+    rows.push(["", `${Math.round(100 * byYears.deviance.share)} % of the deviance between years`]);
+  if (permutation !== undefined)
+    rows.push([
+      "evidence",
+      `${grade ?? "not graded"}: family-wise p ${Number(permutation.p.toPrecision(2))}, ${permutation.replicates} permutations of years`,
+    ]);
+  rows.push(["counting animals", byAnimals.names.length === 0 ? "nothing" : listWords(byAnimals.names)]);
+  rows.push(["recapture", screened.recapture.chosen]);
+  return rows;
 }
 
 function asJson(done: Executed, page: string) {

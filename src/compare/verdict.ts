@@ -39,41 +39,58 @@ export function verdict(screened: ScreenResult, agreed: Agreement): Verdict {
 
 function headline(screened: ScreenResult, grade: Grade): string {
   const { byYears, permutation } = screened;
-  const years = `${screened.recapture.intervalFit.survival.length / strataOf(screened)} intervals`;
+  const strata = new Set(screened.intervalFit.survival.map((one) => one.stratum)).size;
+  const years = `${screened.intervalFit.survival.length / strata} intervals`;
   if (byYears.names.length === 0)
     return `Counting years, no covariate stands: over ${years}, none of the ${screened.names.length} candidates accounts for the differences in apparent annual survival better than chance would.`;
+  const chosen = chosenWords(screened);
   const share = percentWords(byYears.deviance.share);
   if (permutation === undefined)
-    return `Counting years, ${listWords(byYears.names)} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
+    return `Counting years, ${chosen} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
   const test = `family-wise p ${pWords(permutation.p)} over ${permutation.replicates} permutations of years of the whole procedure`;
-  const share2 = `${share} of the deviance between years, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted`;
   if (grade === "none")
-    return `Counting years, the data do not carry a selection: ${listWords(byYears.names)} came out over ${years}, but so much comes out by chance (${test}).`;
-  const lead = { firm: "stands firmly", fair: "stands", faint: "shows faintly" }[
+    return `Counting years, the data do not carry a selection: ${chosen} came out over ${years}, but so much comes out by chance (${test}).`;
+  const verb = { firm: "firmly goes with", fair: "goes with", faint: "may go with" }[
     grade as "firm" | "fair" | "faint"
   ];
-  const verb = byYears.names.length > 1 ? lead.replace("stands", "stand").replace("shows", "show") : lead;
-  return `Counting years, ${listWords(byYears.names)} ${verb} as going with differences in apparent annual survival over ${years} (${test}; ${share2}).`;
+  const plural = byYears.names.length > 1 ? verb.replace("goes", "go") : verb;
+  return `Counting years, ${chosen} ${plural} differences in apparent annual survival over ${years} (${test}; ${share} of the deviance between years, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted).`;
 }
 
-function strataOf(screened: ScreenResult): number {
-  return new Set(screened.recapture.intervalFit.survival.map((one) => one.stratum)).size;
+/** The chosen covariates, each with those the data cannot tell from it. */
+function chosenWords({ byYears, rivals }: ScreenResult): string {
+  return listWords(
+    byYears.names.map((name) => {
+      const others = rivals.find((one) => one.chosen === name)?.others ?? [];
+      return others.length === 0 ? name : `${name} (or ${others.join(" or ")})`;
+    }),
+  );
 }
 
 function animalsSentence(screened: ScreenResult): string {
-  const { byAnimals, byYears, permutation, options, sampleSize } = screened;
+  const { byAnimals, permutation, options, sampleSize } = screened;
   const chosen = `A criterion that counts animals (${options.chooseBy}, n = ${sampleSize} ${options.sampleSize}) chooses ${listWords(byAnimals.names)}`;
-  const same =
-    byAnimals.names.length === byYears.names.length &&
-    byAnimals.names.every((name) => byYears.names.includes(name));
   const chance =
     permutation === undefined
       ? ""
-      : `; with years permuted it still chooses something in ${percentWords(permutation.falseByAnimals)} of runs (counting years: ${percentWords(permutation.falseByYears)})`;
-  const why = same
-    ? ", the same set"
-    : `, which differs because ĉ between years is ${byYears.deviance.betweenYears.toPrecision(3)}: survival varies between years beyond what these covariates explain, and animals of one year share that`;
-  return `${chosen}${why}${chance}.`;
+      : `; with years permuted it still chooses something in ${percentWords(permutation.falseByAnimals)} of runs`;
+  return `${chosen}, ${differenceWords(screened)}${chance}.`;
+}
+
+/** Why the two choices differ, if they do. */
+function differenceWords({ byAnimals, byYears, rivals }: ScreenResult): string {
+  const only = byAnimals.names.filter((name) => !byYears.names.includes(name));
+  const missed = byYears.names.filter((name) => !byAnimals.names.includes(name));
+  if (only.length === 0 && missed.length === 0) return "the same set";
+  const exchanged = only.every((name) =>
+    rivals.some((one) => missed.includes(one.chosen) && one.others.includes(name)),
+  );
+  if (only.length === missed.length && exchanged)
+    return `which differs only by covariates the data cannot tell apart (${listWords(only)} for ${listWords(missed)})`;
+  const between = byYears.deviance.betweenYears;
+  if (between > 1.5)
+    return `which differs because survival varies between years beyond these covariates (ĉ between years ${between.toPrecision(3)}) and all animals of a year share that`;
+  return "which differs because years, not animals, are the sample of the weather, and there are few of them";
 }
 
 function agreementSentence(agreed: Agreement): string {

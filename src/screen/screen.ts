@@ -44,6 +44,8 @@ export interface ScreenResult {
   readonly byAnimals: RefittedSet;
   readonly byYears: RefittedSet;
   readonly years: YearsChoice;
+  /** For covariates chosen by years: others the data cannot tell from them. */
+  readonly rivals: readonly { readonly chosen: string; readonly others: readonly string[] }[];
   /** Sets weighed by years, by name. */
   readonly weighed: readonly { readonly names: readonly string[]; readonly gain: number }[];
   /** Undefined if no permutation was asked for. */
@@ -120,6 +122,10 @@ export async function screen(
     byAnimals,
     byYears,
     years: found.byYears,
+    rivals: found.byYears.rivals.map(({ chosen, others }) => ({
+      chosen: names[chosen],
+      others: named(others),
+    })),
     weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
   };
