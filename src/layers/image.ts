@@ -228,7 +228,7 @@ function blockPlace(image: Image, blockColumn: number, blockRow: number, band: n
 /** Byte order, then the predictor: differences are of values, so the bytes must be in order before they are summed. */
 function finish(image: Image, packed: Uint8Array, row: number, step: number): Samples {
   const size = SAMPLE_BYTES[image.type];
-  const bytes = packed.byteOffset % size === 0 ? packed : packed.slice();
+  const bytes = packed.byteOffset % size === 0 ? packed : new Uint8Array(packed);
   // LERC too: libtiff turns the samples before it packs them, though LERC has an order of its own.
   const turned = image.littleEndian !== HOST_LITTLE;
   if (image.predictor === 3) undoFloatPlanes(bytes, row, size, step, HOST_LITTLE);

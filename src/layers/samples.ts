@@ -49,7 +49,7 @@ export function swapBytes(bytes: Uint8Array, size: number): void {
 /** Bytes in the host's order as samples; copies only where the bytes do not lie on a boundary. */
 export function samplesOf(bytes: Uint8Array, type: SampleType): Samples {
   const size = SAMPLE_BYTES[type];
-  const whole = bytes.byteOffset % size === 0 ? bytes : bytes.slice();
+  const whole = bytes.byteOffset % size === 0 ? bytes : new Uint8Array(bytes);
   const { buffer, byteOffset } = whole;
   const count = Math.floor(whole.byteLength / size);
   switch (type) {

@@ -103,8 +103,8 @@ function unpackAny(
 ): Uint8Array {
   switch (compression) {
     case "none":
-      // A copy: later steps work in place and the reader may own its bytes.
-      return packed.slice(0, shape.most);
+      // A copy (Buffer's own slice would be none): later steps work in place and the reader may own its bytes.
+      return new Uint8Array(packed.subarray(0, shape.most));
     case "deflate":
       return inflate(packed, shape, path);
     case "Zstandard":
@@ -169,7 +169,9 @@ function unpackLerc(packed: Uint8Array, shape: BlockShape, path: string): Uint8A
     throw brokenFile(path, `a LERC block of ${columns} × ${rows} × ${samples}`);
   let decoded: ReturnType<typeof Lerc.decode>;
   try {
-    decoded = Lerc.decode(blob.slice(0, length).buffer, { returnPixelInterleavedDims: true });
+    decoded = Lerc.decode(new Uint8Array(blob.subarray(0, length)).buffer, {
+      returnPixelInterleavedDims: true,
+    });
   } catch (error) {
     throw brokenFile(path, `a LERC block that cannot be unpacked (${String(error)})`);
   }

@@ -156,6 +156,40 @@ describe("a stack at places", () => {
     expect(effects.opened.length).toBe(4);
   });
 
+  test("a reader that hands out unaligned pieces of a Buffer of its own is neither misread nor written to", async () => {
+    for (const name of ["c-none-float32.tif", "big-none1-int16.tif", "c-lzw-float32.tif", "lerc-holes.tif"]) {
+      const whole = readFileSync(join(FOLDER, name));
+      const shifted = Buffer.alloc(whole.length + 1);
+      whole.copy(shifted, 1);
+      const base = effectsBelow(FOLDER);
+      const lent: typeof base.files = {
+        ...base.files,
+        open: (path) => ({
+          path,
+          size: whole.length,
+          read: (offset, length) => shifted.subarray(1 + offset, 1 + offset + length),
+          close: () => {},
+        }),
+      };
+      const options: LayerOptions = {
+        files: [name],
+        date: { first: "2001-01", step: "month" },
+        covers: "month",
+        unit: "1",
+        kind: "mean",
+      };
+      const place: Where = { ...square(8.9, 49.5, 9.2, 49.7), name: "all" };
+      const wanted: Wanted[] = [{ place, use: { by: "area", validArea: 0 } }];
+      const [ours, usual] = [
+        await extractLayers("x", options, wanted, { ...base, files: lent }),
+        await extractLayers("x", options, wanted, base),
+      ];
+      expect(ours.series).toEqual(usual.series);
+      expect(ours.series[0].values[0]).not.toBeNaN();
+      expect(shifted.subarray(1).equals(whole)).toBe(true);
+    }
+  });
+
   test("scale, offset, valid range and fill, in that order of precedence", async () => {
     const options = { ...OPTIONS, scale: 0.5, offset: 1, valid: [1.5, 6] as const };
     const at = (x: number, y: number): Wanted => ({
