@@ -82,6 +82,21 @@ program
     print(await lookCommand(file, { json: options.json ?? false }, await terminalFor(options)), options);
   });
 
+program
+  .command("verify")
+  .argument("<folder>", "an output folder of run or apply")
+  .description(
+    "compare an output folder with its run record; exit code 2 if a file was changed, lost or added",
+  )
+  .option("--json", "print what was found as JSON")
+  .addHelpText("after", "\nExample:\n  covey verify out/roost")
+  .action(async (folder: string, options: Common) => {
+    const { verifyCommand } = await import("./commands/verify.ts");
+    const found = verifyCommand(folder, { json: options.json ?? false }, await terminalFor(options));
+    print(found.lines, options);
+    if (!found.ok) process.exitCode = 2;
+  });
+
 function wholeNumber(text: string): number {
   const value = Number(text);
   if (!Number.isInteger(value) || value < 1)
