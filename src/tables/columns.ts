@@ -22,6 +22,7 @@ export function truth(name: string, title: string, description: string): TableCo
 export function slug(words: string): string {
   return words
     .normalize("NFKD")
+    .replace(/\p{M}+/gu, "")
     .toLowerCase()
     .replace(/[^a-z0-9]+/g, "_")
     .replace(/^_+|_+$/g, "");

@@ -1,3 +1,4 @@
+import type { IntervalCovariate } from "../aggregate/result.ts";
 import { isoDay } from "../data/day.ts";
 import type { Matrix } from "../data/matrix.ts";
 import { number, text, truth, uniqueSlugs, whole } from "./columns.ts";
@@ -20,6 +21,7 @@ export function intervalValuesTable(study: StudyResult): Table {
       text("last_day", "last day", "last day of the window"),
       whole("days_due", "days due", "days", "days of the window"),
       number("days_covered", "days covered", "days", "days with observations"),
+      whole("days_infilled", "days infilled", "days", "station-days whose value was filled from neighbours"),
       whole("longest_gap", "longest gap", "days", "longest run of days without observations"),
       truth("scaled", "scaled", "a sum scaled up by due over covered"),
       text("stations", "stations", "stations that gave a value"),
@@ -36,6 +38,7 @@ export function intervalValuesTable(study: StudyResult): Table {
         one.period === undefined ? undefined : isoDay(one.period.end - 1),
         one.period === undefined ? undefined : one.daysDue,
         one.period === undefined ? undefined : one.daysCovered,
+        one.period === undefined ? undefined : (one.daysInfilled ?? 0),
         one.period === undefined ? undefined : one.longestGap,
         one.scaled,
         one.stations.join("; ") || undefined,
@@ -84,6 +87,17 @@ export function standardMatrixTable(study: StudyResult): Table {
   return wide(study, study.matrix.standard, "covariates-standardised", "Covariates as prepared", () => "sd");
 }
 
+/** Σ days covered / Σ days due; missing for values that came ready-made, without windows. */
+function coverage({ values }: IntervalCovariate): number | undefined {
+  const due = values.reduce((sum, one) => sum + one.daysDue, 0);
+  return due === 0 ? undefined : values.reduce((sum, one) => sum + one.daysCovered, 0) / due;
+}
+
+function infilled({ values }: IntervalCovariate): number | undefined {
+  if (values.every((one) => one.period === undefined)) return undefined;
+  return values.reduce((sum, one) => sum + (one.daysInfilled ?? 0), 0);
+}
+
 export function dictionaryTable(study: StudyResult): Table {
   const recipes = new Map(study.matrix.recipes.map((one) => [one.name, one]));
   const slugs = uniqueSlugs(["interval", ...study.matrix.names]).slice(1);
@@ -103,6 +117,13 @@ export function dictionaryTable(study: StudyResult): Table {
       text("definition", "definition", "statistic, variable, place and window in words"),
       text("files", "files", "files it was made from"),
       whole("intervals_with_value", "intervals with a value", "1", "intervals that have a value"),
+      number("coverage", "coverage", "1", "days with observations over days due, all windows together"),
+      whole(
+        "days_infilled",
+        "days infilled",
+        "days",
+        "station-days filled from neighbours, all windows together",
+      ),
       text("transform", "transform", "transform applied first"),
       text("detrend", "detrend", "detrending applied next"),
       number("centre", "centre", "as in unit, transformed", "subtracted"),
@@ -121,6 +142,8 @@ export function dictionaryTable(study: StudyResult): Table {
         recipe?.definition ?? source?.definition,
         source?.files.join("; ") || undefined,
         source?.values.filter((one) => !Number.isNaN(one.value)).length,
+        source === undefined ? undefined : coverage(source),
+        source === undefined ? undefined : infilled(source),
         recipe?.transform,
         recipe?.detrend,
         recipe?.centre,
