@@ -1,6 +1,6 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Interval } from "../data/occasion.ts";
-import { periodDays } from "../data/period.ts";
+import { overlapDays, type Period, periodDays } from "../data/period.ts";
 import type { Series } from "../data/series.ts";
 import { meanOfDays } from "./days.ts";
 import { findingsOf, type SiteRow } from "./findings.ts";
@@ -10,7 +10,7 @@ import { resolve, siteSeries } from "./resolve.ts";
 import type { IntervalCovariate, WindowValue } from "./result.ts";
 import { type SiteWindow, siteWindow } from "./site-window.ts";
 import { filesOf } from "./sites.ts";
-import { cut, daysInside } from "./slice.ts";
+import { cut } from "./slice.ts";
 import { seasonEnding, type WindowPeriods, windowPeriod } from "./window.ts";
 import { definitionText, statisticUnit } from "./words.ts";
 
@@ -80,13 +80,11 @@ function emptyWindow(words: string | undefined): WindowValue {
 }
 
 /** Days in the periods whose values were infilled. */
-function filledDays(series: Series, filled: Uint8Array, { periods }: WindowPeriods): number {
-  let days = 0;
-  for (const period of periods) {
-    const slice = cut(series, period);
-    for (let i = slice.lo; i < slice.hi; i++) if (filled[i] === 1) days += daysInside(slice, i);
-  }
-  return days;
+function filledDays(filled: readonly Period[], { periods }: WindowPeriods): number {
+  return periods.reduce(
+    (sum, period) => sum + filled.reduce((days, one) => days + overlapDays(one, period), 0),
+    0,
+  );
 }
 
 /** True if the series has a value in any of the periods. */
@@ -132,7 +130,7 @@ export function aggregateCovariate(
     const window = joinWindow(one, value, here, missing ? [] : gave, failed);
     if (filled.length === 0 || missing) return window;
     const used = sites.flatMap((series, s) =>
-      gave.includes(series.site) ? [filledDays(series, filled[s], one)] : [],
+      gave.includes(series.site) ? [filledDays(filled[s], one)] : [],
     );
     return { ...window, daysInfilled: used.reduce((sum, days) => sum + days, 0) };
   });

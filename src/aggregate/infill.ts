@@ -1,6 +1,7 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Series } from "../data/series.ts";
 import { InputError } from "../errors.ts";
+import { sampleSd } from "../math/quantile.ts";
 import { align, type Grid } from "./grid.ts";
 import { type Common, commonOf, correlation, ratioed, regressed, without } from "./neighbour.ts";
 import type { Infill } from "./options.ts";
@@ -22,6 +23,8 @@ interface SiteInfill {
   /** Root mean square of leave-one-out errors over `tested` known values; NaN if there are none. */
   readonly error: number;
   readonly tested: number;
+  /** Standard deviation (n − 1) of the known values: what filling by their mean would err by. */
+  readonly spread: number;
 }
 
 interface Infilled {
@@ -123,18 +126,39 @@ function infillSite(grid: Grid, s: number, names: readonly string[], infill: Inf
     neighbours: neighbours.map(({ index }) => names[index]),
     error: Math.sqrt(squares / tested),
     tested,
+    spread: sampleSd(known.filter((value) => !Number.isNaN(value))),
   };
   return { values, filled, site };
+}
+
+/** Other stations whose values cover the same periods; daily values cannot stand for a missing month. */
+function comparable(series: readonly Series[], others: readonly Series[]): Series[] {
+  const ends = new Map<number, number>();
+  const add = ({ starts, ends: own }: Series) => {
+    for (let i = 0; i < starts.length; i++) ends.set(starts[i], own[i]);
+  };
+  series.forEach(add);
+  const own = new Set(series.map((one) => one.site));
+  return others.filter((one) => {
+    const fits = one.starts.every((start, i) => (ends.get(start) ?? one.ends[i]) === one.ends[i]);
+    if (own.has(one.site) || !fits) return false;
+    add(one);
+    return true;
+  });
 }
 
 /**
  * Fills gaps of at most `longest` days between two known values from the other stations (methods §2): regression on
  * the best-correlated neighbour that has the day, a total never below 0; or the normal-ratio method (Paulhus &
  * Kohler 1952). Only values that were measured fill others. Each station's error is that of the whole procedure,
- * leaving out one known value after another. Throws `aggregate.normal-ratio` for anything but totals, since a ratio
+ * leaving out one known value after another. `others` are stations that only lend their values. Throws `aggregate.normal-ratio` for anything but totals, since a ratio
  * of temperatures has no meaning, and `aggregate.periods-differ`.
  */
-export function infillSeries(series: readonly Series[], infill: Infill): Infilled {
+export function infillSeries(
+  series: readonly Series[],
+  infill: Infill,
+  others: readonly Series[] = [],
+): Infilled {
   const wrong = series.find((one) => one.kind !== "total");
   if (infill.method === "normal ratio" && wrong !== undefined)
     throw new InputError({
@@ -144,8 +168,9 @@ export function infillSeries(series: readonly Series[], infill: Infill): Infille
       where: { cell: wrong.site },
       remedy: "fill its gaps by regression",
     });
-  const grid = align(series);
-  const names = series.map((one) => one.site);
+  const all = [...series, ...comparable(series, others)];
+  const grid = align(all);
+  const names = all.map((one) => one.site);
   const done = series.map((one, s) => infillSite(grid, s, names, infill, one.kind === "total"));
   const { starts, ends } = grid;
   return {
@@ -164,16 +189,18 @@ export function infillFindings(
 ): RawFinding[] {
   return sites
     .filter((one) => one.days > 0)
-    .map(({ site, days, gaps, left, neighbours, error, tested }) => ({
+    .map(({ site, days, gaps, left, neighbours, error, tested, spread }) => ({
       kind: "infilled" as const,
       subject: covariate,
       message:
         `${site}: ${days} day${days === 1 ? "" : "s"} in ${gaps} gap${gaps === 1 ? "" : "s"} filled by ${method} on ` +
         `${neighbours.slice(0, method === "regression" ? 1 : RATIO_NEIGHBOURS).join(", ")} (leave-one-out error ` +
-        `${Number(error.toPrecision(3))} ${unit} over ${tested} values); ` +
+        `${digits(error)} ${unit} over ${tested} values, whose own sd is ${digits(spread)}); ` +
         `${left} gap${left === 1 ? "" : "s"} left (longer than ${longest} days, or no neighbour)`,
       where: { cell: `${covariate}, ${site}` },
       count: days,
-      remedy: "compare the result with and without infilling",
+      remedy: "compare the error with the sd, and the result with and without infilling",
     }));
 }
+
+const digits = (value: number) => Number(value.toPrecision(3));

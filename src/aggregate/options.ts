@@ -127,6 +127,10 @@ export interface CovariateDefinition {
   /** Values become departures from the site's base mean of the calendar month, or day, before the window. */
   readonly anomaly?: { readonly by: "month" | "day"; readonly base: YearRange };
   readonly infill?: Infill;
+  /** Other stations' series of the same variable, in `unit`: infilling may use them, nothing else does. */
+  readonly neighbours?: readonly Series[];
+  /** The same for `second`. */
+  readonly secondNeighbours?: readonly Series[];
   /** Missing days that counts, runs and degree-days may have in a window; 0 if not said. */
   readonly allowedMissing?: number;
 }

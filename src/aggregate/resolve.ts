@@ -1,4 +1,5 @@
 import type { RawFinding } from "../data/finding.ts";
+import type { Period } from "../data/period.ts";
 import type { Series } from "../data/series.ts";
 import { InputError } from "../errors.ts";
 import { departures } from "./anomaly.ts";
@@ -26,18 +27,32 @@ export interface Resolved {
 /** The sites' series, ready for windows, and what was infilled in them. */
 interface Sites {
   readonly series: readonly Series[];
-  /** filled[s][i] = 1 where value i of site s was infilled; empty without infilling. */
-  readonly filled: readonly Uint8Array[];
+  /** Periods of each site whose value was infilled (in either series, where there are two); empty without infilling. */
+  readonly filled: readonly (readonly Period[])[];
   readonly findings: readonly RawFinding[];
 }
 
 /** Sites with their gaps filled, where the definition asks for it. */
-function filledSites(definition: CovariateDefinition, series: readonly Series[]): Sites {
-  const { name, infill, unit } = definition;
+function filledSites(
+  { name, infill, unit }: CovariateDefinition,
+  series: readonly Series[],
+  neighbours: readonly Series[],
+): Sites {
   const sites = bySite(series);
   if (infill === undefined || sites.length === 0) return { series: sites, filled: [], findings: [] };
-  const done = infillSeries(sites, infill);
-  return { ...done, findings: infillFindings(name, infill, unit, done.sites) };
+  const done = infillSeries(sites, infill, bySite(neighbours));
+  const filled = done.series.map(({ starts, ends }, s) =>
+    Array.from(done.filled[s].keys())
+      .filter((i) => done.filled[s][i] === 1)
+      .map((i) => ({ start: starts[i], end: ends[i] })),
+  );
+  return { series: done.series, filled, findings: infillFindings(name, infill, unit, done.sites) };
+}
+
+/** Periods of both lists, each once, in order of time. */
+function together(a: readonly Period[], b: readonly Period[]): Period[] {
+  const known = new Set(a.map((one) => one.start));
+  return [...a, ...b.filter((one) => !known.has(one.start))].sort((x, y) => x.start - y.start);
 }
 
 /**
@@ -45,7 +60,7 @@ function filledSites(definition: CovariateDefinition, series: readonly Series[])
  * the definition asks. Throws `aggregate.no-series` and what the steps throw.
  */
 export function siteSeries(definition: CovariateDefinition): Sites {
-  const { name, statistic, series, second, anomaly } = definition;
+  const { name, statistic, series, second, anomaly, neighbours, secondNeighbours } = definition;
   if (series.length === 0)
     throw new InputError({
       name: "aggregate.no-series",
@@ -54,15 +69,18 @@ export function siteSeries(definition: CovariateDefinition): Sites {
       where: { cell: name },
       remedy: "name stations that have the variable, or a place inside the layer",
     });
-  const first = filledSites(definition, series);
-  const other = filledSites(definition, second ?? []);
+  const first = filledSites(definition, series, neighbours ?? []);
+  const other = filledSites(definition, second ?? [], secondNeighbours ?? []);
   const paired =
     statistic.type === "degree-days of extremes"
       ? pair(definition, first.series, other.series)
       : first.series;
   return {
     series: anomaly === undefined ? paired : paired.map((one) => departures(one, anomaly.by, anomaly.base)),
-    filled: first.filled,
+    filled: first.filled.map((one, s) => {
+      const beside = other.series.findIndex(({ site }) => site === first.series[s].site);
+      return together(one, other.filled[beside] ?? []);
+    }),
     findings: [...first.findings, ...other.findings],
   };
 }

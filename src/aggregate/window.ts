@@ -137,5 +137,6 @@ export function windowText(window: Window): string {
   if (window.type === "year") return `calendar year${back}`;
   if (window.type === "span") return `${endText(window.from)} to ${endText(window.to)}${back}`;
   const whole = window.from.day === 1 && window.to.day === 0;
-  return `${dateText(window.from, whole)} to ${dateText(window.to, whole)}${back}`;
+  const [from, to] = [dateText(window.from, whole), dateText(window.to, whole)];
+  return `${whole && from === to ? from : `${from} to ${to}`}${back}`;
 }

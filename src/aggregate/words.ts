@@ -94,16 +94,20 @@ export function statisticUnit(statistic: Statistic, unit: string): string {
   }
 }
 
-/** `sum of rain over Nov to Feb, mean of 6 stations`. */
+/** `sum of rain over Nov to Feb, mean of 6 stations`, and whether gaps are filled. */
 export function definitionText(definition: CovariateDefinition, sites: readonly string[]): string {
-  const { window, statistic, unit, join, anomaly, series, second } = definition;
+  const { window, statistic, unit, join, anomaly, series, second, infill } = definition;
   const variables = [series, second ?? []].flatMap((list) => (list.length > 0 ? [list[0].variable] : []));
   const what =
     anomaly === undefined
       ? variables.join(" and ")
       : `departures of ${variables.join(" and ")} from the ${anomaly.by}'s mean of ${anomaly.base.from} to ${anomaly.base.to}`;
   const head = `${statisticText(statistic, unit)} of ${what} over ${windowText(window)}`;
-  if (sites.length === 1) return `${head}, at ${sites[0]}`;
+  const filled =
+    infill === undefined
+      ? ""
+      : `, gaps of up to ${infill.longest} day${infill.longest === 1 ? "" : "s"} filled by ${infill.method} on neighbours`;
+  if (sites.length === 1) return `${head}, at ${sites[0]}${filled}`;
   const how = join === "mean of days" ? "of the daily mean of" : "mean of";
-  return `${head}, ${how} ${sites.length} stations`;
+  return `${head}, ${how} ${sites.length} stations${filled}`;
 }

@@ -76,10 +76,23 @@ function makeCovariate(one: CovariateSpec, index: number, loaded: Loaded, found:
     join: one.source === "stations" ? one.join : "mean of windows",
     series: series.map((each) => inUnit(each, unit)),
     ...(second === undefined ? {} : { second: second.map((each) => inUnit(each, unit)) }),
+    ...(one.source === "stations" ? infilling(one, unit, found) : {}),
     ...(one.anomaly === undefined ? {} : { anomaly: one.anomaly }),
     ...(one.allowedMissing === undefined ? {} : { allowedMissing: one.allowedMissing }),
   };
   return { ...aggregateCovariate(definition, found.intervals), definition };
+}
+
+/** What a covariate whose gaps are filled needs beside its own stations: all others that have its variables. */
+function infilling(one: StationCovariate, unit: string, found: Ingested): Partial<CovariateDefinition> {
+  if (one.infill === undefined) return {};
+  const having = (variable: string) =>
+    found.stationSeries.filter((each) => each.variable === variable).map((each) => inUnit(each, unit));
+  return {
+    infill: one.infill,
+    neighbours: having(one.variable),
+    ...(one.second === undefined ? {} : { secondNeighbours: having(one.second) }),
+  };
 }
 
 function inUnit(series: Series, unit: string): Series {

@@ -76,6 +76,23 @@ function seriesProblems(spec: Spec): Problem[] {
   });
 }
 
+/** The normal-ratio method fills totals alone: a ratio of temperatures has no meaning. */
+function infillProblems(spec: Spec): Problem[] {
+  const kinds = new Map<string, string>();
+  for (const record of spec.records) {
+    if (record.layout === "wide") kinds.set(record.variable, record.kind);
+    else for (const [name, { kind }] of Object.entries(record.series)) kinds.set(name, kind);
+  }
+  return spec.covariates.flatMap((one, i): Problem[] => {
+    if (one.source !== "stations" || one.infill?.method !== "normal ratio") return [];
+    const kind = kinds.get(one.variable);
+    if (kind === undefined || kind === "total") return [];
+    const path = ["covariates", i, "infill", "method"];
+    const expected = "neighbour regression for what is not a total";
+    return [conflict(path, expected, `normal ratio for a ${kind}`, "write method: neighbour regression")];
+  });
+}
+
 function needProblems(spec: Spec): Problem[] {
   const { captures, occasions, covariates, survival, recapture } = spec;
   const problems: Problem[] = [];
@@ -283,7 +300,7 @@ function rangeProblems(spec: Spec): Problem[] {
 
 /** What the parts of a pipeline say of each other. */
 export function crossProblems(spec: Spec): Problem[] {
-  return [nameProblems, seriesProblems, needProblems, modelProblems, rangeProblems].flatMap((check) =>
-    check(spec),
+  return [nameProblems, seriesProblems, infillProblems, needProblems, modelProblems, rangeProblems].flatMap(
+    (check) => check(spec),
   );
 }

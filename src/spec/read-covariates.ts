@@ -1,3 +1,4 @@
+import type { Infill } from "../aggregate/options.ts";
 import type { DeriveOptions } from "../covariates/options.ts";
 import type { PlaceUse } from "../layers/options.ts";
 import { nearestName } from "../math/nearest-name.ts";
@@ -219,8 +220,17 @@ export function readCovariate(
     second: raw.second,
     stations: raw.stations,
     join: raw.join,
+    infill: readInfill(raw.infill),
     ...values,
   });
+}
+
+type RawInfill = Extract<RawCovariate, { join: unknown }>["infill"];
+
+function readInfill(raw: RawInfill): Infill | undefined {
+  if (raw === undefined) return undefined;
+  const method = raw.method === "normal ratio" ? "normal ratio" : "regression";
+  return { method, longest: Number.parseInt(raw["longest gap"], 10) };
 }
 
 /** The unit of a covariate's column in the matrix. */

@@ -155,6 +155,15 @@ const values = {
   }).optional(),
 };
 
+const infill = keys(
+  "how short gaps are filled from neighbouring stations, counted and told",
+  {
+    method: choice("how gaps are filled", ["neighbour regression", "normal ratio"]),
+    "longest gap": text("the longest gap that is filled", "3 days", /^[1-9]\d{0,2} days?$/),
+  },
+  { method: "neighbour regression", "longest gap": "3 days" },
+);
+
 const stationCovariate = keys("a covariate from station records", {
   name: name(),
   theme: theme(),
@@ -168,6 +177,7 @@ const stationCovariate = keys("a covariate from station records", {
     "all",
   ),
   join: stated(choice("how stations are joined", ["mean of windows", "mean of days"]), "mean of windows"),
+  infill: infill.optional(),
   ...values,
 });
 

@@ -1,4 +1,4 @@
-import type { Completeness, Join, Statistic, Window, YearRange } from "../aggregate/options.ts";
+import type { Completeness, Infill, Join, Statistic, Window, YearRange } from "../aggregate/options.ts";
 import type { CollinearityOptions } from "../collinearity/options.ts";
 import type { KeepRule } from "../components/options.ts";
 import type { PrepareOptions } from "../covariates/options.ts";
@@ -43,6 +43,7 @@ export interface StationCovariate extends CovariateName, CovariateValues {
   /** Names or identifiers as they are written; whether they exist is known once the list of stations is read. */
   readonly stations: "all" | readonly string[];
   readonly join: Join;
+  readonly infill?: Infill;
 }
 
 /** From a layer at a place. */

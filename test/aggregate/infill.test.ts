@@ -2,6 +2,7 @@ import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import { aggregateCovariate } from "../../src/aggregate/aggregate.ts";
 import { infillSeries } from "../../src/aggregate/infill.ts";
+import { ratioed } from "../../src/aggregate/neighbour.ts";
 import type { CovariateDefinition } from "../../src/aggregate/options.ts";
 import { columnIndex, readCsv } from "../../src/data/csv.ts";
 import { dayOf } from "../../src/data/day.ts";
@@ -55,6 +56,25 @@ describe("infilling", () => {
     expect(done.series[0].values[21]).not.toBeNaN();
   });
 
+  test("stations that only lend their values are not filled and need not share every period", () => {
+    const lent = daily("2001-01-01", wave, { site: "Beck" });
+    const monthly = {
+      ...lent,
+      site: "Cairn",
+      starts: Int32Array.of(dayOf(2001, 1, 1)),
+      ends: Int32Array.of(dayOf(2001, 2, 1)),
+      values: Float64Array.of(3),
+    };
+    const done = infillSeries([daily("2001-01-01", gappy)], { method: "regression", longest: 3 }, [
+      monthly,
+      lent,
+      daily("2001-01-01", wave),
+    ]);
+    expect(done.series.map((one) => one.site)).toEqual(["Ash"]);
+    expect(done.sites).toMatchObject([{ site: "Ash", days: 2, neighbours: ["Beck"] }]);
+    expect(done.series[0].values[20]).toBeCloseTo(2 * wave[20] + 3, 10);
+  });
+
   test("normal ratio: each neighbour's value times the ratio of normals, averaged", () => {
     // Three neighbours of 2, 1 and 0.5 times the rain; one of them short by 3 mm on the day that is filled.
     const rain = wave.map((x) => x + 1);
@@ -75,6 +95,13 @@ describe("infilling", () => {
       longest: 1,
     });
     expect(done.series[0].values[20]).toBeCloseTo(rain[20] - 1, 10);
+  });
+
+  test("normal ratio: normals 980 against 1120, 935, 1200 and catches of 107, 89, 122 (textbook figures, from memory)", () => {
+    const of = (meanX: number) => ({ count: 30, meanX, meanY: 980, sxx: 1, sxy: 1, syy: 1 });
+    // By hand: 980/3 · (107/1120 + 89/935 + 122/1200) = (93.625 + 93.283 + 99.633)/3
+    const each = [ratioed(of(1120), 107), ratioed(of(935), 89), ratioed(of(1200), 122)];
+    expect(each.reduce((a, b) => a + b) / 3).toBeCloseTo(95.514, 3);
   });
 
   test("normal ratio is refused for temperatures", () => {

@@ -9,6 +9,22 @@ export interface BadPipeline {
 
 export const BAD_PIPELINES: readonly BadPipeline[] = [
   {
+    title: "infilling: a ratio of temperatures",
+    from: "window: whole interval, statistic: { days below: 0 } }",
+    to: "window: whole interval, statistic: { days below: 0 }, infill: { method: normal ratio, longest gap: 3 days } }",
+    name: "spec.conflict",
+    message:
+      "p.yaml:42:123 (covariates > #2 > infill > method): expected neighbour regression for what is not a total, found normal ratio for a minimum; write method: neighbour regression",
+  },
+  {
+    title: "infilling: a gap without its unit",
+    from: "window: whole interval, statistic: { days below: 0 } }",
+    to: "window: whole interval, statistic: { days below: 0 }, infill: { method: normal ratio, longest gap: 3 } }",
+    name: "spec.format",
+    message:
+      "p.yaml:42:150 (covariates > #2 > infill > longest gap): expected the longest gap that is filled, found 3; write it like 3 days",
+  },
+  {
     title: "schema: a newer schema number",
     from: "covey: 1\n",
     to: "covey: 2\n",
@@ -85,7 +101,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "    themes: rain\n",
     name: "spec.unknown-key",
     message:
-      'p.yaml:37:5 (covariates > #1 > themes): expected one of the keys "name", "theme", "from", "second", "stations", "join", "window", "statistic", "complete", "unit", "departures", "allowed missing", found "themes"; did you mean "theme"?',
+      'p.yaml:37:5 (covariates > #1 > themes): expected one of the keys "name", "theme", "from", "second", "stations", "join", "infill", "window", "statistic", "complete", "unit", "departures", "allowed missing", found "themes"; did you mean "theme"?',
   },
   {
     title: "keys: key of the other branch",

@@ -99,6 +99,14 @@ test("completeness, unit, departures and allowed gaps", () => {
   });
 });
 
+test("infilling", () => {
+  const more = ", infill: { method: neighbour regression, longest gap: 3 days }";
+  expect(covariate("calendar year", "mean", more)).toMatchObject({
+    infill: { method: "regression", longest: 3 },
+  });
+  expect(covariate("calendar year", "mean")).not.toHaveProperty("infill");
+});
+
 test("base period", () => {
   const text = edited("prepare:", "prepare:\n  standardise: { base: 1991 to 2020 }").replace(
     "window: whole interval",
