@@ -40,6 +40,8 @@ export const FINDING_KINDS = [
   "flagged",
   "flat-run",
   "spike",
+  "transience",
+  "trap-dependence",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];
