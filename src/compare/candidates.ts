@@ -2,13 +2,17 @@ import type { Components } from "../components/result.ts";
 import { column } from "../data/matrix.ts";
 import { sampleSd } from "../math/quantile.ts";
 import type { ScreenOptions } from "../screen/options.ts";
+import { solveNull } from "../screen/path.ts";
 import { designWith, type ScreenProblem } from "../screen/problem.ts";
 import { type ProcedureSetting, runProcedure } from "../screen/procedure.ts";
+import { refitsOf } from "../screen/refits.ts";
 import type { ScreenResult } from "../screen/screen.ts";
+import { bestSmallSubset } from "../screen/subsets.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
 import { aicc, bic } from "../survival/criteria.ts";
 import type { NamedColumn } from "../survival/design.ts";
 import { type Fit, fitModel } from "../survival/fit.ts";
+import { cjsLikelihood } from "../survival/likelihood.ts";
 
 export type CandidateKey =
   | "constant"
@@ -17,6 +21,7 @@ export type CandidateKey =
   | "pruned covariates"
   | "chosen by animals"
   | "chosen by years"
+  | "best small subset"
   | "first component"
   | "components kept"
   | "components screened";
@@ -76,6 +81,16 @@ export function buildCandidates(
     add("pruned covariates", fitOf(pruned.map((name) => names.indexOf(name))), false);
   add("chosen by animals", screened.byAnimals.fit, true);
   add("chosen by years", screened.byYears.fit, true);
+  const setting: ProcedureSetting = {
+    intervals: problem.frame.intervals,
+    covariates: names.length,
+    interval: { minus2LogL: intervalFit.minus2LogL, parameters: intervalFit.parameters },
+    constantParameters: constantFit.parameters,
+    sampleSize,
+  };
+  const nothing = solveNull(problem, cjsLikelihood(problem.data, designWith(problem)));
+  const subset = bestSmallSubset(refitsOf(problem, nothing.x), setting, options);
+  if (subset !== undefined) add("best small subset", fitOf(subset.set), true);
   if (components === undefined) return out;
 
   const scores: ScreenProblem = { ...problem, covariates: componentCovariates(components) };
@@ -83,14 +98,13 @@ export function buildCandidates(
   const kept = Array.from({ length: components.kept }, (_, j) => j);
   if (components.labels.length > 0) add("first component", fitScores([0]), false);
   if (kept.length > 0 && kept.length <= room) add("components kept", fitScores(kept), false);
-  const setting: ProcedureSetting = {
-    intervals: problem.frame.intervals,
-    covariates: scores.covariates.length,
-    interval: { minus2LogL: intervalFit.minus2LogL, parameters: intervalFit.parameters },
-    constantParameters: constantFit.parameters,
-    sampleSize,
-  };
   if (scores.covariates.length > 0)
-    add("components screened", fitScores(runProcedure(scores, setting, options).byAnimals), true);
+    add(
+      "components screened",
+      fitScores(
+        runProcedure(scores, { ...setting, covariates: scores.covariates.length }, options).byAnimals,
+      ),
+      true,
+    );
   return out;
 }

@@ -1,5 +1,5 @@
 import { readFileSync } from "node:fs";
-import { basename, dirname, resolve } from "node:path";
+import { dirname, resolve } from "node:path";
 import { InputError } from "../errors.ts";
 import { type ReadPipeline, readPipeline } from "../spec/parse.ts";
 import { codeOf, machineError } from "./effects/machine.ts";
@@ -29,7 +29,7 @@ export function loadPipeline(file: string): Loaded {
       });
     throw machineError(error, "reading the pipeline file", file);
   }
-  const read = readPipeline(text, basename(file));
+  const read = readPipeline(text, file);
   const base = dirname(resolve(file));
   return {
     ...read,
