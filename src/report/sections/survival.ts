@@ -12,6 +12,7 @@ const NAMES: Readonly<Record<CandidateKey, string>> = {
   "all covariates": "all covariates",
   "pruned covariates": "covariates left after pruning",
   "chosen by animals": "chosen by the lasso, counting animals",
+  "best small subset": "best of all small subsets, by animals",
   "chosen by years": "chosen from the path, counting years",
   "first component": "first component",
   "components kept": "components kept",
