@@ -6,8 +6,6 @@ export interface Penalty {
    * Karush–Kuhn–Tucker conditions.
    */
   distance(k: number, x: number, gradient: number): number;
-  /** argmin_z ½ a (z − u)² + g_k(z), a > 0. */
-  prox(k: number, u: number, a: number): number;
   /** Slope of g_k on the side of x that `sign` names, where g_k is linear there; 0 for unpenalised coordinates. */
   slope(k: number, sign: number): number;
   /** False where g_k is 0 everywhere. */
@@ -28,10 +26,6 @@ export function weightedL1(lambda: number, weights: Float64Array): Penalty {
     },
     distance: (k, x, gradient) =>
       x === 0 ? Math.max(0, Math.abs(gradient) - bend(k)) : Math.abs(gradient + bend(k) * Math.sign(x)),
-    prox: (k, u, a) => {
-      const shrink = bend(k) / a;
-      return u > shrink ? u - shrink : u < -shrink ? u + shrink : 0;
-    },
     slope: (k, sign) => bend(k) * sign,
     penalised: (k) => weights[k] !== 0,
   };
@@ -40,7 +34,6 @@ export function weightedL1(lambda: number, weights: Float64Array): Penalty {
 export const noPenalty: Penalty = {
   value: () => 0,
   distance: (_k, _x, gradient) => Math.abs(gradient),
-  prox: (_k, u) => u,
   slope: () => 0,
   penalised: () => false,
 };
