@@ -9,6 +9,8 @@ import { type Matrix, pickColumns } from "../data/matrix.ts";
 import type { Effects } from "../effects/effects.ts";
 import { randomStream } from "../math/random.ts";
 import { screen } from "../screen/screen.ts";
+import { goodnessFindings } from "../survival/goodness-findings.ts";
+import { goodnessOfFit } from "../survival/goodness-of-fit.ts";
 import type { StudyResult } from "../tables/study-result.ts";
 import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
@@ -83,6 +85,11 @@ export async function runStages(
         )
       : undefined;
 
+  const { captures } = ingested;
+  const goodness =
+    goes("screen") && captures !== undefined ? goodnessOfFit(captures.counts, captures.histories) : undefined;
+  judged(goodness === undefined ? [] : goodnessFindings(goodness));
+
   effects.checkInterrupted();
   const posed = goes("screen") ? poseScreen(spec, ingested, matrix) : undefined;
   const animals = ingested.captures?.animals ?? Number.NaN;
@@ -109,6 +116,7 @@ export async function runStages(
       leftOut: set.leftOut,
       diagnosis: diagnosed?.diagnosis,
       components,
+      goodness,
       screened: screened?.result,
       comparison,
       findings,

@@ -102,6 +102,7 @@ export function readCountsTable(
   );
   const unknown = Number.NaN;
   return {
+    histories: undefined,
     counts,
     occasions,
     intervals: dated === undefined ? undatedIntervals(occasions, options.lengths) : undefined,

@@ -64,6 +64,7 @@ export function readDated(
       remedy: "check the dates of the occasions and how dates are written (captures.format)",
     });
   return {
+    histories,
     counts: countsFrom(histories, occasions.length),
     occasions,
     intervals: undefined,

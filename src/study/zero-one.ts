@@ -77,6 +77,7 @@ export function readZeroOne(
     };
   });
   return {
+    histories,
     counts: countsFrom(histories, occasions.length),
     occasions,
     intervals: dated === undefined ? undatedIntervals(occasions, options.lengths) : undefined,

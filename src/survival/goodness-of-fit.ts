@@ -40,7 +40,8 @@ export interface StratumSum extends GoodnessSum {
   readonly stratum: string | undefined;
   /** ĉ between animals, max(1, χ²/df); NaN where df is 0. */
   readonly betweenAnimals: number;
-  /** The same without the first component: the ĉ of the model that lets survival differ after first marking. */
+  /** The sum without the first component: the fit of the model that lets survival differ after first marking. */
+  readonly afterMarking: GoodnessSum;
   readonly betweenAnimalsAfterMarking: number;
 }
 
@@ -118,13 +119,14 @@ function componentSum(
 }
 
 function stratumSum(stratum: string | undefined, rows: readonly GoodnessRow[]): StratumSum {
+  const all = sumOf(rows);
+  const afterMarking = sumOf(rows.filter((row) => row.component !== COMPONENTS[0]));
   return {
     stratum,
-    ...sumOf(rows),
-    betweenAnimals: varianceInflation(sumOf(rows)),
-    betweenAnimalsAfterMarking: varianceInflation(
-      sumOf(rows.filter((row) => row.component !== COMPONENTS[0])),
-    ),
+    ...all,
+    betweenAnimals: varianceInflation(all),
+    afterMarking,
+    betweenAnimalsAfterMarking: varianceInflation(afterMarking),
   };
 }
 

@@ -13,6 +13,7 @@ import {
   rawMatrixTable,
   standardMatrixTable,
 } from "./covariate-tables.ts";
+import { goodnessTable } from "./goodness-table.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import { pathTable, recaptureTable, selectionTable, survivalTable } from "./survival-tables.ts";
@@ -20,7 +21,7 @@ import type { Table } from "./table.ts";
 
 /** Every table of a study, in the order in which a person would read them. */
 export function allTables(study: StudyResult): readonly Table[] {
-  const { diagnosis, components, screened, comparison } = study;
+  const { diagnosis, components, goodness, screened, comparison } = study;
   return [
     rawMatrixTable(study),
     standardMatrixTable(study),
@@ -34,6 +35,7 @@ export function allTables(study: StudyResult): readonly Table[] {
     ...(components
       ? [componentsTable(components), loadingsTable(components), scoresTable(components, study.matrix.rows)]
       : []),
+    ...(goodness ? [goodnessTable(goodness, study.occasions)] : []),
     ...(screened
       ? [
           recaptureTable(screened),

@@ -6,6 +6,7 @@ import type { CovariateMatrix, LeftOut } from "../covariates/result.ts";
 import type { Finding } from "../data/finding.ts";
 import type { Interval, Occasion } from "../data/occasion.ts";
 import type { ScreenResult } from "../screen/screen.ts";
+import type { GoodnessOfFit } from "../survival/goodness-of-fit.ts";
 
 /** Numbers caught at one occasion. */
 export interface Caught {
@@ -24,6 +25,8 @@ export interface StudyResult {
   readonly leftOut: readonly LeftOut[];
   readonly diagnosis: Diagnosis | undefined;
   readonly components: Components | undefined;
+  /** Fit of the general model; undefined without captures, or where the screen was not reached. */
+  readonly goodness: GoodnessOfFit | undefined;
   readonly screened: ScreenResult | undefined;
   readonly comparison: Comparison | undefined;
   readonly findings: readonly Finding[];
