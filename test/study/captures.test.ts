@@ -178,7 +178,10 @@ describe("three layouts of the same animals", () => {
         file("ring,age_at_ringing,fate,1,2,3", ...["a", "b", "c"].map((mark) => `${mark},adult,,1,0,1`)),
       ),
     ]);
-    expect(one).toEqual(many);
+    const [[group], singles] = [one.histories ?? [], many.histories ?? []];
+    expect({ ...one, histories: singles }).toEqual(many);
+    expect([group.number, singles.length]).toEqual([3, 3]);
+    expect(singles).toEqual(Array.from({ length: 3 }, () => ({ ...group, number: 1 })));
   });
 });
 
