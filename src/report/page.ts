@@ -1,4 +1,4 @@
-import { castOf } from "./cast.ts";
+import { type Cast, castOf } from "./cast.ts";
 import type { Figure } from "./figure.ts";
 import { figures } from "./figures.ts";
 import { type Html, html, markup } from "./html.ts";
@@ -60,10 +60,7 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
 <a class="skip" href="#verdict">To the verdict</a>
 ${strip(input)}
 <div class="sheet">
-<header><h1>${input.title}</h1>${facts(
-    input,
-    cast.themes.map((one) => one.name),
-  )}</header>
+<header><h1>${input.title}</h1>${facts(input, cast)}</header>
 <div class="body">
 <nav aria-label="Sections"><ol>${sections.map((one) => html`<li><a href="#${one.id}">${one.title}</a></li>`)}</ol></nav>
 <main>
@@ -87,7 +84,7 @@ function strip(input: ReportInput): Html {
   return html`<div class="run" aria-hidden="true">${input.intervals.map((one) => html`<i style="flex:${Number.isFinite(one.length) ? one.length : 1}"></i>`)}</div>`;
 }
 
-function facts(input: ReportInput, themes: readonly string[]): Html {
+function facts(input: ReportInput, cast: Cast): Html {
   const { screened } = input;
   const fact = (text: string, rest: string) => html`<li><b>${text}</b>${rest}</li>`;
   const first = input.occasions[0];
@@ -99,8 +96,8 @@ function facts(input: ReportInput, themes: readonly string[]): Html {
     Number.isFinite(input.animals) ? fact(counted(input.animals, "animal"), "") : html``,
     screened !== undefined ? fact(counted(screened.releases, "release"), "") : html``,
     fact(
-      `${whole(input.matrix.names.length)} of ${counted(input.covariates.length, "covariate")}`,
-      ` in the matrix: ${listed(themes)}`,
+      `${whole(input.matrix.names.length)} of ${counted(cast.members.length, "covariate")}`,
+      ` in the matrix: ${listed(cast.themes.map((one) => one.name))}`,
     ),
   ]}</ul>`;
 }

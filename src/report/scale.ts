@@ -50,3 +50,10 @@ export function spread(wanted: readonly number[], gap: number, low: number, high
   }
   return out;
 }
+
+/** The largest 1, 2 or 5 times a power of ten that is not above a positive value. */
+export function roundBelow(value: number): number {
+  const power = 10 ** Math.floor(Math.log10(value));
+  const lead = value / power;
+  return (lead >= 5 ? 5 : lead >= 2 ? 2 : 1) * power;
+}

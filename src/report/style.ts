@@ -94,8 +94,8 @@ button.copy{font-size:.82rem;margin:.5rem 0 0;border-color:var(--rule);color:var
 @media (prefers-reduced-motion:reduce){*{transition:none!important}}
 @media print{:root{color-scheme:light}body{background:#fff;font-size:10.5pt}nav,.skip,button,.tools,.walk,.pin{display:none!important}
 .sheet{padding:0;max-width:none}header{padding-top:1rem}section{padding:1rem 0}
-figure,details,table{break-inside:avoid}table{break-inside:auto}tr{break-inside:avoid}
+caption{background:none}figure,details,table{break-inside:avoid}table{break-inside:auto}tr{break-inside:avoid}
 figure{border:0;padding:.4rem 0;background:none}figure .scroll,figcaption{padding-left:0;padding-right:0}.scroll{overflow:visible}
-figure svg{min-width:0!important;max-width:100%!important;max-height:23cm}table{font-size:8pt;width:100%}th,td{padding:.2rem .35rem;white-space:normal!important}td.w,th.w{min-width:0}
+figure svg{min-width:0!important;max-width:100%!important;max-height:23cm}table{font-size:8pt;width:100%}th,td{padding:.2rem .35rem;white-space:normal!important}td.w,th.w,th.n{min-width:0}
 h2,h3{break-after:avoid}}
 `.trim();

@@ -32,6 +32,8 @@ export interface Made {
   /** Names to put in place of the first covariate, theme and station. */
   readonly hostile?: string;
   readonly survival?: boolean;
+  /** As from a counts table: no places, stations, map, tables or findings, values that came ready-made. */
+  readonly bare?: boolean;
 }
 
 interface Kind {
@@ -195,7 +197,15 @@ export async function reportInput(made: Made = {}): Promise<ReportInput> {
   const n = 20;
   const dated = made.dated ?? true;
   const { occasions, intervals } = time(n, dated, random);
-  const covariates = candidates(made.covariates ?? KINDS.length, intervals, made.hostile, random);
+  const covariates = candidates(made.covariates ?? KINDS.length, intervals, made.hostile, random).map(
+    (one) =>
+      made.bare
+        ? {
+            ...one,
+            values: one.values.map((value) => ({ ...value, period: undefined, daysDue: 0, daysCovered: 0 })),
+          }
+        : one,
+  );
   const prepared = prepareCovariates(covariates, intervals, {
     derive: [],
     transform: {},
@@ -220,12 +230,14 @@ export async function reportInput(made: Made = {}): Promise<ReportInput> {
     matrix,
     leftOut,
     shown: dated ? shownSeries(covariates, random) : [],
-    places: PLACES,
-    stations: stations(made.hostile),
-    map: land(),
+    places: made.bare ? [] : PLACES,
+    stations: made.bare ? [] : stations(made.hostile),
+    map: made.bare ? undefined : land(),
     warn: WARN,
-    findings: [...listed(made.hostile), ...findings.map((one) => ({ ...one, severity: "warn" as const }))],
-    tables: tables(matrix.names, matrix.rows, Array.from(matrix.standard.data)),
+    findings: made.bare
+      ? []
+      : [...listed(made.hostile), ...findings.map((one) => ({ ...one, severity: "warn" as const }))],
+    tables: made.bare ? [] : tables(matrix.names, matrix.rows, Array.from(matrix.standard.data)),
     record: JSON.stringify(
       {
         version: "0.1.0",

@@ -169,6 +169,7 @@ describe("other studies", () => {
   test.each([
     ["one covariate, one stratum", { covariates: 1, strata: ["all"], permutations: 0 }],
     ["no dates", { dated: false, permutations: 0 }],
+    ["a counts table: no dates, places, windows or findings", { dated: false, bare: true, permutations: 0 }],
   ])("%s", async (_name, made) => {
     const text = await renderPage(await reportInput(made));
     expect(text).toContain('id="figure-time-ribbon"');

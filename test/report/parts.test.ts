@@ -3,7 +3,7 @@ import { escapeText, html, markup } from "../../src/report/html.ts";
 import { brief, listed, percent, pText, show, whole } from "../../src/report/numbers.ts";
 import { ink, PALETTE, TOKENS, withVariables } from "../../src/report/palette.ts";
 import { pngUri } from "../../src/report/png.ts";
-import { spread, ticks } from "../../src/report/scale.ts";
+import { roundBelow, spread, ticks } from "../../src/report/scale.ts";
 import { tableDetails } from "../../src/report/table-html.ts";
 
 describe("numbers", () => {
@@ -105,6 +105,7 @@ describe("drawing", () => {
     expect(ticks(0, 1, 5)).toEqual([0, 0.2, 0.4, 0.6, 0.8, 1]);
     expect(ticks(-11.2, -4.9, 3)).toEqual([-10, -8, -6]);
     expect(ticks(3, 3, 5)).toEqual([3]);
+    expect([18, 20, 4.9, 0.7, 1].map(roundBelow)).toEqual([10, 20, 2, 0.5, 1]);
   });
 
   test("labels are moved apart and keep their order", () => {

@@ -95,7 +95,8 @@ function changes(data: readonly Point[]): Point[] {
   let last = Number.NEGATIVE_INFINITY;
   data.forEach((one, i) => {
     if (i > 0 && one.active === data[i - 1].active) return;
-    if ((i - last) * perStep < 18) return;
+    // too close: the later number is the one that stands from there on
+    if ((i - last) * perStep < 18) out.pop();
     out.push(one);
     last = i;
   });

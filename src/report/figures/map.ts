@@ -6,7 +6,7 @@ import type { MapLayer, ReportInput } from "../input.ts";
 import { brief, counted, listed, px } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { pngUri } from "../png.ts";
-import { extent, line, ticks, tickText } from "../scale.ts";
+import { extent, line, roundBelow, ticks, tickText } from "../scale.ts";
 
 const LEFT = 62;
 const TOP = 10;
@@ -201,7 +201,7 @@ function names(input: ReportInput, { x, y, width, height }: Frame): Html[] {
 }
 
 function scaleBar({ width, height, perKm }: Frame): Html {
-  const km = ticks(0, width / perKm / 3, 1).at(-1) || 1;
+  const km = roundBelow(width / perKm / 3);
   const [x0, y0] = [LEFT + 14, TOP + height - 16];
   return html`<rect x="${px(x0 - 7)}" y="${px(y0 - 20)}" width="${px(km * perKm + 14)}" height="28" rx="3" fill="${ink("panel")}" opacity="0.88"/>${segment(x0, y0, x0 + km * perKm, y0, "ink", 3)}${label(x0 + (km * perKm) / 2, y0 - 6, `${brief(km)} km`, { anchor: "middle" })}`;
 }

@@ -11,8 +11,10 @@ import { type TimeAxis, timeAxis, yearTicks } from "./axis-time.ts";
 
 const WIDTH = 1080;
 const LEFT = 60;
-const HIGH = 128;
-const PLOT = 78;
+const HIGH = 108;
+const PLOT = 58;
+/** A site that is a mean of sites is no place. */
+const MEAN = /^mean of/;
 
 /** Observed series, with the windows of the covariate they feed shaded behind. */
 export function seriesFigure(input: ReportInput, cast: Cast): Figure | undefined {
@@ -78,7 +80,7 @@ function panel(
     pen = true;
   }
   const unit = unitText(series.unit);
-  const head = `${series.variable}${unit === "" ? "" : ` (${unit})`} at ${series.site}, for ${covariate}`;
+  const head = `${series.variable}${unit === "" ? "" : ` (${unit})`}${MEAN.test(series.site) ? "," : " at"} ${series.site}, for ${covariate}`;
   return belongs(member, [
     member !== undefined && marker(member.theme, LEFT - 10, top + 10),
     label(LEFT, top + 14, fitted(head, WIDTH - LEFT)),

@@ -76,6 +76,6 @@ function group(kind: FindingKind, found: readonly Finding[]): Html {
 
 function item(one: Finding): Html {
   const value = one.value === undefined ? undefined : html`; value <code>${one.value}</code>`;
-  const times = one.count === undefined || one.count === 1 ? undefined : `; ${whole(one.count)} times`;
+  const times = one.count === undefined || one.count === 1 ? undefined : `; count ${whole(one.count)}`;
   return html`<li><div><p><b>${one.subject}</b></p>${one.where !== undefined && html`<p><code>${placeText(one.where)}</code></p>`}</div><div><p>${one.message}</p><p class="do"><span class="severity ${one.severity}">${sentence(SEVERITIES[one.severity])}</span>${value}${times}. To do: ${one.remedy}.</p></div></li>`;
 }

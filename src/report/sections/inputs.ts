@@ -58,7 +58,7 @@ export function inputsSection(input: ReportInput, cast: Cast, figures: readonly 
       cells: [
         covariateName(cast, member.name),
         member.theme.name,
-        member.definition,
+        member.definition.replace(/\bdegC\b/g, "°C"),
         unitText(member.unit) || "–",
         `${known.length} of ${values.length}`,
         known.length === 0 ? "–" : show(known.reduce((sum, one) => sum + one, 0) / known.length),

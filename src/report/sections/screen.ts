@@ -21,6 +21,7 @@ export function screenSection(input: ReportInput, cast: Cast, figures: readonly 
 <dl class="said"><div><dt>Counting years</dt><dd>${covariateList(cast, byYears.names)}</dd></div><div><dt>Counting animals</dt><dd>${covariateList(cast, byAnimals.names)}</dd></div></dl>
 ${figureBlock(figures, "criterion")}${figureBlock(figures, "coefficient-paths")}${walkBlock(input)}
 ${band(screened, cast)}
+${apart(screened, cast)}
 <h3>Evidence: by years beside by animals</h3>
 ${evidenceTable(screened, cast)}
 ${permutationWords(screened)}
@@ -32,6 +33,14 @@ ${weighedTable(screened, cast)}
 <h3>Certificates</h3>
 <ul><li>Largest violation of the optimality conditions over the path: ${show(worst)} of λ<sub>max</sub>.</li><li>${starts.agree} of ${starts.starts} random starts ended at the solution at the chosen penalty (λ = ${show(choice.rows[choice.index].lambda)}).</li><li>Weights from ${weights.by === "ridge" ? "a ridge fit, since the maximum is too ill-conditioned to be trusted" : "the maximum-likelihood fit"}; condition number of its information ${show(weights.condition)}.</li></ul>`,
   };
+}
+
+/** What the data cannot tell apart, and what was let go for it. */
+function apart(screened: ScreenResult, cast: Cast): Html | undefined {
+  const rivals = screened.rivals.filter((one) => one.others.length > 0);
+  const gone = screened.years.ambiguous.map((k) => screened.names[k]);
+  if (rivals.length === 0 && gone.length === 0) return undefined;
+  return html`<ul>${rivals.map((one) => html`<li>${covariateName(cast, one.chosen)} cannot be told from ${covariateList(cast, one.others)}: an exchange would cost next to nothing, and they tell much the same story.</li>`)}${gone.length > 0 && html`<li>Let go, because an unrelated covariate would have done as well: ${covariateList(cast, gone)}.</li>`}</ul>`;
 }
 
 function band(screened: ScreenResult, cast: Cast): Html | undefined {
