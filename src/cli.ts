@@ -83,6 +83,25 @@ program
   });
 
 program
+  .command("apply")
+  .argument("<recorded>", "the output folder of an earlier run")
+  .argument("<pipeline>", "pipeline file (YAML) with the same covariates over new years")
+  .description("put new years on the scale an earlier run recorded, and tell what is out of its range")
+  .option("--workers <number>", "worker threads; 1 for none", wholeNumber)
+  .option("--json", "print the result as JSON")
+  .option("--quiet", "no progress, no summary")
+  .addHelpText("after", "\nExample:\n  covey apply out/roost new-years.yaml")
+  .action(async (recorded: string, file: string, options: Common & { workers?: number }) => {
+    const [{ applyCommand }, terminal] = [await import("./commands/apply.ts"), await terminalFor(options)];
+    const asked = {
+      workers: options.workers ?? terminal.workers,
+      json: options.json ?? false,
+      from: process.cwd(),
+    };
+    print(await applyCommand(recorded, file, asked, terminal), options);
+  });
+
+program
   .command("verify")
   .argument("<folder>", "an output folder of run or apply")
   .description(

@@ -9,14 +9,15 @@ import { backTransformed, transformed } from "./transform.ts";
  * @param raw values in the original unit, in order of time
  * @param years their times as `yearIndex` gives them
  * @param before for a differenced column, the value in the interval before the first of `raw`
+ * @param rowName how an error names row t
  */
 export function applyRecipe(
   recipe: ColumnRecipe,
   raw: ArrayLike<number>,
   years: ArrayLike<number>,
   before = Number.NaN,
+  rowName: (t: number) => string = (t) => `row ${t + 1}`,
 ): Float64Array {
-  const rowName = (t: number) => `row ${t + 1}`;
   const shaped = transformed(raw, recipe.transform, recipe.name, rowName);
   const flat =
     recipe.detrend === "difference"

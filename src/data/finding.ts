@@ -42,6 +42,8 @@ export const FINDING_KINDS = [
   "spike",
   "transience",
   "trap-dependence",
+  "out-of-range",
+  "definition-differs",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -1,5 +1,7 @@
+import { preparationJson } from "../covariates/recorded.ts";
 import type { Effects, FileIdentity } from "../effects/effects.ts";
 import type { FileSet } from "../publish/disk.ts";
+import { jsonBytes } from "../publish/json.ts";
 import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
@@ -7,6 +9,7 @@ import type { ReportInput } from "../report/input.ts";
 import { allTables } from "../tables/all-tables.ts";
 import { nodeDisk } from "./effects.ts";
 import type { Loaded } from "./load.ts";
+import { RECIPES_FILE } from "./recorded.ts";
 import type { RunResult } from "./run.ts";
 import { positionRule, shownPlaces } from "./sensitive.ts";
 import { mapLayer, monthlyPicture } from "./shown.ts";
@@ -73,6 +76,7 @@ export async function buildOutput(
   const text = new TextEncoder();
   const step = effects.progress.start("drawing the page", 2);
   const files = new Map(written.files);
+  files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));
   files.set(PAGE_FILE, text.encode(await renderPage(input)));
   step.tick();
   for (const figure of await figures(input)) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));

@@ -15,6 +15,7 @@ const STATED: Readonly<Partial<Record<FindingKind, Severity>>> = {
   "layer-overlap": "stop",
   "place-outside": "stop",
   "constant-column": "stop",
+  "definition-differs": "stop",
 };
 
 /** The severity of each kind of finding where the pipeline file says nothing; `warn` unless stated above. */
