@@ -1,0 +1,114 @@
+import { fQuantile, fUpper } from "../math/distributions.ts";
+import type { Correlation, Rivals, YearsChoice } from "./years.ts";
+
+/** What the choice by random intervals needs beside the evidence. */
+export interface RandomYearsSetting {
+  /** Number of intervals n. */
+  readonly intervals: number;
+  /** Number of candidate covariates K. */
+  readonly covariates: number;
+  /** Survival coefficients that every set shares: 1 for the common survival, and the forced covariates. */
+  readonly spent: number;
+  /** α before it is divided among covariates. */
+  readonly alpha?: number;
+  /** Terms whose exchange costs less than this in D are rivals. */
+  readonly exchange?: number;
+}
+
+/** D(S): −2 log of the marginal likelihood of the set, σ ≥ 0 re-estimated. */
+export type Evidence = (set: readonly number[]) => number;
+
+const ALPHA = 0.045;
+const EXCHANGE = 3;
+const RELATED = 0.5;
+
+/**
+ * The choice that counts years, by random interval effects. D(S) is −2 log of the Laplace marginal likelihood, so that
+ * unexplained variation between years is in the model and raises the bar for everything. n intervals, |S| covariates:
+ *
+ * 1. Candidates: as given, |S| ≤ ⌊(n − 2)/3⌋.
+ * 2. Evidence: ν = n − |S| − 1, F_k = ν [exp((D(S∖k) − D(S))/n) − 1], p_k = P(F_{1,ν} > F_k).
+ * 3. Prune: drop the term with the largest p until every p < α_K = min(α, .1/K), α = .045.
+ * 4. Choose the set with the least D(S) + Σ_{j≤|S|} c_j, c_j = n log[1 + F_{α_K;1,n−j−1}/(n − j − 1)]. The empty set always
+ *    stands among them.
+ * 5. Rivals: where exchanging a chosen k for an unselected j costs less than 3 in D: "k or j" where |r| ≥ .5; where some
+ *    unrelated j would do as well, k is let go.
+ *
+ * `spent` takes the place of the 1 in the degrees of freedom where covariates are forced.
+ */
+export function chooseByRandomIntervals(
+  candidates: readonly (readonly number[])[],
+  evidence: Evidence,
+  setting: RandomYearsSetting,
+  correlation: Correlation,
+): YearsChoice {
+  const { intervals: n } = setting;
+  const alpha = Math.min(setting.alpha ?? ALPHA, 0.1 / setting.covariates);
+  const dfWith = (terms: number) => n - terms - setting.spent;
+  const deviance = remembered(evidence);
+  const prices = [0];
+  const price = (terms: number) => {
+    for (let j = prices.length; j <= terms; j++)
+      prices.push(prices[j - 1] + n * Math.log1p(fQuantile(1 - alpha, 1, dfWith(j)) / dfWith(j)));
+    return prices[terms];
+  };
+  const gainOf = (set: readonly number[]) =>
+    set.length === 0 ? 0 : deviance([]) - deviance(set) - price(set.length);
+
+  const weighed = new Map<string, { readonly set: readonly number[]; readonly gain: number }>();
+  for (const candidate of candidates) {
+    if (candidate.length > Math.floor((n - 2) / 3) || dfWith(candidate.length) < 1) continue;
+    const set = pruned(candidate, deviance, dfWith, n, alpha);
+    weighed.set(set.join(","), { set, gain: gainOf(set) });
+  }
+  const all = [...weighed.values()].sort((a, b) => b.gain - a.gain || a.set.length - b.set.length);
+  const best = all.length > 0 && all[0].gain > 0 ? all[0].set : [];
+  const ambiguous: number[] = [];
+  const rivals: Rivals[] = [];
+  for (const k of best) {
+    const rest = best.filter((one) => one !== k);
+    const close = Array.from({ length: setting.covariates }, (_, j) => j).filter(
+      (j) => !best.includes(j) && deviance([...rest, j]) - deviance(best) < (setting.exchange ?? EXCHANGE),
+    );
+    if (close.some((j) => Math.abs(correlation(k, j)) < RELATED)) ambiguous.push(k);
+    else if (close.length > 0) rivals.push({ chosen: k, others: close });
+  }
+  const chosen = best.filter((k) => !ambiguous.includes(k));
+  return { chosen, gain: Math.max(0, gainOf(chosen)), weighed: all, alpha, rivals, ambiguous };
+}
+
+function pruned(
+  candidate: readonly number[],
+  deviance: Evidence,
+  dfWith: (terms: number) => number,
+  n: number,
+  alpha: number,
+): readonly number[] {
+  let set = [...candidate].sort((a, b) => a - b);
+  while (set.length > 0) {
+    const df = dfWith(set.length);
+    const now = deviance(set);
+    const ps = set.map((k) => {
+      const without = deviance(set.filter((other) => other !== k));
+      return fUpper(df * Math.expm1((without - now) / n), 1, df);
+    });
+    const worst = ps.reduce((most, p, i) => (p > ps[most] ? i : most), 0);
+    if (ps[worst] < alpha) return set;
+    set = set.filter((_, i) => i !== worst);
+  }
+  return set;
+}
+
+/** Each set is fitted once, in whatever order its members come. */
+function remembered(evidence: Evidence): Evidence {
+  const known = new Map<string, number>();
+  return (set) => {
+    const sorted = [...set].sort((a, b) => a - b);
+    const key = sorted.join(",");
+    const before = known.get(key);
+    if (before !== undefined) return before;
+    const value = evidence(sorted);
+    known.set(key, value);
+    return value;
+  };
+}
