@@ -48,24 +48,48 @@ export interface PermutationResult {
  * not depend on how replicates are cut into chunks.
  */
 export function permuteYears(chunk: PermutationChunk): PermutationOutcome[] {
-  const { problem, setting, options, seed } = chunk;
   return Array.from({ length: chunk.to - chunk.from }, (_, i) => {
-    const order = randomStream(seed, "permutation of years", chunk.from + i).permutation(setting.intervals);
-    const covariates = problem.covariates.map((one) => ({
-      name: one.name,
-      values: Float64Array.from(order, (t) => one.values[t]),
-    }));
-    const result = runProcedure({ ...problem, covariates }, setting, options);
-    const share = (set: readonly number[]) =>
-      (result.refit([]) - result.refit(set)) / (result.refit([]) - setting.interval.minus2LogL);
-    return {
-      gain: result.byYears.gain,
-      chosenByYears: result.byYears.chosen.length,
-      chosenByAnimals: result.byAnimals.length,
-      shareByYears: share(result.byYears.chosen),
-      shareByAnimals: share(result.byAnimals),
-    };
+    const random = randomStream(chunk.seed, "permutation of years", chunk.from + i);
+    return outcomeInOrder(chunk, random.permutation(chunk.setting.intervals));
   });
+}
+
+/** What the procedure finds when interval t is given the covariates of interval order[t]. */
+export function outcomeInOrder(
+  { problem, setting, options }: Pick<PermutationChunk, "problem" | "setting" | "options">,
+  order: ArrayLike<number>,
+): PermutationOutcome {
+  const covariates = problem.covariates.map((one) => ({
+    name: one.name,
+    values: Float64Array.from(order, (t) => one.values[t]),
+  }));
+  const result = runProcedure({ ...problem, covariates }, setting, options);
+  const share = (set: readonly number[]) =>
+    (result.refit([]) - result.refit(set)) / (result.refit([]) - setting.interval.minus2LogL);
+  return {
+    gain: result.byYears.gain,
+    chosenByYears: result.byYears.chosen.length,
+    chosenByAnimals: result.byAnimals.length,
+    shareByYears: share(result.byYears.chosen),
+    shareByAnimals: share(result.byAnimals),
+  };
+}
+
+/**
+ * The n − 1 circular shifts of the years: they keep the autocorrelation of the covariates, which permutation destroys, but are
+ * so few that their share, (1 + shifts whose gain is at least the observed one) / n, is a description and not a test.
+ */
+export function shiftYears(
+  study: Pick<PermutationChunk, "problem" | "setting" | "options">,
+  gain: number,
+): number {
+  const n = study.setting.intervals;
+  let reached = 1;
+  for (let shift = 1; shift < n; shift++) {
+    const order = Int32Array.from({ length: n }, (_, t) => (t + shift) % n);
+    if (outcomeInOrder(study, order).gain >= gain) reached++;
+  }
+  return reached / n;
 }
 
 export function summarisePermutations(

@@ -5,12 +5,14 @@ import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysi
 import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
 import type { RecaptureComparison } from "../survival/recapture-choice.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
+import { type InfluenceRow, leaveOneIntervalOut } from "./influence.ts";
 import type { ScreenOptions } from "./options.ts";
 import type { LassoPath } from "./path.ts";
 import {
   type PermutationOutcome,
   type PermutationResult,
   type permuteYears,
+  shiftYears,
   summarisePermutations,
 } from "./permutation.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
@@ -50,6 +52,10 @@ export interface ScreenResult {
   readonly weighed: readonly { readonly names: readonly string[]; readonly gain: number }[];
   /** Undefined if no permutation was asked for. */
   readonly permutation: PermutationResult | undefined;
+  /** Share of circular shifts of the years that do as well; a description. Undefined without permutations. */
+  readonly shifts: number | undefined;
+  /** The choices with one interval left out at a time; empty without permutations. */
+  readonly influence: readonly InfluenceRow[];
 }
 
 const STARTS = 12;
@@ -128,6 +134,8 @@ export async function screen(
     })),
     weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
+    shifts: outcomes.length === 0 ? undefined : shiftYears({ problem, setting, options }, found.byYears.gain),
+    influence: outcomes.length === 0 ? [] : leaveOneIntervalOut(problem, setting, options),
   };
   return { result, findings: screenFindings(result) };
 }

@@ -16,7 +16,14 @@ import {
 import { goodnessTable } from "./goodness-table.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
-import { pathTable, recaptureTable, selectionTable, survivalTable } from "./survival-tables.ts";
+import {
+  evidenceTable,
+  influenceTable,
+  pathTable,
+  recaptureTable,
+  selectionTable,
+  survivalTable,
+} from "./survival-tables.ts";
 import type { Table } from "./table.ts";
 
 /** Every table of a study, in the order in which a person would read them. */
@@ -42,6 +49,8 @@ export function allTables(study: StudyResult): readonly Table[] {
           pathTable(screened),
           selectionTable(screened),
           survivalTable(screened, study.intervals),
+          evidenceTable(screened),
+          influenceTable(screened, study.intervals),
         ]
       : []),
     ...(comparison

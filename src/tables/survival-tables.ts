@@ -138,3 +138,64 @@ export function survivalTable(screened: ScreenResult, intervals: readonly Interv
     ),
   };
 }
+
+export function influenceTable(screened: ScreenResult, intervals: readonly Interval[]): Table {
+  const same = (names: readonly string[]) =>
+    names.length === screened.byYears.names.length &&
+    names.every((name) => screened.byYears.names.includes(name));
+  return {
+    name: "influence",
+    title: "The choices with one interval left out",
+    description:
+      "Each interval in turn is given a survival of its own, columns are standardised anew, and weights, paths and choices are made again.",
+    columns: [
+      text("left_out", "left out", "interval left out"),
+      text("chosen_by_years", "chosen by years", "covariates chosen by years without it"),
+      truth("same_by_years", "as before", "the choice by years is the same as with all intervals"),
+      text("chosen_by_animals", "chosen by animals", "covariates chosen by animals without it"),
+      number("gain", "gain", "1", "gain of the choice by years without it"),
+    ],
+    rows: screened.influence.map((one) => [
+      intervals[one.interval].name,
+      one.byYears.join("; ") || "nothing",
+      same(one.byYears),
+      one.byAnimals.join("; ") || "nothing",
+      one.gain,
+    ]),
+  };
+}
+
+export function evidenceTable(screened: ScreenResult): Table {
+  const { permutation, years, shifts } = screened;
+  const rows: (readonly [string, number, string])[] = [
+    ["gain of the choice by years", years.gain, "n log of the deviance ratio, less its price"],
+    ["p each term had to pass", years.alpha, "min(.045, .1/K)"],
+  ];
+  if (permutation !== undefined)
+    rows.push(
+      ["permutations of years", permutation.replicates, "weights, paths and choices repeated in each"],
+      ["family-wise p", permutation.p, "of the whole procedure that counts years"],
+      ["share choosing something, by years", permutation.falseByYears, "with years permuted"],
+      ["share choosing something, by animals", permutation.falseByAnimals, "with years permuted"],
+      ["deviance explained, median by years", permutation.medianShareByYears, "with years permuted"],
+      ["deviance explained, median by animals", permutation.medianShareByAnimals, "with years permuted"],
+      ["deviance explained, 95 % by animals", permutation.shareByAnimals95, "with years permuted"],
+    );
+  if (shifts !== undefined)
+    rows.push([
+      "share of circular shifts that do as well",
+      shifts,
+      "keeps autocorrelation; a description, not a test",
+    ]);
+  return {
+    name: "evidence",
+    title: "Evidence counted in years",
+    description: "The numbers the verdict is made of.",
+    columns: [
+      text("quantity", "quantity", "what was measured"),
+      number("value", "value", "1", "its value"),
+      text("note", "note", "what it means"),
+    ],
+    rows,
+  };
+}
