@@ -1,17 +1,13 @@
 import type { Matrix } from "../data/matrix.ts";
 import { choleskyInPlace, choleskySolve } from "../math/cholesky.ts";
 import { tQuantile } from "../math/distributions.ts";
-import { noPenalty } from "../solve/penalty.ts";
-import { proximalNewton } from "../solve/proximal-newton.ts";
 import type { StopReason } from "../solve/smooth.ts";
-import { covariateSurvival } from "./design.ts";
 import { effectsDesign, type RandomIntervalProblem } from "./effects-design.ts";
 import { gradientTolerance, totalReleases } from "./fit.ts";
+import { jointMode } from "./joint-mode.ts";
 import { type Laplace, laplaceOf } from "./laplace.ts";
 import { type LaplaceMaximum, maximiseLaplace } from "./laplace-maximum.ts";
-import { cjsLikelihood } from "./likelihood.ts";
-import { restrictedVariance } from "./random-interval-reml.ts";
-import { designOf } from "./recapture-choice.ts";
+import { restrictedSigma } from "./random-interval-reml.ts";
 
 /** One coefficient of a random-interval fit. */
 export interface RandomIntervalCoefficient {
@@ -63,27 +59,17 @@ export function maximiseRandomInterval(
   const d = laplace.dimension;
   const options = { tolerance: 1e-8 * Math.max(100, totalReleases(problem.data)), iterations: 200 };
   // without random effects first: an ordinary fit, where the derivative in σ² says whether there is anything to find
-  const ordinary = proximalNewton(
-    cjsLikelihood(
-      problem.data,
-      designOf(
-        problem.frame,
-        covariateSurvival(
-          problem.frame,
-          which.map((k) => problem.covariates[k]),
-        ),
-        problem.recapture,
-      ),
-    ),
-    noPenalty,
-    new Float64Array(d),
-    { tolerance: gradientTolerance(problem.data), iterations: 500 },
+  const ordinary = jointMode(
+    laplace,
+    { theta: new Float64Array(d), effects: new Float64Array(n) },
+    0,
+    gradientTolerance(problem.data),
   );
-  const none = laplace.at(ordinary.x, 0, new Float64Array(n));
+  const none = laplace.at(ordinary.theta, 0, ordinary.effects);
   const step = -none.gradient[d] / none.varianceInformation;
   // Scoring from 0 falls short, since the information on σ² is largest there.
   const variance = Math.min(4, Math.max(0, 2 * step));
-  const first = variance > 0 ? laplace.at(ordinary.x, variance, scaledTangent(none, variance)) : none;
+  const first = variance > 0 ? laplace.at(ordinary.theta, variance, scaledTangent(none, variance)) : none;
   const found = maximiseLaplace(laplace, Number.isFinite(first.value) ? first : none, options);
   const best =
     found.point.value <= none.value
@@ -117,7 +103,8 @@ export function fitRandomInterval(
   const model = effectsDesign(problem, which);
   const maximum = maximiseRandomInterval(problem, which);
   const { laplace } = maximum;
-  const variance = restrictedVariance(problem.data, model, maximum.point);
+  const sigmaReml = restrictedSigma(problem.data, laplace, maximum.point);
+  const variance = sigmaReml * sigmaReml;
   const held = maximiseLaplace(laplace, laplace.at(maximum.point.theta, variance, maximum.point.effects), {
     tolerance: 1e-8 * Math.max(100, totalReleases(problem.data)),
     iterations: 200,
@@ -136,7 +123,7 @@ export function fitRandomInterval(
     }),
     covariance: { rows: d, columns: d, data: covariance },
     sigma: Math.sqrt(maximum.point.variance),
-    sigmaReml: Math.sqrt(variance),
+    sigmaReml,
     modes: held.point.effects,
     df,
     stopped: maximum.stopped === "optimum" ? held.stopped : maximum.stopped,

@@ -10,9 +10,9 @@ import {
 import { effectsDesign, type RandomIntervalProblem } from "../../src/survival/effects-design.ts";
 import { laplaceOf } from "../../src/survival/laplace.ts";
 import { cjsLikelihood } from "../../src/survival/likelihood.ts";
+import { rowLikelihood } from "../../src/survival/row-likelihood.ts";
 import { maximiseRandomInterval } from "../../src/survival/random-interval.ts";
 import { sufficientStatistics } from "../../src/survival/statistics.ts";
-import { thirdDerivatives } from "../../src/survival/third-derivatives.ts";
 import { countsOf } from "../support/reference.ts";
 
 const normals = (n: number, replicate: number) => {
@@ -78,10 +78,10 @@ describe("third derivatives", () => {
               zeta[r] += column[r] * x[b + n + k];
             });
           }
-          const third = thirdDerivatives(problem.data, design);
+          const third = rowLikelihood(problem.data, design);
           const [byS, byR] = [new Float64Array(rows), new Float64Array(rows)];
           third.at(eta, zeta);
-          third.add(u, byS, byR);
+          third.addThird(u, byS, byR);
           const which = Int32Array.from({ length: n }, (_, t) => b + t);
           const form = (at: Float64Array) => {
             const w = new Float64Array(n * n);
