@@ -83,6 +83,18 @@ program
   });
 
 program
+  .command("start")
+  .argument("<folder>", "a folder of data files")
+  .description("write a first pipeline file: what was recognised, and as comments what was not")
+  .option("--to <file>", "the pipeline file to write", "pipeline.yaml")
+  .option("--quiet", "no progress, no summary")
+  .addHelpText("after", "\nExample:\n  covey start sample-data --to first.yaml")
+  .action(async (folder: string, options: Common & { to: string }) => {
+    const { startCommand } = await import("./commands/start.ts");
+    print(await startCommand(folder, { to: options.to }, await terminalFor(options)), options);
+  });
+
+program
   .command("apply")
   .argument("<recorded>", "the output folder of an earlier run")
   .argument("<pipeline>", "pipeline file (YAML) with the same covariates over new years")

@@ -11,6 +11,7 @@ export type Role =
   | "fate"
   | "effort"
   | "occasion"
+  | "interval"
   | "start"
   | "end"
   | "id"
@@ -28,6 +29,7 @@ export type TableKind =
   | "zero-one captures"
   | "occasions"
   | "stations"
+  | "ready-made"
   | "unknown";
 
 /** A guess of a value column from its name. */
@@ -44,6 +46,7 @@ const NAMES: readonly (readonly [RegExp, Role])[] = [
   [/^(fate|status|outcome)$/i, "fate"],
   [/(effort|net_?hours|trap_?nights|hours)$/i, "effort"],
   [/^(visit|occasion|session)$/i, "occasion"],
+  [/^interval$/i, "interval"],
   [/^(from|start|begin|first|first_day)$/i, "start"],
   [/^(to|end|until|last|last_day)$/i, "end"],
   [/^(lon|long|longitude|x)$/i, "longitude"],
@@ -111,6 +114,11 @@ export function guessRoles(
     if (!has("animal")) take("animal", ({ distinct, count }) => distinct === count);
     strata(columns, roles);
     return { roles, kind: "zero-one captures" };
+  }
+  if (has("interval") && !has("date")) {
+    for (const [i, column] of columns.entries())
+      if (roles[i] === "other" && column.type === "number") roles[i] = "value";
+    if (has("value")) return { roles, kind: "ready-made" };
   }
   if (has("longitude") && has("latitude") && !has("date")) {
     if (!has("id")) roles[roles.indexOf(has("station") ? "station" : "other")] = "id";

@@ -20,6 +20,7 @@ export function stanzaFor(input: StanzaInput): string {
     "zero-one captures": zeroOneStanza,
     occasions: occasionsStanza,
     stations: stationsStanza,
+    "ready-made": readyMadeStanza,
     unknown: () => ["# neither records nor captures, occasions or stations were recognised in this file"],
   }[input.kind](input);
   return `${lines.join("\n")}\n`;
@@ -82,15 +83,16 @@ function longStanza(input: StanzaInput): string[] {
 
 function wideStanza(input: StanzaInput): string[] {
   const values = input.columns.filter((_, i) => input.roles[i] === "value");
+  const { variable, unit, kind, sure } = guessValue(stem(input.path));
   return [
     "records:",
     `  - files: [${yamlText(input.path)}]`,
     "    layout: wide",
     dateLine(columnOf(input, "date")),
     ...missingLine(input.missing),
-    "    variable: rain  # name, unit and kind are not known: write them",
-    "    unit: mm",
-    "    kind: total",
+    `    variable: ${yamlText(variable)}  # ${sure ? "guessed from the file's name: check unit and kind" : "name, unit and kind are not known: write them"}`,
+    `    unit: ${yamlText(unit)}`,
+    `    kind: ${kind}`,
     "    columns:",
     ...values.map(({ name }) => `      ${yamlText(name)}: ${yamlText(name)}`),
   ];
@@ -106,10 +108,13 @@ function strataList(input: StanzaInput): string {
 function lostLine(input: StanzaInput): string[] {
   const fate = columnOf(input, "fate");
   if (fate === undefined) return [];
-  const values = fate.examples.map(yamlText).join(", ");
-  return [
-    `  lost: { column: ${yamlText(fate.name)}, values: [${values}] }  # keep those that mean lost on capture`,
-  ];
+  // An animal that was let go is not lost; to count it as lost would take it out of every later occasion.
+  const values = fate.examples
+    .filter((one) => !/releas|alive|live|free|^ok$|normal/i.test(one))
+    .map(yamlText);
+  const comment = "  # keep those that mean lost on capture";
+  if (values.length === 0) return [`  # lost: { column: ${yamlText(fate.name)}, values: [] }${comment}`];
+  return [`  lost: { column: ${yamlText(fate.name)}, values: [${values.join(", ")}] }${comment}`];
 }
 
 function capturesStanza(input: StanzaInput): string[] {
@@ -171,6 +176,18 @@ function stationsStanza(input: StanzaInput): string[] {
       const column = columnOf(input, key);
       return column === undefined ? [] : [`  ${key}: ${yamlText(column.name)}`];
     }),
+  ];
+}
+
+function readyMadeStanza(input: StanzaInput): string[] {
+  const columns = input.columns.filter((_, i) => input.roles[i] === "value");
+  return [
+    "ready-made:",
+    `  ${yamlText(stem(input.path))}:`,
+    `    file: ${yamlText(input.path)}`,
+    `    interval: ${yamlText(columnOf(input, "interval")?.name ?? "interval")}`,
+    "    columns:",
+    ...columns.map(({ name }) => `      ${yamlText(name)}: { unit: "1" }  # write the unit; 1 for counts`),
   ];
 }
 
