@@ -67,9 +67,3 @@ export function castOf(input: ReportInput): Cast {
 export function unitText(unit: string): string {
   return unit === "" || unit === "1" ? "" : unit.replace(/\bdegC\b/g, "°C").replace(/^percent$/, "%");
 }
-
-/** `winter rain (mm)`. */
-export function nameWithUnit(member: Pick<Member, "name" | "unit">): string {
-  const unit = unitText(member.unit);
-  return unit === "" ? member.name : `${member.name} (${unit})`;
-}

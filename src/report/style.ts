@@ -10,7 +10,7 @@ export const STYLE = `
 *{box-sizing:border-box}
 [hidden]{display:none!important}
 html{scroll-padding-top:1rem;-webkit-text-size-adjust:100%}
-body{margin:0;background:var(--page);color:var(--ink);font:16px/1.55 ${SANS};font-variant-numeric:tabular-nums}
+body{margin:0;overflow-wrap:anywhere;background:var(--page);color:var(--ink);font:16px/1.55 ${SANS};font-variant-numeric:tabular-nums}
 a{color:var(--mark)}
 :focus-visible{outline:3px solid var(--mark);outline-offset:2px;border-radius:2px}
 .skip{position:absolute;left:-99rem}.skip:focus{left:1rem;top:1rem;background:var(--panel);padding:.4rem .8rem;z-index:5}
@@ -55,7 +55,7 @@ figcaption b{display:block;color:var(--ink);font-family:${SERIF};font-size:1.08r
 .grid{margin:1rem 0 1.6rem}
 .scroll{overflow-x:auto;overflow-y:hidden;max-width:100%;background:linear-gradient(90deg,var(--panel) 30%,transparent) left/3rem 100% no-repeat local,linear-gradient(270deg,var(--panel) 30%,transparent) right/3rem 100% no-repeat local,linear-gradient(90deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) left/.8rem 100% no-repeat,linear-gradient(270deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) right/.8rem 100% no-repeat}
 .scroll{background-color:var(--panel)}.grid .scroll{width:fit-content}
-table{border-collapse:collapse;font-size:.9rem;line-height:1.4}
+table{border-collapse:collapse;overflow-wrap:normal;font-size:.9rem;line-height:1.4}
 caption{text-align:left;background:var(--page);font-family:${SERIF};font-weight:600;font-size:1.08rem;padding:0 0 .5rem}
 th,td{text-align:left;vertical-align:top;padding:.36rem .6rem;border-bottom:1px solid var(--rule)}
 thead th{font-weight:600;border-bottom:2px solid var(--rule);vertical-align:bottom;background:var(--wash)}
@@ -66,7 +66,7 @@ td.w,th.w{min-width:11rem}
 .n small{white-space:normal;display:inline-block;max-width:6rem;line-height:1.25}
 td small{color:var(--muted)}
 tr.best td{background:var(--wash)}
-.cov{white-space:nowrap;border-radius:2px}
+.cov{border-radius:2px}td .cov{white-space:nowrap}
 .cov svg{width:.8em;height:.8em;margin-right:.45em;vertical-align:-.03em;overflow:visible}
 .cov[role=button]{cursor:pointer;text-decoration:underline dotted var(--muted);text-underline-offset:.22em}
 .cov[aria-pressed=true]{background:var(--wash);outline:2px solid var(--mark)}

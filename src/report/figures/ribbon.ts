@@ -40,7 +40,7 @@ export function ribbon(input: ReportInput, cast: Cast): Figure | undefined {
   return {
     name: "time-ribbon",
     title: "The time ribbon",
-    caption: `${input.caught.length > 0 ? "Above: animals caught at each occasion, newly marked (solid) and seen again (open). " : ""}The band is the run of intervals, each from one occasion to the next. ${rest}`,
+    caption: `${input.caught.length > 0 ? "Above: animals caught at each occasion, newly marked (solid) and seen again (open). " : ""}The band is the run of intervals, each from one occasion to the next. ${rest}${derived(cast, input)}`,
     svg: drawing(WIDTH, height, "The time ribbon", says, body),
   };
 }
@@ -137,4 +137,11 @@ function rowOf(input: ReportInput, cast: Cast, axis: TimeAxis, row: Row, y: numb
     marks.map((one) => one as Html),
     html`<title>${listed(row.covariates.map((one) => one.name))}</title>`,
   ]);
+}
+
+/** Covariates made from others have no window of their own. */
+function derived(cast: Cast, input: ReportInput): string {
+  const own = new Set(input.covariates.map((one) => one.name));
+  const made = cast.members.map((one) => one.name).filter((name) => !own.has(name));
+  return made.length === 0 ? "" : ` Made from others, and so without a row: ${listed(made)}.`;
 }

@@ -6,6 +6,7 @@ import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { influenceBlock } from "./influence.ts";
 import { walkBlock } from "./walk.ts";
 
 export function screenSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
@@ -30,6 +31,7 @@ ${effectsTable(input, cast, byYears, "What the choice by years says, refitted wi
 ${byAnimals.names.join("\n") !== byYears.names.join("\n") && effectsTable(input, cast, byAnimals, "What the choice by animals says, refitted without penalty")}
 <p>These intervals take the choice as if it had been made before looking, and so are too narrow; they show size and direction. No F and no p is given for what was chosen on these data.</p>
 ${weighedTable(screened, cast)}
+${influenceBlock(input, cast)}
 <h3>Certificates</h3>
 <ul><li>Largest violation of the optimality conditions over the path: ${show(worst)} of λ<sub>max</sub>.</li><li>${starts.agree} of ${starts.starts} random starts ended at the solution at the chosen penalty (λ = ${show(choice.rows[choice.index].lambda)}).</li><li>Weights from ${weights.by === "ridge" ? "a ridge fit, since the maximum is too ill-conditioned to be trusted" : "the maximum-likelihood fit"}; condition number of its information ${show(weights.condition)}.</li></ul>`,
   };
@@ -92,10 +94,10 @@ function evidenceTable(screened: ScreenResult, cast: Cast): Html {
   );
 }
 
-function permutationWords({ permutation }: ScreenResult): Html {
+function permutationWords({ permutation, shifts }: ScreenResult): Html {
   if (permutation === undefined)
     return html`<p class="note">No permutation of years was run, so nothing above is tested.</p>`;
-  return html`<p>Each of ${counted(permutation.replicates, "permutation")} gave the intervals each other's covariates and repeated everything: weights, path, both choices. The family-wise p is the share of permutations that found at least as much, the study itself counted in. ĉ between years above 1 says that survival varies between years beyond what the chosen covariates explain.</p>`;
+  return html`<p>Each of ${counted(permutation.replicates, "permutation")} gave the intervals each other's covariates and repeated everything: weights, path, both choices. The family-wise p is the share of permutations that found at least as much, the study itself counted in. ĉ between years above 1 says that survival varies between years beyond what the chosen covariates explain.${shifts !== undefined && ` Of the circular shifts of the years, which keep whatever runs on from year to year, ${percent(shifts)} do as well; that is a description and no test.`}</p>`;
 }
 
 /** Effects per sd and, where the recipe allows, per unit of the covariate as it was recorded. */

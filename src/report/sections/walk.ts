@@ -3,16 +3,6 @@ import { type Html, html, markup } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { extent } from "../scale.ts";
 
-/** What the script needs to walk the path: which covariates stand at each λ, and the survival they give. */
-export interface Walk {
-  readonly lambdas: readonly number[];
-  /** Covariate indices of the page. */
-  readonly active: readonly (readonly number[])[];
-  /** Per step, survival of the first stratum by interval, three digits. */
-  readonly survival: readonly (readonly number[])[];
-  readonly start: number;
-}
-
 /** A slider along the path; hidden until the script is there to move it. */
 export function walkBlock(input: ReportInput): Html | undefined {
   const { screened, matrix } = input;
