@@ -26,7 +26,7 @@ export function influenceBlock(input: ReportInput, cast: Cast): Html | undefined
         ],
       }));
   return html`<h3>One interval left out at a time</h3>
-<p>Counting years, the choice is the same with ${same} of ${counted(rows.length, "interval")} left out. An interval that changes it deserves a look at what happened in it.</p>
+<p>Leaving out each of the ${counted(rows.length, "interval")} in turn, the choice that counts years stays the same ${same} times. An interval that changes it deserves a look at what happened in it.</p>
 ${grid(
   cast,
   "What is chosen with one interval left out",
