@@ -1,7 +1,7 @@
 import { preparationJson } from "../covariates/recorded.ts";
 import type { Effects, FileIdentity } from "../effects/effects.ts";
 import type { FileSet } from "../publish/disk.ts";
-import { jsonBytes } from "../publish/json.ts";
+import { jsonBytes, jsonBytes } from "../publish/json.ts";
 import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
@@ -76,11 +76,13 @@ export async function buildOutput(
   const text = new TextEncoder();
   const step = effects.progress.start("drawing the page", 2);
   const files = new Map(written.files);
-  files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));
-  files.set(PAGE_FILE, text.encode(await renderPage(input)));
+  const drawn = await figures(input);
   step.tick();
-  for (const figure of await figures(input)) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
+  files.set(PAGE_FILE, text.encode(await renderPage(input, drawn)));
   step.tick();
   step.done();
+  for (const figure of drawn) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
+  const captions = drawn.map(({ name, title, caption }) => ({ file: `${name}.svg`, title, caption }));
+  files.set("figures/captions.json", jsonBytes(captions));
   return { files: withRecord({ ...facts, outputs: files }), neutralised: written.neutralised };
 }
