@@ -42,6 +42,12 @@ export interface Laplace {
 
 /** Largest derivative in z = ε√Δ/σ at a mode. */
 const MODE_TOLERANCE = 1e-9;
+/**
+ * Least pivot of I + σ² D^½ W D^½ at which the approximation is used. Below 1 the likelihood bends the wrong way (an
+ * interval whose animals were hardly seen again); towards 0 the posterior has no single top and the approximation,
+ * not the likelihood, would run to infinity.
+ */
+const LEAST_PIVOT = 0.1;
 
 /**
  * Marginal likelihood of the random interval effects ε_t ~ N(0, σ²/Δ_t) by Laplace's approximation (Tierney & Kadane
@@ -178,7 +184,10 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     rowsOf.curvature(true);
     if (!factorise(variance)) return failed;
     let halfLogDet = 0;
-    for (let t = 0; t < n; t++) halfLogDet += Math.log(factor[t * n + t]);
+    for (let t = 0; t < n; t++) {
+      if (factor[t * n + t] ** 2 < LEAST_PIVOT) return failed;
+      halfLogDet += Math.log(factor[t * n + t]);
+    }
 
     const [survival, recapture] = [new Float64Array(rows), new Float64Array(rows)];
     const mixed = new Float64Array(d * n); // f_θε

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { InputError } from "../../src/errors.ts";
 import { fUpper } from "../../src/math/distributions.ts";
 import { mean, sampleSd } from "../../src/math/quantile.ts";
 import { type Random, randomStream } from "../../src/math/random.ts";
@@ -152,6 +153,16 @@ function chooseAll(problem: ScreenProblem): Record<string, readonly number[]> {
   return out;
 }
 
+/** Undefined where a path refuses a data set for want of an optimum; such data sets are dropped for all rules and counted. */
+function attempt<T>(run: () => T): T | undefined {
+  try {
+    return run();
+  } catch (error) {
+    if (error instanceof InputError && error.facts.name === "screen.no-optimum") return undefined;
+    throw error;
+  }
+}
+
 /** Runs one row and prints, per rule, the shares of the outcomes named. */
 function row(
   name: string,
@@ -159,13 +170,14 @@ function row(
   outcomes: Readonly<Record<string, (chosen: readonly number[]) => boolean>>,
 ): Record<string, Record<string, number>> {
   const chosen = Array.from({ length: REPLICATES }, (_, r) =>
-    chooseAll(make(randomStream(30_000, name, FIRST + r))),
-  );
+    attempt(() => chooseAll(make(randomStream(30_000, name, FIRST + r)))),
+  ).filter((one) => one !== undefined);
+  const dropped = REPLICATES - chosen.length;
   const shares: Record<string, Record<string, number>> = {};
   for (const rule of Object.keys(chosen[0])) {
     shares[rule] = {};
     for (const [what, holds] of Object.entries(outcomes))
-      shares[rule][what] = chosen.filter((one) => holds(one[rule])).length / REPLICATES;
+      shares[rule][what] = chosen.filter((one) => holds(one[rule])).length / chosen.length;
   }
   const text = Object.entries(shares).map(
     ([rule, found]) =>
@@ -173,7 +185,9 @@ function row(
         .map(([what, share]) => `${what} ${share.toFixed(3)}`)
         .join("  ")}`,
   );
-  console.log(`${name} (${REPLICATES} data sets)\n${text.join("\n")}`);
+  console.log(
+    `${name} (${chosen.length} data sets${dropped > 0 ? `, ${dropped} dropped: no optimum on a path` : ""})\n${text.join("\n")}`,
+  );
   return shares;
 }
 

@@ -1,57 +1,88 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
-import { randomStream } from "../../src/math/random.ts";
 import {
-  constantRecapture,
-  effortRecapture,
-  type Frame,
-  occasionRecapture,
-} from "../../src/survival/design.ts";
-import { effectsDesign, type RandomIntervalProblem } from "../../src/survival/effects-design.ts";
+  type EffectsDesign,
+  effectsDesign,
+  type RandomIntervalProblem,
+} from "../../src/survival/effects-design.ts";
 import { laplaceOf } from "../../src/survival/laplace.ts";
 import { cjsLikelihood } from "../../src/survival/likelihood.ts";
 import { rowLikelihood } from "../../src/survival/row-likelihood.ts";
-import { maximiseRandomInterval } from "../../src/survival/random-interval.ts";
-import { sufficientStatistics } from "../../src/survival/statistics.ts";
-import { countsOf } from "../support/reference.ts";
+import { drawnProblem, normals, smallProblem } from "./small-problem.ts";
 
-const normals = (n: number, replicate: number) => {
-  const random = randomStream(8, "laplace test", replicate);
-  return Float64Array.from({ length: n }, () => random.normal());
-};
-
-export function smallProblem(n: number, strata: number, seed: number, animals = 8): RandomIntervalProblem {
-  const random = randomStream(8, "laplace counts", seed);
-  const frame: Frame = {
-    strata: Array.from({ length: strata }, (_, g) => `stratum ${g}`),
-    intervals: n,
-    lengths: Float64Array.from(normals(n, seed + 1), (z) => Math.exp(z / 3)),
-    forced: [],
-    effort: normals(n, seed + 2),
-  };
-  const counts = () => {
-    const seen = Array.from({ length: n }, (_, i) =>
-      Array.from({ length: n }, (_, j) =>
-        j < i ? 0 : Math.floor((1 + random.uniform() * animals) / (1 + j - i)),
-      ),
-    );
-    return countsOf(
-      seen.map((row) => row.reduce((a, b) => a + b, 0) + 1 + Math.floor((random.uniform() * animals) / 2)),
-      seen,
-    );
-  };
-  return {
-    data: frame.strata.map(() => sufficientStatistics(counts())),
-    frame,
-    recapture: [
-      constantRecapture(frame),
-      occasionRecapture(frame),
-      effortRecapture(frame, frame.effort!),
-      { known: 0.8 },
-    ][seed % 4],
-    covariates: [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) })),
-  };
+/** The logits of the rows at a coefficient vector (β, ε, α). */
+function logitsOf({ design, survival: b, intervals: n }: EffectsDesign, x: Float64Array) {
+  const columns = "known" in design.recapture ? [] : design.recapture.columns;
+  const rows = design.strata * n;
+  const [eta, zeta] = [new Float64Array(rows), new Float64Array(rows)];
+  for (let r = 0; r < rows; r++) {
+    design.survival.columns.forEach((column, k) => {
+      eta[r] += column[r] * x[k];
+    });
+    columns.forEach((column, k) => {
+      zeta[r] += column[r] * x[b + n + k];
+    });
+  }
+  return [eta, zeta] as const;
 }
+
+describe("the likelihood by rows", () => {
+  test("value, gradient and curvature are those of the likelihood by coefficients (property)", () => {
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 1, max: 6 }),
+        fc.integer({ min: 1, max: 3 }),
+        fc.nat(1000),
+        (n, g, seed) => {
+          const problem = smallProblem(n, g, seed);
+          const model = effectsDesign(problem, [0, 1]);
+          const { design } = model;
+          const f = cjsLikelihood(problem.data, design);
+          const x = Float64Array.from(normals(f.dimension, seed + 30));
+          const rows = rowLikelihood(problem.data, design);
+          const gradient = new Float64Array(f.dimension);
+          const value = f.evaluate(x, gradient);
+          expect(Math.abs(rows.at(...logitsOf(model, x)) - value)).toBeLessThan(1e-11 * Math.abs(value));
+          rows.curvature(true);
+          const d = f.dimension;
+          const curvature = new Float64Array(d * d);
+          f.curvature(
+            Int32Array.from({ length: d }, (_, k) => k),
+            curvature,
+          );
+          const survives = design.survival.columns.length;
+          const columns = [
+            ...design.survival.columns,
+            ...("known" in design.recapture ? [] : design.recapture.columns),
+          ];
+          const block = (i: number, j: number, r: number, u: number) => {
+            const at = (r - (r % n)) * n;
+            const [a, b] = [r % n, u % n];
+            if (i < survives && j < survives) return rows.survivalSurvival[at + a * n + b];
+            if (i < survives) return rows.survivalRecapture[at + a * n + b];
+            if (j < survives) return rows.survivalRecapture[at + b * n + a];
+            return rows.recaptureRecapture[at + a * n + b];
+          };
+          for (let i = 0; i < d; i++) {
+            const by = i < survives ? rows.bySurvival : rows.byRecapture;
+            const slope = by.reduce((sum, one, r) => sum + one * columns[i][r], 0);
+            expect(Math.abs(slope - gradient[i])).toBeLessThan(1e-10 * (1 + Math.abs(value)));
+            for (let j = 0; j < d; j++) {
+              let sum = 0;
+              for (let r = 0; r < g * n; r++)
+                for (let t = 0; t < n; t++) {
+                  const u = r - (r % n) + t;
+                  sum += columns[i][r] * columns[j][u] * block(i, j, r, u);
+                }
+              expect(Math.abs(sum - curvature[i * d + j])).toBeLessThan(1e-10 * (1 + Math.abs(value)));
+            }
+          }
+        },
+      ),
+      { numRuns: 60 },
+    );
+  });
+});
 
 describe("third derivatives", () => {
   test("agree with differences of the curvature, strata and unequal intervals included (property)", () => {
@@ -69,18 +100,9 @@ describe("third derivatives", () => {
           const u = normals(n, seed + 40);
           const columns = "known" in design.recapture ? [] : design.recapture.columns;
           const rows = g * n;
-          const [eta, zeta] = [new Float64Array(rows), new Float64Array(rows)];
-          for (let r = 0; r < rows; r++) {
-            design.survival.columns.forEach((column, k) => {
-              eta[r] += column[r] * x[k];
-            });
-            columns.forEach((column, k) => {
-              zeta[r] += column[r] * x[b + n + k];
-            });
-          }
           const third = rowLikelihood(problem.data, design);
           const [byS, byR] = [new Float64Array(rows), new Float64Array(rows)];
-          third.at(eta, zeta);
+          third.at(...logitsOf(model, x));
           third.addThird(u, byS, byR);
           const which = Int32Array.from({ length: n }, (_, t) => b + t);
           const form = (at: Float64Array) => {
@@ -150,9 +172,69 @@ describe("Laplace's approximation", () => {
     );
   });
 
-  test("maximum", () => {
-    const problem = smallProblem(12, 1, 4, 40);
-    const max = maximiseRandomInterval(problem, [0]);
-    console.log(max.minus2LogL, max.point.variance, max.iterations, max.violation, max.stopped);
+  test("agrees with numerical integration over the effects; four times the animals, a quarter of the error", () => {
+    // Trapezoidal sums over ±9 posterior standard deviations: exact to rounding for smooth integrands that die out.
+    for (const n of [2, 3]) {
+      const errors = [1, 4, 16].map((times) => {
+        const small = drawnProblem(n, 1, 4 * n, 200, 0.5);
+        const grown = (values: Float64Array) => values.map((value) => value * times);
+        const problem: RandomIntervalProblem = {
+          ...small,
+          data: small.data.map((one) => ({
+            ...one,
+            alive: grown(one.alive),
+            seen: grown(one.seen),
+            passed: grown(one.passed),
+            lastSeen: grown(one.lastSeen),
+          })),
+        };
+        const model = effectsDesign(problem, []);
+        const theta = Float64Array.of(0.6, 0.85); // the truth: survival .65, recapture .7
+        const variance = 0.4;
+        const point = laplaceOf(problem.data, model).at(theta, variance, new Float64Array(n));
+        const f = cjsLikelihood(problem.data, model.design);
+        const x = new Float64Array(f.dimension);
+        model.fixed.forEach((k, i) => {
+          x[k] = theta[i];
+        });
+        const which = Int32Array.from({ length: n }, (_, t) => model.survival + t);
+        x.set(point.effects, model.survival);
+        f.evaluate(x, new Float64Array(f.dimension));
+        const w = new Float64Array(n * n);
+        f.curvature(which, w);
+        const sds = Array.from(
+          problem.frame.lengths,
+          (length, t) => 1 / Math.sqrt(w[t * n + t] + length / variance),
+        );
+        const points = n === 2 ? 121 : 61;
+        const gradient = new Float64Array(f.dimension);
+        let sum = 0;
+        const walk = (t: number) => {
+          if (t === n) {
+            let exponent = f.evaluate(x, gradient) - point.joint;
+            for (let u = 0; u < n; u++)
+              exponent += (0.5 * x[which[u]] ** 2 * problem.frame.lengths[u]) / variance;
+            sum += Math.exp(-exponent);
+            return;
+          }
+          for (let i = 0; i < points; i++) {
+            x[which[t]] = point.effects[t] + sds[t] * 9 * ((2 * i) / (points - 1) - 1);
+            walk(t + 1);
+          }
+        };
+        walk(0);
+        // steps of the grid, and the normalising constants of the prior
+        let log = Math.log(sum) - point.joint;
+        for (let t = 0; t < n; t++)
+          log +=
+            Math.log((18 * sds[t]) / (points - 1)) -
+            0.5 * Math.log((2 * Math.PI * variance) / problem.frame.lengths[t]);
+        return point.value + log;
+      });
+      // the error of Laplace's approximation is O(1/animals) (Tierney & Kadane 1986)
+      expect(Math.abs(errors[0])).toBeLessThan(0.006 * n);
+      expect(Math.abs(errors[0] / errors[1] - 3.6)).toBeLessThan(0.4);
+      expect(Math.abs(errors[1] / errors[2] - 3.9)).toBeLessThan(0.15);
+    }
   });
 });
