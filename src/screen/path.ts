@@ -46,6 +46,8 @@ export const RESIDUAL_LIMIT = 1e-8;
  *     λ_max = max_k |∂(−log L)/∂β_k| / w_k   at the model without covariates
  *
  * to `downTo`·λ_max in log-equal steps, each started from the one before. Only the covariates are penalised.
+ * Where no covariate moves the likelihood of the null model at all (no covariates, all rates at their bounds, a null
+ * model that fits every interval) λ_max is 0 and every step is the null model.
  * The likelihood is not concave: a residual of 0 proves a stationary point, `agreeingStarts` looks for others.
  * Throws `screen.no-optimum` where a solution does not reach the limit: such a number must not be used.
  */
@@ -54,11 +56,17 @@ export function lassoPath(problem: ScreenProblem, weights: Float64Array, options
   const positions = covariatePositions(problem);
   const all = fullWeights(problem, smooth.dimension, weights);
   const nothing = solveNull(problem, smooth);
-  const lambdaMax = positions.reduce(
-    (most, k, i) => Math.max(most, Math.abs(nothing.gradient[k]) / weights[i]),
-    0,
-  );
+  // a gradient within the tolerance of the null fit is that fit's rounding
+  const noise = gradientTolerance(problem.data);
+  const lambdaMax = positions.reduce((most, k, i) => {
+    const slope = Math.abs(nothing.gradient[k]);
+    return slope <= noise ? most : Math.max(most, slope / weights[i]);
+  }, 0);
   const lambdas = options.lambdas ?? lambdaGrid(lambdaMax, options.steps, options.downTo);
+  if (lambdaMax === 0) {
+    const step = (lambda: number) => pathStep(lambda, lambdaMax, nothing, positions);
+    return { lambdaMax, weights, steps: lambdas.map(step) };
+  }
   let x = nothing.x;
   const steps = lambdas.map((lambda) => {
     const solution = proximalNewton(smooth, weightedL1(lambda, all), x, {
@@ -92,6 +100,7 @@ export function solveNull(problem: ScreenProblem, smooth: Smooth): Solution {
 }
 
 function pathStep(lambda: number, lambdaMax: number, solution: Solution, positions: Int32Array): PathStep {
+  // with λ_max 0 there is nothing to compare with, and the null fit has passed its own tolerance
   const residual = lambdaMax === 0 ? 0 : solution.violation / lambdaMax;
   if (residual > RESIDUAL_LIMIT) refuse(`λ = ${lambda}`, solution);
   const coefficients = Float64Array.from(positions, (k) => solution.x[k]);

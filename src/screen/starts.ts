@@ -1,10 +1,11 @@
 import type { Random } from "../math/random.ts";
 import { weightedL1 } from "../solve/penalty.ts";
 import { proximalNewton } from "../solve/proximal-newton.ts";
+import { gradientTolerance } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import type { LassoPath, PathStep } from "./path.ts";
 import { RESIDUAL_LIMIT } from "./path.ts";
-import { designWith, fullWeights, type ScreenProblem } from "./problem.ts";
+import { covariatePositions, designWith, fullWeights, type ScreenProblem } from "./problem.ts";
 
 export interface StartsReport {
   readonly starts: number;
@@ -16,7 +17,9 @@ export interface StartsReport {
 
 /**
  * Solves the chosen λ again from random starts (standard normal coefficients): the likelihood is not concave, so
- * only agreement of many starts speaks for a global optimum.
+ * only agreement of many starts speaks for a global optimum. No start has more covariates off zero than there are
+ * rows (strata × intervals), which are chosen at random: more would span the same predictors, at a much higher price.
+ * Where λ_max is 0 only the unpenalised coefficients vary.
  */
 export function agreeingStarts(
   problem: ScreenProblem,
@@ -26,12 +29,26 @@ export function agreeingStarts(
   random: Random,
 ): StartsReport {
   const smooth = cjsLikelihood(problem.data, designWith(problem));
-  const penalty = weightedL1(chosen.lambda, fullWeights(problem, smooth.dimension, path.weights));
+  const positions = covariatePositions(problem);
+  const covariates = Int32Array.from(positions, (_, k) => k);
+  const rows = problem.frame.strata.length * problem.frame.intervals;
+  const nothingMoves = path.lambdaMax === 0;
+  const weights = nothingMoves ? path.weights.map(() => Number.POSITIVE_INFINITY) : path.weights;
+  const penalty = weightedL1(
+    nothingMoves ? 1 : chosen.lambda,
+    fullWeights(problem, smooth.dimension, weights),
+  );
+  const tolerance = nothingMoves ? gradientTolerance(problem.data) : 0.05 * RESIDUAL_LIMIT * path.lambdaMax;
+  const options = { tolerance, iterations: 500 };
   let agree = 0;
   let best = 0;
   for (let i = 0; i < starts; i++) {
     const start = Float64Array.from({ length: smooth.dimension }, () => random.normal());
-    const options = { tolerance: 0.05 * RESIDUAL_LIMIT * path.lambdaMax, iterations: 500 };
+    const order = covariates.length > rows ? random.permutation(covariates.length) : covariates;
+    order.forEach((k, place) => {
+      const fixedAtZero = weights[k] === Number.POSITIVE_INFINITY;
+      if (place >= rows || fixedAtZero) start[positions[k]] = 0;
+    });
     const solution = proximalNewton(smooth, penalty, start, options);
     const away = solution.objective - chosen.objective;
     best = Math.min(best, away);

@@ -2,6 +2,7 @@ import { Matrix as Dense, EigenvalueDecomposition } from "ml-matrix";
 import { noPenalty } from "../solve/penalty.ts";
 import { proximalNewton } from "../solve/proximal-newton.ts";
 import type { Smooth } from "../solve/smooth.ts";
+import { fixedSurvivalColumns } from "../survival/design.ts";
 import { gradientTolerance, totalReleases } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { covariatePositions, designWith, type ScreenProblem } from "./problem.ts";
@@ -23,7 +24,7 @@ export const RIDGE = 0.005;
 
 /**
  * Weights of the adaptive lasso (Zou 2006): 1/|β̃|^γ, β̃ by maximum likelihood where the information is conditioned
- * to 1e8 or better, else from −log L / n_releases + 0.005 Σβ².
+ * to 1e8 or better (never with more survival coefficients than rows, strata × intervals), else from −log L / n_releases + 0.005 Σβ².
  */
 export function adaptiveWeights(
   problem: ScreenProblem,
@@ -35,9 +36,13 @@ export function adaptiveWeights(
   const tolerance = gradientTolerance(problem.data);
   const x0 = start ?? new Float64Array(smooth.dimension);
   const condition = { value: Number.POSITIVE_INFINITY };
-  const solved = proximalNewton(smooth, noPenalty, x0, { tolerance, iterations: 60 });
-  if (solved.stopped === "optimum") condition.value = conditionAt(smooth, solved.x);
-  const trusted = condition.value <= CONDITION_LIMIT;
+  const rows = problem.frame.strata.length * problem.frame.intervals;
+  const solved =
+    fixedSurvivalColumns(problem.frame) + positions.length <= rows
+      ? proximalNewton(smooth, noPenalty, x0, { tolerance, iterations: 60 })
+      : undefined;
+  if (solved?.stopped === "optimum") condition.value = conditionAt(smooth, solved.x);
+  const trusted = solved !== undefined && condition.value <= CONDITION_LIMIT;
   const first = trusted ? Float64Array.from(positions, (k) => solved.x[k]) : ridgeEstimates(problem, x0);
   return {
     weights: weightsFrom(first, gamma),
