@@ -84,5 +84,6 @@ export async function buildOutput(
   for (const figure of drawn) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
   const captions = drawn.map(({ name, title, caption }) => ({ file: `${name}.svg`, title, caption }));
   files.set("figures/captions.json", jsonBytes(captions));
+  files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));
   return { files: withRecord({ ...facts, outputs: files }), neutralised: written.neutralised };
 }
