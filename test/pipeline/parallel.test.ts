@@ -61,4 +61,14 @@ describe("parallel tasks", () => {
       await expect(parallel(workers, stop.signal).map(TASK, long)).rejects.toEqual(interrupted);
     }
   });
+
+  test("an interruption while the workers are being set up is not lost", async () => {
+    const long = Array.from({ length: 400 }, () => inputs[0]);
+    for (const workers of [1, 2]) {
+      const stop = new AbortController();
+      const mapped = parallel(workers, stop.signal).map(TASK, long);
+      stop.abort();
+      await expect(mapped).rejects.toMatchObject({ tag: "interrupted" });
+    }
+  });
 });

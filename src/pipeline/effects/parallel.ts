@@ -60,8 +60,9 @@ async function onThreads(
   { signal }: ParallelOptions,
   tick: () => void,
 ): Promise<TaskOutcome[]> {
-  if (signal.aborted) throw new InterruptedError();
   const { Tinypool } = await import("tinypool");
+  // Asked only now: an interruption while the pool's code was being loaded has no listener yet and would be lost.
+  if (signal.aborted) throw new InterruptedError();
   const pool = new Tinypool({ filename: workerFile(), minThreads: threads, maxThreads: threads });
   let stopped: Promise<void> | undefined;
   const stop = () => {
