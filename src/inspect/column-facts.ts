@@ -2,7 +2,7 @@ import type { DuckDBConnection } from "@duckdb/node-api";
 import { type Day, isoDay } from "../data/day.ts";
 import { compileDateFormat, recogniseFormats } from "../stations/dates.ts";
 import type { LoadedTable } from "../stations/loaded-table.ts";
-import { numberSql } from "../stations/read-columns.ts";
+import { numberSql } from "../stations/raw-columns.ts";
 import { SENTINELS } from "../stations/suspect-values.ts";
 
 /** What a column of a table holds, without a guess of what it is for. */

@@ -7,9 +7,11 @@ import { lineOfByte, physicalLines } from "./lines.ts";
 import { loadParquet } from "./load-parquet.ts";
 import { type LoadedTable, type RefusedRow, readOrExplain } from "./loaded-table.ts";
 import { checkPacked, readHead, readWhole } from "./packed.ts";
+import { type NumberSource, type RawColumns, rawColumns, rawSelection } from "./raw-columns.ts";
 
 /**
- * Loads the wanted columns (all, if none is named) of a table into `raw`. UTF-8 files go through the database's reader,
+ * Loads the named columns of a table, some as text and some as numbers (all as text, if none is named), into `raw` as
+ * `rawSelection` lays it out. UTF-8 files go through the database's reader,
  * others are decoded first; Parquet is known by its ending. Rows of unequal width are refused, not guessed at.
  * Throws `stations.unreadable`, `stations.broken-gzip`, and those of `sniffDialect`.
  */
@@ -17,17 +19,17 @@ export async function loadTable(
   database: DuckDBConnection,
   files: Files,
   file: string,
-  wanted: readonly string[],
+  texts: readonly string[],
+  numbers: readonly NumberSource[],
   dateColumn: string | undefined,
 ): Promise<LoadedTable> {
   await database.run("DROP TABLE IF EXISTS raw");
-  if (file.endsWith(".parquet")) return loadParquet(database, files, file, wanted);
+  if (file.endsWith(".parquet")) return loadParquet(database, files, file, texts, numbers);
+  const wanted = [...texts, ...numbers.map((one) => one.column)];
   await checkPacked(files, file);
   const head = readHead(files, file);
   const dialect = sniffDialect(head.bytes, head.cut, file, wanted, dateColumn);
-  const positions =
-    wanted.length === 0 ? dialect.header.keys() : wanted.map((name) => dialect.header.indexOf(name));
-  const columns = [...new Set(positions)].sort((a, b) => a - b);
+  const columns = rawColumns(dialect.header, texts, numbers);
   return dialect.encoding === "utf-8"
     ? loadUtf8(database, files, file, dialect, columns)
     : loadDecoded(database, files, file, dialect, columns);
@@ -38,18 +40,18 @@ async function loadUtf8(
   files: Files,
   file: string,
   dialect: Dialect,
-  columns: readonly number[],
+  columns: RawColumns,
 ): Promise<LoadedTable> {
   const types = dialect.header.map((_, i) => `'c${i}': 'VARCHAR'`).join(", ");
+  const source = `read_csv(${pathLiteral(files.absolute(file))}, auto_detect = false, header = false,
+       skip = ${dialect.skip}, delim = ${literal(dialect.delimiter)}, quote = '"', escape = '"',
+       compression = '${file.endsWith(".gz") ? "gzip" : "none"}', columns = {${types}},
+       store_rejects = true, rejects_limit = 0)`;
   await database.run("DROP TABLE IF EXISTS reject_errors; DROP TABLE IF EXISTS reject_scans;");
   await readOrExplain(
     database,
     file,
-    `CREATE TEMP TABLE raw AS SELECT ${columns.map((i) => `trim(c${i}) AS c${i}`).join(", ")}
-     FROM read_csv(${pathLiteral(files.absolute(file))}, auto_detect = false, header = false,
-       skip = ${dialect.skip}, delim = ${literal(dialect.delimiter)}, quote = '"', escape = '"',
-       compression = '${file.endsWith(".gz") ? "gzip" : "none"}', columns = {${types}},
-       store_rejects = true, rejects_limit = 0)`,
+    `CREATE TEMP TABLE raw AS ${rawSelection(columns, dialect.decimal, source, (i) => `c${i}`)}`,
   );
   const rows = await countRows(database);
   const told = await database.runAndReadAll(
@@ -103,13 +105,16 @@ async function loadDecoded(
   files: Files,
   file: string,
   dialect: Dialect,
-  columns: readonly number[],
+  columns: RawColumns,
 ): Promise<LoadedTable> {
   const text = decodeText(await readWhole(files, file), dialect.encoding).replace(/^\uFEFF/, "");
   const lines: number[] = [];
   const refused: RefusedRow[] = [];
-  await database.run(`CREATE TEMP TABLE raw (${columns.map((i) => `c${i} VARCHAR`).join(", ")})`);
-  const appender = await database.createAppender("raw");
+  const taken = [...new Set([...columns.texts, ...columns.numbers.map((one) => one.at)])];
+  await database.run(
+    `CREATE OR REPLACE TEMP TABLE decoded (${taken.map((i) => `c${i} VARCHAR`).join(", ")})`,
+  );
+  const appender = await database.createAppender("decoded");
   parse(text, {
     delimiter: dialect.delimiter,
     from_line: dialect.skip + 1,
@@ -122,7 +127,7 @@ async function loadDecoded(
       if (cells.length !== dialect.header.length)
         refused.push({ line, text: cells.join(dialect.delimiter), why: widthText(cells.length, dialect) });
       else {
-        for (const i of columns) appender.appendVarchar(cells[i].trim());
+        for (const i of taken) appender.appendVarchar(cells[i].trim());
         appender.endRow();
         lines.push(line);
       }
@@ -130,6 +135,10 @@ async function loadDecoded(
     },
   });
   appender.closeSync();
+  await database.run(
+    `CREATE TEMP TABLE raw AS ${rawSelection(columns, dialect.decimal, "decoded", (i) => `c${i}`)}`,
+  );
+  await database.run("DROP TABLE decoded");
   return {
     file,
     dialect,

@@ -9,10 +9,7 @@ export interface RefusedRow {
   readonly why: string;
 }
 
-/**
- * A file's wanted columns as text without blanks around it in the table `raw` (columns c0, c1, … by position; rowid is the
- * row's index).
- */
+/** A file's wanted columns in the table `raw` (see `rawSelection`; rowid is the row's index). */
 export interface LoadedTable {
   readonly file: string;
   readonly dialect: Dialect;

@@ -1,4 +1,4 @@
-import type { DuckDBConnection } from "@duckdb/node-api";
+import type { DuckDBConnection, DuckDBVector } from "@duckdb/node-api";
 import { literal } from "./database.ts";
 import type { LoadedTable } from "./loaded-table.ts";
 
@@ -15,12 +15,6 @@ export interface OddText {
   readonly firstRow: number;
 }
 
-/** A column of numbers to be read; the trace text stands for its value. */
-export interface NumberSource {
-  readonly column: string;
-  readonly trace?: { readonly text: string; readonly value: number };
-}
-
 export interface NumberColumn {
   /** NaN where empty, declared missing, or no number. */
   readonly values: Float64Array;
@@ -28,18 +22,17 @@ export interface NumberColumn {
 }
 
 /**
- * The text columns (each one column, or several joined by blanks) coded and the number columns converted, row by row as in the file. Texts become codes in the database
- * (a station or date is written thousands of times, but parsed once per distinct text); numbers are converted there, too.
+ * The text columns (each one column, or several joined by blanks) coded, and the numbers as they were loaded, row by row as
+ * in the file. Texts become codes in the database: a station or date is written thousands of times, but parsed once.
  */
 export async function readColumns(
   database: DuckDBConnection,
   table: LoadedTable,
   texts: readonly (readonly string[])[],
-  numbers: readonly NumberSource[],
+  numbers: number,
   missing: readonly string[],
 ): Promise<{ readonly texts: readonly CodedColumn[]; readonly numbers: readonly NumberColumn[] }> {
-  const plain = (name: string) => `c${table.dialect.header.indexOf(name)}`;
-  const column = (name: string) => `coalesce(${plain(name)}, '')`;
+  const column = (name: string) => `coalesce(c${table.dialect.header.indexOf(name)}, '')`;
   const joined = (names: readonly string[]) => names.map(column).join(" || ' ' || ");
   const distinct: string[][] = [];
   for (const [i, names] of texts.entries()) {
@@ -49,18 +42,13 @@ export async function readColumns(
     if (distinct[i].length > 0)
       await database.run(`CREATE TYPE text${i} AS ENUM (${distinct[i].map(literal).join(", ")})`);
   }
-  const number = ({ column, trace }: NumberSource) => {
-    const sql = numberSql(plain(column), table.dialect.decimal);
-    if (trace === undefined) return sql;
-    return `CASE WHEN ${plain(column)} = ${literal(trace.text)} THEN ${trace.value}::DOUBLE ELSE ${sql} END`;
-  };
   const codes = texts.map(() => new Int32Array(table.rows));
-  const values = numbers.map(() => new Float64Array(table.rows));
+  const values = Array.from({ length: numbers }, () => new Float64Array(table.rows));
   if (table.rows > 0) {
     const result = await database.stream(
       `SELECT ${[
         ...texts.map((names, i) => `enum_code(CAST(${joined(names)} AS text${i}))::INTEGER`),
-        ...numbers.map((one) => `coalesce(${number(one)}, 'nan'::DOUBLE)`),
+        ...values.map((_, j) => `coalesce(n${j}, 'nan'::DOUBLE)`),
       ].join(", ")} FROM raw`,
     );
     let at = 0;
@@ -69,29 +57,29 @@ export async function readColumns(
       if (chunk === null || chunk.rowCount === 0) break;
       const n = chunk.rowCount;
       for (const [j, into] of [...codes, ...values].entries()) {
-        const vector = chunk.getColumnVector(j);
-        for (let i = 0; i < n; i++) into[at + i] = Number(vector.getItem(i));
+        copyInto(into, at, chunk.getColumnVector(j), n);
       }
       at += n;
     }
   }
   const declared = missing.filter((text) => text.trim() !== "").map((text) => Number(text.replace(",", ".")));
   const odd: (readonly OddText[])[] = [];
-  for (const [j, one] of numbers.entries()) {
-    const holes = blankOut(values[j], declared);
-    odd.push(holes ? await oddTexts(database, plain(one.column), number(one), missing) : []);
-  }
+  for (const [j, one] of values.entries())
+    odd.push(blankOut(one, declared) ? await oddTexts(database, `o${j}`, missing) : []);
   return {
     texts: codes.map((one, i) => ({ codes: one, texts: distinct[i] })),
     numbers: values.map((one, j) => ({ values: one, odd: odd[j] })),
   };
 }
 
-/** A number (perhaps not a finite one), or NULL. The cast alone would take `1_000`. */
-export function numberSql(text: string, decimal: "." | ","): string {
-  // With decimal commas a point can only part thousands: such a text is no number here.
-  const plain = decimal === "," ? `replace(replace(${text}, '.', '_'), ',', '.')` : text;
-  return `CASE WHEN contains(${plain}, '_') THEN NULL ELSE TRY_CAST(${plain} AS DOUBLE) END`;
+/**
+ * The first n items of a vector without missing ones, from `at` on. A vector's own array is copied at once (item by item
+ * takes most of the reading's time); where this version of the package keeps none, its items are asked for.
+ */
+function copyInto(into: Int32Array | Float64Array, at: number, vector: DuckDBVector, n: number): void {
+  const items: unknown = "items" in vector ? vector.items : undefined;
+  if (items instanceof Float64Array || items instanceof Int32Array) into.set(items.subarray(0, n), at);
+  else for (let i = 0; i < n; i++) into[at + i] = Number(vector.getItem(i));
 }
 
 /**
@@ -111,13 +99,12 @@ function blankOut(values: Float64Array, declared: readonly number[]): boolean {
 async function oddTexts(
   database: DuckDBConnection,
   text: string,
-  number: string,
   missing: readonly string[],
 ): Promise<readonly OddText[]> {
   const known = ["", ...missing.map((one) => one.trim())].map(literal).join(", ");
   const told = await database.runAndReadAll(
     `SELECT ${text} AS t, count(*)::INTEGER, min(rowid)::INTEGER AS first FROM raw
-     WHERE ${text} NOT IN (${known}) AND NOT coalesce(isfinite(${number}), false) GROUP BY t ORDER BY first`,
+     WHERE ${text} NOT IN (${known}) GROUP BY t ORDER BY first`,
   );
   return told
     .getRowsJson()

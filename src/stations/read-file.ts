@@ -55,9 +55,8 @@ export async function readFile(
     ...flagColumns.map((name) => [name]),
     ...(stationColumn === undefined ? [] : [[stationColumn]]),
   ];
-  const wanted = [...texts.flat(), ...columns.map((one) => one.column)];
-  const table = await loadTable(database, files, file, wanted, options.date.column);
-  const read = await readColumns(database, table, texts, columns, options.missing);
+  const table = await loadTable(database, files, file, texts.flat(), columns, options.date.column);
+  const read = await readColumns(database, table, texts, columns.length, options.missing);
   const dates = read.texts[0];
   const ids = read.texts[texts.length - 1];
   const refusals = columns.flatMap((column, j) => {
