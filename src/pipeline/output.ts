@@ -1,7 +1,7 @@
 import { preparationJson } from "../covariates/recorded.ts";
 import type { Effects, FileIdentity } from "../effects/effects.ts";
 import type { FileSet } from "../publish/disk.ts";
-import { jsonBytes, jsonBytes } from "../publish/json.ts";
+import { jsonBytes } from "../publish/json.ts";
 import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
