@@ -11,10 +11,25 @@ interface Common {
   readonly json?: boolean;
 }
 
+interface SimulateFlags extends Common {
+  readonly covariate: readonly string[];
+  readonly effects: string;
+  readonly residual?: string;
+  readonly replicates: number;
+  readonly workers?: number;
+  readonly output?: string;
+}
+
 const version = readVersion();
 const stop = new AbortController();
 process.once("SIGINT", () => stop.abort());
 process.once("SIGTERM", () => stop.abort());
+// A reader that has seen enough (`covey look … | head`) closes the pipe: no mistake of anybody's, and nothing to say.
+for (const stream of [process.stdout, process.stderr])
+  stream.on("error", (error: NodeJS.ErrnoException) => {
+    if (error.code !== "EPIPE") throw error;
+    process.exit();
+  });
 
 const program = new Command("covey")
   .description(
@@ -111,6 +126,41 @@ program
       from: process.cwd(),
     };
     print(await applyCommand(recorded, file, asked, terminal), options);
+  });
+
+program
+  .command("simulate")
+  .argument("<pipeline>", "pipeline file (YAML)")
+  .description("draw studies from this one's design and tell which effects it can detect and which not")
+  .requiredOption(
+    "--covariate <name>",
+    "a candidate that is to act on survival; can be given again for several",
+    (name: string, before: readonly string[] = []) => [...before, name],
+  )
+  .option("--effects <sizes>", "sizes of its effect, logit per sd", "0,0.1,0.2,0.3,0.4,0.5,0.6,0.8")
+  .option("--residual <sd>", "what no covariate tells between years, sd on the logit; estimated if left out")
+  .option("--replicates <number>", "studies drawn for each size", wholeNumber, 200)
+  .option("--workers <number>", "worker threads; 1 for none", wholeNumber)
+  .option("--output <folder>", "where to write; the pipeline's output with -simulated if left out")
+  .option("--json", "print the result as JSON")
+  .option("--quiet", "no progress, no summary")
+  .addHelpText("after", '\nExample:\n  covey simulate pipelines/roost.yaml --covariate "winter rain"')
+  .action(async (file: string, options: SimulateFlags) => {
+    const [{ effectSizes, residualSd, simulateCommand }, terminal] = [
+      await import("./commands/simulate.ts"),
+      await terminalFor(options),
+    ];
+    const asked = {
+      covariates: options.covariate,
+      effects: effectSizes(options.effects),
+      residual: options.residual === undefined ? undefined : residualSd(options.residual),
+      replicates: options.replicates,
+      workers: options.workers ?? terminal.workers,
+      output: options.output,
+      json: options.json ?? false,
+      from: process.cwd(),
+    };
+    print(await simulateCommand(file, asked, terminal), options);
   });
 
 program

@@ -46,6 +46,7 @@ const EDGES: Readonly<Record<string, readonly string[]>> = {
   workers: ["layers", "screen", "compare", "simulate", "effects"],
   report: [
     "tables",
+    "simulate",
     "compare",
     "screen",
     "survival",
@@ -59,6 +60,7 @@ const EDGES: Readonly<Record<string, readonly string[]>> = {
   ],
   publish: ["tables", "effects"],
   tables: [
+    "simulate",
     "compare",
     "screen",
     "survival",

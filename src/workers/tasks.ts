@@ -10,6 +10,7 @@ type Task = (input: never) => unknown;
 const TASKS: Readonly<Record<string, () => Promise<Task>>> = {
   "example.sum-of-powers": () => import("./example.ts").then((room) => room.sumOfPowers),
   "screen.permutation": () => import("../screen/permutation.ts").then((room) => room.permuteYears),
+  "simulate.replicates": () => import("../simulate/replicate.ts").then((room) => room.simulateReplicates),
 };
 
 export interface TaskCall {

@@ -1,0 +1,82 @@
+import { mean, sampleSd } from "../math/quantile.ts";
+import { designWith, type ScreenProblem } from "../screen/problem.ts";
+import type { Frame, NamedColumn, Part } from "../survival/design.ts";
+import { type Fit, fitModel } from "../survival/fit.ts";
+import type { SufficientStatistics } from "../survival/statistics.ts";
+
+/** One stratum of the design, n intervals. */
+export interface StratumDesign {
+  readonly stratum: string;
+  /** Animals newly marked and released at occasions 1 … n. */
+  readonly marked: Float64Array;
+  /** logit of apparent annual survival at mean covariates (with the estimated effects of forced ones), n. */
+  readonly baseline: Float64Array;
+  /** Recapture at the occasion that closes each interval, n. */
+  readonly recapture: Float64Array;
+}
+
+/** What a study brings with it, whatever its captures came to: what replicates of it are drawn from. */
+export interface StudyDesign {
+  readonly frame: Frame;
+  readonly recapture: Part | { readonly known: number };
+  /** All candidates as they are, so with their real correlations. */
+  readonly covariates: readonly NamedColumn[];
+  readonly strata: readonly StratumDesign[];
+}
+
+/** Rates at or next to a bound are drawn from this far inside, so that an effect on the logit still tells. */
+const INSIDE = 0.001;
+
+/**
+ * The design of a study: its intervals, what was newly marked, its covariates, and survival and recapture as the model
+ * with one survival per stratum, forced covariates and the chosen recapture part estimates them. Losses on capture
+ * are not drawn: animals lost when they were first caught are not counted as marked, and animals lost later are
+ * taken off the newly marked of that occasion.
+ */
+export function studyDesign(problem: ScreenProblem): StudyDesign {
+  const { frame, recapture, covariates, data } = problem;
+  const fit = fitModel(data, designWith(problem, []));
+  return {
+    frame,
+    recapture,
+    covariates,
+    strata: data.map((one, g) => stratumDesign(one, g, frame.intervals, fit, recapture)),
+  };
+}
+
+function stratumDesign(
+  data: SufficientStatistics,
+  g: number,
+  n: number,
+  fit: Fit,
+  recapture: StudyDesign["recapture"],
+): StratumDesign {
+  const rows = Array.from({ length: n }, (_, t) => g * n + t);
+  const inside = (rate: number) => Math.min(1 - INSIDE, Math.max(INSIDE, rate));
+  return {
+    stratum: data.stratum,
+    marked: newlyMarked(data),
+    baseline: Float64Array.from(rows, (row) => {
+      const s = inside(fit.survival[row].value);
+      return Math.log(s / (1 - s));
+    }),
+    recapture: Float64Array.from(rows, (row) =>
+      "known" in recapture ? recapture.known : fit.recapture[row].value,
+    ),
+  };
+}
+
+/**
+ * Newly marked and released at each occasion, from the counts: those released less those seen there, which were marked
+ * before. R_t − B_{t−1} = A_t − A_{t−1} + U_t in the notation of `SufficientStatistics`. Losses on recapture make it
+ * smaller, but never negative.
+ */
+export function newlyMarked({ alive, lastSeen }: SufficientStatistics): Float64Array {
+  return alive.map((a, t) => Math.max(0, a - (t === 0 ? 0 : alive[t - 1]) + lastSeen[t]));
+}
+
+/** (x − mean)/sd, sd with n − 1: effects are stated per sd whatever the columns' own scale. */
+export function perSd(values: Float64Array): Float64Array {
+  const [centre, sd] = [mean(values), sampleSd(values)];
+  return values.map((value) => (value - centre) / sd);
+}
