@@ -3,7 +3,8 @@
  * values. NaN for no values.
  */
 export function quantile7(values: ArrayLike<number>, probability: number): number {
-  const sorted = Float64Array.from(values).sort();
+  // Not Float64Array.from, which goes through the iterator.
+  const sorted = new Float64Array(values).sort();
   if (sorted.length === 0) return Number.NaN;
   const h = (sorted.length - 1) * probability;
   const low = Math.floor(h);

@@ -64,15 +64,7 @@ export function assembleVariable(
     const merged = mergeRepeats(sorted, rule, variable, refs, sources);
     findings.push(...merged.findings);
     const kept = merged.rows;
-    const usedSources = new Set<number>();
-    let run = 0;
-    // Rows of one file follow one another mostly, so the run is looked for from where the last one was.
-    for (const row of sorted.rows) {
-      while (run > 0 && refs[run].first > row) run--;
-      while (run + 1 < refs.length && refs[run + 1].first <= row) run++;
-      usedSources.add(refs[run].source);
-    }
-    const files = [...usedSources].map((source) => sources[source].file).sort((a, b) => (a < b ? -1 : 1));
+    const files = rows.sources.map((source) => sources[source].file).sort((a, b) => (a < b ? -1 : 1));
     const series: Series = {
       site: rows.site,
       variable,
@@ -100,55 +92,78 @@ interface StationRows {
   readonly ends: Int32Array;
   readonly values: Float64Array;
   readonly rows: Uint32Array;
+  /** Files that the rows came from, in the order read. */
+  readonly sources: readonly number[];
 }
 
-/** Rows of each station in order of file and row, stations by code unit; two passes: count, then place. */
+/**
+ * Rows of each station in order of file and row, stations by code unit; two passes: count, then place. Rows of one station
+ * follow one another in most files, so whole runs are copied.
+ */
 function gather(blocks: readonly Block[], unit: string): StationRows[] {
   const counts = new Map<string, number>();
   for (const block of blocks) {
     const perCode = new Float64Array(block.stations.ids.length);
-    const { codes } = block.stations;
-    for (let i = 0; i < block.starts.length; i++)
-      if (block.starts[i] !== NO_DAY) perCode[typeof codes === "number" ? codes : codes[i]]++;
+    forRuns(block, (code, from, to) => {
+      perCode[code] += to - from;
+    });
     for (const [code, n] of perCode.entries())
       if (n > 0) counts.set(block.stations.ids[code], (counts.get(block.stations.ids[code]) ?? 0) + n);
   }
   counts.delete("");
-  const sites = [...counts.keys()].sort((a, b) => (a < b ? -1 : 1));
-  const into = new Map(
-    sites.map((site) => {
-      const n = counts.get(site) ?? 0;
-      return [
-        site,
-        {
-          site,
-          starts: new Int32Array(n),
-          ends: new Int32Array(n),
-          values: new Float64Array(n),
-          rows: new Uint32Array(n),
-          at: 0,
-        },
-      ];
-    }),
-  );
+  const into = new Map<string, StationRows & { at: number; readonly sources: number[] }>();
+  for (const site of [...counts.keys()].sort((a, b) => (a < b ? -1 : 1))) {
+    const n = counts.get(site) ?? 0;
+    const columns = { starts: new Int32Array(n), ends: new Int32Array(n), values: new Float64Array(n) };
+    into.set(site, { site, ...columns, rows: new Uint32Array(n), sources: [], at: 0 });
+  }
   let first = 0;
   for (const block of blocks) {
     const targets = block.stations.ids.map((id) => into.get(id));
-    const { codes } = block.stations;
     const values = scaled(block, unit);
-    for (let i = 0; i < block.starts.length; i++) {
-      if (block.starts[i] === NO_DAY) continue;
-      const target = targets[typeof codes === "number" ? codes : codes[i]];
-      if (target === undefined) continue;
-      const at = target.at++;
-      target.starts[at] = block.starts[i];
-      target.ends[at] = block.ends[i];
-      target.values[at] = values[i];
-      target.rows[at] = first + i;
-    }
-    first += block.starts.length;
+    const { starts, ends, source } = block;
+    forRuns(block, (code, from, to) => {
+      const target = targets[code];
+      if (target === undefined) return;
+      const { at, rows } = target;
+      // Short runs are copied by hand: a view costs more than a few numbers.
+      if (to - from > 32) {
+        target.starts.set(starts.subarray(from, to), at);
+        target.ends.set(ends.subarray(from, to), at);
+        target.values.set(values.subarray(from, to), at);
+      } else
+        for (let i = from; i < to; i++) {
+          target.starts[at + i - from] = starts[i];
+          target.ends[at + i - from] = ends[i];
+          target.values[at + i - from] = values[i];
+        }
+      for (let i = from; i < to; i++) rows[at + i - from] = first + i;
+      target.at += to - from;
+      if (target.sources.at(-1) !== source) target.sources.push(source);
+    });
+    first += starts.length;
   }
   return [...into.values()];
+}
+
+/** Runs of rows [from, to) that have a date and one station. */
+function forRuns(
+  { starts, stations: { codes } }: Block,
+  use: (code: number, from: number, to: number) => void,
+): void {
+  const n = starts.length;
+  let from = 0;
+  while (from < n) {
+    if (starts[from] === NO_DAY) {
+      from++;
+      continue;
+    }
+    let to = from + 1;
+    if (typeof codes === "number") while (to < n && starts[to] !== NO_DAY) to++;
+    else while (to < n && codes[to] === codes[from] && starts[to] !== NO_DAY) to++;
+    use(typeof codes === "number" ? codes : codes[from], from, to);
+    from = to;
+  }
 }
 
 /** Raw × scale, in the wanted unit. */
@@ -178,6 +193,7 @@ function sortRows(rows: StationRows): StationRows {
     ends: Int32Array.from(order, (i) => rows.ends[i]),
     values: Float64Array.from(order, (i) => rows.values[i]),
     rows: Uint32Array.from(order, (i) => rows.rows[i]),
+    sources: rows.sources,
   };
 }
 
@@ -241,6 +257,7 @@ function mergeRepeats(
       ends: Int32Array.from(keep, (i) => ends[i]),
       values: Float64Array.from(values),
       rows: Uint32Array.from(keep, (i) => rows.rows[i]),
+      sources: rows.sources,
     },
     findings: [...tallies].map(([sort, tally]) => duplicateFinding(sort, tally, variable, rows, refs)),
   };

@@ -1,3 +1,5 @@
+import { Buffer } from "node:buffer";
+
 /**
  * Physical lines of the wanted records of a delimited text. A record is counted as the table reader counts: blank lines are
  * none, a quoted line break does not end one, and the records that begin at a byte of `rejected` were refused and have no
@@ -10,6 +12,9 @@ export function physicalLines(
   rejected: ReadonlySet<number>,
 ): number[] {
   const [quote, lf, cr] = [0x22, 0x0a, 0x0d];
+  // A Buffer searches a byte many times faster than a plain array of bytes does.
+  const buffer = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.length);
+  if (!buffer.includes(quote) && !buffer.includes(cr)) return plainLines(buffer, skip, rows, rejected);
   const out: number[] = [];
   let [line, row, next] = [1, 0, 0];
   let at = bytes[0] === 0xef && bytes[1] === 0xbb && bytes[2] === 0xbf ? 3 : 0;
@@ -36,6 +41,30 @@ export function physicalLines(
     row++;
   }
   while (out.length < rows.length) out.push(line);
+  return out;
+}
+
+/** The same where nothing is quoted and a line ends with a line feed: from line feed to line feed. */
+function plainLines(
+  bytes: Buffer,
+  skip: number,
+  rows: readonly number[],
+  rejected: ReadonlySet<number>,
+): number[] {
+  const out: number[] = [];
+  let [line, row] = [0, 0];
+  let begin = bytes[0] === 0xef && bytes[1] === 0xbb && bytes[2] === 0xbf ? 3 : 0;
+  while (begin < bytes.length && out.length < rows.length) {
+    const found = bytes.indexOf(0x0a, begin);
+    const end = found < 0 ? bytes.length : found;
+    line++;
+    if (line > skip && end > begin && !rejected.has(begin)) {
+      while (out.length < rows.length && rows[out.length] === row) out.push(line);
+      row++;
+    }
+    begin = end + 1;
+  }
+  while (out.length < rows.length) out.push(line + 1);
   return out;
 }
 

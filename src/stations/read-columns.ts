@@ -90,8 +90,11 @@ function blankOut(values: Float64Array, declared: readonly number[]): boolean {
   const marks = declared.filter((one) => !Number.isNaN(one));
   let holes = false;
   for (let i = 0; i < values.length; i++) {
-    if (!Number.isFinite(values[i]) || marks.includes(values[i])) values[i] = Number.NaN;
-    if (Number.isNaN(values[i])) holes = true;
+    const value = values[i];
+    // The difference of a finite number and itself is 0, of any other NaN.
+    if (value - value === 0 && !(marks.length > 0 && marks.includes(value))) continue;
+    values[i] = Number.NaN;
+    holes = true;
   }
   return holes;
 }
