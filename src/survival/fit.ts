@@ -4,7 +4,8 @@ import { noPenalty } from "../solve/penalty.ts";
 import { proximalNewton } from "../solve/proximal-newton.ts";
 import type { StopReason } from "../solve/smooth.ts";
 import type { Design } from "./design.ts";
-import { readInformation } from "./information.ts";
+import { STILL } from "./flat-directions.ts";
+import { type InformationReport, readInformation } from "./information.ts";
 import { cjsLikelihood } from "./likelihood.ts";
 import type { SufficientStatistics } from "./statistics.ts";
 
@@ -79,9 +80,7 @@ export function fitModel(data: readonly SufficientStatistics[], design: Design, 
   };
   const report = readInformation(information, design, names, rates, totalReleases(data));
   const rateRows = (columns: readonly Float64Array[], from: number, values: Float64Array) =>
-    Array.from(values, (value, r) =>
-      rateEstimate(value, columns, r, from, report.covariance, data, design.intervals),
-    );
+    Array.from(values, (value, r) => rateEstimate(value, columns, r, from, report, data, design.intervals));
   return {
     survivalWords: design.survival.words,
     recaptureWords: recapturePart?.words ?? "known",
@@ -119,22 +118,31 @@ export function inverseLogit(
   return out;
 }
 
-/** Delta method on the logit: se(η)² = xᵀ V x, interval η ± z·se(η) carried back, se of the rate = rate(1 − rate)·se(η). */
+/**
+ * A rate may be estimable though its coefficients are not (equal columns, one rate of several at a bound).
+ * Delta method on the logit: se(η)² = xᵀ V x, interval η ± z·se(η) carried back, se of the rate = rate(1 − rate)·se(η).
+ */
 function rateEstimate(
   value: number,
   columns: readonly Float64Array[],
   r: number,
   from: number,
-  covariance: Matrix,
+  report: InformationReport,
   data: readonly SufficientStatistics[],
   intervals: number,
 ): RateEstimate {
-  let variance = 0;
+  const moved = report.flat.some((vector) => {
+    let shift = 0;
+    for (let k = 0; k < columns.length; k++) shift += columns[k][r] * vector[from + k];
+    return Math.abs(shift) > STILL;
+  });
+  const d = report.covariance.columns;
+  let variance = moved ? Number.NaN : 0;
   for (let i = 0; i < columns.length; i++) {
     if (columns[i][r] === 0) continue;
     for (let j = 0; j < columns.length; j++) {
       if (columns[j][r] === 0) continue;
-      variance += columns[i][r] * columns[j][r] * covariance.data[(from + i) * covariance.columns + from + j];
+      variance += columns[i][r] * columns[j][r] * report.pseudoInverse[(from + i) * d + from + j];
     }
   }
   const eta = Math.log(value / (1 - value));
