@@ -1,5 +1,6 @@
 import type { Smooth } from "../solve/smooth.ts";
 import type { Design } from "./design.ts";
+import { checkDesign } from "./design-check.ts";
 import type { SufficientStatistics } from "./statistics.ts";
 
 /**
@@ -13,8 +14,10 @@ import type { SufficientStatistics } from "./statistics.ts";
  * where p_t belongs to the occasion that closes interval t. One backward sweep gives χ, one forward sweep the
  * derivatives v_t = ∂log L/∂χ_t, so value and gradient cost O(T) whatever the number of animals. The curvature is
  * exact (observed information): the same sweeps differentiated along each coefficient's column.
+ * Throws what `checkDesign` throws.
  */
 export function cjsLikelihood(data: readonly SufficientStatistics[], design: Design): Smooth {
+  checkDesign(data, design);
   const n = design.intervals;
   const rows = design.strata * n;
   const recapture = "known" in design.recapture ? undefined : design.recapture;

@@ -49,7 +49,7 @@ export function designOf(frame: Frame, survival: Part, recapture: Part | { reado
 /**
  * Compares the recapture parts under one survival per interval, before any covariate is looked at: a weather effect on
  * being seen passes for an effect on surviving where recapture is wrongly held constant. AICc with n = releases.
- * Throws `survival.no-effort` if recapture by effort is asked for and the frame has none.
+ * Throws `survival.nobody-met-again` where no count holds an animal met again, `survival.no-effort` if recapture by effort is asked for and the frame has none.
  */
 export function compareRecapture(
   data: readonly SufficientStatistics[],
@@ -57,6 +57,7 @@ export function compareRecapture(
   choice: RecaptureChoice,
 ): RecaptureComparison {
   const releases = totalReleases(data);
+  if (data.every(({ seen }) => seen.every((number) => number === 0))) throw nobodyMetAgain(releases);
   const parts: RecapturePart[] = [
     "constant",
     ...(frame.effort ? (["effort"] as const) : []),
@@ -88,4 +89,14 @@ export function compareRecapture(
       choice === "choose" ? "least AICc under one survival per interval" : "named in the pipeline file",
     intervalFit: fits[index],
   };
+}
+
+function nobodyMetAgain(releases: number): InputError {
+  return new InputError({
+    name: "survival.nobody-met-again",
+    expected: "at least one animal that was met again after its release",
+    found: `${releases} releases and no animal met again`,
+    where: { cell: "captures" },
+    remedy: "check the marks and the dates of occasions: without recaptures nothing can be said of survival",
+  });
 }
