@@ -133,7 +133,8 @@ function stationSeries(
     const match = series.find((each) => each.site === id);
     if (match !== undefined) return match;
     const names = series.map((each) => found.sites.find((site) => site.id === each.site)?.name ?? each.site);
-    const near = nearestName(name, names);
+    // a station may be named by its identifier too, so a slip in one is looked up as well
+    const near = nearestName(name, [...names, ...series.map((each) => each.site)]);
     const known = `stations with ${one.variable}: ${names.join(", ") || "none"}`;
     throw stationError("stations.unknown", one, index, loaded, JSON.stringify(name), near ?? known);
   });

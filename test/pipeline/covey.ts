@@ -62,8 +62,8 @@ export interface SpawnOptions {
   readonly cwd?: string;
   /** Called once the child has started, to send it a signal. */
   readonly started?: (pid: number) => void;
-  /** Called with all that the child has written to stderr so far. */
-  readonly heard?: (stderr: string, pid: number) => void;
+  /** Close the reading end of the child's stdout at once. */
+  readonly deaf?: boolean;
 }
 
 /** Types a command: the compiled program in a process of its own, its output in pipes. */
@@ -76,8 +76,8 @@ export function covey(args: readonly string[], options: SpawnOptions = {}): Prom
     });
     child.stderr.setEncoding("utf8").on("data", (text: string) => {
       stderr += text;
-      if (child.pid !== undefined) options.heard?.(stderr, child.pid);
     });
+    if (options.deaf === true) child.stdout.destroy();
     child.on("error", fail);
     child.on("spawn", () => {
       if (child.pid !== undefined) options.started?.(child.pid);
