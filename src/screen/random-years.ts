@@ -1,4 +1,5 @@
 import { fQuantile, fUpper } from "../math/distributions.ts";
+import type { MemoryInflation } from "./memory.ts";
 import type { Correlation, Rivals, YearsChoice } from "./years.ts";
 
 /** What the choice by random intervals needs beside the evidence. */
@@ -13,6 +14,11 @@ export interface RandomYearsSetting {
   readonly alpha?: number;
   /** Terms whose exchange costs less than this in D are rivals. */
   readonly exchange?: number;
+}
+
+export interface RandomYearsChoice extends YearsChoice {
+  /** Terms that were let go because covariate and residual both remember, so that n intervals are worth fewer. */
+  readonly byMemory: readonly number[];
 }
 
 /** D(S): −2 log of the marginal likelihood of the set, σ ≥ 0 re-estimated. */
@@ -34,6 +40,10 @@ const RELATED = 0.5;
  * 5. Rivals: where exchanging a chosen k for an unselected j costs less than 3 in D: "k or j" where |r| ≥ .5; where some
  *    unrelated j would do as well, k is let go.
  *
+ * 6. Memory, where it is handed in: drop the term with the largest p until every p < α_K, p now that of F_k/c_k on
+ *    n/c_k − |S| − 1 degrees of freedom (at least 2), c_k the inflation by autocorrelation. Without memory c = 1 and
+ *    nothing is dropped that stood before.
+ *
  * `spent` takes the place of the 1 in the degrees of freedom where covariates are forced.
  */
 export function chooseByRandomIntervals(
@@ -41,7 +51,8 @@ export function chooseByRandomIntervals(
   evidence: Evidence,
   setting: RandomYearsSetting,
   correlation: Correlation,
-): YearsChoice {
+  memory?: MemoryInflation,
+): RandomYearsChoice {
   const { intervals: n } = setting;
   const alpha = Math.min(setting.alpha ?? ALPHA, 0.1 / setting.covariates);
   const dfWith = (terms: number) => n - terms - setting.spent;
@@ -52,13 +63,19 @@ export function chooseByRandomIntervals(
       prices.push(prices[j - 1] + n * Math.log1p(fQuantile(1 - alpha, 1, dfWith(j)) / dfWith(j)));
     return prices[terms];
   };
+  /** p of term k in the set, its evidence divided by c and the intervals counted as n/c. */
+  const pOf = (set: readonly number[], k: number, c: number) => {
+    const without = deviance(set.filter((other) => other !== k));
+    const f = dfWith(set.length) * Math.expm1((without - deviance(set)) / n);
+    return fUpper(f / c, 1, c === 1 ? dfWith(set.length) : Math.max(2, dfWith(set.length) - n + n / c));
+  };
   const gainOf = (set: readonly number[]) =>
     set.length === 0 ? 0 : deviance([]) - deviance(set) - price(set.length);
 
   const weighed = new Map<string, { readonly set: readonly number[]; readonly gain: number }>();
   for (const candidate of candidates) {
     if (candidate.length > Math.floor((n - 2) / 3) || dfWith(candidate.length) < 1) continue;
-    const set = pruned(candidate, deviance, dfWith, n, alpha);
+    const set = pruned(candidate, (s, k) => pOf(s, k, 1), alpha);
     weighed.set(set.join(","), { set, gain: gainOf(set) });
   }
   const all = [...weighed.values()].sort((a, b) => b.gain - a.gain || a.set.length - b.set.length);
@@ -73,25 +90,43 @@ export function chooseByRandomIntervals(
     if (close.some((j) => Math.abs(correlation(k, j)) < RELATED)) ambiguous.push(k);
     else if (close.length > 0) rivals.push({ chosen: k, others: close });
   }
-  const chosen = best.filter((k) => !ambiguous.includes(k));
-  return { chosen, gain: Math.max(0, gainOf(chosen)), weighed: all, alpha, rivals, ambiguous };
+  const clear = best.filter((k) => !ambiguous.includes(k));
+  const chosen =
+    memory === undefined
+      ? clear
+      : pruned(
+          clear,
+          (set, k) =>
+            pOf(
+              set,
+              k,
+              memory(
+                k,
+                set.filter((other) => other !== k),
+              ),
+            ),
+          alpha,
+        );
+  return {
+    chosen,
+    gain: Math.max(0, gainOf(chosen)),
+    weighed: all,
+    alpha,
+    rivals: rivals.filter((one) => chosen.includes(one.chosen)),
+    ambiguous,
+    byMemory: clear.filter((k) => !chosen.includes(k)),
+  };
 }
 
+/** Drops the term with the largest p until every p is below α. */
 function pruned(
   candidate: readonly number[],
-  deviance: Evidence,
-  dfWith: (terms: number) => number,
-  n: number,
+  pOf: (set: readonly number[], k: number) => number,
   alpha: number,
 ): readonly number[] {
   let set = [...candidate].sort((a, b) => a - b);
   while (set.length > 0) {
-    const df = dfWith(set.length);
-    const now = deviance(set);
-    const ps = set.map((k) => {
-      const without = deviance(set.filter((other) => other !== k));
-      return fUpper(df * Math.expm1((without - now) / n), 1, df);
-    });
+    const ps = set.map((k) => pOf(set, k));
     const worst = ps.reduce((most, p, i) => (p > ps[most] ? i : most), 0);
     if (ps[worst] < alpha) return set;
     set = set.filter((_, i) => i !== worst);
