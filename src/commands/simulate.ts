@@ -54,6 +54,7 @@ function sectionsOf(done: Simulated): SummarySection[] {
   const { covariates, directions, replicates, rows } = detection;
   const effects = [...new Set(rows.map((one) => one.effect))];
   const acts = covariates.map((name, i) => `${name} (${directions[i] < 0 ? "lowers" : "raises"} survival)`);
+  const error = Math.max(...rows.flatMap((one) => [one.found.se, one.unrelated.se]));
   const from =
     estimated === undefined
       ? "as given"
@@ -67,13 +68,13 @@ function sectionsOf(done: Simulated): SummarySection[] {
         ["acts", listWords(acts)],
         [
           "design",
-          `${done.intervals.length} intervals, ${done.animals} animals marked, ${design.covariates.length} candidates, recapture ${done.recapture}`,
+          `${done.intervals.length} intervals, ${done.animals} animals marked, ${design.covariates.length === 1 ? "1 candidate" : `${design.covariates.length} candidates`}, recapture ${done.recapture}`,
         ],
         ["residual sd", `${Number(detection.residual.toPrecision(2))} on the logit, ${from}`],
       ],
     },
     {
-      title: "effect: found counting years, counting animals; something unrelated chosen",
+      title: `effect: found counting years, counting animals; unrelated chosen (s.e. at most ${Math.ceil(100 * error)} %)`,
       rows: effects.map((effect): [string, string] => {
         const own = rows.filter((one) => one.effect === effect);
         const found = own.map((one) => whole(one.found.share)).join(", ");

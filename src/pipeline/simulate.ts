@@ -67,6 +67,7 @@ export async function simulate(
 ): Promise<Simulated> {
   const disk = nodeDisk();
   const folder = options.folder ?? `${loaded.outputFolder}-simulated`;
+  if (loaded.spec.captures === undefined) throw noCaptures(loaded);
   if (disk.resolve(folder) === disk.resolve(loaded.outputFolder)) throw sameFolder(folder);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
   const inputs = recording(world.files);

@@ -24,12 +24,12 @@ function answer({ rows, covariates }: Detection): string {
 }
 
 /** Where rivals name the truth clearly more often than the choice does, that is worth a sentence. */
-function beside({ rows }: Detection): string {
+function beside({ rows, covariates }: Detection): string {
   const row = rowsOf(rows, "counting years")
     .filter((one) => one.effect > 0)
     .find((one) => one.foundOrRival.low > one.found.high);
   if (row === undefined) return "";
-  return `With rivals counted ("this or that") an effect of ${row.effect} is named in ${percent(row.foundOrRival.share)}, not ${percent(row.found.share)}.`;
+  return `With rivals counted ("this or that") ${covariates.length === 1 ? "an effect" : "effects"} of ${row.effect} would be named in ${percent(row.foundOrRival.share)}, not ${percent(row.found.share)}.`;
 }
 
 function mistakes({ rows }: Detection): string {

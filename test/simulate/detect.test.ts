@@ -152,6 +152,14 @@ describe("the sentences", () => {
     ]);
   });
 
+  test("where rivals name what the choice does not, that is said", () => {
+    const twins = made([[0.6, 0.5, 0]]);
+    const rows = twins.rows.map((one) => ({ ...one, foundOrRival: share(0.9) }));
+    expect(detectionSentences({ ...twins, rows })[1]).toBe(
+      'With rivals counted ("this or that") an effect of 0.6 would be named in 90 %, not 50 %.',
+    );
+  });
+
   test("a study that can find nothing is told so", () => {
     expect(detectionSentences(made([[0.4, 0.1, 0]]))[0]).toBe(
       "With this design an effect of 0.4 per sd would be found in 10 % of studies counting years; no effect on the grid would be found in half of them.",

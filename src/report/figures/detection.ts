@@ -17,8 +17,8 @@ const PANELS = [
 const LOOKS: Readonly<
   Record<Rule, { readonly token: Token; readonly dash?: string; readonly shift: number }>
 > = {
-  "counting years": { token: "mark", shift: -1.5 },
-  "counting animals": { token: "less", dash: "6 4", shift: 1.5 },
+  "counting years": { token: "mark", shift: -2 },
+  "counting animals": { token: "less", dash: "6 4", shift: 2 },
 };
 
 /** Power by size of the effect, and beside it what is chosen wrongly, for both rules with Monte Carlo bars. */
@@ -45,8 +45,8 @@ export function detectionFigure(detection: Detection): Figure {
     .join("; ");
   const heading =
     covariates.length === 1
-      ? `if ${covariates[0]} acts on survival`
-      : `if ${listed(covariates)} act on survival, all by the same size`;
+      ? `Share of drawn studies, if ${covariates[0]} acts on survival`
+      : `Share of drawn studies, if ${listed(covariates)} act on survival, by the same size each`;
   return {
     name: "detection",
     title,
