@@ -27,7 +27,8 @@ export interface PathChoice {
 
 /**
  * BIC = −2 log L + df·log n and AICc along the path, at the shrunken solutions or at the refits; the least value
- * wins, ties go to the sparser model, which comes first. Throws `screen.no-criterion` where it is nowhere defined.
+ * wins, ties go to the sparser model, which comes first. Rows with n − k − 1 ≤ 0 are not chosen. Throws
+ * `screen.no-criterion` where it is nowhere defined.
  */
 export function chooseOnPath(
   path: LassoPath,
@@ -50,7 +51,11 @@ export function chooseOnPath(
       aicc: aicc(used, parameters, sampleSize),
     };
   });
-  const value = (row: CriterionRow) => (options.chooseBy === "BIC" ? row.bic : row.aicc);
+  // with as many parameters as observations a criterion ranks nothing, whichever it is
+  const value = (row: CriterionRow) => {
+    if (sampleSize - row.parameters - 1 <= 0) return Number.NaN;
+    return options.chooseBy === "BIC" ? row.bic : row.aicc;
+  };
   const index = rows.reduce(
     (best, row, i) =>
       best < 0 ? (Number.isNaN(value(row)) ? -1 : i) : value(row) < value(rows[best]) - 1e-9 ? i : best,

@@ -1,5 +1,6 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Effects } from "../effects/effects.ts";
+import { InputError } from "../errors.ts";
 import { randomStream } from "../math/random.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
 import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
@@ -72,7 +73,13 @@ export function sampleSizeOf(problem: ScreenProblem, options: ScreenOptions, ani
   return options.sampleSize === "animals" && Number.isFinite(animals) ? animals : releases;
 }
 
-/** Weights, path, the two choices, their refits and the permutation of years over all of it. */
+/** Below this many intervals every model with a covariate fits as well as one survival per interval. */
+const LEAST_INTERVALS = 3;
+
+/**
+ * Weights, path, the two choices, their refits and the permutation of years over all of it.
+ * Throws `screen.too-few-intervals`, and what the path and the criterion throw.
+ */
 export async function screen(
   problem: ScreenProblem,
   recapture: RecaptureComparison,
@@ -81,6 +88,7 @@ export async function screen(
   seed: number,
   effects: Pick<Effects, "parallel" | "progress">,
 ): Promise<{ readonly result: ScreenResult; readonly findings: readonly RawFinding[] }> {
+  if (problem.frame.intervals < LEAST_INTERVALS) throw tooFewIntervals(problem.frame.intervals);
   const constantFit = fitModel(problem.data, designWith(problem, []));
   const intervalFit = recapture.intervalFit;
   const setting: ProcedureSetting = {
@@ -186,9 +194,15 @@ function screenFindings(result: ScreenResult): RawFinding[] {
       findings.push({
         kind: "not-separable",
         subject,
-        message: `the data cannot tell apart: ${set.join(" and ")}`,
+        message:
+          set.length === 1
+            ? `the data say nothing of: ${set[0]}`
+            : `the data cannot tell apart: ${set.join(" and ")}`,
         count: set.length,
-        remedy: "only their product is estimated; hold the recapture part constant to separate them",
+        remedy:
+          set.length === 1
+            ? "leave it out, or join the stratum with another"
+            : "only their product is estimated; hold the recapture part constant to separate them",
       });
   }
   const { recapture } = result;
@@ -209,4 +223,14 @@ function screenFindings(result: ScreenResult): RawFinding[] {
       remedy: "treat the selection with care; look for nearly equal covariates",
     });
   return findings;
+}
+
+function tooFewIntervals(intervals: number): InputError {
+  return new InputError({
+    name: "screen.too-few-intervals",
+    expected: `at least ${LEAST_INTERVALS} intervals (${LEAST_INTERVALS + 1} occasions) to screen covariates`,
+    found: `${intervals}`,
+    where: { cell: "screen" },
+    remedy: "add occasions, or stop before the screen",
+  });
 }
