@@ -25,7 +25,12 @@ export type Edit = readonly [find: RegExp, replacement: string];
  * Writes a copy of a pipeline file into `folder`: its data folder made absolute, its output `folder`/out, then the
  * edits. Gives the path of the copy.
  */
-export function pipelineIn(folder: string, source: string, edits: readonly Edit[] = []): string {
+export function pipelineIn(
+  folder: string,
+  source: string,
+  edits: readonly Edit[] = [],
+  name = "pipeline.yaml",
+): string {
   const from = resolve(ROOT, source);
   const data = /^data: (.*)$/m.exec(readFileSync(from, "utf8"))?.[1] ?? ".";
   const all: Edit[] = [
@@ -40,7 +45,7 @@ export function pipelineIn(folder: string, source: string, edits: readonly Edit[
     },
     readFileSync(from, "utf8"),
   );
-  const to = join(folder, "pipeline.yaml");
+  const to = join(folder, name);
   writeFileSync(to, text);
   return to;
 }
