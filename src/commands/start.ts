@@ -18,6 +18,8 @@ export async function startCommand(
   { to }: StartCommandOptions,
   { style, progress }: Pick<Terminal, "style" | "progress">,
 ): Promise<Lines> {
+  // Before the work, not only after it; `create` below holds whatever happens in between.
+  if (nodeDisk().kind(resolve(to)) !== undefined) throw exists(to);
   const base = dirname(resolve(to));
   const below = relative(base, resolve(folder)).replaceAll("\\", "/");
   const title = basename(resolve(folder));

@@ -59,6 +59,6 @@ test("rows shuffled and files split give the same series, and a plain sort in co
         );
       }
     }),
-    { numRuns: 15 },
+    { numRuns: 6 },
   );
 });
