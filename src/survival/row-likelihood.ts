@@ -63,7 +63,7 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
         const small = Math.exp(-Math.abs(eta));
         s[r] = (eta >= 0 ? 1 : small) / (1 + small);
         s1[r] = (eta >= 0 ? small : 1) / (1 + small);
-        const logPhi = design.lengths[t] * ((eta >= 0 ? 0 : eta) - Math.log1p(small));
+        const logPhi = design.lengths[t] * (Math.min(0, eta) - Math.log1p(small));
         phi[r] = Math.exp(logPhi);
         if (alive[t] > 0) logLikelihood += alive[t] * logPhi;
         if (known !== undefined) {

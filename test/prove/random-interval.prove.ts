@@ -270,7 +270,7 @@ describe("noise only: 14 covariates, 20 intervals", () => {
       { anything: (set) => set.length > 0 },
     );
     const most = 0.1 + 2 * Math.sqrt((0.1 * 0.9) / REPLICATES);
-    expect(shares["random intervals, memory"]["anything"]).toBeLessThanOrEqual(most);
+    expect(shares["random intervals, memory"].anything).toBeLessThanOrEqual(most);
   });
 });
 
