@@ -37,7 +37,7 @@ export function jointMode(
   return here;
 }
 
-export function largest(values: Float64Array): number {
+function largest(values: Float64Array): number {
   let most = 0;
   for (const value of values) most = Math.max(most, Math.abs(value));
   return most;

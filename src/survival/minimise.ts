@@ -34,7 +34,7 @@ export function leastOnHalfLine(value: (sigma: number) => number, near: number, 
 }
 
 /** Brent's minimiser on [low, high] from `start`, to an absolute `tolerance` in x. */
-export function brent(
+function brent(
   f: (x: number) => number,
   low: number,
   start: number,

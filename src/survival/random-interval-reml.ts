@@ -24,7 +24,7 @@ export function restrictedSigma(
 }
 
 /** R as a function of σ; each call starts from the joint mode of the one before. */
-export function restrictedCriterion(
+function restrictedCriterion(
   data: readonly SufficientStatistics[],
   laplace: Laplace,
   from: EffectsMode,
