@@ -74,7 +74,7 @@ function sectionsOf(done: Simulated): SummarySection[] {
       ],
     },
     {
-      title: `effect: found counting years, counting animals; unrelated chosen (s.e. at most ${Math.ceil(100 * error)} %)`,
+      title: `effect: found counting years, animals; unrelated chosen (s.e. at most ${Math.ceil(100 * error)} %)`,
       rows: effects.map((effect): [string, string] => {
         const own = rows.filter((one) => one.effect === effect);
         const found = own.map((one) => whole(one.found.share)).join(", ");

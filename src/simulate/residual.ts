@@ -23,7 +23,7 @@ export interface ResidualEstimate {
  *
  * which is the estimate of DerSimonian & Laird (1986, Controlled Clinical Trials 7:177) at equal weights, with
  * covariates. w_t is the diagonal of the information at the fit with the named covariates. A few years tell σ only
- * within half of it or more: try other values beside it.
+ * within half of it or more, and what covariates that are not named explain is still in it: try other values beside it.
  */
 export function residualEstimate(
   problem: ScreenProblem,

@@ -10,26 +10,30 @@ export function detectionSentences(detection: Detection): readonly string[] {
   return [answer(detection), beside(detection), mistakes(detection)].filter((one) => one !== "");
 }
 
+/** The row the answer speaks of: the smallest effect that is found often enough, else the largest on the grid. */
+function shownRow(rows: readonly DetectionRow[]): DetectionRow | undefined {
+  const years = rowsOf(rows, "counting years").filter((one) => one.effect > 0);
+  return years.find((one) => one.found.share >= ENOUGH) ?? years.at(-1);
+}
+
 /** "With this design an effect of 0.4 per sd would be found in 61 % of studies counting years; effects below …". */
 function answer({ rows, covariates }: Detection): string {
-  const years = rowsOf(rows, "counting years").filter((one) => one.effect > 0);
-  if (years.length === 0) return "";
-  const shown = years.find((one) => one.found.share >= ENOUGH) ?? years[years.length - 1];
+  const shown = shownRow(rows);
+  if (shown === undefined) return "";
   const what = covariates.length === 1 ? "an effect" : "effects";
   const found = `With this design ${what} of ${shown.effect} per sd would be found in ${percent(shown.found.share)} of studies counting years`;
-  // all sizes up to the first that is found at least every second time
+  // all sizes below the first that is found at least every second time
+  const years = rowsOf(rows, "counting years").filter((one) => one.effect > 0);
   const first = years.findIndex((one) => one.found.share >= HALF);
   if (first < 0) return `${found}; no effect on the grid would be found in half of them.`;
   return first === 0 ? `${found}.` : `${found}; effects below ${years[first].effect} would mostly be missed.`;
 }
 
 /** Where rivals name the truth clearly more often than the choice does, that is worth a sentence. */
-function beside({ rows, covariates }: Detection): string {
-  const row = rowsOf(rows, "counting years")
-    .filter((one) => one.effect > 0)
-    .find((one) => one.foundOrRival.low > one.found.high);
-  if (row === undefined) return "";
-  return `With rivals counted ("this or that") ${covariates.length === 1 ? "an effect" : "effects"} of ${row.effect} would be named in ${percent(row.foundOrRival.share)}, not ${percent(row.found.share)}.`;
+function beside({ rows }: Detection): string {
+  const row = shownRow(rows);
+  if (row === undefined || !(row.foundOrRival.low > row.found.high)) return "";
+  return `With rivals counted ("this or that") it would be named in ${percent(row.foundOrRival.share)}, not ${percent(row.found.share)}.`;
 }
 
 function mistakes({ rows }: Detection): string {

@@ -53,7 +53,7 @@ describe("what this study can detect, drawn", () => {
     expect(half[1]).toBeCloseTo((none[1] + all[1]) / 2, 1);
     expect(half[0]).toBeCloseTo((none[0] + all[0]) / 2, 1);
     expect(svg).toContain("winter rain acts on survival");
-    expect(svg).toContain("counting years, found by size of effect 0: 0 %, 0.4000: 50 %, 0.8000: 100 %");
+    expect(svg).toContain("counting years, found by size of effect 0: 0 %, 0.4: 50 %, 0.8: 100 %");
     expect(svg).not.toMatch(/NaN|Infinity|undefined/);
   });
 

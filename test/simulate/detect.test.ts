@@ -156,7 +156,7 @@ describe("the sentences", () => {
     const twins = made([[0.6, 0.5, 0]]);
     const rows = twins.rows.map((one) => ({ ...one, foundOrRival: share(0.9) }));
     expect(detectionSentences({ ...twins, rows })[1]).toBe(
-      'With rivals counted ("this or that") an effect of 0.6 would be named in 90 %, not 50 %.',
+      'With rivals counted ("this or that") it would be named in 90 %, not 50 %.',
     );
   });
 

@@ -2,7 +2,7 @@ import type { Detection, DetectionRow, Rule } from "../../simulate/detect.ts";
 import type { Share } from "../../simulate/tally.ts";
 import { drawing, type Figure, label, rect, segment } from "../figure.ts";
 import { type Html, html } from "../html.ts";
-import { counted, listed, percent, px, show } from "../numbers.ts";
+import { brief, counted, listed, percent, px } from "../numbers.ts";
 import { ink, type Token } from "../palette.ts";
 import { line, ticks, tickText } from "../scale.ts";
 
@@ -39,7 +39,7 @@ export function detectionFigure(detection: Detection): Figure {
   });
   const says = rules
     .map((rule) => {
-      const each = of(rule).map((row) => `${show(row.effect)}: ${percent(row.found.share)}`);
+      const each = of(rule).map((row) => `${tickText(row.effect)}: ${percent(row.found.share)}`);
       return `${rule}, found by size of effect ${each.join(", ")}`;
     })
     .join("; ");
@@ -50,7 +50,7 @@ export function detectionFigure(detection: Detection): Figure {
   return {
     name: "detection",
     title,
-    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listed(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (left), and in which something is chosen whose |r| with the truth is below 0.5 (right), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${show(residual)} on the logit.`,
+    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listed(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (left), and in which something is chosen whose |r| with the truth is below 0.5 (right), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${brief(Number(residual.toFixed(3)))} on the logit.`,
     svg: drawing(
       WIDTH,
       HEIGHT,
