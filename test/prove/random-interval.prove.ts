@@ -299,6 +299,7 @@ describe("ten covariates in three themes (r .8 inside), two true at ±.5, residu
         "hit 2": (set) => set.includes(4),
         "theme 1": (set) => set.some((k) => theme[k] === 0),
         "theme 2": (set) => set.some((k) => theme[k] === 1),
+        "themes exact": (set) => [...new Set(set.map((k) => theme[k]))].sort().join() === "0,1",
         exact: (set) => set.join() === "0,4",
       },
     );
