@@ -2,7 +2,12 @@ import fc from "fast-check";
 import { describe, expect, test } from "vitest";
 import { randomStream } from "../../src/math/random.ts";
 import { type Detection, detect } from "../../src/simulate/detect.ts";
-import { drawStudy as drawReplicate, simulateReplicates } from "../../src/simulate/replicate.ts";
+import {
+  drawStudy as drawReplicate,
+  REPLICATES_TASK,
+  type ReplicateChunk,
+  simulateReplicates,
+} from "../../src/simulate/replicate.ts";
 import { detectionSentences } from "../../src/simulate/says.ts";
 import { type StudyDesign, studyDesign } from "../../src/simulate/study-design.ts";
 import { shareOf } from "../../src/simulate/tally.ts";
@@ -49,6 +54,28 @@ describe("what a design can detect", () => {
     expect(more.rows.length).toBe(4);
   });
 
+  test("every replicate is drawn once, and no two effects share a random stream", async () => {
+    const chunks: ReplicateChunk[] = [];
+    const parallel = {
+      map: async <Input, Output>(task: string, inputs: readonly Input[]): Promise<Output[]> => {
+        expect(task).toBe(REPLICATES_TASK);
+        // the inputs of this task are chunks
+        chunks.push(...(inputs as unknown as ReplicateChunk[]));
+        return inputs.map(() => [] as unknown as Output);
+      },
+    };
+    await detect(design, { ...request, effects: [0, 0.2, 0.4], replicates: 12 }, options, 1, {
+      ...helpers,
+      parallel,
+    });
+    const drawn = chunks.flatMap((one) =>
+      Array.from({ length: one.to - one.from }, (_, i) => `${one.stream}: ${one.from + i}`),
+    );
+    expect(new Set(drawn).size).toBe(3 * 12);
+    expect(drawn.length).toBe(3 * 12);
+    expect([...new Set(chunks.map((one) => one.scenario.effects[0]?.perSd ?? 0))]).toEqual([0, 0.2, 0.4]);
+  });
+
   test("how replicates are cut into chunks changes nothing", () => {
     const chunk = {
       design,
@@ -88,17 +115,35 @@ describe("what a design can detect", () => {
     );
   });
 
-  test("survival over an interval of two years is the annual one squared; strata share their years", () => {
+  test("survival of a two-year interval: annual squared, its years varying by σ²/2, effect per sd, same for the strata", () => {
     const lengths = Float64Array.from(design.frame.lengths, (_, t) => (t === 0 ? 2 : 1));
     const marked = Float64Array.from(lengths, (_, t) => (t === 0 ? 200_000 : 0));
     const always = new Float64Array(lengths.length).fill(1);
-    const stratum = { stratum: "a", marked, baseline: new Float64Array(lengths.length), recapture: always };
-    const twice = { ...design, frame: { ...design.frame, lengths }, strata: [stratum] };
-    const drawn = drawReplicate(twice, { effects: [], residual: 0 }, randomStream(4, "long", 0));
-    const { seen } = drawn.data[0];
-    // 0.5² of 200,000 within 4 standard errors, and half of the rest
-    expect(Math.abs(seen[0] / 200_000 - 0.25)).toBeLessThan(4 * Math.sqrt((0.25 * 0.75) / 200_000));
-    expect(Math.abs(seen[1] / seen[0] - 0.5)).toBeLessThan(4 * Math.sqrt(0.25 / seen[0]));
+    const strata = [0, 0.7].map((logit) => ({
+      stratum: `at ${logit}`,
+      marked,
+      baseline: new Float64Array(lengths.length).fill(logit),
+      recapture: always,
+    }));
+    // a covariate in other units than sd acts all the same by its sd
+    const inMetres = { name: "metres", values: design.covariates[0].values.map((x) => 100 + 7 * x) };
+    const frame = { ...design.frame, lengths };
+    const world: StudyDesign = { ...design, frame, strata, covariates: [inMetres] };
+    const scenario = { effects: [{ covariate: 0, perSd: 0.6 }], residual: 0.8 };
+    const drawn = drawReplicate(world, scenario, randomStream(4, "long", 0));
+    // the n normal deviates of the years are the first that are drawn
+    const random = randomStream(4, "long", 0);
+    const z = Float64Array.from(lengths, () => random.normal());
+    const annual = (logit: number, t: number) =>
+      1 /
+      (1 + Math.exp(-logit - 0.6 * design.covariates[0].values[t] - (0.8 * z[t]) / Math.sqrt(lengths[t])));
+    [0, 0.7].forEach((logit, g) => {
+      const { seen } = drawn.data[g];
+      const near = (share: number, expected: number, n: number) =>
+        expect(Math.abs(share - expected)).toBeLessThan(4 * Math.sqrt((expected * (1 - expected)) / n));
+      near(seen[0] / 200_000, annual(logit, 0) ** 2, 200_000);
+      near(seen[1] / seen[0], annual(logit, 1), seen[0]);
+    });
   });
 });
 

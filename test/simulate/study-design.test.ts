@@ -5,6 +5,7 @@ import { drawCaptures } from "../../src/simulate/draw.ts";
 import { drawStudy } from "../../src/simulate/replicate.ts";
 import { ownDirections, residualEstimate } from "../../src/simulate/residual.ts";
 import { newlyMarked, studyDesign } from "../../src/simulate/study-design.ts";
+import { type Frame, occasionRecapture } from "../../src/survival/design.ts";
 import { compareRecapture } from "../../src/survival/recapture-choice.ts";
 import { sufficientStatistics } from "../../src/survival/statistics.ts";
 import { drawStudy as drawKnown } from "../support/study.ts";
@@ -62,6 +63,27 @@ describe("residual variation from ĉ between years", () => {
       expect(Math.abs(mean(found.map((one) => one.betweenYears)) - 1)).toBeLessThan(0.25);
       expect(variance).toBeLessThan(0.03);
     } else expect(Math.abs(variance / sd ** 2 - 1)).toBeLessThan(0.2);
+  });
+
+  test("it comes back with strata, a forced covariate, recapture per occasion and unequal lengths too", () => {
+    const { frame, covariates } = known.problem;
+    const n = frame.intervals;
+    const lengths = Float64Array.from(frame.lengths, (_, t) => (t % 4 === 0 ? 2 : 1));
+    const two: Frame = { ...frame, strata: ["a", "b"], lengths, forced: [covariates[2]] };
+    const strata = [1.4, 0.4].map((logit, g) => ({
+      stratum: two.strata[g],
+      marked: new Float64Array(n).fill(40),
+      baseline: new Float64Array(n).fill(logit),
+      recapture: Float64Array.from(lengths, (_, t) => (t % 2 === 0 ? 0.6 : 0.9)),
+    }));
+    const world = { frame: two, recapture: occasionRecapture(two), covariates, strata };
+    const variances = Array.from({ length: 60 }, (_, r) => {
+      const scenario = { effects: [{ covariate: 0, perSd: 0.5 }], residual: 0.4 };
+      const problem = drawStudy(world, scenario, randomStream(6, "residual", r));
+      const interval = compareRecapture(problem.data, two, "each occasion").intervalFit;
+      return residualEstimate(problem, [0], interval).sd ** 2;
+    });
+    expect(Math.abs(mean(variances) / 0.4 ** 2 - 1)).toBeLessThan(0.25);
   });
 
   test("no variation is claimed where no degrees of freedom are left", () => {
