@@ -16,12 +16,28 @@ export interface Verdict {
   readonly caution: string;
 }
 
-/** Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint. */
+/** Grades from weak to strong, so that a doubt can take one off. */
+const GRADES: readonly Grade[] = ["none", "faint", "fair", "firm"];
+
+/**
+ * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the model
+ * with random interval effects does not confirm every covariate chosen.
+ */
 function gradeOf(screened: ScreenResult): Grade {
   if (screened.permutation === undefined) return "not tested";
   const { p } = screened.permutation;
   if (screened.byYears.names.length === 0 || p > 0.1) return "none";
-  return p <= 0.01 ? "firm" : p <= 0.05 ? "fair" : "faint";
+  const grade = p <= 0.01 ? 3 : p <= 0.05 ? 2 : 1;
+  return GRADES[unconfirmed(screened).length > 0 ? grade - 1 : grade];
+}
+
+/** Covariates chosen by years of which neither they nor a rival is chosen by random intervals. */
+function unconfirmed({ byYears, rivals, randomIntervals }: ScreenResult): readonly string[] {
+  if (randomIntervals === undefined || !randomIntervals.settled) return [];
+  return byYears.names.filter((name) => {
+    const others = rivals.find((one) => one.chosen === name)?.others ?? [];
+    return ![name, ...others].some((one) => randomIntervals.chosen.includes(one));
+  });
 }
 
 /** Four sentences made from the numbers and nothing else, never stronger than they are. */
@@ -48,13 +64,20 @@ function headline(screened: ScreenResult, grade: Grade): string {
   if (permutation === undefined)
     return `Counting years, ${chosen} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
   const test = `family-wise p ${pWords(permutation.p)} over ${permutation.replicates} permutations of years of the whole procedure`;
+  const doubtful = unconfirmed(screened);
+  const doubt =
+    doubtful.length === 0
+      ? ""
+      : ` A model with a random effect of each interval does not confirm ${listWords(doubtful)}.`;
+  if (grade === "none" && permutation.p <= 0.1)
+    return `Counting years, the data hardly carry a selection: ${chosen} came out over ${years} (${test}).${doubt}`;
   if (grade === "none")
     return `Counting years, the data do not carry a selection: ${chosen} came out over ${years}, but so much comes out by chance (${test}).`;
   const verb = { firm: "firmly goes with", fair: "goes with", faint: "may go with" }[
     grade as "firm" | "fair" | "faint"
   ];
   const plural = byYears.names.length > 1 ? verb.replace("goes", "go") : verb;
-  return `Counting years, ${chosen} ${plural} differences in apparent annual survival over ${years} (${test}; ${share} of the deviance between years, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted).`;
+  return `Counting years, ${chosen} ${plural} differences in apparent annual survival over ${years} (${test}; ${share} of the deviance between years, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted).${doubt}`;
 }
 
 /** The chosen covariates, each with those the data cannot tell from it. */

@@ -9,6 +9,7 @@ import type { Interval, Occasion } from "../data/occasion.ts";
 import type { Where } from "../data/place.ts";
 import type { Series, Site } from "../data/series.ts";
 import type { ScreenResult } from "../screen/screen.ts";
+import type { GoodnessOfFit } from "../survival/goodness-of-fit.ts";
 import type { Table } from "../tables/table.ts";
 
 /** A layer to lie under the map: row-major values, row 0 in the north, corners in WGS 84 degrees. */
@@ -60,6 +61,8 @@ export interface ReportInput {
   readonly components: Components | undefined;
   readonly screened: ScreenResult | undefined;
   readonly comparison: Comparison | undefined;
+  /** Fit of the general model; undefined where no captures were read. */
+  readonly goodness?: GoodnessOfFit | undefined;
   readonly findings: readonly Finding[];
   readonly tables: readonly Table[];
   /** The run record as pretty JSON, places redacted. */

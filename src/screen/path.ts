@@ -35,6 +35,8 @@ export interface PathOptions {
   readonly downTo: number;
   /** λ values to use instead of the grid, falling. */
   readonly lambdas?: readonly number[];
+  /** End the path before the first solution with more covariates than this. */
+  readonly most?: number;
 }
 
 /** Largest residual, relative to λ_max, that a solution may carry. */
@@ -64,18 +66,21 @@ export function lassoPath(problem: ScreenProblem, weights: Float64Array, options
   }, 0);
   const lambdas = options.lambdas ?? lambdaGrid(lambdaMax, options.steps, options.downTo);
   if (lambdaMax === 0) {
-    const step = (lambda: number) => pathStep(lambda, lambdaMax, nothing, positions);
+    const step = (lambda: number) => pathStep(lambda, lambdaMax, nothing, positions, noise);
     return { lambdaMax, weights, steps: lambdas.map(step) };
   }
+  const steps: PathStep[] = [];
   let x = nothing.x;
-  const steps = lambdas.map((lambda) => {
+  for (const lambda of lambdas) {
     const solution = proximalNewton(smooth, weightedL1(lambda, all), x, {
       tolerance: 0.05 * RESIDUAL_LIMIT * lambdaMax,
       iterations: 200,
     });
     x = solution.x;
-    return pathStep(lambda, lambdaMax, solution, positions);
-  });
+    const step = pathStep(lambda, lambdaMax, solution, positions, noise);
+    if (options.most !== undefined && step.active.length > options.most) break;
+    steps.push(step);
+  }
   return { lambdaMax, weights, steps };
 }
 
@@ -99,10 +104,17 @@ export function solveNull(problem: ScreenProblem, smooth: Smooth): Solution {
   return solution;
 }
 
-function pathStep(lambda: number, lambdaMax: number, solution: Solution, positions: Int32Array): PathStep {
+function pathStep(
+  lambda: number,
+  lambdaMax: number,
+  solution: Solution,
+  positions: Int32Array,
+  noise: number,
+): PathStep {
   // with λ_max 0 there is nothing to compare with, and the null fit has passed its own tolerance
   const residual = lambdaMax === 0 ? 0 : solution.violation / lambdaMax;
-  if (residual > RESIDUAL_LIMIT) refuse(`λ = ${lambda}`, solution);
+  // a λ_max near 0 (huge weights) asks for less than rounding can give: what counts as a converged fit counts here too
+  if (solution.violation > Math.max(RESIDUAL_LIMIT * lambdaMax, noise)) refuse(`λ = ${lambda}`, solution);
   const coefficients = Float64Array.from(positions, (k) => solution.x[k]);
   return {
     lambda,

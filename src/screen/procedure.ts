@@ -6,7 +6,7 @@ import { type LassoPath, lassoPath, solveNull } from "./path.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
 import { type Refits, refitsOf } from "./refits.ts";
 import { type AdaptiveWeights, adaptiveWeights, ridgeEstimates, weightsFrom } from "./weights.ts";
-import { chooseByYears, type YearsChoice, type YearsSetting } from "./years.ts";
+import { chooseByYears, largestSet, type YearsChoice, type YearsSetting } from "./years.ts";
 
 /** What does not change when years are permuted. */
 export interface ProcedureSetting extends YearsSetting {
@@ -21,6 +21,8 @@ export interface ProcedureResult {
   readonly byAnimals: readonly number[];
   readonly byYears: YearsChoice;
   readonly refit: Refits;
+  /** The sets that were weighed by years. */
+  readonly candidates: readonly (readonly number[])[];
 }
 
 /**
@@ -42,8 +44,15 @@ export function runProcedure(
   // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
   // candidates, and what is weighed by years may come from either path.
   const ridge = weights.by === "ridge" ? weights.first : ridgeEstimates(problem, nothing.x);
+  const most = largestSet(setting.intervals);
   const second =
-    weights.by === "ridge" ? path : lassoPath(problem, weightsFrom(ridge, options.gamma), options);
+    weights.by === "ridge"
+      ? path
+      : lassoPath(problem, weightsFrom(ridge, options.gamma), {
+          steps: options.steps,
+          downTo: options.downTo,
+          most,
+        });
   const candidates = distinctSets([...path.steps, ...second.steps]);
   return {
     weights,
@@ -52,6 +61,7 @@ export function runProcedure(
     byAnimals: path.steps[choice.index].active,
     byYears: chooseByYears(candidates, refit, setting, correlationOf(problem)),
     refit,
+    candidates,
   };
 }
 
@@ -63,7 +73,7 @@ function distinctSets(steps: LassoPath["steps"]): (readonly number[])[] {
 }
 
 /** Pearson correlation of two covariates over the intervals. */
-function correlationOf({ covariates }: ScreenProblem): (a: number, b: number) => number {
+export function correlationOf({ covariates }: ScreenProblem): (a: number, b: number) => number {
   return (a, b) => {
     const [x, y] = [covariates[a].values, covariates[b].values];
     const [mx, my] = [mean(x), mean(y)];

@@ -18,6 +18,7 @@ import {
 } from "./permutation.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
 import { type ProcedureSetting, runProcedure } from "./procedure.ts";
+import { type RandomIntervalEvidence, randomIntervalEvidence } from "./random-intervals.ts";
 import { agreeingStarts, type StartsReport } from "./starts.ts";
 import type { AdaptiveWeights } from "./weights.ts";
 import type { YearsChoice } from "./years.ts";
@@ -57,6 +58,8 @@ export interface ScreenResult {
   readonly shifts: number | undefined;
   /** The choices with one interval left out at a time; empty without permutations. */
   readonly influence: readonly InfluenceRow[];
+  /** The same question asked of a model with a random effect of each interval. Undefined where recapture is known. */
+  readonly randomIntervals: RandomIntervalEvidence | undefined;
 }
 
 const STARTS = 12;
@@ -143,6 +146,10 @@ export async function screen(
     weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
     shifts: outcomes.length === 0 ? undefined : shiftYears({ problem, setting, options }, found.byYears.gain),
+    randomIntervals:
+      "known" in problem.recapture
+        ? undefined
+        : randomIntervalEvidence(problem, found.candidates, found.byYears.chosen),
     influence: outcomes.length === 0 ? [] : leaveOneIntervalOut(problem, setting, options),
   };
   return { result, findings: screenFindings(result) };

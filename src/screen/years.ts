@@ -39,6 +39,11 @@ export interface Rivals {
   readonly others: readonly number[];
 }
 
+/** ⌊(n − 2)/3⌋: with more covariates than this n intervals cannot tell anything apart. */
+export function largestSet(intervals: number): number {
+  return Math.max(0, Math.floor((intervals - 2) / 3));
+}
+
 /** An exchange that costs less than this on the scale of n log(D − D_t) cannot be told from the choice. */
 const EXCHANGE = 3;
 /** Rivals this much correlated tell the same story; an exchange for a less related one leaves no story to tell. */
@@ -49,7 +54,8 @@ const RELATED = 0.5;
  * residual sum of squares over intervals, so that a term's evidence is its analysis-of-deviance F on the intervals
  * that are left (Skalski 1996), and unexplained variation between years raises the bar for everything.
  *
- * 1. Candidates: the distinct active sets of the lasso paths (adaptive weights, and ridge weights) with |S| ≤ ⌊(n − 2)/3⌋.
+ * 1. Candidates: the distinct active sets with |S| ≤ ⌊(n − 2)/3⌋ of the lasso path, and of the path with ridge weights up
+ *    to the first larger one.
  * 2. Prune: drop the term with the largest p until every p < α = min(.045, .1/K), with
  *    F_k = ν [(D_{S∖k} − D_t)/(D_S − D_t) − 1], ν = r_t − r_S, p_k = P(F_{1,ν} > F_k).
  * 3. Choose the set with the least n log(D_S − D_t) + Σ_{j≤|S|} c_j, c_j = n log[1 + F_{α;1,ν_j}/ν_j], ν_j the degrees
@@ -76,7 +82,7 @@ export function chooseByYears(
     return sum;
   };
   for (const candidate of candidates) {
-    if (candidate.length > Math.floor((n - 2) / 3) || dfWith(candidate.length) < 1) continue;
+    if (candidate.length > largestSet(n) || dfWith(candidate.length) < 1) continue;
     const set = pruned(candidate, left, dfWith, alpha);
     const gain = set.length === 0 ? 0 : n * Math.log(left([]) / left(set)) - price(set.length);
     weighed.set(set.join(","), { set, gain });

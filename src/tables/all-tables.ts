@@ -20,6 +20,7 @@ import {
   evidenceTable,
   influenceTable,
   pathTable,
+  randomIntervalTable,
   recaptureTable,
   selectionTable,
   survivalTable,
@@ -50,6 +51,7 @@ export function allTables(study: StudyResult): readonly Table[] {
           selectionTable(screened),
           survivalTable(screened, study.intervals),
           evidenceTable(screened),
+          randomIntervalTable(screened),
           influenceTable(screened, study.intervals),
         ]
       : []),

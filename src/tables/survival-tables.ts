@@ -187,6 +187,15 @@ export function evidenceTable(screened: ScreenResult): Table {
       shifts,
       "keeps autocorrelation; a description, not a test",
     ]);
+  const { randomIntervals } = screened;
+  if (randomIntervals !== undefined) {
+    const { sigmaWithout, sigma, explained } = randomIntervals;
+    rows.push(
+      ["sd between years, no covariate", sigmaWithout, "random interval effects on the logit, by REML"],
+      ["sd between years, chosen by years", sigma, "what is left beside the covariates chosen"],
+      ["variance between years explained", explained, "1 − the ratio of the two variances"],
+    );
+  }
   return {
     name: "evidence",
     title: "Evidence counted in years",
@@ -197,5 +206,22 @@ export function evidenceTable(screened: ScreenResult): Table {
       text("note", "note", "what it means"),
     ],
     rows,
+  };
+}
+
+export function randomIntervalTable(screened: ScreenResult): Table {
+  const { randomIntervals } = screened;
+  return {
+    name: "random-interval-effects",
+    title: "Effects with a random effect of each interval",
+    description: `Covariates chosen by years, on logit apparent annual survival per standard deviation; the intervals allow for variation between years (REML, t), not for the choosing. The rule by random intervals chooses from the same candidates: ${randomIntervals?.chosen.join("; ") || "nothing"}.`,
+    columns: [
+      text("covariate", "covariate", "name of the covariate"),
+      number("effect", "effect", "logit per sd", "estimate"),
+      number("se", "se", "logit per sd", "standard error"),
+      number("low", "low", "logit per sd", "lower end of the 95 % interval"),
+      number("high", "high", "logit per sd", "upper end of the 95 % interval"),
+    ],
+    rows: (randomIntervals?.effects ?? []).map((one) => [one.name, one.estimate, one.se, one.low, one.high]),
   };
 }

@@ -4,6 +4,7 @@ import { html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, show } from "../numbers.ts";
 import { grid, type Section } from "../parts.ts";
+import { goodnessBlock } from "./goodness.ts";
 
 const WORDS: Readonly<Record<RecapturePart, string>> = {
   constant: "the same at every occasion",
@@ -11,7 +12,7 @@ const WORDS: Readonly<Record<RecapturePart, string>> = {
   "each occasion": "its own at each occasion",
 };
 
-export function recaptureSection({ screened }: ReportInput, cast: Cast): Section {
+export function recaptureSection({ screened, goodness }: ReportInput, cast: Cast): Section {
   const head = { id: "recapture", title: "Recapture" };
   if (screened === undefined) return { ...head, body: html`<p>No captures were modelled in this run.</p>` };
   const { rows, chosen, because, intervalFit } = screened.recapture;
@@ -45,6 +46,7 @@ ${grid(
     ],
   })),
 )}
-<p>In use: recapture ${WORDS[chosen]} (${because}).${constant && ` Under one survival per interval it is ${show(first.value)} (95 % interval ${show(first.low)} to ${show(first.high)}).`}${!constant && rates.length > 0 && ` Over ${counted(rates.length, "occasion and stratum", "occasions and strata")} it runs from ${show(Math.min(...rates.map((one) => one.value)))} to ${show(Math.max(...rates.map((one) => one.value)))}.`}</p>`,
+<p>In use: recapture ${WORDS[chosen]} (${because}).${constant && ` Under one survival per interval it is ${show(first.value)} (95 % interval ${show(first.low)} to ${show(first.high)}).`}${!constant && rates.length > 0 && ` Over ${counted(rates.length, "occasion and stratum", "occasions and strata")} it runs from ${show(Math.min(...rates.map((one) => one.value)))} to ${show(Math.max(...rates.map((one) => one.value)))}.`}</p>
+${goodnessBlock(goodness, cast)}`,
   };
 }

@@ -7,6 +7,7 @@ import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
 import { influenceBlock } from "./influence.ts";
+import { randomIntervalsBlock } from "./random-intervals.ts";
 import { walkBlock } from "./walk.ts";
 
 export function screenSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
@@ -30,6 +31,7 @@ ${figureBlock(figures, "evidence")}
 ${effectsTable(input, cast, byYears, "What the choice by years says, refitted without penalty")}
 ${byAnimals.names.join("\n") !== byYears.names.join("\n") && effectsTable(input, cast, byAnimals, "What the choice by animals says, refitted without penalty")}
 <p>These intervals take the choice as if it had been made before looking, and so are too narrow; they show size and direction. No F and no p is given for what was chosen on these data.</p>
+${randomIntervalsBlock(screened, cast)}
 ${weighedTable(screened, cast)}
 ${influenceBlock(input, cast)}
 <h3>Certificates</h3>
