@@ -36,6 +36,8 @@ write(
         comparison("all covariates", "flood", "false", flood, share, between(flood), tested),
         comparison("chosen by animals", "flood", "true", flood, share, between(flood), none),
         comparison("chosen by years", "flood", "true", flood, share, between(flood), none),
+        # of the two subsets, none and flood, flood has the lower BIC
+        comparison("best small subset", "flood", "true", flood, share, between(flood), none),
     ],
 )
 

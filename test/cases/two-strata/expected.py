@@ -109,6 +109,8 @@ write(
         comparison("each interval", "each interval its own", "false", interval),
         comparison("chosen by animals", "constant", "true", constant),
         comparison("chosen by years", "constant", "true", constant),
+        # four intervals allow subsets of none only
+        comparison("best small subset", "constant", "true", constant),
         comparison("first component", "component 1", "false", component, True),
         comparison("components kept", "component 1", "false", component, True),
         comparison("components screened", "constant", "true", constant),
