@@ -1,6 +1,5 @@
 import betainc from "@stdlib/math-base-special-betainc";
 import gammainc from "@stdlib/math-base-special-gammainc";
-import chisquareQuantile from "@stdlib/stats-base-dists-chisquare-quantile";
 import fQuantileLower from "@stdlib/stats-base-dists-f-quantile";
 import normalCdfLower from "@stdlib/stats-base-dists-normal-cdf";
 import normalQuantileLower from "@stdlib/stats-base-dists-normal-quantile";
@@ -27,10 +26,6 @@ export function tTwoSided(x: number, df: number): number {
 /** P(χ² > x) with df degrees of freedom. */
 export function chiSquareUpper(x: number, df: number): number {
   return x <= 0 ? 1 : gammainc(x / 2, df / 2, true, true);
-}
-
-export function chiSquareQuantile(probability: number, df: number): number {
-  return chisquareQuantile(probability, df);
 }
 
 export function fQuantile(probability: number, df1: number, df2: number): number {

@@ -9,13 +9,16 @@ import { fileURLToPath, pathToFileURL } from "node:url";
 
 const DAYS = 10_957; // 1991 to 2020
 const STEPS = ["scan", "read", "covariates"];
-const built = (path) => import(pathToFileURL(fileURLToPath(new URL(`../../dist/${path}`, import.meta.url))).href);
+const built = (path) =>
+  import(pathToFileURL(fileURLToPath(new URL(`../../dist/${path}`, import.meta.url))).href);
 
 /** Rows by station and day, as an export of a data base: rain, minimum and maximum with one decimal, some missing. */
 function writeRows(file, rows) {
   const out = openSync(file, "w");
   const first = Date.UTC(1991, 0, 1);
-  const days = Array.from({ length: DAYS }, (_, i) => new Date(first + i * 86_400_000).toISOString().slice(0, 10));
+  const days = Array.from({ length: DAYS }, (_, i) =>
+    new Date(first + i * 86_400_000).toISOString().slice(0, 10),
+  );
   let state = 12345;
   const next = () => {
     state = (Math.imul(state, 1664525) + 1013904223) >>> 0;

@@ -1,11 +1,11 @@
 // Times of the survival engine, CPU time of this process, warm. Run: npm run bench
 // One table, one run: likelihood with gradient, one path of 100 λ, 1,000 paths, at two sizes and two numbers of animals.
 import { randomStream } from "../../dist/math/random.js";
-import { drawCaptures } from "../../dist/simulate/draw.js";
 import { lassoPath } from "../../dist/screen/path.js";
-import { runProcedure } from "../../dist/screen/procedure.js";
 import { designWith } from "../../dist/screen/problem.js";
+import { runProcedure } from "../../dist/screen/procedure.js";
 import { adaptiveWeights } from "../../dist/screen/weights.js";
+import { drawCaptures } from "../../dist/simulate/draw.js";
 import { constantRecapture, intervalSurvival } from "../../dist/survival/design.js";
 import { fitModel } from "../../dist/survival/fit.js";
 import { cjsLikelihood } from "../../dist/survival/likelihood.js";
@@ -23,8 +23,16 @@ function problemOf(occasions, covariates, animals) {
     return 1 / (1 + Math.exp(-eta));
   });
   const marked = new Float64Array(n).fill(Math.round(animals / n));
-  const data = [drawCaptures({ stratum: "all", marked, survival, recapture: new Float64Array(n).fill(0.7) }, random)];
-  const frame = { strata: ["all"], intervals: n, lengths: new Float64Array(n).fill(1), forced: [], effort: undefined };
+  const data = [
+    drawCaptures({ stratum: "all", marked, survival, recapture: new Float64Array(n).fill(0.7) }, random),
+  ];
+  const frame = {
+    strata: ["all"],
+    intervals: n,
+    lengths: new Float64Array(n).fill(1),
+    forced: [],
+    effort: undefined,
+  };
   return { data, frame, recapture: constantRecapture(frame), covariates: columns };
 }
 
@@ -54,7 +62,10 @@ for (const [occasions, covariates, animals] of [
   const weights = adaptiveWeights(problem, 1);
   const path = () => lassoPath(problem, weights.weights, { steps: 100, downTo: 0.001 });
   const residual = Math.max(...path().steps.map((step) => step.residual));
-  const interval = fitModel(problem.data, designOf(problem.frame, intervalSurvival(problem.frame), problem.recapture));
+  const interval = fitModel(
+    problem.data,
+    designOf(problem.frame, intervalSurvival(problem.frame), problem.recapture),
+  );
   const setting = {
     intervals: occasions - 1,
     covariates,
@@ -62,7 +73,15 @@ for (const [occasions, covariates, animals] of [
     constantParameters: 2,
     sampleSize: problem.data[0].releases,
   };
-  const options = { steps: 100, downTo: 0.001, gamma: 1, chooseBy: "BIC", sampleSize: "releases", fit: "shrunken", permutations: 0 };
+  const options = {
+    steps: 100,
+    downTo: 0.001,
+    gamma: 1,
+    chooseBy: "BIC",
+    sampleSize: "releases",
+    fit: "shrunken",
+    permutations: 0,
+  };
   const big = covariates > 50;
   const onePath = cpu(5, big ? 3 : 20, path);
   const before = process.cpuUsage();
@@ -72,10 +91,14 @@ for (const [occasions, covariates, animals] of [
     occasions,
     covariates,
     animals,
-    "likelihood + gradient, µs": Number((1000 * cpu(7, 20_000, () => likelihood.evaluate(x, gradient))).toPrecision(3)),
+    "likelihood + gradient, µs": Number(
+      (1000 * cpu(7, 20_000, () => likelihood.evaluate(x, gradient))).toPrecision(3),
+    ),
     "path of 100 λ, ms": Number(onePath.toPrecision(3)),
     "1,000 paths, s": Number((((spent.user + spent.system) / 1e6) * (big ? 10 : 1)).toPrecision(3)),
-    "whole procedure, ms": Number(cpu(3, big ? 2 : 10, () => runProcedure(problem, setting, options)).toPrecision(3)),
+    "whole procedure, ms": Number(
+      cpu(3, big ? 2 : 10, () => runProcedure(problem, setting, options)).toPrecision(3),
+    ),
     "largest residual / λ_max": residual.toExponential(1),
   });
 }

@@ -8,7 +8,11 @@ import { join } from "node:path";
 
 const ZONES = ["UTC", "America/Edmonton", "Pacific/Chatham"];
 /** Tests of processes, signals and the browser: slow, and the zone reaches them through the same code as the rest. */
-const ONCE = ["test/commands/command-line.test.ts", "test/pipeline/kills.test.ts", "test/report/page.browser.test.ts"];
+const ONCE = [
+  "test/commands/command-line.test.ts",
+  "test/pipeline/kills.test.ts",
+  "test/report/page.browser.test.ts",
+];
 const extra = process.argv.slice(2);
 const folder = mkdtempSync(join(tmpdir(), "covey-test-"));
 let passed = 0;
