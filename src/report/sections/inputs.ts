@@ -37,7 +37,7 @@ export function whereSection(input: ReportInput, figures: readonly Figure[]): Se
     title: "Where",
     body: html`${
       input.coarsenedKm > 0
-        ? html`<p class="note">The study is marked sensitive: every position on this page and in every file beside it was moved to the middle of a square of ${brief(input.coarsenedKm)} km before it came here.</p>`
+        ? html`<p class="note">The study is marked sensitive: the places of the study, on this page and in every file beside it, were moved to the middle of a square of ${brief(input.coarsenedKm)} km before they came here; stations stand where their list puts them.</p>`
         : input.sensitive
           ? html`<p class="note">The study is marked sensitive, but its positions were not coarsened. Do not pass this page on.</p>`
           : undefined
