@@ -12,6 +12,7 @@ const ONCE = [
   "test/commands/command-line.test.ts",
   "test/pipeline/kills.test.ts",
   "test/report/page.browser.test.ts",
+  "test/readme.test.ts",
 ];
 const extra = process.argv.slice(2);
 const folder = mkdtempSync(join(tmpdir(), "covey-test-"));
