@@ -46,7 +46,7 @@ program
   .description("run a pipeline: raw files to a page, tables and a record")
   .option(
     "--through <stage>",
-    "stop after a stage: ingest, aggregate, diagnose, reduce, screen or compare",
+    "stop after a stage: aggregate, diagnose, reduce, screen or compare",
     "compare",
   )
   .option("--workers <number>", "worker threads; 1 for none", wholeNumber)

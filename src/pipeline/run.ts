@@ -1,34 +1,16 @@
-import { diagnose } from "../collinearity/diagnose.ts";
-import { type Comparison, compare } from "../compare/compare.ts";
-import { principalComponents } from "../components/components.ts";
-import type { Components } from "../components/result.ts";
-import type { CovariateMatrix } from "../covariates/result.ts";
-import { yearIndex } from "../covariates/time.ts";
 import type { Finding, RawFinding } from "../data/finding.ts";
-import { type Matrix, pickColumns } from "../data/matrix.ts";
 import type { Effects } from "../effects/effects.ts";
-import { randomStream } from "../math/random.ts";
 import { screen } from "../screen/screen.ts";
-import { goodnessFindings } from "../survival/goodness-findings.ts";
-import { goodnessOfFit } from "../survival/goodness-of-fit.ts";
 import type { StudyResult } from "../tables/study-result.ts";
 import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { judge, stopIfAsked } from "./policy.ts";
-import { candidateColumns, poseScreen } from "./survival-problem.ts";
+import { compareStage, diagnoseStage, goodnessStage, reduceStage } from "./stages.ts";
+import { poseScreen } from "./survival-problem.ts";
 
-/** The columns after transform and detrending but in their own units: centre + scale · standardised value. */
-function beforeStandardising({ standard, recipes }: CovariateMatrix): Matrix {
-  const data = standard.data.map((value, at) => {
-    const { centre, scale } = recipes[at % standard.columns];
-    return centre + scale * value;
-  });
-  return { ...standard, data };
-}
-
-/** How far a run goes. Each stage includes those before it. */
-export const STAGES = ["ingest", "aggregate", "diagnose", "reduce", "screen", "compare"] as const;
+/** How far a run goes. Each stage includes those before it; reading is part of the first. */
+export const STAGES = ["aggregate", "diagnose", "reduce", "screen", "compare"] as const;
 export type Stage = (typeof STAGES)[number];
 
 export interface RunResult {
@@ -48,80 +30,45 @@ export async function runStages(
   through: Stage = "compare",
 ): Promise<RunResult> {
   const { spec } = loaded;
+  const goes = (stage: Stage) => STAGES.indexOf(stage) <= STAGES.indexOf(through);
   const findings: Finding[] = [];
-  const judged = (found: readonly RawFinding[]) => {
-    const next = judge(found, spec.findings);
+  const judged = <Result extends { readonly findings: readonly RawFinding[] }>(result: Result): Result => {
+    const next = judge(result.findings, spec.findings);
     findings.push(...next);
     stopIfAsked(next);
+    effects.checkInterrupted();
+    return result;
   };
-  const goes = (stage: Stage) => STAGES.indexOf(stage) <= STAGES.indexOf(through);
 
-  const ingested = await ingest(spec, effects);
-  judged(ingested.findings);
-
-  const set = buildCovariates(loaded, ingested);
-  judged(set.findings);
+  const ingested = judged(await ingest(spec, effects));
+  const set = judged(buildCovariates(loaded, ingested));
   const { matrix } = set;
-  const candidates = candidateColumns(spec, matrix);
-
-  const time = yearIndex(ingested.intervals);
-  const enough = matrix.names.length > 0 && ingested.intervals.length >= 3;
-  const diagnosed =
-    goes("diagnose") && enough
-      ? diagnose(matrix.standard, matrix.names, spec.collinearity, {
-          time,
-          uncentred: beforeStandardising(matrix),
-        })
-      : undefined;
-  judged(diagnosed?.findings ?? []);
-
-  const components: Components | undefined =
-    goes("reduce") && candidates.length > 1 && ingested.intervals.length >= 3
-      ? principalComponents(
-          pickColumns(matrix.standard, candidates),
-          candidates.map((k) => matrix.names[k]),
-          spec.components.keep,
-          randomStream(spec.seed, "components", 0),
-        )
-      : undefined;
-
-  const { captures } = ingested;
-  const goodness =
-    goes("screen") && captures !== undefined ? goodnessOfFit(captures.counts, captures.histories) : undefined;
-  judged(goodness === undefined ? [] : goodnessFindings(goodness));
-
-  effects.checkInterrupted();
+  const diagnosis = goes("diagnose") ? judged(diagnoseStage(spec, ingested, matrix)).diagnosis : undefined;
+  const components = goes("reduce") ? reduceStage(spec, ingested, matrix) : undefined;
+  const goodness = goes("screen") ? judged(goodnessStage(ingested)).goodness : undefined;
   const posed = goes("screen") ? poseScreen(spec, ingested, matrix) : undefined;
   const animals = ingested.captures?.animals ?? Number.NaN;
   const screened =
-    posed === undefined
-      ? undefined
-      : await screen(posed.problem, posed.recapture, spec.screen, animals, spec.seed, effects);
-  judged(screened?.findings ?? []);
-
-  const kept = new Set(diagnosed?.diagnosis.kept ?? matrix.names);
-  const pruned = candidates.map((k) => matrix.names[k]).filter((name) => kept.has(name));
-  const comparison: Comparison | undefined =
-    posed !== undefined && screened !== undefined && goes("compare")
-      ? compare(posed.problem, screened.result, components, pruned, spec.screen)
+    posed &&
+    judged(await screen(posed.problem, posed.recapture, spec.screen, animals, spec.seed, effects)).result;
+  const comparison =
+    posed && screened && goes("compare")
+      ? compareStage(spec, posed, screened, components, diagnosis)
       : undefined;
 
-  return {
-    study: {
-      occasions: ingested.occasions,
-      intervals: ingested.intervals,
-      caught: ingested.captures?.perOccasion ?? [],
-      covariates: set.covariates,
-      matrix,
-      leftOut: set.leftOut,
-      diagnosis: diagnosed?.diagnosis,
-      components,
-      goodness,
-      screened: screened?.result,
-      comparison,
-      findings,
-    },
-    ingested,
-    set,
+  const study: StudyResult = {
+    occasions: ingested.occasions,
+    intervals: ingested.intervals,
+    caught: ingested.captures?.perOccasion ?? [],
+    covariates: set.covariates,
+    matrix,
+    leftOut: set.leftOut,
+    diagnosis,
+    components,
+    goodness,
+    screened,
+    comparison,
+    findings,
   };
+  return { study, ingested, set };
 }

@@ -1,0 +1,78 @@
+import { diagnose } from "../collinearity/diagnose.ts";
+import type { Diagnosis } from "../collinearity/result.ts";
+import { type Comparison, compare } from "../compare/compare.ts";
+import { principalComponents } from "../components/components.ts";
+import type { Components } from "../components/result.ts";
+import type { CovariateMatrix } from "../covariates/result.ts";
+import { yearIndex } from "../covariates/time.ts";
+import type { RawFinding } from "../data/finding.ts";
+import { type Matrix, pickColumns } from "../data/matrix.ts";
+import { randomStream } from "../math/random.ts";
+import type { ScreenResult } from "../screen/screen.ts";
+import type { Spec } from "../spec/spec.ts";
+import { goodnessFindings } from "../survival/goodness-findings.ts";
+import { type GoodnessOfFit, goodnessOfFit } from "../survival/goodness-of-fit.ts";
+import type { Ingested } from "./ingest.ts";
+import { candidateColumns, type Posed } from "./survival-problem.ts";
+
+/** With fewer intervals no correlation, inflation or component means anything. */
+const LEAST_INTERVALS = 3;
+
+/** The columns after transform and detrending but in their own units: centre + scale · standardised value. */
+function beforeStandardising({ standard, recipes }: CovariateMatrix): Matrix {
+  const data = standard.data.map((value, at) => {
+    const { centre, scale } = recipes[at % standard.columns];
+    return centre + scale * value;
+  });
+  return { ...standard, data };
+}
+
+/** Which covariates tell the same story, those the user decided to drop included. */
+export function diagnoseStage(
+  spec: Spec,
+  found: Ingested,
+  matrix: CovariateMatrix,
+): { readonly diagnosis: Diagnosis | undefined; readonly findings: readonly RawFinding[] } {
+  if (matrix.names.length === 0 || found.intervals.length < LEAST_INTERVALS)
+    return { diagnosis: undefined, findings: [] };
+  return diagnose(matrix.standard, matrix.names, spec.collinearity, {
+    time: yearIndex(found.intervals),
+    uncentred: beforeStandardising(matrix),
+  });
+}
+
+/** Components of the candidates; undefined for fewer than two. */
+export function reduceStage(spec: Spec, found: Ingested, matrix: CovariateMatrix): Components | undefined {
+  const candidates = candidateColumns(spec, matrix);
+  if (candidates.length < 2 || found.intervals.length < LEAST_INTERVALS) return undefined;
+  return principalComponents(
+    pickColumns(matrix.standard, candidates),
+    candidates.map((k) => matrix.names[k]),
+    spec.components.keep,
+    randomStream(spec.seed, "components", 0),
+  );
+}
+
+/** Whether the general model fits the histories; undefined without captures. */
+export function goodnessStage({ captures }: Ingested): {
+  readonly goodness: GoodnessOfFit | undefined;
+  readonly findings: readonly RawFinding[];
+} {
+  if (captures === undefined) return { goodness: undefined, findings: [] };
+  const goodness = goodnessOfFit(captures.counts, captures.histories);
+  return { goodness, findings: goodnessFindings(goodness) };
+}
+
+/** Selection beside components, on the data and the recapture part of the screen. */
+export function compareStage(
+  spec: Spec,
+  posed: Posed,
+  screened: ScreenResult,
+  components: Components | undefined,
+  diagnosis: Diagnosis | undefined,
+): Comparison {
+  const names = posed.problem.covariates.map((one) => one.name);
+  const kept = diagnosis?.kept ?? names;
+  const pruned = names.filter((name) => kept.includes(name));
+  return compare(posed.problem, screened, components, pruned, spec.screen);
+}
