@@ -1,5 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { compare } from "../../src/compare/compare.ts";
+import { verdict } from "../../src/compare/verdict.ts";
 import { listWords, percentWords, pWords } from "../../src/compare/words.ts";
 import { principalComponents } from "../../src/components/components.ts";
 import { fromColumns } from "../../src/data/matrix.ts";
@@ -76,6 +77,23 @@ describe("the verdict", () => {
     );
     expect(headline).toContain("family-wise p 0.05 over 19 permutations of years of the whole procedure");
     expect(animals).toMatch(/^A criterion that counts animals \(BIC, n = \d+ releases\) chooses x1 and x2/);
+  });
+
+  test("a covariate that the model with random interval effects does not confirm costs a grade and is named", async () => {
+    const { result, comparison } = await compared(1, [-0.9, 0.8], 0.05);
+    const { randomIntervals } = result;
+    if (randomIntervals === undefined)
+      throw new Error("recapture is estimated, so there is a second opinion");
+    expect([...randomIntervals.chosen].sort()).toEqual(["x1", "x2"]);
+    expect(comparison.verdict.grade).toBe("fair");
+    const doubted = { ...result, randomIntervals: { ...randomIntervals, chosen: ["x1"] } };
+    const verdictNow = verdict(doubted, comparison.agreement);
+    expect(verdictNow.grade).toBe("faint");
+    expect(verdictNow.headline).toMatch(/x1 and x2 may go with .* does not confirm x2\.$/);
+    const rival = { ...doubted, rivals: [{ chosen: "x2", others: ["x1"] }] };
+    expect(verdict(rival, comparison.agreement).grade).toBe("fair");
+    const unsettled = { ...doubted, randomIntervals: { ...doubted.randomIntervals, settled: false } };
+    expect(verdict(unsettled, comparison.agreement).grade).toBe("fair");
   });
 
   test("says that nothing stands where nothing does, and that nothing was tested without permutations", async () => {
