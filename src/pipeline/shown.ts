@@ -69,6 +69,7 @@ export async function mapLayer(spec: Spec, files: Files): Promise<MapLayer | und
         values[row * width + column] = view.values[j * view.width + i];
     }
   return {
+    variable: used.layer,
     title: `${used.layer}, ${path}`,
     unit: options.unit,
     width,

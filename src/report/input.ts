@@ -14,6 +14,8 @@ import type { Table } from "../tables/table.ts";
 
 /** A layer to lie under the map: row-major values, row 0 in the north, corners in WGS 84 degrees. */
 export interface MapLayer {
+  /** What the values are, e.g. `greenness`. */
+  readonly variable: string;
   readonly title: string;
   readonly unit: string;
   readonly width: number;

@@ -20,8 +20,8 @@ import { designOf } from "../../src/survival/recapture-choice.ts";
 
 // The rows of the table of the rule by random intervals (methods, "Evidence is counted in years"): 22 newly marked at
 // each occasion, recapture .75, mean survival .72. All rules see the same data sets.
-const REPLICATES = Number(process.env["COVEY_PROVE_REPLICATES"] ?? 300);
-const FIRST = Number(process.env["COVEY_PROVE_FIRST"] ?? 0);
+const REPLICATES = Number(process.env.COVEY_PROVE_REPLICATES ?? 300);
+const FIRST = Number(process.env.COVEY_PROVE_FIRST ?? 0);
 const INTERCEPT = Math.log(0.72 / 0.28);
 const path = {
   steps: 40,

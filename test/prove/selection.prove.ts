@@ -28,7 +28,7 @@ interface Scenario {
 const file = reference<{ data: { intercept: number }; expected: { scenarios: Scenario[] } }>("J_selection");
 
 const N = 17;
-const REPLICATES = Number(process.env["COVEY_PROVE_REPLICATES"] ?? 400);
+const REPLICATES = Number(process.env.COVEY_PROVE_REPLICATES ?? 400);
 const frame: Frame = {
   strata: ["all"],
   intervals: N,

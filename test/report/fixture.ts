@@ -494,7 +494,7 @@ function land(): MapLayer {
       values[i * width + j] = i < 8 && j > 60 ? Number.NaN : value;
     }
   const box = { west: 5.75, east: 6.6, south: 49.55, north: 50.12 };
-  return { title: "greenness, May 2012", unit: "1", width, height, values, ...box };
+  return { variable: "greenness", title: "greenness, May 2012", unit: "1", width, height, values, ...box };
 }
 
 function listed(hostile: string | undefined): Finding[] {

@@ -218,5 +218,5 @@ function legend(map: MapLayer, { width, height }: Frame): Html {
   });
   const at = line([low, high], [bottom, top]);
   const unit = unitText(map.unit);
-  return html`${label(x0, TOP + 12, unit === "" ? "value" : unit, { fill: "muted" })}${bar}${ticks(low, high, 5).map((value) => label(x0 + 20, at(value) + 4, tickText(value), { fill: "muted" }))}`;
+  return html`${label(x0, TOP + 12, unit === "" ? map.variable : `${map.variable}, ${unit}`, { fill: "muted" })}${bar}${ticks(low, high, 5).map((value) => label(x0 + 20, at(value) + 4, tickText(value), { fill: "muted" }))}`;
 }
