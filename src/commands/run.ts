@@ -11,6 +11,7 @@ import { listWords } from "../terminal/words.ts";
 import type { Lines, Terminal } from "./io.ts";
 
 type Screened = NonNullable<Executed["study"]["screened"]>;
+type Verdict = NonNullable<Executed["study"]["comparison"]>["verdict"];
 
 export interface RunCommandOptions {
   readonly through: Stage;
@@ -94,13 +95,13 @@ function sections(done: Executed): SummarySection[] {
       ]),
     });
   if (study.screened !== undefined)
-    out.push({ title: "found", rows: foundRows(study.screened, study.comparison?.verdict.grade) });
+    out.push({ title: "found", rows: foundRows(study.screened, study.comparison?.verdict) });
   return out;
 }
 
 /** The answer in lines short enough for a terminal; the page has the sentences. */
-function foundRows(screened: Screened, grade: string | undefined): [string, string][] {
-  const { byYears, byAnimals, permutation, rivals } = screened;
+function foundRows(screened: Screened, verdict: Verdict | undefined): [string, string][] {
+  const { byYears, byAnimals, rivals } = screened;
   const rival = (name: string) => rivals.find((one) => one.chosen === name)?.others ?? [];
   const years = byYears.names.map((name) => [name, ...rival(name)].join(" or "));
   const rows: [string, string][] = [
@@ -108,10 +109,10 @@ function foundRows(screened: Screened, grade: string | undefined): [string, stri
   ];
   if (byYears.names.length > 0)
     rows.push(["", `${Math.round(100 * byYears.deviance.share)} % of the deviance between years`]);
-  if (permutation !== undefined)
+  if (verdict !== undefined)
     rows.push([
       "evidence",
-      `${grade ?? "not graded"}: family-wise p ${Number(permutation.p.toPrecision(2))}, ${permutation.replicates} permutations of years`,
+      verdict.tested === undefined ? verdict.grade : `${verdict.grade}: ${verdict.tested}`,
     ]);
   rows.push(["counting animals", byAnimals.names.length === 0 ? "nothing" : listWords(byAnimals.names)]);
   rows.push(["recapture", screened.recapture.chosen]);

@@ -7,6 +7,8 @@ export type Grade = "firm" | "fair" | "faint" | "none" | "not tested";
 
 export interface Verdict {
   readonly grade: Grade;
+  /** The test the grade rests on, in few words; undefined if there is none. */
+  readonly tested: string | undefined;
   /** What stands, counting years. */
   readonly headline: string;
   /** What a criterion that counts animals says, labelled so, and why the two differ if they do. */
@@ -19,15 +21,42 @@ export interface Verdict {
 /** Grades from weak to strong, so that a doubt can take one off. */
 const GRADES: readonly Grade[] = ["none", "faint", "fair", "firm"];
 
+/** What the choice by years is tested by. */
+interface Test {
+  readonly p: number;
+  readonly short: string;
+  readonly words: string;
+}
+
+/**
+ * A lone candidate was not chosen from anything, so its analysis of deviance is the test; what was chosen from several is
+ * tested by permuting years through the whole procedure. Undefined where neither is to be had.
+ */
+function testOf({ names, byYears, permutation }: ScreenResult): Test | undefined {
+  const { f, df1, df2, p } = byYears.deviance;
+  if (names.length === 1 && byYears.names.length === 1 && !Number.isNaN(p))
+    return {
+      p,
+      short: `F(${df1}, ${df2}) = ${f.toPrecision(4)}, p ${pWords(p)}, the only candidate`,
+      words: `analysis of deviance F(${df1}, ${df2}) = ${f.toPrecision(4)}, p ${pWords(p)}; it was the only candidate, so nothing was chosen`,
+    };
+  if (permutation === undefined) return undefined;
+  return {
+    p: permutation.p,
+    short: `family-wise p ${pWords(permutation.p)}, ${permutation.replicates} permutations of years`,
+    words: `family-wise p ${pWords(permutation.p)} over ${permutation.replicates} permutations of years of the whole procedure`,
+  };
+}
+
 /**
  * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the model
  * with random interval effects does not confirm every covariate chosen.
  */
 function gradeOf(screened: ScreenResult): Grade {
-  if (screened.permutation === undefined) return "not tested";
-  const { p } = screened.permutation;
-  if (screened.byYears.names.length === 0 || p > 0.1) return "none";
-  const grade = p <= 0.01 ? 3 : p <= 0.05 ? 2 : 1;
+  const test = testOf(screened);
+  if (test === undefined) return "not tested";
+  if (screened.byYears.names.length === 0 || test.p > 0.1) return "none";
+  const grade = test.p <= 0.01 ? 3 : test.p <= 0.05 ? 2 : 1;
   return GRADES[unconfirmed(screened).length > 0 ? grade - 1 : grade];
 }
 
@@ -45,6 +74,7 @@ export function verdict(screened: ScreenResult, agreed: Agreement): Verdict {
   const grade = gradeOf(screened);
   return {
     grade,
+    tested: testOf(screened)?.short,
     headline: headline(screened, grade),
     animals: animalsSentence(screened),
     agreement: agreementSentence(agreed),
@@ -61,23 +91,27 @@ function headline(screened: ScreenResult, grade: Grade): string {
     return `Counting years, no covariate stands: over ${years}, none of the ${screened.names.length} candidates accounts for the differences in apparent annual survival better than chance would.`;
   const chosen = chosenWords(screened);
   const share = percentWords(byYears.deviance.share);
-  if (permutation === undefined)
+  const test = testOf(screened);
+  if (test === undefined)
     return `Counting years, ${chosen} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
-  const test = `family-wise p ${pWords(permutation.p)} over ${permutation.replicates} permutations of years of the whole procedure`;
   const doubtful = unconfirmed(screened);
   const doubt =
     doubtful.length === 0
       ? ""
       : ` A model with a random effect of each interval does not confirm ${listWords(doubtful)}.`;
-  if (grade === "none" && permutation.p <= 0.1)
-    return `Counting years, the data hardly carry a selection: ${chosen} came out over ${years} (${test}).${doubt}`;
+  if (grade === "none" && test.p <= 0.1)
+    return `Counting years, the data hardly carry a selection: ${chosen} came out over ${years} (${test.words}).${doubt}`;
   if (grade === "none")
-    return `Counting years, the data do not carry a selection: ${chosen} came out over ${years}, but so much comes out by chance (${test}).`;
+    return `Counting years, the data do not carry a selection: ${chosen} came out over ${years}, but so much comes out by chance (${test.words}).`;
   const verb = { firm: "firmly goes with", fair: "goes with", faint: "may go with" }[
     grade as "firm" | "fair" | "faint"
   ];
+  const median =
+    permutation === undefined
+      ? ""
+      : `, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted`;
   const plural = byYears.names.length > 1 ? verb.replace("goes", "go") : verb;
-  return `Counting years, ${chosen} ${plural} differences in apparent annual survival over ${years} (${test}; ${share} of the deviance between years, against a median of ${percentWords(permutation.medianShareByYears)} with years permuted).${doubt}`;
+  return `Counting years, ${chosen} ${plural} differences in apparent annual survival over ${years} (${test.words}; ${share} of the deviance between years${median}).${doubt}`;
 }
 
 /** The chosen covariates, each with those the data cannot tell from it. */

@@ -96,6 +96,23 @@ describe("the verdict", () => {
     expect(verdict(unsettled, comparison.agreement).grade).toBe("fair");
   });
 
+  test("a lone candidate was not chosen, so its analysis of deviance is the test, permutations or none", async () => {
+    const { problem, recapture } = drawStudy(
+      1,
+      { intervals: 14, covariates: 1, marked: 40, residual: 0.1 },
+      [-0.8],
+    );
+    const world = { progress: silentProgress, parallel: inProcess({ [PERMUTATION_TASK]: permuteYears }) };
+    const options = { ...SCREEN, permutations: 0 };
+    const { result } = await screen(problem, recapture, options, 500, 1, world);
+    const { grade, headline } = compare(problem, result, undefined, ["x1"], options).verdict;
+    expect(result.byYears.deviance.p).toBeLessThan(0.01);
+    expect(grade).toBe("firm");
+    expect(headline).toMatch(
+      /^Counting years, x1 firmly goes with .* \(analysis of deviance F\(1, 12\) = [\d.]+, p [\de.-]+; it was the only candidate/,
+    );
+  });
+
   test("says that nothing stands where nothing does, and that nothing was tested without permutations", async () => {
     const none = await compared(9, [], 0.3);
     expect(none.result.byYears.names).toEqual([]);

@@ -5,9 +5,9 @@ import { counted } from "../numbers.ts";
 import type { Section } from "../parts.ts";
 
 const GRADES: Readonly<Record<Grade, string>> = {
-  firm: "firm: family-wise p at most 0.01",
-  fair: "fair: family-wise p at most 0.05, or a firmer one with a doubt",
-  faint: "faint: family-wise p at most 0.1, or a fair one with a doubt",
+  firm: "firm: p at most 0.01",
+  fair: "fair: p at most 0.05, or a firmer one with a doubt",
+  faint: "faint: p at most 0.1, or a fair one with a doubt",
   none: "none: the data do not carry a selection",
   "not tested": "not tested: no permutation of years was run",
 };
