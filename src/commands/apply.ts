@@ -1,9 +1,9 @@
 import { isAbsolute, join, relative } from "node:path";
+import { listWords } from "../data/words.ts";
 import { applyRecorded } from "../pipeline/apply.ts";
 import { loadPipeline } from "../pipeline/load.ts";
 import { findingLines } from "../terminal/findings.ts";
 import { summaryLines } from "../terminal/summary.ts";
-import { listWords } from "../terminal/words.ts";
 import type { Lines, Terminal } from "./io.ts";
 
 export interface ApplyCommandOptions {

@@ -3,7 +3,7 @@ import { isoDay } from "../data/day.ts";
 import { InputError } from "../errors.ts";
 import { type LayerLook, lookLayer } from "../inspect/look-layer.ts";
 import { lookTable, type TableLook } from "../inspect/look-table.ts";
-import { filesAt } from "../pipeline/files-at.ts";
+import { filesBelow } from "../pipeline/effects/files.ts";
 import { findingLines } from "../terminal/findings.ts";
 import { cut, plain } from "../terminal/style.ts";
 import type { Lines, Terminal } from "./io.ts";
@@ -19,7 +19,7 @@ export async function lookCommand(
   terminal: Terminal,
 ): Promise<Lines> {
   const path = resolve(file);
-  const files = filesAt(dirname(path));
+  const files = filesBelow(dirname(path));
   const name = basename(path);
   if (/\.(tiff?|gtiff)$/i.test(name)) {
     const look = await lookLayer(name, files);

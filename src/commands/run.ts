@@ -1,4 +1,5 @@
 import { isAbsolute, join, relative } from "node:path";
+import { listWords } from "../data/words.ts";
 import { InputError } from "../errors.ts";
 import { nearestName } from "../math/nearest-name.ts";
 import { type Executed, execute } from "../pipeline/execute.ts";
@@ -7,7 +8,6 @@ import { PAGE_FILE } from "../pipeline/output.ts";
 import { STAGES, type Stage } from "../pipeline/run.ts";
 import { findingLines } from "../terminal/findings.ts";
 import { type SummarySection, summaryLines } from "../terminal/summary.ts";
-import { listWords } from "../terminal/words.ts";
 import type { Lines, Terminal } from "./io.ts";
 
 type Screened = NonNullable<Executed["study"]["screened"]>;

@@ -1,10 +1,10 @@
 import { isAbsolute, relative, resolve } from "node:path";
+import { listWords } from "../data/words.ts";
 import { InputError } from "../errors.ts";
 import { loadPipeline } from "../pipeline/load.ts";
 import { type Simulated, type SimulationRequest, simulate } from "../pipeline/simulate.ts";
 import { fill, plain } from "../terminal/style.ts";
 import { type SummarySection, summaryLines } from "../terminal/summary.ts";
-import { listWords } from "../terminal/words.ts";
 import type { Lines, Terminal } from "./io.ts";
 
 export interface SimulateCommandOptions extends SimulationRequest {

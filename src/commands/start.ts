@@ -1,8 +1,8 @@
 import { basename, dirname, relative, resolve } from "node:path";
 import { InputError } from "../errors.ts";
 import { startPipeline } from "../inspect/start.ts";
+import { filesBelow } from "../pipeline/effects/files.ts";
 import { nodeDisk } from "../pipeline/effects.ts";
-import { filesAt } from "../pipeline/files-at.ts";
 import { readPipeline } from "../spec/parse.ts";
 import { plain } from "../terminal/style.ts";
 import type { Lines, Terminal } from "./io.ts";
@@ -24,7 +24,7 @@ export async function startCommand(
   const below = relative(base, resolve(folder)).replaceAll("\\", "/");
   const title = basename(resolve(folder));
   const options = { title, data: below === "" ? "." : below, output: `covey-output/${title}` };
-  const start = await startPipeline(filesAt(folder), options, progress);
+  const start = await startPipeline(filesBelow(folder), options, progress);
   if (!nodeDisk().create(resolve(to), new TextEncoder().encode(start.text))) throw exists(to);
   const files = (paths: readonly string[]) =>
     plain(paths.length === 1 ? paths[0] : `${paths[0]} and ${paths.length - 1} more`);

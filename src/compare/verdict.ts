@@ -1,6 +1,7 @@
+import { listWords } from "../data/words.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Agreement } from "./agreement.ts";
-import { listWords, percentWords, pWords } from "./words.ts";
+import { percentWords, pWords } from "./words.ts";
 
 /** How far the data carry, from the family-wise p of the procedure that counts years alone. */
 export type Grade = "firm" | "fair" | "faint" | "none" | "not tested";

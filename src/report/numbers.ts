@@ -49,12 +49,6 @@ export function px(value: number): string {
   return String(Math.round(value * 100) / 100);
 }
 
-/** `a`, `a and b`, `a, b and c`; `nothing` for none. */
-export function listed(names: readonly string[]): string {
-  if (names.length === 0) return "nothing";
-  return names.length === 1 ? names[0] : `${names.slice(0, -1).join(", ")} and ${names[names.length - 1]}`;
-}
-
 function raised(power: number): string {
   const digits = Array.from(String(Math.abs(power)), (digit) => SUPERSCRIPT[Number(digit)]).join("");
   return (power < 0 ? "⁻" : "") + digits;

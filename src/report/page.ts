@@ -1,9 +1,10 @@
+import { listWords } from "../data/words.ts";
 import { type Cast, castOf } from "./cast.ts";
 import type { Figure } from "./figure.ts";
 import { figures } from "./figures.ts";
 import { type Html, html, markup } from "./html.ts";
 import type { ReportInput } from "./input.ts";
-import { counted, listed, whole } from "./numbers.ts";
+import { counted, whole } from "./numbers.ts";
 import type { Section } from "./parts.ts";
 import { SCRIPT } from "./script.ts";
 import { cautionsSection } from "./sections/cautions.ts";
@@ -97,7 +98,7 @@ function facts(input: ReportInput, cast: Cast): Html {
     screened !== undefined ? fact(counted(screened.releases, "release"), "") : html``,
     fact(
       `${whole(input.matrix.names.length)} of ${counted(cast.members.length, "covariate")}`,
-      ` in the matrix: ${listed(cast.themes.map((one) => one.name))}`,
+      ` in the matrix: ${listWords(cast.themes.map((one) => one.name))}`,
     ),
   ]}</ul>`;
 }

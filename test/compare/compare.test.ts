@@ -1,9 +1,10 @@
 import { describe, expect, test } from "vitest";
 import { compare } from "../../src/compare/compare.ts";
 import { verdict } from "../../src/compare/verdict.ts";
-import { listWords, percentWords, pWords } from "../../src/compare/words.ts";
+import { percentWords, pWords } from "../../src/compare/words.ts";
 import { principalComponents } from "../../src/components/components.ts";
 import { fromColumns } from "../../src/data/matrix.ts";
+import { listWords } from "../../src/data/words.ts";
 import { silentProgress } from "../../src/effects/effects.ts";
 import { permuteYears } from "../../src/screen/permutation.ts";
 import { PERMUTATION_TASK, screen } from "../../src/screen/screen.ts";

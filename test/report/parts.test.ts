@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
+import { listWords } from "../../src/data/words.ts";
 import { escapeText, html, markup } from "../../src/report/html.ts";
-import { brief, listed, percent, pText, show, whole } from "../../src/report/numbers.ts";
+import { brief, percent, pText, show, whole } from "../../src/report/numbers.ts";
 import { ink, PALETTE, TOKENS, withVariables } from "../../src/report/palette.ts";
 import { pngUri } from "../../src/report/png.ts";
 import { roundBelow, spread, ticks } from "../../src/report/scale.ts";
@@ -35,7 +36,11 @@ describe("numbers", () => {
       "0.05",
       "1\u202F234\u202F567",
     ]);
-    expect([listed([]), listed(["a"]), listed(["a", "b", "c"])]).toEqual(["nothing", "a", "a, b and c"]);
+    expect([listWords([]), listWords(["a"]), listWords(["a", "b", "c"])]).toEqual([
+      "nothing",
+      "a",
+      "a, b and c",
+    ]);
   });
 });
 

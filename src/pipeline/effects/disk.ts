@@ -7,7 +7,7 @@ import { codeOf, machineError, onDisk } from "./machine.ts";
 /** The disk of this machine, for publishing. */
 export function nodeDisk(): Disk {
   return {
-    resolve: (path) => onDisk("find", path, () => realPath(resolve(path))),
+    resolve: (path) => onDisk("reach this path", path, () => realPath(resolve(path))),
     kind,
     listFiles: (folder) => onDisk("list", folder, () => below(folder, "").sort()),
     read: (path) => onDisk("read", path, () => fs.readFileSync(path)),

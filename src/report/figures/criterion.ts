@@ -1,6 +1,7 @@
+import { listWords } from "../../data/words.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
-import { counted, listed, show } from "../numbers.ts";
+import { counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { chart } from "../vega.ts";
 import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, PATH_WIDTH } from "./lambda.ts";
@@ -36,7 +37,7 @@ export async function criterion({ screened }: ReportInput): Promise<Figure | und
   const svg = await chart(
     "criterion",
     title,
-    `${options.chooseBy} is least, ${show(least)}, at penalty ${show(chosen.lambda)} with ${counted(chosen.active, "covariate")}: ${listed(byAnimals.names)}; ${counted(band.length, "step")} of ${choice.rows.length} within 2 units`,
+    `${options.chooseBy} is least, ${show(least)}, at penalty ${show(chosen.lambda)} with ${counted(chosen.active, "covariate")}: ${listWords(byAnimals.names)}; ${counted(band.length, "step")} of ${choice.rows.length} within 2 units`,
     {
       width: PATH_WIDTH,
       height: 200,

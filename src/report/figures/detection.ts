@@ -1,8 +1,9 @@
+import { listWords } from "../../data/words.ts";
 import type { Detection, DetectionRow, Rule } from "../../simulate/detect.ts";
 import type { Share } from "../../simulate/tally.ts";
 import { drawing, type Figure, label, rect, segment } from "../figure.ts";
 import { type Html, html } from "../html.ts";
-import { brief, counted, listed, percent, px } from "../numbers.ts";
+import { brief, counted, percent, px } from "../numbers.ts";
 import { ink, type Token } from "../palette.ts";
 import { line, ticks, tickText } from "../scale.ts";
 
@@ -46,11 +47,11 @@ export function detectionFigure(detection: Detection): Figure {
   const heading =
     covariates.length === 1
       ? `Share of drawn studies, if ${covariates[0]} acts on survival`
-      : `Share of drawn studies, if ${listed(covariates)} act on survival, by the same size each`;
+      : `Share of drawn studies, if ${listWords(covariates)} act on survival, by the same size each`;
   return {
     name: "detection",
     title,
-    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listed(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (left), and in which something is chosen whose |r| with the truth is below 0.5 (right), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${brief(Number(residual.toFixed(3)))} on the logit.`,
+    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listWords(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (left), and in which something is chosen whose |r| with the truth is below 0.5 (right), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${brief(Number(residual.toFixed(3)))} on the logit.`,
     svg: drawing(
       WIDTH,
       HEIGHT,

@@ -1,9 +1,10 @@
 import type { Position } from "../../data/place.ts";
+import { listWords } from "../../data/words.ts";
 import { unitText } from "../cast.ts";
 import { drawing, type Figure, label, rect, segment, textWidth } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { MapLayer, ReportInput } from "../input.ts";
-import { brief, counted, listed, px } from "../numbers.ts";
+import { brief, counted, px } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { pngUri } from "../png.ts";
 import { extent, line, roundBelow, ticks, tickText } from "../scale.ts";
@@ -62,12 +63,12 @@ export function placesMap(input: ReportInput): Figure | undefined {
   return {
     name: "map",
     title: "Where the study looks",
-    caption: `Stations (triangles) and places (${listed(placeWords)})${input.map === undefined ? "" : ` over ${input.map.title}`}; longitude and latitude in degrees, WGS 84.${where}`,
+    caption: `Stations (triangles) and places (${listWords(placeWords)})${input.map === undefined ? "" : ` over ${input.map.title}`}; longitude and latitude in degrees, WGS 84.${where}`,
     svg: drawing(
       LEFT + width + 130,
       TOP + height + 34,
       "Map of places and stations",
-      `${counted(sites.length, "station")}: ${listed(sites.map((one) => one.name))}; ${counted(input.places.length, "place")}: ${listed(placeWords)}; from ${frame.west.toFixed(2)}° to ${frame.east.toFixed(2)}° longitude and ${frame.south.toFixed(2)}° to ${frame.north.toFixed(2)}° latitude.${where}`,
+      `${counted(sites.length, "station")}: ${listWords(sites.map((one) => one.name))}; ${counted(input.places.length, "place")}: ${listWords(placeWords)}; from ${frame.west.toFixed(2)}° to ${frame.east.toFixed(2)}° longitude and ${frame.south.toFixed(2)}° to ${frame.north.toFixed(2)}° latitude.${where}`,
       body,
     ),
   };

@@ -1,10 +1,11 @@
 import type { IntervalCovariate } from "../../aggregate/result.ts";
 import { periodText } from "../../data/period.ts";
+import { listWords } from "../../data/words.ts";
 import type { Cast } from "../cast.ts";
 import { belongs, drawing, type Figure, fitted, label, marker, rect, segment } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
-import { counted, listed, px, whole } from "../numbers.ts";
+import { counted, px, whole } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { intervalSpan, occasionX, type TimeAxis, timeAxis, timeLabels } from "./axis-time.ts";
 
@@ -135,7 +136,7 @@ function rowOf(input: ReportInput, cast: Cast, axis: TimeAxis, row: Row, y: numb
     member !== undefined && marker(member.theme, LEFT - 18, y + 9, 4),
     label(LEFT - 30, y + 13, fitted(text, LEFT - 34), { anchor: "end" }),
     marks.map((one) => one as Html),
-    html`<title>${listed(row.covariates.map((one) => one.name))}</title>`,
+    html`<title>${listWords(row.covariates.map((one) => one.name))}</title>`,
   ]);
 }
 
@@ -143,5 +144,5 @@ function rowOf(input: ReportInput, cast: Cast, axis: TimeAxis, row: Row, y: numb
 function derived(cast: Cast, input: ReportInput): string {
   const own = new Set(input.covariates.map((one) => one.name));
   const made = cast.members.map((one) => one.name).filter((name) => !own.has(name));
-  return made.length === 0 ? "" : ` Made from others, and so without a row: ${listed(made)}.`;
+  return made.length === 0 ? "" : ` Made from others, and so without a row: ${listWords(made)}.`;
 }

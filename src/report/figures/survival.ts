@@ -1,7 +1,8 @@
+import { listWords } from "../../data/words.ts";
 import type { RateEstimate } from "../../survival/fit.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
-import { counted, listed, show } from "../numbers.ts";
+import { counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { extent } from "../scale.ts";
 import { chart } from "../vega.ts";
@@ -58,11 +59,11 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
   const words =
     byYears.names.length === 0
       ? "the same in every interval (no covariate stands)"
-      : `by ${listed(byYears.names)}`;
+      : `by ${listWords(byYears.names)}`;
   const svg = await chart(
     "survival",
     title,
-    `${strata.length > 1 ? `${counted(strata.length, "stratum", "strata")}: ${listed(strata)}. ` : ""}One survival per interval runs from ${show(low)} to ${show(high)} over ${counted(input.intervals.length, "interval")}${unsure > 0 ? `, ${unsure} without a standard error` : ""}; the model chosen by years: ${words}, ${strata
+    `${strata.length > 1 ? `${counted(strata.length, "stratum", "strata")}: ${listWords(strata)}. ` : ""}One survival per interval runs from ${show(low)} to ${show(high)} over ${counted(input.intervals.length, "interval")}${unsure > 0 ? `, ${unsure} without a standard error` : ""}; the model chosen by years: ${words}, ${strata
       .map((stratum) => {
         const [a, b] = extent(modelled.filter((one) => one.stratum === stratum).map((one) => one.value));
         return `${strata.length > 1 ? `${stratum} ` : ""}${show(a)} to ${show(b)}`;

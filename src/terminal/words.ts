@@ -1,5 +1,0 @@
-/** `a`, `a and b`, `a, b and c`. */
-export function listWords(names: readonly string[]): string {
-  if (names.length <= 1) return names[0] ?? "";
-  return `${names.slice(0, -1).join(", ")} and ${names[names.length - 1]}`;
-}
