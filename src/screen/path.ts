@@ -100,7 +100,7 @@ export function solveNull(problem: ScreenProblem, smooth: Smooth): Solution {
     new Float64Array(smooth.dimension),
     { tolerance: gradientTolerance(problem.data), iterations: 500 },
   );
-  if (solution.stopped !== "optimum") refuse("the model without covariates", solution);
+  if (solution.stopped !== "optimum") refuseSolution("the model without covariates", solution);
   return solution;
 }
 
@@ -114,7 +114,8 @@ function pathStep(
   // with λ_max 0 there is nothing to compare with, and the null fit has passed its own tolerance
   const residual = lambdaMax === 0 ? 0 : solution.violation / lambdaMax;
   // a λ_max near 0 (huge weights) asks for less than rounding can give: what counts as a converged fit counts here too
-  if (solution.violation > Math.max(RESIDUAL_LIMIT * lambdaMax, noise)) refuse(`λ = ${lambda}`, solution);
+  if (solution.violation > Math.max(RESIDUAL_LIMIT * lambdaMax, noise))
+    refuseSolution(`λ = ${lambda}`, solution);
   const coefficients = Float64Array.from(positions, (k) => solution.x[k]);
   return {
     lambda,
@@ -128,7 +129,8 @@ function pathStep(
   };
 }
 
-function refuse(what: string, solution: Solution): never {
+/** Throws `screen.no-optimum`: a solution that did not reach its optimum must not be used. */
+export function refuseSolution(what: string, solution: Solution): never {
   throw new InputError({
     name: "screen.no-optimum",
     expected: `a solution at ${what} that meets the optimality conditions`,

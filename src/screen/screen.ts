@@ -16,9 +16,11 @@ import {
   shiftYears,
   summarisePermutations,
 } from "./permutation.ts";
+import { type PlainLasso, plainLasso } from "./plain-lasso.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
 import { type ProcedureSetting, runProcedure } from "./procedure.ts";
 import { type RandomIntervalEvidence, randomIntervalEvidence } from "./random-intervals.ts";
+import { type RidgePath, ridgePath } from "./ridge-path.ts";
 import { agreeingStarts, type StartsReport } from "./starts.ts";
 import type { AdaptiveWeights } from "./weights.ts";
 import type { YearsChoice } from "./years.ts";
@@ -42,6 +44,9 @@ export interface ScreenResult {
   readonly weights: AdaptiveWeights;
   readonly path: LassoPath;
   readonly choice: PathChoice;
+  /** Equal weights beside the adaptive ones, and ridge beside both: for comparison, no verdict rests on them. */
+  readonly plain: PlainLasso;
+  readonly ridge: RidgePath;
   readonly starts: StartsReport;
   /** Distinct sets within 2 units of the criterion's least value. */
   readonly band: readonly (readonly string[])[];
@@ -134,6 +139,8 @@ export async function screen(
     weights: found.weights,
     path: found.path,
     choice,
+    plain: plainLasso(problem, setting, options, found.refit),
+    ridge: ridgePath(problem, setting.sampleSize),
     starts: agreeingStarts(problem, found.path, chosen, STARTS, randomStream(seed, "starts", 0)),
     band: [...bandSets.values()],
     byAnimals,

@@ -14,6 +14,7 @@ import {
   standardMatrixTable,
 } from "./covariate-tables.ts";
 import { goodnessTable } from "./goodness-table.ts";
+import { penalisedTable } from "./penalised-table.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import {
@@ -49,6 +50,7 @@ export function allTables(study: StudyResult): readonly Table[] {
           recaptureTable(screened),
           pathTable(screened),
           selectionTable(screened),
+          penalisedTable(screened),
           survivalTable(screened, study.intervals),
           evidenceTable(screened),
           randomIntervalTable(screened),
