@@ -27,6 +27,28 @@ export interface Components {
   readonly parallel?: readonly number[];
   /** The theme of each component, where components were made within themes. */
   readonly themes?: readonly string[];
+  /** The components kept as varimax or sparse loadings tell them, where that was asked for. */
+  readonly simplified?: SimplifiedComponents;
+  /** Resampled intervals of the loadings of those kept, where they were asked for. */
+  readonly intervals?: LoadingIntervals;
+}
+
+/** As many axes as components were kept, each with few covariates that matter, so that it can be named. */
+export interface SimplifiedComponents {
+  readonly by: "varimax" | "sparse";
+  readonly names: readonly string[];
+  readonly labels: readonly string[];
+  /**
+   * K × k. Varimax: correlation of covariate and rotated component. Sparse: unit vectors with exact zeros, the loading
+   * of largest magnitude positive.
+   */
+  readonly loadings: Matrix;
+  /** n × k. */
+  readonly scores: Matrix;
+  /** Share of the variance of all covariates, beyond what the axes before it hold. */
+  readonly share: readonly number[];
+  /** Covariates each is named after, strongest first: |r| ≥ 0.6 (varimax), not zero (sparse). */
+  readonly ledBy: readonly (readonly { readonly name: string; readonly r: number }[])[];
 }
 
 /** Kept components after a varimax rotation; k of them. */

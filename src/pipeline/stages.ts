@@ -1,13 +1,12 @@
 import { diagnose } from "../collinearity/diagnose.ts";
 import type { Diagnosis } from "../collinearity/result.ts";
 import { type Comparison, compare } from "../compare/compare.ts";
-import { principalComponents } from "../components/components.ts";
+import { groupsOf, reduceColumns } from "../components/reduce.ts";
 import type { Components } from "../components/result.ts";
 import type { CovariateMatrix } from "../covariates/result.ts";
 import { yearIndex } from "../covariates/time.ts";
 import type { RawFinding } from "../data/finding.ts";
 import { type Matrix, pickColumns } from "../data/matrix.ts";
-import { randomStream } from "../math/random.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Spec } from "../spec/spec.ts";
 import { goodnessFindings } from "../survival/goodness-findings.ts";
@@ -45,11 +44,22 @@ export function diagnoseStage(
 export function reduceStage(spec: Spec, found: Ingested, matrix: CovariateMatrix): Components | undefined {
   const candidates = candidateColumns(spec, matrix);
   if (candidates.length < 2 || found.intervals.length < LEAST_INTERVALS) return undefined;
-  return principalComponents(
+  return reduceColumns(
     pickColumns(matrix.standard, candidates),
     candidates.map((k) => matrix.names[k]),
-    spec.components.keep,
-    randomStream(spec.seed, "components", 0),
+    candidateGroups(spec, matrix),
+    spec.components,
+    spec.seed,
+  );
+}
+
+/** The group of each candidate within which components are made; undefined where all are taken together. */
+function candidateGroups(spec: Spec, matrix: CovariateMatrix): readonly string[] | undefined {
+  const candidates = candidateColumns(spec, matrix);
+  return groupsOf(
+    candidates.map((k) => matrix.names[k]),
+    candidates.map((k) => matrix.recipes[k].theme),
+    spec.components.within,
   );
 }
 

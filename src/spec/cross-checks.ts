@@ -212,6 +212,20 @@ function modelProblems(spec: Spec): Problem[] {
   collinearity.priority?.forEach((name, i) => {
     know(["collinearity", "priority", i], name);
   });
+  if (typeof spec.components.within === "object") {
+    const grouped = new Map<string, string>();
+    for (const [group, members] of Object.entries(spec.components.within))
+      members.forEach((name, i) => {
+        const path = ["components", "within", group, i];
+        know(path, name);
+        const before = grouped.get(name);
+        if (before !== undefined)
+          problems.push(
+            conflict(path, "each covariate in one group", `${quote(name)} in ${before} too`, "keep it in one"),
+          );
+        grouped.set(name, group);
+      });
+  }
   survival.forced.forEach((name, i) => {
     const path = ["survival", "forced", i];
     know(path, name);

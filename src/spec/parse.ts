@@ -68,7 +68,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
       standardise: readStandardise(raw.prepare.standardise),
     },
     collinearity: readCollinearity(raw.collinearity),
-    components: { keep: readKeep(raw.components.keep), within: raw.components.within },
+    components: { ...raw.components, keep: readKeep(raw.components.keep) },
     survival: raw.survival,
     recapture: raw.recapture,
     screen: readScreen(raw.screen),

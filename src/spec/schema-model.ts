@@ -13,6 +13,7 @@ import {
   oneOf,
   prose,
   shared,
+  someOf,
   stated,
   text,
 } from "./words.ts";
@@ -101,7 +102,37 @@ export const components = allStated("the principal components", {
     ),
     "broken stick",
   ),
-  within: stated(choice("the columns that are taken together", ["all"]), "all"),
+  within: stated(
+    oneOf(
+      "the columns that are taken together: all, themes, or groups by name such as { water: [winter rain, snow] }",
+      [
+        choice("a rule by name", ["all", "themes"]),
+        named(
+          "groups of covariates by name; those in none form a group of their own",
+          "the name of a group",
+          someOf("the covariates of the group", text("the name of a covariate", "winter rain"), ["winter rain"]),
+        ),
+      ],
+      "all",
+    ),
+    "all",
+  ),
+  simplify: stated(
+    choice("loadings by which the components kept can be named, beside their own", [
+      "none",
+      "varimax",
+      "sparse",
+    ]),
+    "none",
+  ),
+  resamples: stated(
+    number("the resamples of the intervals that tell how sure the loadings are; 0 for none", 400, {
+      min: 0,
+      max: 100_000,
+      whole: true,
+    }),
+    0,
+  ),
 });
 
 export const screen = allStated("the adaptive-lasso screen", {

@@ -1,6 +1,6 @@
 import type { Completeness, Infill, Join, Statistic, Window, YearRange } from "../aggregate/options.ts";
 import type { CollinearityOptions } from "../collinearity/options.ts";
-import type { KeepRule } from "../components/options.ts";
+import type { ComponentOptions } from "../components/options.ts";
 import type { PrepareOptions } from "../covariates/options.ts";
 import type { FindingKind, Severity } from "../data/finding.ts";
 import type { LayerOptions, PlaceUse } from "../layers/options.ts";
@@ -99,7 +99,7 @@ export interface Spec {
   readonly covariates: readonly CovariateSpec[];
   readonly prepare: PrepareOptions;
   readonly collinearity: CollinearityOptions;
-  readonly components: { readonly keep: KeepRule; readonly within: "all" };
+  readonly components: ComponentOptions;
   readonly survival: SurvivalOptions;
   readonly recapture: RecaptureChoice;
   readonly screen: ScreenOptions;

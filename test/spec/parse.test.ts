@@ -132,7 +132,7 @@ describe("good pipelines", () => {
         standardise: { type: "sample" },
       },
       collinearity: { warn: { correlation: 0.7, inflation: 10, condition: 30 }, cluster: 0.7, decisions: [] },
-      components: { keep: { type: "broken stick" }, within: "all" },
+      components: { keep: { type: "broken stick" }, within: "all", simplify: "none", resamples: 0 },
       survival: { strata: [], forced: [] },
       recapture: "choose",
       screen: {
