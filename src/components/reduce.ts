@@ -35,13 +35,7 @@ export function reduceColumns(
   options: ComponentOptions,
   seed: number,
 ): Components {
-  const components = plainComponents(
-    standard,
-    names,
-    groups,
-    options,
-    randomStream(seed, "components", 0),
-  );
+  const components = plainComponents(standard, names, groups, options, randomStream(seed, "components", 0));
   const parts = partsOf(standard, components, groups);
   const { simplify, resamples } = options;
   const simplified =

@@ -53,8 +53,7 @@ export function sparseAxes(unit: Matrix, k: number, counts?: readonly number[]):
       }
     const length = norm(best.v);
     for (let i = 0; i < K; i++) axes.data[i * k + j] = length > 0 ? best.v[i] / length : 0;
-    for (let r = 0; r < rows; r++)
-      for (let i = 0; i < K; i++) left[r * K + i] -= best.u[r] * best.v[i];
+    for (let r = 0; r < rows; r++) for (let i = 0; i < K; i++) left[r * K + i] -= best.u[r] * best.v[i];
     lambdas.push(best.lambda);
     used.push(best.v.reduce((sum, value) => sum + (value === 0 ? 0 : 1), 0));
   }
@@ -80,7 +79,7 @@ function rankOne(z: Float64Array, rows: number, K: number, m: number, from?: Flo
     for (let r = 0; r < rows; r++) next[r] /= length;
     const y = crossed(z, rows, K, next);
     lambda = m >= K ? 0 : Array.from(y, Math.abs).sort((a, b) => b - a)[m];
-    const thin = y.map((value) => Math.sign(value) * Math.max(0, Math.abs(value) - lambda));
+    const thin = y.map((value) => (Math.abs(value) > lambda ? value - Math.sign(value) * lambda : 0));
     const moved = next.reduce((most, value, r) => Math.max(most, Math.abs(value - u[r])), 0);
     u = next;
     v = thin;

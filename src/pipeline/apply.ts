@@ -1,3 +1,4 @@
+import { recordedScores } from "../components/recorded.ts";
 import { type Applied, applyPreparation } from "../covariates/apply.ts";
 import { rawColumns } from "../covariates/columns.ts";
 import type { Finding, RawFinding } from "../data/finding.ts";
@@ -9,8 +10,10 @@ import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
 import { allTables } from "../tables/all-tables.ts";
+import { scoresTable } from "../tables/collinearity-tables.ts";
 import { outOfRangeTable } from "../tables/range-table.ts";
 import type { StudyResult } from "../tables/study-result.ts";
+import type { Table } from "../tables/table.ts";
 import { makeCovariates } from "./covariates.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
 import { ingest } from "./ingest.ts";
@@ -18,7 +21,7 @@ import { recording } from "./inputs.ts";
 import type { Loaded } from "./load.ts";
 import type { Maker } from "./output.ts";
 import { judge, stopIfAsked } from "./policy.ts";
-import { RECIPES_FILE, type Recorded, readRecorded } from "./recorded.ts";
+import { COMPONENTS_FILE, RECIPES_FILE, type Recorded, readRecorded } from "./recorded.ts";
 import { positionRule } from "./sensitive.ts";
 
 export interface ApplyOptions {
@@ -104,7 +107,7 @@ async function filesOf(
   maker: Maker,
 ): Promise<FileSet> {
   const written = await tableFiles(
-    [...allTables(study), outOfRangeTable(applied.outside)],
+    [...allTables(study), ...newScores(recorded, applied), outOfRangeTable(applied.outside)],
     {
       package: {
         name: spec.study.title,
@@ -123,8 +126,20 @@ async function filesOf(
     pipeline,
     inputs,
     // The recipes go along, so that the new folder can be applied to still newer years.
-    outputs: new Map([...written.files, [RECIPES_FILE, recorded.bytes]]),
+    outputs: new Map([
+      ...written.files,
+      [RECIPES_FILE, recorded.bytes],
+      ...(recorded.components === undefined ? [] : [[COMPONENTS_FILE, recorded.components.bytes] as const]),
+    ]),
   });
+}
+
+/** The new intervals on the recorded components. */
+function newScores({ components }: Recorded, { matrix }: Applied): readonly Table[] {
+  if (components === undefined) return [];
+  const { of } = components;
+  const scores = recordedScores(of, matrix.standard, matrix.names);
+  return [scoresTable({ labels: of.labels, scores }, matrix.rows)];
 }
 
 function sameFolder({ file, spec }: Loaded): InputError {

@@ -1,3 +1,4 @@
+import { componentsJson } from "../components/recorded.ts";
 import { preparationJson } from "../covariates/recorded.ts";
 import type { Effects, FileIdentity } from "../effects/effects.ts";
 import type { FileSet } from "../publish/disk.ts";
@@ -9,7 +10,7 @@ import type { ReportInput } from "../report/input.ts";
 import { allTables } from "../tables/all-tables.ts";
 import { nodeDisk } from "./effects.ts";
 import type { Loaded } from "./load.ts";
-import { RECIPES_FILE } from "./recorded.ts";
+import { COMPONENTS_FILE, RECIPES_FILE } from "./recorded.ts";
 import type { RunResult } from "./run.ts";
 import { positionRule, shownPlaces } from "./sensitive.ts";
 import { mapLayer, monthlyPicture } from "./shown.ts";
@@ -67,6 +68,7 @@ export async function buildOutput(
     stations: run.ingested.sites,
     map: await mapLayer(spec, effects.files),
     warn: spec.collinearity.warn,
+    cut: spec.collinearity.cluster,
     tables,
     record: JSON.stringify({ ...facts, outputs: undefined }, null, 2),
   };
@@ -84,6 +86,8 @@ export async function buildOutput(
   for (const figure of drawn) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
   const captions = drawn.map(({ name, title, caption }) => ({ file: `${name}.svg`, title, caption }));
   files.set("figures/captions.json", jsonBytes(captions));
+  if (run.study.components !== undefined)
+    files.set(COMPONENTS_FILE, jsonBytes(componentsJson(run.study.components)));
   files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));
   return { files: withRecord({ ...facts, outputs: files }), neutralised: written.neutralised };
 }

@@ -1,4 +1,5 @@
 import { join } from "node:path";
+import { type RecordedComponents, readComponents } from "../components/recorded.ts";
 import { type RecordedPreparation, readPreparation } from "../covariates/recorded.ts";
 import type { FileIdentity } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
@@ -10,10 +11,14 @@ import { verifyOutput } from "../publish/verify.ts";
 
 /** The recipes' name within an output folder. */
 export const RECIPES_FILE = "recipes.json";
+/** The components' name, where the run made any. */
+export const COMPONENTS_FILE = "components.json";
 
 export interface Recorded {
   readonly preparation: RecordedPreparation;
   readonly bytes: Uint8Array;
+  /** Undefined where the run made no components, or was of a version that did not record them. */
+  readonly components: { readonly of: RecordedComponents; readonly bytes: Uint8Array } | undefined;
   /** As it goes into the next record: the folder's own path would tell of the machine. */
   readonly identity: FileIdentity;
   /** Absolute. */
@@ -27,7 +32,18 @@ export interface Recorded {
 export function readRecorded(disk: Disk, path: string): Recorded {
   recoverOutput(disk, path);
   const folder = disk.resolve(path);
-  const departure = verifyOutput(disk, folder).departures.find((one) => one.path === RECIPES_FILE);
+  const { departures } = verifyOutput(disk, folder);
+  const changed = (path: string) => {
+    const departure = departures.find((one) => one.path === path);
+    if (departure !== undefined)
+      throw new InputError({
+        name: "apply.recipes-changed",
+        expected: `the ${path} that the run wrote (${departure.expected || `named in ${RECORD_FILE}`})`,
+        found: `${departure.what}: ${departure.found}`,
+        where: { file: join(folder, path) },
+        remedy: "restore the file, or run its pipeline again",
+      });
+  };
   const file = join(folder, RECIPES_FILE);
   if (disk.kind(file) !== "file")
     throw new InputError({
@@ -37,25 +53,26 @@ export function readRecorded(disk: Disk, path: string): Recorded {
       where: { file: folder },
       remedy: "run its pipeline again: runs of this version record their recipes",
     });
-  if (departure !== undefined)
-    throw new InputError({
-      name: "apply.recipes-changed",
-      expected: `the ${RECIPES_FILE} that the run wrote (${departure.expected || `named in ${RECORD_FILE}`})`,
-      found: `${departure.what}: ${departure.found}`,
-      where: { file },
-      remedy: "restore the file, or run its pipeline again",
-    });
+  changed(RECIPES_FILE);
+  changed(COMPONENTS_FILE);
   const bytes = disk.read(file);
-  let value: unknown;
-  try {
-    value = JSON.parse(new TextDecoder().decode(bytes));
-  } catch {
-    value = undefined;
-  }
+  const beside = join(folder, COMPONENTS_FILE);
+  const recorded = disk.kind(beside) === "file" ? disk.read(beside) : undefined;
   return {
-    preparation: readPreparation(value, file),
+    preparation: readPreparation(parsed(bytes), file),
     bytes,
+    components:
+      recorded === undefined ? undefined : { of: readComponents(parsed(recorded), beside), bytes: recorded },
     identity: { path: `recorded/${RECIPES_FILE}`, bytes: bytes.length, sha256: sha256(bytes) },
     folder,
   };
+}
+
+/** Undefined where the bytes are no JSON. */
+function parsed(bytes: Uint8Array): unknown {
+  try {
+    return JSON.parse(new TextDecoder().decode(bytes));
+  } catch {
+    return undefined;
+  }
 }

@@ -1,7 +1,7 @@
 import { castOf } from "./cast.ts";
 import type { Draw, Figure } from "./figure.ts";
 import { completeness } from "./figures/completeness.ts";
-import { correlationMap } from "./figures/correlation.ts";
+import { correlationMap, detrendedMap } from "./figures/correlation.ts";
 import { criterion } from "./figures/criterion.ts";
 import { effects } from "./figures/effects.ts";
 import { evidence } from "./figures/evidence.ts";
@@ -24,6 +24,7 @@ const ALL: readonly Draw[] = [
   seriesFigure,
   completeness,
   correlationMap,
+  detrendedMap,
   inflation,
   variance,
   loadings,

@@ -59,6 +59,8 @@ export interface ReportInput {
   readonly stations: readonly Site[];
   readonly map: MapLayer | undefined;
   readonly warn: CollinearityOptions["warn"];
+  /** The mean absolute r at which the tree of clusters was cut. */
+  readonly cut?: number;
   readonly diagnosis: Diagnosis | undefined;
   readonly components: Components | undefined;
   readonly screened: ScreenResult | undefined;

@@ -35,7 +35,7 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
     whereSection(input, drawn),
     inputsSection(input, cast, drawn),
     storySection(input, cast, drawn),
-    componentsSection(input, drawn),
+    componentsSection(input, cast, drawn),
     recaptureSection(input, cast),
     screenSection(input, cast, drawn),
     survivalSection(drawn),

@@ -221,7 +221,12 @@ function modelProblems(spec: Spec): Problem[] {
         const before = grouped.get(name);
         if (before !== undefined)
           problems.push(
-            conflict(path, "each covariate in one group", `${quote(name)} in ${before} too`, "keep it in one"),
+            conflict(
+              path,
+              "each covariate in one group",
+              `${quote(name)} in ${before} too`,
+              "keep it in one",
+            ),
           );
         grouped.set(name, group);
       });

@@ -110,7 +110,9 @@ export const components = allStated("the principal components", {
         named(
           "groups of covariates by name; those in none form a group of their own",
           "the name of a group",
-          someOf("the covariates of the group", text("the name of a covariate", "winter rain"), ["winter rain"]),
+          someOf("the covariates of the group", text("the name of a covariate", "winter rain"), [
+            "winter rain",
+          ]),
         ),
       ],
       "all",

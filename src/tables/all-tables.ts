@@ -1,3 +1,4 @@
+import { clustersTable, mergesTable } from "./cluster-tables.ts";
 import {
   componentsTable,
   conditionTable,
@@ -7,6 +8,7 @@ import {
   scoresTable,
 } from "./collinearity-tables.ts";
 import { agreementTable, comparisonTable, effectsTable } from "./comparison-tables.ts";
+import { loadingIntervalsTable, simplifiedTables } from "./component-tables.ts";
 import {
   dictionaryTable,
   intervalValuesTable,
@@ -39,10 +41,22 @@ export function allTables(study: StudyResult): readonly Table[] {
     ...(study.occasions.length > 0 ? [occasionsTable(study)] : []),
     intervalsTable(study),
     ...(diagnosis
-      ? [correlationsTable(diagnosis), inflationTable(diagnosis), conditionTable(diagnosis)]
+      ? [
+          correlationsTable(diagnosis),
+          inflationTable(diagnosis),
+          conditionTable(diagnosis),
+          clustersTable(diagnosis),
+          mergesTable(diagnosis),
+        ]
       : []),
     ...(components
-      ? [componentsTable(components), loadingsTable(components), scoresTable(components, study.matrix.rows)]
+      ? [
+          componentsTable(components),
+          loadingsTable(components),
+          scoresTable(components, study.matrix.rows),
+          ...loadingIntervalsTable(components),
+          ...simplifiedTables(components, study.matrix.rows),
+        ]
       : []),
     ...(goodness ? [goodnessTable(goodness, study.occasions)] : []),
     ...(screened

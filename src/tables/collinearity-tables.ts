@@ -6,6 +6,7 @@ import type { Table } from "./table.ts";
 export function correlationsTable(diagnosis: Diagnosis): Table {
   const { pearson, spearman } = diagnosis;
   const k = pearson.names.length;
+  const beside = [diagnosis.partial, diagnosis.partialSpearman, diagnosis.changes];
   const rows = [];
   for (let i = 0; i < k; i++)
     for (let j = i + 1; j < k; j++) {
@@ -20,13 +21,19 @@ export function correlationsTable(diagnosis: Diagnosis): Table {
         spearman.r.data[at],
         spearman.p.data[at],
         spearman.holm.data[at],
+        ...beside.flatMap((one) =>
+          one === undefined
+            ? [Number.NaN, Number.NaN, Number.NaN]
+            : [one.r.data[at], one.p.data[at], one.holm.data[at]],
+        ),
+        diagnosis.changes?.n.data[at],
       ]);
     }
   return {
     name: "correlations",
     title: "Correlations",
     description:
-      "Every pair of covariates; two-sided p by the t distribution on n − 2, adjusted by Holm's method.",
+      "Every pair of covariates over the intervals that have both; two-sided p by the t distribution on n − 2 (n − 3 given the year), exact for ranks without ties up to 10 intervals, adjusted over all pairs by Holm's method. Given the year: of the columns with their linear trend taken out. Of changes: from each interval to the next.",
     columns: [
       text("first", "covariate", "first covariate"),
       text("second", "and", "second covariate"),
@@ -37,6 +44,16 @@ export function correlationsTable(diagnosis: Diagnosis): Table {
       number("spearman_r", "Spearman r", "1", "rank correlation, ties at average ranks"),
       number("spearman_p", "p (ranks)", "1", "two-sided p"),
       number("spearman_p_holm", "p, Holm (ranks)", "1", "adjusted over all pairs"),
+      number("given_year_r", "r given the year", "1", "partial correlation: of the detrended columns"),
+      number("given_year_p", "p given the year", "1", "two-sided p"),
+      number("given_year_p_holm", "p given the year, Holm", "1", "adjusted over all pairs"),
+      number("given_year_spearman_r", "rank r given the year", "1", "partial rank correlation"),
+      number("given_year_spearman_p", "p (ranks, given the year)", "1", "two-sided p"),
+      number("given_year_spearman_p_holm", "p (ranks, given the year), Holm", "1", "adjusted over all pairs"),
+      number("changes_r", "r of changes", "1", "of the differences from each interval to the next"),
+      number("changes_p", "p of changes", "1", "two-sided p"),
+      number("changes_p_holm", "p of changes, Holm", "1", "adjusted over all pairs"),
+      whole("changes_n", "n of changes", "changes", "differences with both values"),
     ],
     rows,
   };
@@ -151,7 +168,10 @@ export function loadingsTable(components: Components): Table {
   };
 }
 
-export function scoresTable(components: Components, intervals: readonly string[]): Table {
+export function scoresTable(
+  components: Pick<Components, "labels" | "scores">,
+  intervals: readonly string[],
+): Table {
   const m = components.labels.length;
   const slugs = uniqueSlugs(components.labels);
   return {

@@ -110,6 +110,7 @@ describe("the page", () => {
       "observed-series",
       "completeness",
       "correlation",
+      "correlation-detrended",
       "inflation",
       "component-variance",
       "component-loadings",

@@ -1,3 +1,4 @@
+import type { CorrelationTable } from "../../collinearity/result.ts";
 import type { Cast } from "../cast.ts";
 import { belongs, drawing, type Figure, fitted, label, marker, segment } from "../figure.ts";
 import { html } from "../html.ts";
@@ -12,7 +13,48 @@ const LEFT = 190;
 export function correlationMap(input: ReportInput, cast: Cast): Figure | undefined {
   const { diagnosis } = input;
   if (diagnosis === undefined || diagnosis.pearson.names.length < 2) return undefined;
-  const { names, r } = diagnosis.pearson;
+  const many = diagnosis.clusters.filter((one) => one.members.length > 1).length;
+  return triangles(input, cast, diagnosis.pearson, diagnosis.pearson, {
+    name: "correlation",
+    title: "Which covariates tell the same story",
+    caption: (numbers) =>
+      `Pearson correlation of the covariates over intervals, in the order of clusters${numbers ? "; the same values as numbers above the diagonal, bold where |r| is above the limit" : ""}. Frames hold the clusters (${counted(many, "cluster")} of two or more).`,
+    label: "Correlation of the covariates",
+  });
+}
+
+/** The same once shared trends are taken out: given the year below the diagonal, of changes above it. */
+export function detrendedMap(input: ReportInput, cast: Cast): Figure | undefined {
+  const { diagnosis } = input;
+  if (diagnosis?.partial === undefined || diagnosis.pearson.names.length < 2) return undefined;
+  const changes = diagnosis.changes ?? diagnosis.partial;
+  return triangles(input, cast, diagnosis.partial, changes, {
+    name: "correlation-detrended",
+    title: "The same without shared trends",
+    caption: (numbers) =>
+      `Squares below the diagonal: Pearson correlation given the year, which is that of the columns with their linear trend taken out.${numbers ? " Numbers above it: correlation of the changes from each interval to the next, bold where |r| is above the limit." : ""} Order and frames are those of the clusters above. What is close above and far here shares a trend.`,
+    label: "Correlation of the covariates given the year, and of their changes",
+  });
+}
+
+interface Told {
+  readonly name: string;
+  readonly title: string;
+  readonly caption: (numbers: boolean) => string;
+  readonly label: string;
+}
+
+/** One correlation as squares below the diagonal, the same or another as numbers above it. */
+function triangles(
+  input: ReportInput,
+  cast: Cast,
+  below: CorrelationTable,
+  above: CorrelationTable,
+  told: Told,
+): Figure | undefined {
+  const { diagnosis } = input;
+  if (diagnosis === undefined) return undefined;
+  const { names, r } = below;
   const order = diagnosis.order;
   const K = names.length;
   const cell = K <= 24 ? 34 : K <= 45 ? 18 : 9;
@@ -22,6 +64,7 @@ export function correlationMap(input: ReportInput, cast: Cast): Figure | undefin
   const at = (i: number) => LEFT + (i + 0.5) * cell;
   const down = (i: number) => top + (i + 0.5) * cell;
   const value = (i: number, j: number) => r.data[order[i] * K + order[j]];
+  const other = (i: number, j: number) => above.r.data[order[i] * K + order[j]];
   const rows = order.map((k, i) => {
     const member = cast.byName.get(names[k]);
     const text = fitted(names[k], LEFT - 34, size);
@@ -38,10 +81,10 @@ export function correlationMap(input: ReportInput, cast: Cast): Figure | undefin
         : html``,
       numbers &&
         order.slice(i + 1).map((_, j) =>
-          label(at(i + 1 + j), down(i) + 4, shortR(value(i, i + 1 + j)), {
+          label(at(i + 1 + j), down(i) + 4, shortR(other(i, i + 1 + j)), {
             anchor: "middle",
             size: 11,
-            weight: Math.abs(value(i, i + 1 + j)) > input.warn.correlation ? 700 : 400,
+            weight: Math.abs(other(i, i + 1 + j)) > input.warn.correlation ? 700 : 400,
           }),
         ),
     ]);
@@ -61,16 +104,15 @@ export function correlationMap(input: ReportInput, cast: Cast): Figure | undefin
       if (Math.abs(r.data[i * K + j]) > input.warn.correlation)
         pairs.push({ a: names[i], b: names[j], r: r.data[i * K + j] });
   pairs.sort((a, b) => Math.abs(b.r) - Math.abs(a.r));
-  const many = diagnosis.clusters.filter((one) => one.members.length > 1).length;
   const strongest = pairs.slice(0, 8).map((one) => `${one.a} and ${one.b} ${shortR(one.r)}`);
   return {
-    name: "correlation",
-    title: "Which covariates tell the same story",
-    caption: `Pearson correlation of the covariates over intervals, in the order of clusters${numbers ? "; the same values as numbers above the diagonal, bold where |r| is above the limit" : ""}. Frames hold the clusters (${counted(many, "cluster")} of two or more).`,
+    name: told.name,
+    title: told.title,
+    caption: told.caption(numbers),
     svg: drawing(
       Math.max(LEFT + K * cell + 12, 640),
       top + K * cell + 36,
-      "Correlation of the covariates",
+      told.label,
       `${counted(K, "covariate")}; ${counted(pairs.length, "pair")} with |r| above ${brief(input.warn.correlation)}${strongest.length > 0 ? `: ${strongest.join(", ")}` : ""}`,
       [
         segment(LEFT, top, LEFT + K * cell, top, "rule"),
