@@ -44,6 +44,10 @@ export const FINDING_KINDS = [
   "trap-dependence",
   "out-of-range",
   "definition-differs",
+  "layer-bounds",
+  "layer-methods",
+  "layer-quality",
+  "few-fixes",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -20,7 +20,10 @@ export interface NeededBlock {
 }
 
 /** Sorts the pixels of all places by the block that holds them, so that each block is read once for all. */
-export function neededBlocks(footprints: readonly Footprint[], image: Image): readonly NeededBlock[] {
+export function neededBlocks(
+  footprints: readonly Footprint[],
+  image: Pick<Image, "blockWidth" | "blockHeight" | "across">,
+): readonly NeededBlock[] {
   const { blockWidth, blockHeight, across } = image;
   const blocks = new Map<
     number,

@@ -118,6 +118,7 @@ function enough(date: NamedDate, covers: ImageCover): boolean {
 /** The period that an image dated `day` stands for: the month (dekad, year) that holds it, or so many days from it. */
 export function coveredPeriod(day: Day, covers: ImageCover): Period {
   if (typeof covers === "object") return { start: day, end: day + covers.days };
+  if (covers === "bounds") throw noAxis(undefined);
   if (covers === "day") return { start: day, end: day + 1 };
   const [year, month, dom] = isoDay(day).split("-").map(Number);
   if (covers === "year") return { start: dayOf(year, 1, 1), end: dayOf(year + 1, 1, 1) };
@@ -150,10 +151,21 @@ export function periodsOf(
       const cell = `band ${index + 1}`;
       return { band: index, ...periodFrom(dateIn(text, date.band, path, cell), covers, path, cell) };
     });
+  if ("axis" in date) throw noAxis(path);
   return descriptions.map((_, index) => ({
     band: index,
     ...coveredPeriod(stepped(date, index, path), covers),
   }));
+}
+
+function noAxis(file: string | undefined): InputError {
+  return new InputError({
+    name: "layers.no-time-axis",
+    expected: "a NetCDF file with a time axis, where images are dated or covered by it",
+    found: "a file without",
+    ...(file === undefined ? {} : { where: { file } }),
+    remedy: "date the images by name, band or first and step, and write what they cover",
+  });
 }
 
 /** The file's name without folder and ending. */

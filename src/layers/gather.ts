@@ -4,18 +4,15 @@ import type { BlockPart, NeededBlock } from "./blocks.ts";
 import { type Pixels, readPixels, samplesPerPixel } from "./image.ts";
 import type { Layer } from "./layer.ts";
 import { type MaskReader, maskReader } from "./mask.ts";
+import type { PixelTest } from "./quality.ts";
+import type { Gathered } from "./readings.ts";
 import { readyFor } from "./unpack.ts";
 import { unpacked, type ValueRule } from "./values.ts";
 
-/** Means and valid shares, image by image and place by place: [image × places + place]. */
-export interface Gathered {
-  readonly values: Float64Array;
-  readonly shares: Float64Array;
-}
-
 /**
  * Reads each needed block once and forms, for every band and place, Σ w v / Σ w over the valid pixels and the valid
- * share Σ w / total. NaN and 0 where nothing is valid.
+ * share Σ w / total. NaN and 0 where nothing is valid. `quality`, image by image, refuses pixels; the share it refused of
+ * those with values is counted.
  */
 export async function gather(
   file: RandomAccess,
@@ -24,6 +21,7 @@ export async function gather(
   bands: readonly { readonly band: number; readonly rule: ValueRule }[],
   blocks: readonly NeededBlock[],
   footprints: readonly Footprint[],
+  quality?: (image: number) => PixelTest,
 ): Promise<Gathered> {
   const { image } = layer;
   await readyFor(image.compression);
@@ -31,6 +29,7 @@ export async function gather(
   const sums = new Float64Array(bands.length * places);
   const weights = new Float64Array(bands.length * places);
   const bases = new Float64Array(bands.length * places).fill(Number.NaN);
+  const refused = new Float64Array(bands.length * places);
   const maskFile =
     layer.mask === undefined || layer.mask.path === layer.path ? file : files.open(layer.mask.path);
   try {
@@ -51,20 +50,23 @@ export async function gather(
             mask === undefined
               ? undefined
               : maskOfBlock(mask, block, image.blockWidth, image.blockHeight, band);
-          const added = addUp(pixels, step, shift, part, rule, masked, bases[at]);
+          const test = quality === undefined ? undefined : testOfBlock(quality(i), block, image);
+          const added = addUp(pixels, step, shift, part, rule, masked, test, bases[at]);
           bases[at] = added.base;
           sums[at] += added.sum;
           weights[at] += added.weight;
+          refused[at] += added.refused;
         }
       }
     }
   } finally {
     if (maskFile !== file) maskFile.close();
   }
-  const shares = weights.map((weight, i) => Math.min(1, weight / footprints[i % places].total));
+  const share = (weight: number, i: number) => Math.min(1, weight / footprints[i % places].total);
   return {
     values: sums.map((sum, i) => (weights[i] > 0 ? bases[i] + sum / weights[i] : Number.NaN)),
-    shares,
+    shares: weights.map(share),
+    refused: refused.map(share),
   };
 }
 
@@ -81,6 +83,11 @@ function maskOfBlock(
   return (offset) => mask(left + (offset % blockWidth), top + Math.floor(offset / blockWidth), band);
 }
 
+function testOfBlock(test: PixelTest, block: NeededBlock, image: Layer["image"]): BlockMask {
+  const [left, top] = [block.column * image.blockWidth, block.row * image.blockHeight];
+  return (offset) => test(left + (offset % image.blockWidth), top + Math.floor(offset / image.blockWidth));
+}
+
 /**
  * Σ w (v − base) and Σ w over the valid pixels of a part. The base is the first valid value of the place, so that a
  * constant layer gives its constant, a single pixel its value, and large offsets cost no digits.
@@ -92,17 +99,23 @@ function addUp(
   { offsets, weights }: BlockPart,
   rule: ValueRule,
   masked: BlockMask | undefined,
+  test: BlockMask | undefined,
   known: number,
-): { readonly sum: number; readonly weight: number; readonly base: number } {
+): { readonly sum: number; readonly weight: number; readonly refused: number; readonly base: number } {
   let sum = 0;
   let weight = 0;
+  let refused = 0;
   let base = known;
   for (let i = 0; i < offsets.length; i++) {
     const value = unpacked(samples[(offsets[i] - from) * step + shift], rule);
     if (Number.isNaN(value) || (masked !== undefined && !masked(offsets[i]))) continue;
+    if (test !== undefined && !test(offsets[i])) {
+      refused += weights[i];
+      continue;
+    }
     if (Number.isNaN(base)) base = value;
     sum += weights[i] * (value - base);
     weight += weights[i];
   }
-  return { sum, weight, base };
+  return { sum, weight, refused, base };
 }

@@ -1,8 +1,9 @@
-import type { Where } from "../data/place.ts";
+import type { AnyPlace } from "../data/place.ts";
 import type { ValueKind } from "../data/series.ts";
+import type { QualityRule } from "./quality.ts";
 
-/** What one image of a stack stands for. */
-export type ImageCover = "day" | "month" | "year" | "dekad" | { readonly days: number };
+/** What one image of a stack stands for; `bounds`: what the time bounds of a NetCDF file say. */
+export type ImageCover = "day" | "month" | "year" | "dekad" | "bounds" | { readonly days: number };
 
 /** How the dates of a stack's images are known. */
 export type ImageDates =
@@ -11,7 +12,23 @@ export type ImageDates =
   /** A multi-band file: one band per step, the first dated, the following each one step later. */
   | { readonly first: string; readonly step: "month" | "day" | "year" }
   /** In each band's description, by a pattern like `{yyyy}-{MM}`. */
-  | { readonly band: string };
+  | { readonly band: string }
+  /** On the time axis of a NetCDF file, by the CF conventions. */
+  | { readonly axis: "time" };
+
+/** A companion stack of quality numbers on the same grid, applied pixel by pixel before averaging. */
+export interface QualityOptions {
+  /** Its files; the layer's own where left out, with another band or variable. */
+  readonly files?: readonly string[];
+  /** How they are dated; as the layer where left out. */
+  readonly date?: ImageDates;
+  /** Band of GeoTIFF files, from 1. */
+  readonly band?: number;
+  /** Variable of NetCDF files. */
+  readonly variable?: string;
+  /** All must hold. */
+  readonly pass: readonly QualityRule[];
+}
 
 export interface LayerOptions {
   readonly files: readonly string[];
@@ -30,6 +47,11 @@ export interface LayerOptions {
   readonly system?: string;
   /** Which band of files dated by their name, from 1; needed only where they have several. */
   readonly band?: number;
+  /** Which variable of NetCDF files; needed only where they have several. */
+  readonly variable?: string;
+  /** Which entry of each further dimension (level, member), by its coordinate's value. */
+  readonly select?: Readonly<Record<string, string | number>>;
+  readonly quality?: QualityOptions;
 }
 
 /** How a layer is read at a place. */
@@ -43,6 +65,6 @@ export type PlaceUse =
 
 /** A place and how the layer is read there. */
 export interface Wanted {
-  readonly place: Where;
+  readonly place: AnyPlace;
   readonly use: PlaceUse;
 }

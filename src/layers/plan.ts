@@ -1,8 +1,10 @@
 import type { RawFinding } from "../data/finding.ts";
-import type { Files } from "../effects/effects.ts";
+import type { Files, RandomAccess } from "../effects/effects.ts";
 import { periodsOf } from "./dates.ts";
 import { noFiles } from "./extract.ts";
 import { describeLayer, type Layer } from "./layer.ts";
+import { netcdfStack } from "./netcdf/file.ts";
+import { isNetcdf, openNetcdf } from "./netcdf/open.ts";
 import type { LayerOptions } from "./options.ts";
 import { type DatedImage, orderImages } from "./series.ts";
 import { findSideFiles, sideList } from "./side.ts";
@@ -43,10 +45,19 @@ export async function planLayers(name: string, options: LayerOptions, files: Fil
   const planned: PlannedFile[] = [];
   const dated: { path: string; periods: ReturnType<typeof periodsOf> }[] = [];
   const systems = new Set<string>();
+  const found: RawFinding[] = [];
   const settled = new Map<string, string>();
   for (const path of paths) {
     const file = files.open(path);
     try {
+      if (isNetcdf(file)) {
+        const one = await planNetcdf(file, options, name);
+        planned.push(one.planned);
+        dated.push({ path, periods: one.stack.periods });
+        found.push(...one.stack.findings);
+        systems.add(one.stack.system.label);
+        continue;
+      }
       const layer = await describeLayer(file, files, sides(path));
       planned.push(plannedFile(layer, file.size, sideList(sides(path))));
       dated.push({
@@ -62,7 +73,29 @@ export async function planLayers(name: string, options: LayerOptions, files: Fil
       file.close();
     }
   }
-  return { name, files: planned, ...orderImages(name, dated), systems: [...systems] };
+  const { images, findings } = orderImages(name, dated);
+  return { name, files: planned, images, findings: [...found, ...findings], systems: [...systems] };
+}
+
+async function planNetcdf(file: RandomAccess, options: LayerOptions, name: string) {
+  const dataset = await openNetcdf(file);
+  try {
+    const stack = netcdfStack(dataset, options, name);
+    const { variable, grid, images } = stack.layer;
+    const planned: PlannedFile = {
+      path: file.path,
+      bytes: file.size,
+      width: grid.width,
+      height: grid.height,
+      bands: images,
+      type: variable.type,
+      compression: variable.compression,
+      beside: [],
+    };
+    return { planned, stack };
+  } finally {
+    dataset.close();
+  }
 }
 
 function plannedFile({ path, image }: Layer, bytes: number, beside: readonly string[]): PlannedFile {

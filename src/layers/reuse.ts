@@ -1,5 +1,5 @@
 import { createHash } from "node:crypto";
-import type { Where } from "../data/place.ts";
+import type { AnyPlace } from "../data/place.ts";
 import type { Effects } from "../effects/effects.ts";
 import type { LayerOptions, PlaceUse } from "./options.ts";
 import { type SidePaths, sideList } from "./side.ts";
@@ -11,6 +11,8 @@ const VERSION = 1;
 export interface Kept {
   readonly values: readonly number[];
   readonly shares: readonly number[];
+  /** Shares that quality refused, image by image; absent where no quality is asked. */
+  readonly refused?: readonly number[];
   readonly outside: number;
   readonly pixels: number;
 }
@@ -28,18 +30,30 @@ export async function fileKey(
   side: SidePaths,
   options: LayerOptions,
   effects: Effects,
+  qualityFiles: readonly string[] = [],
 ): Promise<string> {
   const sums: string[] = [];
-  for (const one of [path, ...sideList(side)]) sums.push((await effects.files.identity(one)).sha256);
-  const { scale, offset, fill, valid, system, date, band } = options;
+  for (const one of [path, ...sideList(side), ...qualityFiles])
+    sums.push((await effects.files.identity(one)).sha256);
+  const { scale, offset, fill, valid, system, date, band, variable, select, quality } = options;
   // Dates do not change values, but they say which bands are read.
   const bands = "name" in date ? (band ?? 1) : "all";
-  return `layer-${digest([VERSION, sums, scale, offset, fill, valid, system, bands].map((one) => one ?? null))}`;
+  // Added only where they are said, so that what was kept before there were any is still found.
+  const more = [variable, select, quality].some((one) => one !== undefined)
+    ? [variable, select, quality]
+    : [];
+  const parts = [VERSION, sums, scale, offset, fill, valid, system, bands, ...more];
+  return `layer-${digest(parts.map((one) => one ?? null))}`;
 }
 
 /** The key of a place within a file: its geometry and how it is read; the threshold of valid area is applied later. */
-export function placeKey(place: Where, use: PlaceUse): string {
-  const geometry = place.type === "point" ? place.position : place.polygons;
+export function placeKey(place: AnyPlace, use: PlaceUse): string {
+  const geometry =
+    place.type === "point"
+      ? place.position
+      : place.type === "area"
+        ? place.polygons
+        : [place.fixes, place.weigh, place.least];
   return digest([place.type, geometry, use.by, use.by === "radius" ? use.metres : null]);
 }
 
@@ -63,6 +77,7 @@ export async function readKept(key: string, effects: Effects): Promise<KeptFile>
 interface Written {
   readonly values: readonly (number | null)[];
   readonly shares: readonly number[];
+  readonly refused?: readonly number[];
   readonly outside: number;
   readonly pixels: number;
 }

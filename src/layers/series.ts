@@ -1,8 +1,10 @@
 import { isoDay } from "../data/day.ts";
 import type { RawFinding } from "../data/finding.ts";
 import { type Period, periodText } from "../data/period.ts";
+import type { MovingPlace } from "../data/place.ts";
 import type { Series } from "../data/series.ts";
 import type { ImagePeriod } from "./dates.ts";
+import { fixesIn } from "./moving.ts";
 import type { LayerOptions, Wanted } from "./options.ts";
 import type { Kept } from "./reuse.ts";
 
@@ -88,6 +90,7 @@ export function seriesOf(
 ): {
   readonly series: readonly Series[];
   readonly validShares: readonly Float64Array[];
+  readonly refused: readonly Float64Array[];
   readonly findings: readonly RawFinding[];
 } {
   const { images, findings } = orderImages(name, read);
@@ -96,14 +99,19 @@ export function seriesOf(
   const files = [...new Set(images.map((one) => one.path))].sort((a, b) => (a < b ? -1 : 1));
   const found: RawFinding[] = [...findings];
   const validShares: Float64Array[] = [];
+  const refused: Float64Array[] = [];
   const series = wanted.map(({ place, use }, w): Series => {
     const at = (one: DatedImage) => read[one.file].places[w];
     const values = Float64Array.from(images, (one) => at(one)?.values[one.image] ?? Number.NaN);
     const shares = Float64Array.from(images, (one) => at(one)?.shares[one.image] ?? 0);
     validShares.push(shares);
+    if (options.quality !== undefined)
+      refused.push(Float64Array.from(images, (one) => at(one)?.refused?.[one.image] ?? 0));
+    const few = place.type === "moving" ? fewFixes(name, place, images) : undefined;
     // Shares are sums of weights in another order than the whole; a wholly valid place must pass a threshold of 1.
     const least = "validArea" in use ? use.validArea - 1e-9 : 0;
-    const low = images.filter((_, i) => shares[i] < least || shares[i] === 0);
+    const low = images.filter((_, i) => few?.at[i] !== true && (shares[i] < least || shares[i] === 0));
+    if (few?.finding !== undefined) found.push(few.finding);
     images.forEach((_, i) => {
       if (shares[i] < least) values[i] = Number.NaN;
     });
@@ -125,7 +133,33 @@ export function seriesOf(
       files,
     };
   });
-  return { series, validShares, findings: found };
+  return { series, validShares, refused, findings: found };
+}
+
+/** Images in whose period a place that moves has too few fixes; they are missing. */
+function fewFixes(
+  name: string,
+  place: MovingPlace,
+  images: readonly DatedImage[],
+): { readonly at: readonly boolean[]; readonly finding: RawFinding | undefined } {
+  const least = Math.max(1, place.least);
+  const counts = images.map((one) => fixesIn(place, one).length);
+  const at = counts.map((count) => count < least);
+  const few = images.filter((_, i) => at[i]);
+  if (few.length === 0) return { at, finding: undefined };
+  const dates = few.slice(0, 3).map((one) => isoDay(one.start));
+  const message = `${few.length} of ${images.length} images have fewer than ${least} fixes in their period (${dates.join(", ")}${few.length > 3 ? ", …" : ""}) and count as missing`;
+  return {
+    at,
+    finding: {
+      kind: "few-fixes",
+      subject: `${name} at ${place.name}`,
+      message,
+      value: dates[0],
+      count: few.length,
+      remedy: "add fixes, lower `at least` of the place, or accept the images as missing",
+    },
+  };
 }
 
 function lowFinding(

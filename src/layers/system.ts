@@ -12,9 +12,17 @@ export interface System {
   /** In PROJ's words, or WKT. */
   readonly definition: string;
   /** Where it was known from. */
-  readonly from: "the pipeline file" | "EPSG code in the file" | "text in the file" | "keys of the file";
+  readonly from:
+    | "the pipeline file"
+    | "EPSG code in the file"
+    | "text in the file"
+    | "keys of the file"
+    | "grid mapping of the file"
+    | "longitudes and latitudes of the file";
   /** True for longitude and latitude in degrees. */
   readonly geographic: boolean;
+  /** True if these are of a rotated pole, so that a turn of true longitude comes back to the same place. */
+  readonly rotated?: true;
   /** True if it is longitude and latitude with no shift to WGS 84 at all. */
   readonly plain: boolean;
   /** True for projections that keep areas. */
@@ -32,7 +40,7 @@ interface Converter {
 
 /** Whole turns of longitude under which a place may meet a layer: geographic layers may run from 0 to 360. */
 export function turnsOf(system: System): readonly number[] {
-  return system.geographic ? [0, -360, 360] : [0];
+  return system.geographic && !system.rotated ? [0, -360, 360] : [0];
 }
 
 const EQUAL_AREA = /^(laea|lambert_azimuthal|sinu|aea|albers|cea|moll|eck4|equal|bonne)/i;
@@ -86,6 +94,11 @@ export function resolveSystem({ path, user, keys, wkt }: SystemSources): System 
   const built = definitionFromKeys(keys, epsg);
   if ("refused" in built) throw unknownSystem(path, built.refused);
   return build(built.definition, built.definition, "keys of the file", path);
+}
+
+/** A system by its definition in PROJ's words. Throws `layers.system-unknown`. */
+export function systemOf(definition: string, from: System["from"], path: string): System {
+  return build(definition, definition, from, path);
 }
 
 function fromUser(user: string, path: string): System {

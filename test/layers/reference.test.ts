@@ -1,5 +1,6 @@
 import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
+import { isoDay } from "../../src/data/day.ts";
 import type { Where } from "../../src/data/place.ts";
 import { extractLayers } from "../../src/layers/extract.ts";
 import type { LayerOptions, PlaceUse } from "../../src/layers/options.ts";
@@ -45,5 +46,35 @@ describe("reference values of a real elevation layer (K_layers.json, relative 1e
     const expected = one.point === undefined ? one.mean : one.nearest;
     expect(Math.abs(series[0].values[0] / expected - 1)).toBeLessThan(1e-9);
     if (one.point === undefined) expect(Math.abs(validShares[0][0] / one.valid_share - 1)).toBeLessThan(1e-9);
+  });
+});
+
+interface GridCase extends Omit<Case, "mean" | "valid_share"> {
+  readonly variable: string;
+  readonly months: readonly string[];
+  readonly mean: readonly number[];
+  readonly valid_share: readonly number[];
+}
+
+describe("reference values of a real monthly NetCDF file (K_layers.json, relative 1e-9)", () => {
+  const grids = cases.filter((one) => one.file.endsWith(".nc")) as unknown as readonly GridCase[];
+  test("there are four NetCDF cases", () => expect(grids).toHaveLength(4));
+  test.each(grids)("$variable over $area", async (one) => {
+    const place: Where = { type: "area", name: "here", polygons: [one.geojson_rings ?? []] };
+    const options: LayerOptions = {
+      files: [one.file],
+      date: { axis: "time" },
+      covers: "month",
+      variable: one.variable,
+      unit: "1",
+      kind: one.variable === "pr" ? "total" : "mean",
+    };
+    const use: PlaceUse = { by: "area", validArea: 0 };
+    const { series, validShares } = await extractLayers("x", options, [{ place, use }], effectsBelow(DATA));
+    expect(Array.from(series[0].starts, (day) => isoDay(day).slice(0, 7))).toEqual(one.months);
+    one.mean.forEach((mean, i) => {
+      expect(Math.abs(series[0].values[i] / mean - 1)).toBeLessThan(1e-9);
+      expect(Math.abs(validShares[0][i] / one.valid_share[i] - 1)).toBeLessThan(1e-9);
+    });
   });
 });
