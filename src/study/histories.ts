@@ -61,3 +61,25 @@ export function stratumLabel(columns: readonly string[], values: readonly string
   if (columns.length === 0) return "all animals";
   return columns.map((column, i) => `${column.replaceAll("_", " ")}: ${values[i]}`).join(", ");
 }
+
+/**
+ * Of `countsFrom`, the part that the newly marked make up: each animal's first release and its next capture. An animal
+ * lost when it was first caught is not released and is in none.
+ */
+export function firstReleases(histories: readonly History[], occasions: number): readonly Counts[] {
+  const strata = [...new Set(histories.map((one) => one.stratum))].sort((a, b) => (a < b ? -1 : 1));
+  return strata.map((stratum) => {
+    const released = new Float64Array(occasions - 1);
+    const seen = zeros(occasions - 1, occasions - 1);
+    let animals = 0;
+    for (const { stratum: own, seen: caught, lost, number } of histories) {
+      const [at, next] = caught;
+      // a loss at a later capture does not undo the first release
+      if (own !== stratum || at >= occasions - 1 || (lost && caught.length === 1)) continue;
+      released[at] += number;
+      animals += number;
+      if (next !== undefined) seen.data[at * seen.columns + next - 1] += number;
+    }
+    return { stratum, occasions, released, seen, animals };
+  });
+}

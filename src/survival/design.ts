@@ -17,6 +17,8 @@ export interface Design {
   readonly survival: Part;
   /** Recapture probabilities to be estimated, or one that is known. */
   readonly recapture: Part | { readonly known: number };
+  /** 1 where an interval ends at no occasion, so that nobody can be seen there; none if not said. */
+  readonly closed?: Uint8Array;
 }
 
 /** Shape shared by all models of one study. */
@@ -28,17 +30,39 @@ export interface Frame {
   readonly forced: readonly NamedColumn[];
   /** Effort by recapture occasion (n values), standardised; undefined if there is none. */
   readonly effort: Float64Array | undefined;
+  /** Differences between strata on the logit scale; if not said, every stratum against the first. */
+  readonly contrasts?: {
+    readonly survival: readonly NamedColumn[];
+    readonly recapture: readonly NamedColumn[];
+  };
+  /** Where intervals are split into years: the interval each of the n years is of, ascending from 0. */
+  readonly yearsOf?: Int32Array;
+  /** Covariates of a recapture part by covariates, of the interval that the occasion closes. */
+  readonly recaptureCovariates?: readonly NamedColumn[];
 }
 
 export interface NamedColumn {
   readonly name: string;
-  /** n values, one per interval. */
+  /** n values, one per interval, the same in every stratum; or G·n, one per row. */
   readonly values: Float64Array;
 }
 
-/** A value per interval, the same in every stratum. */
+/** Intervals between occasions: n, or fewer where some are split into years. */
+export function occasionIntervals(frame: Frame): number {
+  return frame.yearsOf === undefined ? frame.intervals : frame.yearsOf[frame.intervals - 1] + 1;
+}
+
+/** 1 where a year of a split interval ends at no occasion; undefined where nothing is split. */
+export function closedYears({ yearsOf }: Frame): Uint8Array | undefined {
+  if (yearsOf === undefined) return undefined;
+  return Uint8Array.from(yearsOf, (interval, t) => (yearsOf[t + 1] === interval ? 1 : 0));
+}
+
+/** A value per interval, the same in every stratum; values by row stay as they are. */
 function overStrata(frame: Frame, values: Float64Array): Float64Array {
-  const out = new Float64Array(frame.strata.length * frame.intervals);
+  const rows = frame.strata.length * frame.intervals;
+  if (values.length === rows) return values;
+  const out = new Float64Array(rows);
   for (let g = 0; g < frame.strata.length; g++) out.set(values, g * frame.intervals);
   return out;
 }
@@ -49,7 +73,8 @@ function stratumColumn(frame: Frame, g: number): Float64Array {
   return out.fill(1, g * frame.intervals, (g + 1) * frame.intervals);
 }
 
-function stratumColumns(frame: Frame): NamedColumn[] {
+function stratumColumns(frame: Frame, part: "survival" | "recapture"): readonly NamedColumn[] {
+  if (frame.contrasts !== undefined) return frame.contrasts[part];
   return frame.strata
     .slice(1)
     .map((name, g) => ({ name: `${name} against ${frame.strata[0]}`, values: stratumColumn(frame, g + 1) }));
@@ -67,24 +92,39 @@ export function covariateSurvival(frame: Frame, covariates: readonly NamedColumn
   const chosen = [...frame.forced, ...covariates];
   return assemble(chosen.length === 0 ? "constant" : chosen.map((one) => one.name).join(" + "), [
     { name: "survival at mean covariates", values: ONES(rows) },
-    ...stratumColumns(frame),
+    ...stratumColumns(frame, "survival"),
     ...chosen.map((one) => ({ name: one.name, values: overStrata(frame, one.values) })),
   ]);
 }
 
-/** How many leading columns of `covariateSurvival` come before the covariates that are chosen. */
-export function fixedSurvivalColumns(frame: Frame): number {
-  return frame.strata.length + frame.forced.length;
+/** Differences between strata in the survival part. */
+export function survivalContrasts(frame: Frame): number {
+  return frame.contrasts === undefined ? frame.strata.length - 1 : frame.contrasts.survival.length;
 }
 
-/** logit s_t = β_t + stratum effects: a survival of its own for every interval. */
+/** How many leading columns of `covariateSurvival` come before the covariates that are chosen. */
+export function fixedSurvivalColumns(frame: Frame): number {
+  return 1 + survivalContrasts(frame) + frame.forced.length;
+}
+
+/** 1 in the rows of interval t between occasions, that is in all its years where it is split. */
+function intervalColumn(frame: Frame, t: number): Float64Array {
+  const values = new Float64Array(frame.intervals);
+  for (let row = 0; row < values.length; row++)
+    if ((frame.yearsOf === undefined ? row : frame.yearsOf[row]) === t) values[row] = 1;
+  return overStrata(frame, values);
+}
+
+/**
+ * logit s_t = β_t + stratum effects: a survival of its own for every interval. The years of a split interval share
+ * it: captures tell their product alone.
+ */
 export function intervalSurvival(frame: Frame): Part {
-  const indicators = Array.from({ length: frame.intervals }, (_, t) => {
-    const values = new Float64Array(frame.intervals);
-    values[t] = 1;
-    return { name: `survival of interval ${t + 1}`, values: overStrata(frame, values) };
-  });
-  return assemble("each interval its own", [...indicators, ...stratumColumns(frame)]);
+  const indicators = Array.from({ length: occasionIntervals(frame) }, (_, t) => ({
+    name: `survival of interval ${t + 1}`,
+    values: intervalColumn(frame, t),
+  }));
+  return assemble("each interval its own", [...indicators, ...stratumColumns(frame, "survival")]);
 }
 
 export function constantRecapture(frame: Frame): Part {
@@ -92,11 +132,10 @@ export function constantRecapture(frame: Frame): Part {
 }
 
 export function occasionRecapture(frame: Frame): Part {
-  const indicators = Array.from({ length: frame.intervals }, (_, t) => {
-    const values = new Float64Array(frame.intervals);
-    values[t] = 1;
-    return { name: `recapture at occasion ${t + 2}`, values: overStrata(frame, values) };
-  });
+  const indicators = Array.from({ length: occasionIntervals(frame) }, (_, t) => ({
+    name: `recapture at occasion ${t + 2}`,
+    values: intervalColumn(frame, t),
+  }));
   return assemble("each occasion its own", indicators);
 }
 
@@ -106,4 +145,25 @@ export function effortRecapture(frame: Frame, effort: Float64Array): Part {
     { name: "recapture at mean effort", values: ONES(frame.strata.length * frame.intervals) },
     { name: "effort (per sd)", values: overStrata(frame, effort) },
   ]);
+}
+
+/** logit p = α0 + Σ α_k x_k, the covariates of the interval that the occasion closes. */
+export function covariateRecapture(frame: Frame, covariates: readonly NamedColumn[]): Part {
+  return assemble(`by ${covariates.map((one) => one.name).join(" + ")}`, [
+    { name: "recapture at mean covariates", values: ONES(frame.strata.length * frame.intervals) },
+    ...covariates.map((one) => ({
+      name: `recapture: ${one.name}`,
+      values: overStrata(frame, one.values),
+    })),
+  ]);
+}
+
+/** A recapture part with differences between strata added to it. */
+export function withStrata(frame: Frame, part: Part): Part {
+  const contrasts = stratumColumns(frame, "recapture");
+  return {
+    words: part.words === "constant" ? "by stratum" : `${part.words}, by stratum`,
+    names: [...part.names, ...contrasts.map((one) => `recapture: ${one.name}`)],
+    columns: [...part.columns, ...contrasts.map((one) => one.values)],
+  };
 }

@@ -1,10 +1,12 @@
 import {
+  closedYears,
   covariateSurvival,
   type Design,
   type Frame,
   fixedSurvivalColumns,
   type NamedColumn,
   type Part,
+  survivalContrasts,
 } from "./design.ts";
 import type { SufficientStatistics } from "./statistics.ts";
 
@@ -39,6 +41,7 @@ export interface EffectsDesign {
 export function effectsDesign(problem: RandomIntervalProblem, which: readonly number[]): EffectsDesign {
   const { frame, recapture } = problem;
   const n = frame.intervals;
+  const closed = closedYears(frame);
   const part = covariateSurvival(
     frame,
     which.map((k) => problem.covariates[k]),
@@ -62,12 +65,13 @@ export function effectsDesign(problem: RandomIntervalProblem, which: readonly nu
         columns: [...part.columns, ...indicators],
       },
       recapture,
+      ...(closed === undefined ? {} : { closed }),
     },
     survival: b,
     intervals: n,
     recapture: a,
     names: [...part.names, ...recaptureNames],
-    spent: fixedSurvivalColumns(frame) - (frame.strata.length - 1) + which.length,
+    spent: fixedSurvivalColumns(frame) - survivalContrasts(frame) + which.length,
     fixed: Int32Array.from({ length: b + a }, (_, k) => (k < b ? k : k + n)),
   };
 }

@@ -14,32 +14,39 @@ import type { SufficientStatistics } from "./statistics.ts";
  * where p_t belongs to the occasion that closes interval t. One backward sweep gives χ, one forward sweep the
  * derivatives v_t = ∂log L/∂χ_t, so value and gradient cost O(T) whatever the number of animals. The curvature is
  * exact (observed information): the same sweeps differentiated along each coefficient's column.
+ * A stratum whose animals go over to another one after an interval (`becomes`: time since marking) has that one's χ_{t+1}
+ * in its recursion; where an interval ends at no occasion (`closed`: the years of a split interval) p is 0.
  * Throws what `checkDesign` throws.
  */
 export function cjsLikelihood(data: readonly SufficientStatistics[], design: Design): Smooth {
   checkDesign(data, design);
   const n = design.intervals;
-  const rows = design.strata * n;
+  const strata = design.strata;
+  const rows = strata * n;
   const recapture = "known" in design.recapture ? undefined : design.recapture;
   const known = "known" in design.recapture ? design.recapture.known : 0;
   const survivalColumns = design.survival.columns;
   const recaptureColumns = recapture === undefined ? [] : recapture.columns;
   const b = survivalColumns.length;
   const dimension = b + recaptureColumns.length;
+  /** Of each row, the stratum whose χ follows: another one after an animal's first interval, not within its years. */
+  const to = new Int32Array(rows);
+  for (let g = 0; g < strata; g++)
+    for (let t = 0; t < n; t++) to[g * n + t] = design.closed?.[t] === 1 ? g : (data[g].becomes ?? g);
 
   const s1 = new Float64Array(rows); // 1 − s
   const phi = new Float64Array(rows);
   const die = new Float64Array(rows); // 1 − φ
   const p = new Float64Array(rows);
   const q = new Float64Array(rows);
-  const chi = new Float64Array(rows + design.strata); // n + 1 a stratum
+  const chi = new Float64Array(rows + strata); // n + 1 a stratum
   const v = new Float64Array(rows);
   const bySurvival = new Float64Array(rows); // ∂log L/∂ logit s
   const byRecapture = new Float64Array(rows); // ∂log L/∂ logit p
 
   function predictors(x: Float64Array): number {
     let logLikelihood = 0;
-    for (let g = 0; g < design.strata; g++) {
+    for (let g = 0; g < strata; g++) {
       const { alive, seen, passed } = data[g];
       for (let t = 0; t < n; t++) {
         const r = g * n + t;
@@ -53,6 +60,11 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
         phi[r] = Math.exp(logPhi);
         die[r] = -Math.expm1(logPhi);
         if (alive[t] > 0) logLikelihood += alive[t] * logPhi;
+        if (design.closed?.[t] === 1) {
+          p[r] = 0;
+          q[r] = 1;
+          continue;
+        }
         if (recapture === undefined) {
           p[r] = known;
           q[r] = 1 - known;
@@ -75,28 +87,29 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
 
   function evaluate(x: Float64Array, gradient: Float64Array): number {
     let logLikelihood = predictors(x);
-    for (let g = 0; g < design.strata; g++) {
-      const { alive, seen, passed, lastSeen } = data[g];
-      const at = g * n;
-      const chiAt = g * (n + 1);
-      chi[chiAt + n] = 1;
-      // backwards, since χ_t needs χ_{t+1}; both terms are non-negative, so nothing cancels
-      for (let t = n - 1; t >= 0; t--) {
-        chi[chiAt + t] = die[at + t] + phi[at + t] * q[at + t] * chi[chiAt + t + 1];
-        if (lastSeen[t] > 0) logLikelihood += lastSeen[t] * Math.log(chi[chiAt + t]);
+    for (let g = 0; g < strata; g++) chi[g * (n + 1) + n] = 1;
+    // backwards, since χ_t needs χ_{t+1} (of all strata: hence t outside); both terms are non-negative, so nothing cancels
+    for (let t = n - 1; t >= 0; t--)
+      for (let g = 0; g < strata; g++) {
+        const r = g * n + t;
+        const here = die[r] + phi[r] * q[r] * chi[to[r] * (n + 1) + t + 1];
+        chi[g * (n + 1) + t] = here;
+        if (data[g].lastSeen[t] > 0) logLikelihood += data[g].lastSeen[t] * Math.log(here);
       }
-      let carried = 0;
-      for (let t = 0; t < n; t++) {
-        const r = at + t;
-        v[r] = (lastSeen[t] > 0 ? lastSeen[t] / chi[chiAt + t] : 0) + carried;
-        carried = v[r] * phi[r] * q[r];
-        const next = chi[chiAt + t + 1];
+    v.fill(0);
+    for (let t = 0; t < n; t++)
+      for (let g = 0; g < strata; g++) {
+        const { alive, seen, passed, lastSeen } = data[g];
+        const r = g * n + t;
+        // what came from earlier intervals stands in v already
+        if (lastSeen[t] > 0) v[r] += lastSeen[t] / chi[g * (n + 1) + t];
+        if (t + 1 < n) v[to[r] * n + t + 1] += v[r] * phi[r] * q[r];
+        const next = chi[to[r] * (n + 1) + t + 1];
         const slope = design.lengths[t] * s1[r]; // d log φ / d logit s
         // 1 − qχ written as p + q(1 − χ) would be no better: q and χ are both well away from cancelling here
         bySurvival[r] = alive[t] * slope - v[r] * phi[r] * slope * (1 - q[r] * next);
         byRecapture[r] = seen[t] * q[r] - passed[t] * p[r] - v[r] * phi[r] * next * p[r] * q[r];
       }
-    }
     for (let k = 0; k < b; k++) gradient[k] = -dot(survivalColumns[k], bySurvival);
     for (let k = 0; k < recaptureColumns.length; k++)
       gradient[b + k] = -dot(recaptureColumns[k], byRecapture);
@@ -105,50 +118,51 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
 
   const dSurvival = new Float64Array(rows);
   const dRecapture = new Float64Array(rows);
-  const dChi = new Float64Array(n + 1);
+  const dChi = new Float64Array(rows + strata);
+  const dV = new Float64Array(rows);
 
   /** Derivatives of `bySurvival` and `byRecapture` along one coefficient's column. */
   function along(k: number): void {
     const column = k < b ? survivalColumns[k] : recaptureColumns[k - b];
     const survives = k < b;
-    for (let g = 0; g < design.strata; g++) {
-      const { alive, seen, passed, lastSeen } = data[g];
-      const at = g * n;
-      const chiAt = g * (n + 1);
-      dChi[n] = 0;
-      for (let t = n - 1; t >= 0; t--) {
-        const r = at + t;
+    for (let t = n - 1; t >= 0; t--)
+      for (let g = 0; g < strata; g++) {
+        const r = g * n + t;
+        const after = to[r] * (n + 1) + t + 1; // where dChi is 0 for t = n − 1, as it never is written
         const dPhi = survives ? phi[r] * design.lengths[t] * s1[r] * column[r] : 0;
         const dQ = survives ? 0 : -p[r] * q[r] * column[r];
-        const next = chi[chiAt + t + 1];
-        dChi[t] = -dPhi * (1 - q[r] * next) + phi[r] * (dQ * next + q[r] * dChi[t + 1]);
+        dChi[g * (n + 1) + t] =
+          -dPhi * (1 - q[r] * chi[after]) + phi[r] * (dQ * chi[after] + q[r] * dChi[after]);
       }
-      let dCarried = 0;
-      for (let t = 0; t < n; t++) {
-        const r = at + t;
+    dV.fill(0);
+    for (let t = 0; t < n; t++)
+      for (let g = 0; g < strata; g++) {
+        const { alive, seen, passed, lastSeen } = data[g];
+        const r = g * n + t;
         const c = column[r];
-        const next = chi[chiAt + t + 1];
-        const dV = (lastSeen[t] > 0 ? (-lastSeen[t] * dChi[t]) / chi[chiAt + t] ** 2 : 0) + dCarried;
+        const own = g * (n + 1) + t;
+        const after = to[r] * (n + 1) + t + 1;
+        const next = chi[after];
+        if (lastSeen[t] > 0) dV[r] -= (lastSeen[t] * dChi[own]) / chi[own] ** 2;
         const slope = design.lengths[t] * s1[r];
         const s = 1 - s1[r];
         const dSlope = survives ? -slope * s * c : 0;
         const dPhi = survives ? phi[r] * slope * c : 0;
         const dQ = survives ? 0 : -p[r] * q[r] * c;
-        dCarried = dV * phi[r] * q[r] + v[r] * (dPhi * q[r] + phi[r] * dQ);
+        if (t + 1 < n) dV[to[r] * n + t + 1] += dV[r] * phi[r] * q[r] + v[r] * (dPhi * q[r] + phi[r] * dQ);
         const away = 1 - q[r] * next;
-        const dAway = -(dQ * next + q[r] * dChi[t + 1]);
+        const dAway = -(dQ * next + q[r] * dChi[after]);
         dSurvival[r] =
           alive[t] * dSlope -
-          (dV * phi[r] * slope * away +
+          (dV[r] * phi[r] * slope * away +
             v[r] * (dPhi * slope * away + phi[r] * dSlope * away + phi[r] * slope * dAway));
         const pq = p[r] * q[r];
         const dPq = -dQ * (1 - 2 * p[r]); // dp = −dq
         dRecapture[r] =
           (seen[t] + passed[t]) * dQ -
-          (dV * phi[r] * next * pq +
-            v[r] * (dPhi * next * pq + phi[r] * dChi[t + 1] * pq + phi[r] * next * dPq));
+          (dV[r] * phi[r] * next * pq +
+            v[r] * (dPhi * next * pq + phi[r] * dChi[after] * pq + phi[r] * next * dPq));
       }
-    }
   }
 
   function curvature(which: Int32Array, out: Float64Array): void {

@@ -1,6 +1,7 @@
 import { InputError } from "../errors.ts";
 import { aicc } from "./criteria.ts";
 import {
+  closedYears,
   constantRecapture,
   type Design,
   effortRecapture,
@@ -37,12 +38,14 @@ export function recapturePart(frame: Frame, part: RecapturePart): Part {
 
 /** A design of the frame's shape. */
 export function designOf(frame: Frame, survival: Part, recapture: Part | { readonly known: number }): Design {
+  const closed = closedYears(frame);
   return {
     strata: frame.strata.length,
     intervals: frame.intervals,
     lengths: frame.lengths,
     survival,
     recapture,
+    ...(closed === undefined ? {} : { closed }),
   };
 }
 

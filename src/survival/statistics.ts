@@ -15,6 +15,11 @@ export interface SufficientStatistics {
   readonly passed: Float64Array;
   readonly lastSeen: Float64Array;
   readonly releases: number;
+  /**
+   * Place of the stratum that animals belong to once an interval has passed (time since marking): their χ_{t+1} is
+   * that stratum's. Their own if not said.
+   */
+  readonly becomes?: number;
 }
 
 export function sufficientStatistics(counts: Counts): SufficientStatistics {

@@ -1,0 +1,41 @@
+import type { Frame, NamedColumn } from "./design.ts";
+
+/** The coefficient by which survival differs in the interval after an animal was marked. */
+export const FIRST_INTERVAL = "first interval after marking";
+
+/**
+ * The frame in which every stratum stands twice: later intervals (even places), then the first interval after marking
+ * (odd places), as `sinceMarking` orders the data. Survival has the differences between strata and one of the first interval
+ * against later ones; recapture those between strata alone.
+ */
+export function markingFrame(frame: Frame): Frame {
+  const { strata, intervals: n } = frame;
+  const rows = 2 * strata.length * n;
+  const column = (name: string, where: (stratum: number, first: boolean) => boolean): NamedColumn => ({
+    name,
+    values: Float64Array.from({ length: rows }, (_, r) => {
+      const place = Math.floor(r / n);
+      return where(Math.floor(place / 2), place % 2 === 1) ? 1 : 0;
+    }),
+  });
+  const between = strata
+    .slice(1)
+    .map((name, g) => column(`${name} against ${strata[0]}`, (stratum) => stratum === g + 1));
+  return {
+    ...frame,
+    strata: strata.flatMap((name) => [`${name}, later intervals`, `${name}, first interval`]),
+    contrasts: {
+      survival: [...between, column(FIRST_INTERVAL, (_, first) => first)],
+      recapture: between,
+    },
+  };
+}
+
+/** A value per interval that acts on later intervals alone: 0, the mean, in the first one after marking. */
+export function onLaterIntervals(frame: Frame, one: NamedColumn): NamedColumn {
+  const n = frame.intervals;
+  const values = Float64Array.from({ length: frame.strata.length * n }, (_, r) =>
+    Math.floor(r / n) % 2 === 1 ? 0 : one.values[one.values.length === n ? r % n : r],
+  );
+  return { name: one.name, values };
+}
