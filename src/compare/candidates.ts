@@ -10,7 +10,7 @@ import type { ScreenResult } from "../screen/screen.ts";
 import { bestSmallSubset } from "../screen/subsets.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
 import { aicc, bic } from "../survival/criteria.ts";
-import type { NamedColumn } from "../survival/design.ts";
+import { type NamedColumn, occasionIntervals } from "../survival/design.ts";
 import { type Fit, fitModel } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 
@@ -82,7 +82,7 @@ export function buildCandidates(
   add("chosen by animals", screened.byAnimals.fit, true);
   add("chosen by years", screened.byYears.fit, true);
   const setting: ProcedureSetting = {
-    intervals: problem.frame.intervals,
+    intervals: occasionIntervals(problem.frame),
     covariates: names.length,
     interval: { minus2LogL: intervalFit.minus2LogL, parameters: intervalFit.parameters },
     constantParameters: constantFit.parameters,

@@ -14,11 +14,15 @@ import { readCaptures } from "../study/captures.ts";
 import { readOccasions } from "../study/occasions.ts";
 import { readPlaces } from "../study/places.ts";
 import { type ReadyMadeColumn, readReadyMade } from "../study/ready-made.ts";
+import { splitIntervals } from "../study/split-years.ts";
 
 /** All that was read, before anything is made of it. */
 export interface Ingested {
   readonly occasions: readonly Occasion[];
+  /** Between occasions; under `split: years` the years that they are cut into. */
   readonly intervals: readonly Interval[];
+  /** Under `split: years`, where something was cut: the interval between occasions that each year is of. */
+  readonly yearsOf?: Int32Array;
   /** Undefined where the pipeline only builds the covariate set. */
   readonly captures: CaptureResult | undefined;
   readonly places: ReadonlyMap<string, Where>;
@@ -50,8 +54,10 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
       ? undefined
       : keep(await readCaptures(spec.captures, dated?.occasions, effects.files));
   const occasions = dated?.occasions ?? captures?.occasions ?? [];
-  const intervals = dated?.intervals ?? captures?.intervals;
-  if (intervals === undefined) throw noOccasions();
+  const between = dated?.intervals ?? captures?.intervals;
+  if (between === undefined) throw noOccasions();
+  const cut = spec.survival.split === "years" ? splitIntervals(between) : undefined;
+  const intervals = cut?.years ?? between;
   effects.checkInterrupted();
 
   const { places } = keep(await readPlaces(spec.places, effects.files));
@@ -85,6 +91,7 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
   return {
     occasions,
     intervals,
+    ...(cut !== undefined && cut.years.length > between.length ? { yearsOf: cut.yearsOf } : {}),
     captures,
     places,
     sites: sites ?? [],

@@ -44,22 +44,23 @@ function lessOne(setting: ProcedureSetting): ProcedureSetting {
 
 /** The problem with interval t on its own: an indicator forced in, the covariates 0 there and at sd 1 elsewhere. */
 export function withoutInterval(problem: ScreenProblem, t: number): ScreenProblem {
-  const indicator = new Float64Array(problem.frame.intervals);
-  indicator[t] = 1;
+  const { intervals: n, yearsOf } = problem.frame;
+  const out = (row: number) => (yearsOf === undefined ? row % n : yearsOf[row % n]) === t;
+  const indicator = Float64Array.from({ length: n }, (_, row) => (out(row) ? 1 : 0));
   return {
     ...problem,
     frame: {
       ...problem.frame,
       forced: [...problem.frame.forced, { name: `interval ${t + 1} alone`, values: indicator }],
     },
-    covariates: problem.covariates.map((one) => standardWithout(one, t)),
+    covariates: problem.covariates.map((one) => standardWithout(one, out)),
   };
 }
 
-function standardWithout({ name, values }: NamedColumn, t: number): NamedColumn {
-  const others = values.filter((_, i) => i !== t);
+function standardWithout({ name, values }: NamedColumn, out: (row: number) => boolean): NamedColumn {
+  const others = values.filter((_, i) => !out(i));
   const [centre, sd] = [mean(others), sampleSd(others)];
   // a column that is constant without this interval has nothing left to say
   const scale = sd > 1e-12 ? 1 / sd : 0;
-  return { name, values: values.map((value, i) => (i === t ? 0 : (value - centre) * scale)) };
+  return { name, values: values.map((value, i) => (out(i) ? 0 : (value - centre) * scale)) };
 }

@@ -50,7 +50,7 @@ export interface PermutationResult {
 export function permuteYears(chunk: PermutationChunk): PermutationOutcome[] {
   return Array.from({ length: chunk.to - chunk.from }, (_, i) => {
     const random = randomStream(chunk.seed, "permutation of years", chunk.from + i);
-    return outcomeInOrder(chunk, random.permutation(chunk.setting.intervals));
+    return outcomeInOrder(chunk, random.permutation(chunk.problem.frame.intervals));
   });
 }
 
@@ -59,9 +59,11 @@ export function outcomeInOrder(
   { problem, setting, options }: Pick<PermutationChunk, "problem" | "setting" | "options">,
   order: ArrayLike<number>,
 ): PermutationOutcome {
+  const n = problem.frame.intervals;
+  // values by stratum × interval move together, each within its stratum
   const covariates = problem.covariates.map((one) => ({
     name: one.name,
-    values: Float64Array.from(order, (t) => one.values[t]),
+    values: one.values.map((_, r) => one.values[r - (r % n) + order[r % n]]),
   }));
   const result = runProcedure({ ...problem, covariates }, setting, options);
   const share = (set: readonly number[]) =>
@@ -83,7 +85,7 @@ export function shiftYears(
   study: Pick<PermutationChunk, "problem" | "setting" | "options">,
   gain: number,
 ): number {
-  const n = study.setting.intervals;
+  const n = study.problem.frame.intervals;
   let reached = 1;
   for (let shift = 1; shift < n; shift++) {
     const order = Int32Array.from({ length: n }, (_, t) => (t + shift) % n);

@@ -11,6 +11,18 @@ export interface ScreenProblem {
   readonly covariates: readonly NamedColumn[];
 }
 
+/**
+ * Whether every covariate has one value per interval between occasions, the same for all animals: not so with time
+ * since marking, years of split intervals and covariates by stratum.
+ */
+export function oneValuePerInterval({ data, frame, covariates }: ScreenProblem): boolean {
+  return (
+    frame.yearsOf === undefined &&
+    data.every((one) => one.becomes === undefined) &&
+    [...frame.forced, ...covariates].every((one) => one.values.length === frame.intervals)
+  );
+}
+
 /** The design with all covariates, or with those at the positions given. */
 export function designWith(problem: ScreenProblem, which?: readonly number[]): Design {
   const covariates = which === undefined ? problem.covariates : which.map((k) => problem.covariates[k]);

@@ -3,6 +3,7 @@ import type { Effects } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { randomStream } from "../math/random.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
+import { occasionIntervals } from "../survival/design.ts";
 import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
 import type { RecaptureComparison } from "../survival/recapture-choice.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
@@ -17,7 +18,7 @@ import {
   summarisePermutations,
 } from "./permutation.ts";
 import { type PlainLasso, plainLasso } from "./plain-lasso.ts";
-import { designWith, type ScreenProblem } from "./problem.ts";
+import { designWith, oneValuePerInterval, type ScreenProblem } from "./problem.ts";
 import { type ProcedureSetting, runProcedure } from "./procedure.ts";
 import { type RandomIntervalEvidence, randomIntervalEvidence } from "./random-intervals.ts";
 import { type RidgePath, ridgePath } from "./ridge-path.ts";
@@ -63,7 +64,10 @@ export interface ScreenResult {
   readonly shifts: number | undefined;
   /** The choices with one interval left out at a time; empty without permutations. */
   readonly influence: readonly InfluenceRow[];
-  /** The same question asked of a model with a random effect of each interval. Undefined where recapture is known. */
+  /**
+   * The same question asked of a model with a random effect of each interval. Undefined where recapture is known, and where
+   * effects of intervals are not written yet: time since marking, split years, covariates by stratum.
+   */
   readonly randomIntervals: RandomIntervalEvidence | undefined;
 }
 
@@ -76,7 +80,7 @@ export const PERMUTATION_TASK = "screen.permutation";
 
 /** n of the criteria by the rule asked for; animals where they are known, else releases. */
 export function sampleSizeOf(problem: ScreenProblem, options: ScreenOptions, animals: number): number {
-  if (options.sampleSize === "intervals") return problem.frame.intervals;
+  if (options.sampleSize === "intervals") return occasionIntervals(problem.frame);
   const releases = totalReleases(problem.data);
   return options.sampleSize === "animals" && Number.isFinite(animals) ? animals : releases;
 }
@@ -96,11 +100,12 @@ export async function screen(
   seed: number,
   effects: Pick<Effects, "parallel" | "progress">,
 ): Promise<{ readonly result: ScreenResult; readonly findings: readonly RawFinding[] }> {
-  if (problem.frame.intervals < LEAST_INTERVALS) throw tooFewIntervals(problem.frame.intervals);
+  const intervals = occasionIntervals(problem.frame);
+  if (intervals < LEAST_INTERVALS) throw tooFewIntervals(intervals);
   const constantFit = fitModel(problem.data, designWith(problem, []));
   const intervalFit = recapture.intervalFit;
   const setting: ProcedureSetting = {
-    intervals: problem.frame.intervals,
+    intervals,
     covariates: problem.covariates.length,
     interval: { minus2LogL: intervalFit.minus2LogL, parameters: intervalFit.parameters },
     constantParameters: constantFit.parameters,
@@ -154,7 +159,7 @@ export async function screen(
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
     shifts: outcomes.length === 0 ? undefined : shiftYears({ problem, setting, options }, found.byYears.gain),
     randomIntervals:
-      "known" in problem.recapture
+      "known" in problem.recapture || !oneValuePerInterval(problem)
         ? undefined
         : randomIntervalEvidence(problem, found.candidates, found.byYears.chosen),
     influence: outcomes.length === 0 ? [] : leaveOneIntervalOut(problem, setting, options),

@@ -1,3 +1,4 @@
+import type { CaptureOptions } from "../study/options.ts";
 import type { KeyPath } from "./path.ts";
 import type { Problem } from "./problems.ts";
 import { unknownName } from "./read-covariates.ts";
@@ -132,7 +133,7 @@ function needProblems(spec: Spec): Problem[] {
       );
     if (survival.strata.length > 0)
       problems.push(needs(["survival", "strata"], "captures, which hold the strata", "no captures", remedy));
-    if (recapture === "effort")
+    if (recapture !== "choose" && recapture !== "constant")
       problems.push(needs(["recapture"], "captures, for a recapture part", "no captures", remedy));
   } else {
     survival.strata.forEach((name, i) => {
@@ -147,7 +148,17 @@ function needProblems(spec: Spec): Problem[] {
           ),
         );
     });
-    if (recapture === "effort" && occasions?.effort === undefined)
+    problems.push(...markingProblems(spec, captures));
+    if (recapture.includes("strata") && captures.strata.length === 0)
+      problems.push(
+        needs(
+          ["recapture"],
+          "strata of the captures, for recapture to differ between them",
+          "none",
+          "name their columns under captures > strata, or choose another recapture part",
+        ),
+      );
+    if (recapture.startsWith("effort") && occasions?.effort === undefined)
       problems.push(
         needs(
           ["recapture"],
@@ -158,6 +169,29 @@ function needProblems(spec: Spec): Problem[] {
       );
   }
   return problems;
+}
+
+/** Time since marking needs histories, and something to act on. */
+function markingProblems({ survival }: Spec, captures: CaptureOptions): Problem[] {
+  if (survival.sinceMarking === "first interval apart" && captures.layout === "counts")
+    return [
+      conflict(
+        ["survival", "time since marking"],
+        "captures animal by animal, which tell who was newly marked",
+        "a counts table",
+        "give the histories, or write time since marking: ignored",
+      ),
+    ];
+  if (survival.sinceMarking !== "first interval apart" && survival.covariatesActOn === "later intervals")
+    return [
+      conflict(
+        ["survival", "covariates act on"],
+        "time since marking: first interval apart, where covariates act on later intervals alone",
+        "time since marking: ignored",
+        "write time since marking: first interval apart, or remove this",
+      ),
+    ];
+  return [];
 }
 
 function modelProblems(spec: Spec): Problem[] {
@@ -231,6 +265,9 @@ function modelProblems(spec: Spec): Problem[] {
         grouped.set(name, group);
       });
   }
+  spec.recaptureCovariates?.forEach((name, i) => {
+    know(["recapture", "covariates", i], name);
+  });
   survival.forced.forEach((name, i) => {
     const path = ["survival", "forced", i];
     know(path, name);

@@ -12,8 +12,10 @@ import {
   readDuplicates,
   readFindings,
   readKeep,
+  readRecapture,
   readScreen,
   readStandardise,
+  readSurvival,
 } from "./read-model.ts";
 import { pipelineSchema, type RawPipeline, SCHEMA_NUMBER } from "./schema.ts";
 import type { Spec } from "./spec.ts";
@@ -69,8 +71,8 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     },
     collinearity: readCollinearity(raw.collinearity),
     components: { ...raw.components, keep: readKeep(raw.components.keep) },
-    survival: raw.survival,
-    recapture: raw.recapture,
+    survival: readSurvival(raw.survival),
+    ...readRecapture(raw.recapture),
     screen: readScreen(raw.screen),
     findings: readFindings(raw.findings),
     duplicates: readDuplicates(raw.findings),

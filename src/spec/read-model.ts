@@ -4,10 +4,11 @@ import type { Standardise } from "../covariates/options.ts";
 import type { FindingKind, Severity } from "../data/finding.ts";
 import type { ScreenOptions } from "../screen/options.ts";
 import type { DuplicateRule } from "../stations/options.ts";
+import type { SurvivalOptions } from "../survival/options.ts";
 import { byKind, given } from "./given.ts";
 import type { RawPipeline } from "./schema.ts";
 import { PARALLEL } from "./schema-model.ts";
-import type { FindingPolicy } from "./spec.ts";
+import type { FindingPolicy, Spec } from "./spec.ts";
 import { readYears } from "./windows.ts";
 
 export function readStandardise(raw: RawPipeline["prepare"]["standardise"]): Standardise {
@@ -24,6 +25,25 @@ export function readKeep(raw: RawPipeline["components"]["keep"]): KeepRule {
   if ("parallel" in raw) return { type: "parallel", ...raw.parallel };
   if ("share" in raw) return { type: "share", share: raw.share };
   return { type: "number", number: raw.number };
+}
+
+export function readSurvival(raw: RawPipeline["survival"]): SurvivalOptions {
+  return {
+    strata: raw.strata,
+    forced: raw.forced,
+    yearTrend: raw["year trend"],
+    sinceMarking: raw["time since marking"],
+    covariatesActOn: raw["covariates act on"],
+    split: raw.split,
+  };
+}
+
+/** The part, and the covariates it goes by. */
+export function readRecapture(
+  raw: RawPipeline["recapture"],
+): Pick<Spec, "recapture" | "recaptureCovariates"> {
+  if (typeof raw === "string") return { recapture: raw };
+  return { recapture: "covariates", recaptureCovariates: raw.covariates };
 }
 
 export function readScreen(raw: RawPipeline["screen"]): ScreenOptions {

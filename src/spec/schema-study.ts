@@ -126,14 +126,48 @@ export const survival = allStated("the part of the model that speaks of survival
     ]),
     [],
   ),
+  "year trend": stated(
+    flag("whether a linear trend over the years is always in the model, unpenalised"),
+    false,
+  ),
+  "time since marking": stated(
+    choice("whether survival differs in the interval after marking", ["ignored", "first interval apart"]),
+    "ignored",
+  ),
+  "covariates act on": stated(
+    choice("the intervals of an animal's life that covariates act on, where the first stands apart", [
+      "all intervals",
+      "later intervals",
+    ]),
+    "all intervals",
+  ),
+  split: stated(
+    choice("whether intervals of several years are cut into years with covariates of their own", [
+      "none",
+      "years",
+    ]),
+    "none",
+  ),
 });
 
 export const recapture = stated(
-  choice("the recapture part; `choose` takes the least AICc under one survival per interval", [
+  oneOf(
+    "the recapture part by name, or { covariates: … }; `choose` takes the least AICc under one survival per interval",
+    [
+      choice("a recapture part by name", [
+        "choose",
+        "constant",
+        "effort",
+        "strata",
+        "effort and strata",
+        "each occasion",
+        "each occasion and strata",
+      ]),
+      keys("recapture by covariates of the interval that the occasion closes", {
+        covariates: someOf("the covariates", text("the name of a covariate", "winter rain"), ["winter rain"]),
+      }),
+    ],
     "choose",
-    "constant",
-    "each occasion",
-    "effort",
-  ]),
+  ),
   "choose",
 );

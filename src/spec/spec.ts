@@ -102,6 +102,8 @@ export interface Spec {
   readonly components: ComponentOptions;
   readonly survival: SurvivalOptions;
   readonly recapture: RecaptureChoice;
+  /** Covariates that recapture goes by, where `recapture` is `covariates`. */
+  readonly recaptureCovariates?: readonly string[];
   readonly screen: ScreenOptions;
   readonly findings: Readonly<Record<FindingKind, FindingPolicy>>;
   readonly duplicates: DuplicateRule;

@@ -102,6 +102,11 @@ export function survivalContrasts(frame: Frame): number {
   return frame.contrasts === undefined ? frame.strata.length - 1 : frame.contrasts.survival.length;
 }
 
+/** Differences between strata in a recapture part by strata. */
+export function recaptureContrasts(frame: Frame): number {
+  return frame.contrasts === undefined ? frame.strata.length - 1 : frame.contrasts.recapture.length;
+}
+
 /** How many leading columns of `covariateSurvival` come before the covariates that are chosen. */
 export function fixedSurvivalColumns(frame: Frame): number {
   return 1 + survivalContrasts(frame) + frame.forced.length;

@@ -39,3 +39,13 @@ export function onLaterIntervals(frame: Frame, one: NamedColumn): NamedColumn {
   );
   return { name: one.name, values };
 }
+
+/** Values by interval, or by stratum × interval of the frame as it was, in the rows of `markingFrame`. */
+export function overMarking(frame: Frame, values: Float64Array): Float64Array {
+  const n = frame.intervals;
+  if (values.length === n) return values;
+  return Float64Array.from(
+    { length: 2 * values.length },
+    (_, r) => values[n * Math.floor(r / (2 * n)) + (r % n)],
+  );
+}

@@ -3,12 +3,15 @@ import { aicc } from "./criteria.ts";
 import {
   closedYears,
   constantRecapture,
+  covariateRecapture,
   type Design,
   effortRecapture,
   type Frame,
   intervalSurvival,
   occasionRecapture,
   type Part,
+  recaptureContrasts,
+  withStrata,
 } from "./design.ts";
 import { type Fit, fitModel, totalReleases } from "./fit.ts";
 import type { RecaptureChoice, RecapturePart } from "./options.ts";
@@ -30,10 +33,31 @@ export interface RecaptureComparison {
   readonly intervalFit: Fit;
 }
 
-/** Builds the design matrix part of a recapture choice. */
+/** The parts that a frame has what it takes for, simpler ones first. */
+export function availableParts(frame: Frame): readonly RecapturePart[] {
+  const effort = frame.effort !== undefined;
+  const strata = recaptureContrasts(frame) > 0;
+  const parts: readonly (readonly [RecapturePart, boolean])[] = [
+    ["constant", true],
+    ["effort", effort],
+    ["covariates", (frame.recaptureCovariates?.length ?? 0) > 0],
+    ["strata", strata],
+    ["effort and strata", effort && strata],
+    ["each occasion", true],
+    ["each occasion and strata", strata],
+  ];
+  return parts.flatMap(([part, has]) => (has ? [part] : []));
+}
+
+/** Builds the design matrix part of a recapture choice; constant where the frame lacks what the choice needs. */
 export function recapturePart(frame: Frame, part: RecapturePart): Part {
-  if (part === "effort" && frame.effort !== undefined) return effortRecapture(frame, frame.effort);
-  return part === "each occasion" ? occasionRecapture(frame) : constantRecapture(frame);
+  if (part === "covariates") return covariateRecapture(frame, frame.recaptureCovariates ?? []);
+  const base = part.startsWith("each occasion")
+    ? occasionRecapture(frame)
+    : part.startsWith("effort") && frame.effort !== undefined
+      ? effortRecapture(frame, frame.effort)
+      : constantRecapture(frame);
+  return part.endsWith("strata") ? withStrata(frame, base) : base;
 }
 
 /** A design of the frame's shape. */
@@ -52,7 +76,8 @@ export function designOf(frame: Frame, survival: Part, recapture: Part | { reado
 /**
  * Compares the recapture parts under one survival per interval, before any covariate is looked at: a weather effect on
  * being seen passes for an effect on surviving where recapture is wrongly held constant. AICc with n = releases.
- * Throws `survival.nobody-met-again` where no count holds an animal met again, `survival.no-effort` if recapture by effort is asked for and the frame has none.
+ * Throws `survival.nobody-met-again` where no count holds an animal met again, `survival.no-effort` and
+ * `survival.no-recapture-part` if a part is asked for that the frame has nothing for.
  */
 export function compareRecapture(
   data: readonly SufficientStatistics[],
@@ -61,11 +86,7 @@ export function compareRecapture(
 ): RecaptureComparison {
   const releases = totalReleases(data);
   if (data.every(({ seen }) => seen.every((number) => number === 0))) throw nobodyMetAgain(releases);
-  const parts: RecapturePart[] = [
-    "constant",
-    ...(frame.effort ? (["effort"] as const) : []),
-    "each occasion",
-  ];
+  const parts = availableParts(frame);
   const survival = intervalSurvival(frame);
   const fits = parts.map((part) => fitModel(data, designOf(frame, survival, recapturePart(frame, part))));
   const rows = parts.map((part, i) => ({
@@ -77,14 +98,7 @@ export function compareRecapture(
   // ties and undefined values go to the simpler part, which stands first
   const best = rows.reduce((least, row, i) => (row.aicc < rows[least].aicc ? i : least), 0);
   const index = choice === "choose" ? best : parts.indexOf(choice);
-  if (index < 0)
-    throw new InputError({
-      name: "survival.no-effort",
-      expected: "an effort for every occasion where recapture goes by effort",
-      found: "no effort in the occasions",
-      where: { cell: "recapture" },
-      remedy: "name the effort column under occasions, or choose another recapture part",
-    });
+  if (index < 0) throw notAvailable(choice);
   return {
     rows,
     chosen: parts[index],
@@ -92,6 +106,25 @@ export function compareRecapture(
       choice === "choose" ? "least AICc under one survival per interval" : "named in the pipeline file",
     intervalFit: fits[index],
   };
+}
+
+function notAvailable(choice: RecaptureChoice): InputError {
+  if (choice.startsWith("effort"))
+    return new InputError({
+      name: "survival.no-effort",
+      expected: "an effort for every occasion where recapture goes by effort",
+      found: "no effort in the occasions",
+      where: { cell: "recapture" },
+      remedy: "name the effort column under occasions, or choose another recapture part",
+    });
+  return new InputError({
+    name: "survival.no-recapture-part",
+    expected:
+      choice === "covariates" ? "covariates that recapture goes by" : "two strata or more to tell apart",
+    found: choice === "covariates" ? "none in the matrix" : "one stratum",
+    where: { cell: "recapture" },
+    remedy: "choose another recapture part",
+  });
 }
 
 function nobodyMetAgain(releases: number): InputError {

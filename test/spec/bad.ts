@@ -411,7 +411,47 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "recapture: each ocasion",
     name: "spec.not-a-choice",
     message:
-      'p.yaml:52:12 (recapture): expected the recapture part; `choose` takes the least AICc under one survival per interval: choose, constant, each occasion, effort (if left out: choose), found "each ocasion"; did you mean "each occasion"?',
+      'p.yaml:52:12 (recapture): expected the recapture part by name, or { covariates: … }; `choose` takes the least AICc under one survival per interval (if left out: choose), found "each ocasion"; did you mean "each occasion"?',
+  },
+  {
+    title: "recapture: by a covariate that is none",
+    from: "recapture: effort",
+    to: "recapture: { covariates: [snow, contrats] }",
+    name: "spec.unknown-name",
+    message:
+      'p.yaml:52:33 (recapture > covariates > #2): expected a covariate ("winter rain", "cold nights", "snow", "disturbance", "contrast"), found "contrats"; did you mean "contrast"?',
+  },
+  {
+    title: "recapture: strata as a mapping",
+    from: "survival: { strata: [sex], forced: [snow] }\nrecapture: effort",
+    to: "survival: { strata: [sex], forced: [snow] }\nrecapture: { strata: [sex] }",
+    name: "spec.wrong-type",
+    message:
+      'p.yaml:52:12 (recapture): expected the recapture part by name, or { covariates: … }; `choose` takes the least AICc under one survival per interval (if left out: choose), found a mapping with "strata"; write it like choose',
+  },
+  {
+    title: "survival: covariates on later intervals without time since marking",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], forced: [snow], covariates act on: later intervals }",
+    name: "spec.conflict",
+    message:
+      "p.yaml:51:63 (survival > covariates act on): expected time since marking: first interval apart, where covariates act on later intervals alone, found time since marking: ignored; write time since marking: first interval apart, or remove this",
+  },
+  {
+    title: "survival: time since marking spelled otherwise",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], forced: [snow], time since marking: true }",
+    name: "spec.not-a-choice",
+    message:
+      "p.yaml:51:64 (survival > time since marking): expected whether survival differs in the interval after marking: ignored, first interval apart (if left out: ignored), found true; write one of them",
+  },
+  {
+    title: "survival: split by something else",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], forced: [snow], split: months }",
+    name: "spec.not-a-choice",
+    message:
+      'p.yaml:51:51 (survival > split): expected whether intervals of several years are cut into years with covariates of their own: none, years (if left out: none), found "months"; write one of them',
   },
   {
     title: "choices: misspelt severity",

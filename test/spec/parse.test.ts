@@ -133,7 +133,14 @@ describe("good pipelines", () => {
       },
       collinearity: { warn: { correlation: 0.7, inflation: 10, condition: 30 }, cluster: 0.7, decisions: [] },
       components: { keep: { type: "broken stick" }, within: "all", simplify: "none", resamples: 0 },
-      survival: { strata: [], forced: [] },
+      survival: {
+        strata: [],
+        forced: [],
+        yearTrend: false,
+        sinceMarking: "ignored",
+        covariatesActOn: "all intervals",
+        split: "none",
+      },
       recapture: "choose",
       screen: {
         steps: 100,

@@ -9,6 +9,10 @@ import { goodnessBlock } from "./goodness.ts";
 const WORDS: Readonly<Record<RecapturePart, string>> = {
   constant: "the same at every occasion",
   effort: "by effort",
+  covariates: "by covariates of the interval before",
+  strata: "by stratum",
+  "effort and strata": "by effort and stratum",
+  "each occasion and strata": "its own at each occasion, shifted by stratum",
   "each occasion": "its own at each occasion",
 };
 

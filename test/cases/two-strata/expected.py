@@ -27,7 +27,8 @@ def releases():
 def minus2(beta, survival, recapture):
     k = survival.shape[2]
     s = 1 / (1 + np.exp(-survival @ beta[:k]))          # sex x interval
-    p = 1 / (1 + np.exp(-recapture @ beta[k:]))         # occasion 2..5
+    p = 1 / (1 + np.exp(-recapture @ beta[k:]))         # occasion 2..5, or sex x occasion
+    p = np.broadcast_to(p, (2, 4))
     total = 0
     for r in rows:
         seen = [t for t in range(5) if r[YEARS[t]] == "1"]
@@ -38,14 +39,14 @@ def minus2(beta, survival, recapture):
             gone += alive * (1 - phi)
             alive *= phi
             if t + 1 in seen:
-                alive, gone = alive * p[t], 0
+                alive, gone = alive * p[SEXES.index(r["sex"]), t], 0
             else:
-                alive *= 1 - p[t]
+                alive *= 1 - p[SEXES.index(r["sex"]), t]
         total -= 2 * int(r["animals"]) * np.log(alive + gone)
     return total
 
 def fit(survival, recapture):
-    d = survival.shape[2] + recapture.shape[1]
+    d = survival.shape[2] + recapture.shape[-1]
     value = lambda b: minus2(b, survival, recapture)
     gradient = lambda b: np.array([value(b + 1e-30j * np.eye(d)[i]).imag / 1e-30 for i in range(d)])
     hessian = lambda b: np.array([(gradient(b + 1e-5 * e) - gradient(b - 1e-5 * e)) / 2e-5 for e in np.eye(d)])
@@ -75,6 +76,9 @@ n = releases()
 constant = fit(np.concatenate([one, sex], 2), constant_p)
 interval = fit(np.concatenate([each, sex], 2), constant_p)
 occasion = fit(np.concatenate([each, sex], 2), each_p)
+# recapture by sex needs a row per sex and occasion
+strata = fit(np.concatenate([each, sex], 2), np.concatenate([one, sex], 2))
+both = fit(np.concatenate([each, sex], 2), np.concatenate([each, sex], 2))
 component = fit(np.concatenate([one, sex, column(components[0])], 2), constant_p)
 bic = lambda m: m["d"] + m["k"] * np.log(n)
 aicc = lambda m: m["d"] + 2 * m["k"] * n / (n - m["k"] - 1)
@@ -120,7 +124,9 @@ write(
     "recapture-parts",
     "recapture,parameters,minus_2_log_l,aicc,in_use",
     [["constant", interval["k"], interval["d"], aicc(interval), "true"],
-     ["each occasion", occasion["k"], occasion["d"], aicc(occasion), "false"]],
+     ["strata", strata["k"], strata["d"], aicc(strata), "false"],
+     ["each occasion", occasion["k"], occasion["d"], aicc(occasion), "false"],
+     ["each occasion and strata", both["k"], both["d"], aicc(both), "false"]],
 )
 logistic = lambda x: float(1 / (1 + np.exp(-x)))
 q = norm.ppf(0.975)
