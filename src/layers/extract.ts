@@ -17,6 +17,7 @@ import { fileKey, type Kept, placeKey, readKept, writeKept } from "./reuse.ts";
 import { type FileValues, seriesOf } from "./series.ts";
 import { findSideFiles } from "./side.ts";
 import { type KnownPlaces, openSource, type Source } from "./source.ts";
+import { turn } from "./turn.ts";
 
 export interface LayerExtraction {
   /** One for each wanted place, in their order; the site is the place's name. */
@@ -89,6 +90,7 @@ export async function extractLayers(
       file.close();
     }
     step.tick();
+    await turn();
   }
   step.done();
   const made = seriesOf(name, options, wanted, read);

@@ -6,6 +6,7 @@ import type { Layer } from "./layer.ts";
 import { type MaskReader, maskReader } from "./mask.ts";
 import type { PixelTest } from "./quality.ts";
 import type { Gathered } from "./readings.ts";
+import { BLOCKS_PER_TURN, turn } from "./turn.ts";
 import { readyFor } from "./unpack.ts";
 import { unpacked, type ValueRule } from "./values.ts";
 
@@ -36,7 +37,8 @@ export async function gather(
     if (layer.mask !== undefined) await readyFor(layer.mask.image.compression);
     const mask = layer.mask === undefined ? undefined : maskReader(maskFile, layer.mask.image);
     const step = samplesPerPixel(image);
-    for (const block of blocks) {
+    for (const [done, block] of blocks.entries()) {
+      if (done % BLOCKS_PER_TURN === BLOCKS_PER_TURN - 1) await turn();
       let pixels: Pixels | undefined;
       for (let i = 0; i < bands.length; i++) {
         const { band, rule } = bands[i];

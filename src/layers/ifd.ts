@@ -75,8 +75,9 @@ export function readChecked(file: RandomAccess, offset: number, length: number, 
  * Reads the directories of a TIFF 6.0 or BigTIFF file of either byte order. Throws `layers.not-tiff` and
  * `layers.broken-file` (truncated, circular or absurd directories), always with the file's name.
  */
-export function readStructure(file: RandomAccess): TiffStructure {
-  if (file.size < 8) throw notTiff(file.path, `${file.size} bytes`);
+export function readStructure(opened: RandomAccess): TiffStructure {
+  if (opened.size < 8) throw notTiff(opened.path, `${opened.size} bytes`);
+  const file = withHead(opened);
   const head = readChecked(file, 0, Math.min(16, file.size), "header");
   const order = String.fromCharCode(head[0], head[1]);
   if (order !== "II" && order !== "MM")
@@ -101,6 +102,18 @@ export function readStructure(file: RandomAccess): TiffStructure {
   }
   if (directories.length === 0) throw brokenFile(file.path, "no image in it");
   return { littleEndian, directories };
+}
+
+/** Bytes from the start that are read at once: headers stand there as a rule, and have a dozen small parts. */
+const HEAD_BYTES = 16384;
+
+function withHead(file: RandomAccess): RandomAccess {
+  const head = file.read(0, Math.min(HEAD_BYTES, file.size));
+  return {
+    ...file,
+    read: (offset, length) =>
+      offset + length <= head.length ? head.subarray(offset, offset + length) : file.read(offset, length),
+  };
 }
 
 function readDirectory(file: RandomAccess, at: number, big: boolean, little: boolean) {

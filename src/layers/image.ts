@@ -163,23 +163,7 @@ export function readBlock(
   blockRow: number,
   band: number,
 ): Samples | undefined {
-  const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
-  if (count === 0) return undefined;
-  const rows = blockRows(image, blockRow);
-  const row = rowBytes(image);
-  const shape: BlockShape = {
-    least: row * rows,
-    most: row * image.blockHeight,
-    columns: image.blockWidth,
-    rows,
-    samples: samplesPerPixel(image),
-    type: image.type,
-    lercAdded: image.lercAdded,
-  };
-  const packed = readChecked(file, offset, count, `block ${index}`);
-  const bytes = unpack(packed, image.compression, shape, image.path).subarray(0, shape.least);
-  if (image.oneBit) return spreadBits(bytes, image.blockWidth * shape.samples, rows);
-  return finish(image, bytes, row, shape.samples);
+  return readRows(file, image, blockColumn, blockRow, band, 0, blockRows(image, blockRow) - 1)?.samples;
 }
 
 /** Pixels of a block from pixel `from` on. */
@@ -190,7 +174,8 @@ export interface Pixels {
 
 /**
  * The pixels `first` to `last` (both included, row-major within the block) at least. Uncompressed samples are read
- * from where they stand, all others with their whole block. The block must be whole in the file either way.
+ * from where they stand; of all others the block is unpacked as far as needed and the predictor undone in the rows
+ * that hold them. The block must be whole in the file either way.
  */
 export function readPixels(
   file: RandomAccess,
@@ -201,8 +186,8 @@ export function readPixels(
   [first, last]: readonly [number, number],
 ): Pixels | undefined {
   if (image.compression !== "none" || image.predictor !== 1 || image.oneBit) {
-    const samples = readBlock(file, image, blockColumn, blockRow, band);
-    return samples === undefined ? undefined : { samples, from: 0 };
+    const rowOf = (pixel: number) => Math.floor(pixel / image.blockWidth);
+    return readRows(file, image, blockColumn, blockRow, band, rowOf(first), rowOf(last));
   }
   const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
   if (count === 0) return undefined;
@@ -217,6 +202,38 @@ export function readPixels(
   // A copy where bytes are turned: the reader may own what it handed out.
   const own = image.littleEndian === HOST_LITTLE ? bytes : new Uint8Array(bytes);
   return { samples: finish(image, own, own.length, samplesPerPixel(image)), from: first };
+}
+
+/** Rows `top` to `bottom` (both included) of a block. Predictors work row by row, so others need not be undone. */
+function readRows(
+  file: RandomAccess,
+  image: Image,
+  blockColumn: number,
+  blockRow: number,
+  band: number,
+  top: number,
+  bottom: number,
+): Pixels | undefined {
+  const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
+  if (count === 0) return undefined;
+  const rows = blockRows(image, blockRow);
+  const row = rowBytes(image);
+  const shape: BlockShape = {
+    need: row * (bottom + 1),
+    least: row * rows,
+    most: row * image.blockHeight,
+    columns: image.blockWidth,
+    rows,
+    samples: samplesPerPixel(image),
+    type: image.type,
+    lercAdded: image.lercAdded,
+  };
+  const packed = readChecked(file, offset, count, `block ${index}`);
+  const bytes = unpack(packed, image.compression, shape, image.path).subarray(row * top, shape.need);
+  const samples = image.oneBit
+    ? spreadBits(bytes, image.blockWidth * shape.samples, bottom - top + 1)
+    : finish(image, bytes, row, shape.samples);
+  return { samples, from: top * image.blockWidth };
 }
 
 function blockPlace(image: Image, blockColumn: number, blockRow: number, band: number) {

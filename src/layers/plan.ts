@@ -9,6 +9,7 @@ import type { LayerOptions } from "./options.ts";
 import { type DatedImage, orderImages } from "./series.ts";
 import { findSideFiles, sideList } from "./side.ts";
 import { checkFit, resolveSystem } from "./system.ts";
+import { turn } from "./turn.ts";
 
 export interface PlannedFile {
   readonly path: string;
@@ -72,6 +73,7 @@ export async function planLayers(name: string, options: LayerOptions, files: Fil
     } finally {
       file.close();
     }
+    await turn();
   }
   const { images, findings } = orderImages(name, dated);
   return { name, files: planned, images, findings: [...found, ...findings], systems: [...systems] };

@@ -2,6 +2,7 @@ import type { Files, RandomAccess } from "../effects/effects.ts";
 import { blockRows, type Image, readBlock, samplesPerPixel } from "./image.ts";
 import type { Layer } from "./layer.ts";
 import { maskReader } from "./mask.ts";
+import { BLOCKS_PER_TURN, turn } from "./turn.ts";
 import { readyFor } from "./unpack.ts";
 import { unpacked, type ValueRule } from "./values.ts";
 
@@ -26,8 +27,10 @@ export async function scanBand(
     const shown = mask === undefined ? () => true : maskReader(maskFile, mask.image);
     const step = samplesPerPixel(image);
     const shift = image.planar ? 0 : band;
+    let done = 0;
     for (let blockRow = 0; blockRow < image.down; blockRow++)
       for (let blockColumn = 0; blockColumn < image.across; blockColumn++) {
+        if (++done % BLOCKS_PER_TURN === 0) await turn();
         const samples = readBlock(file, image, blockColumn, blockRow, band);
         const [left, top] = [blockColumn * image.blockWidth, blockRow * image.blockHeight];
         const rows = Math.min(blockRows(image, blockRow), image.height - top);

@@ -1,11 +1,11 @@
 import { inflateSync } from "node:zlib";
 import Lerc from "lerc";
-import { ZSTDDecoder } from "zstddec";
 import { InputError } from "../errors.ts";
 import { brokenFile } from "./ifd.ts";
 import { unpackLzw } from "./lzw.ts";
 import { unpackPackBits } from "./packbits.ts";
 import { SAMPLE_BYTES, type SampleType } from "./samples.ts";
+import { readyForZstandard, unpackZstandard } from "./zstandard.ts";
 
 export type Compression = "none" | "deflate" | "LZW" | "PackBits" | "Zstandard" | "LERC";
 
@@ -57,15 +57,15 @@ export function compressionOf(number: number, path: string): Compression {
   });
 }
 
-const zstandard = new ZSTDDecoder();
-
 /** What must be loaded before blocks of this compression can be unpacked. */
 export async function readyFor(compression: Compression): Promise<void> {
-  if (compression === "Zstandard" || compression === "LERC") await zstandard.init();
+  if (compression === "Zstandard" || compression === "LERC") await readyForZstandard();
 }
 
 export interface BlockShape {
-  /** Bytes that are needed, and that a block may at most unpack to. */
+  /** Bytes from the first on that are wanted; methods without a checksum stop once they have them. */
+  readonly need: number;
+  /** Bytes that the block must have, and that it may at most unpack to. */
   readonly least: number;
   readonly most: number;
   readonly columns: number;
@@ -77,8 +77,9 @@ export interface BlockShape {
 }
 
 /**
- * Unpacks one block into a buffer of its own. Throws `layers.broken-file` where the packed bytes are corrupt, end
- * early or stand for more than the block can hold; nothing larger than the block is ever allocated.
+ * Unpacks one block, or at least its first `need` bytes, into a buffer of its own. Throws `layers.broken-file` where the
+ * packed bytes are corrupt, end early or stand for more than the block can hold; nothing much larger than the block is
+ * ever allocated. Deflate is always unpacked to its end, since its checksum stands there.
  */
 export function unpack(
   packed: Uint8Array,
@@ -90,9 +91,15 @@ export function unpack(
   if (bound !== undefined && packed.length * bound + 64 < shape.least)
     throw brokenFile(path, `a block of ${packed.length} packed bytes that should hold ${shape.least} bytes`);
   const bytes = unpackAny(packed, compression, shape, path);
-  if (bytes.length < shape.least)
+  const least = stopsEarly(compression) ? shape.need : shape.least;
+  if (bytes.length < least)
     throw brokenFile(path, `a ${compression} block that ends after ${bytes.length} of ${shape.least} bytes`);
   return bytes;
+}
+
+/** Methods without a checksum at their end, of which only what is needed is unpacked. */
+function stopsEarly(compression: Compression): boolean {
+  return compression === "LZW" || compression === "Zstandard" || compression === "PackBits";
 }
 
 function unpackAny(
@@ -108,13 +115,13 @@ function unpackAny(
     case "deflate":
       return inflate(packed, shape, path);
     case "Zstandard":
-      return zstandard.decode(packed, shape.most);
+      return unpackZstandard(packed, shape.need, shape.most, path);
     case "PackBits": {
-      const out = new Uint8Array(shape.most);
+      const out = new Uint8Array(shape.need);
       return out.subarray(0, unpackPackBits(packed, out));
     }
     case "LZW": {
-      const out = new Uint8Array(shape.most);
+      const out = new Uint8Array(shape.need);
       // The first code is 256 in nine bits, so the first byte is 128; old files that begin with 0 and 1 have the
       // bits the other way round (TIFF 6.0 §13 does not allow it).
       if (packed.length > 1 && packed[0] === 0 && (packed[1] & 1) === 1)
@@ -151,7 +158,7 @@ function unpackLerc(packed: Uint8Array, shape: BlockShape, path: string): Uint8A
     shape.lercAdded === 1
       ? inflate(packed, room, path)
       : shape.lercAdded === 2
-        ? zstandard.decode(packed, room.most)
+        ? unpackZstandard(packed, room.most, room.most, path)
         : packed;
   const view = new DataView(blob.buffer, blob.byteOffset, blob.byteLength);
   if (blob.length < 40 || String.fromCharCode(...blob.subarray(0, 6)) !== "Lerc2 ")

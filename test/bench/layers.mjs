@@ -1,90 +1,96 @@
-// CPU time of covey's extraction over the stacks that layers.py has made (see there), after a build:
-//   node test/bench/layers.mjs FOLDER [DIST]
-// Values are compared with those that GDAL gave (values.json). Kept results are off.
-import { createHash } from "node:crypto";
-import { closeSync, fstatSync, openSync, readdirSync, readFileSync, readSync } from "node:fs";
+// CPU time of covey's extraction beside GDAL's Python binding and rasterio, layout by layout: the same files, the same
+// 20 points, one thread, in the same run, turn by turn so that a busy machine is busy for all three. Values are compared
+// bit for bit with GDAL's in every round. Needs Debian's python3-gdal and python3-rasterio. After a build:
+//   node test/bench/layers.mjs [FOLDER] [ROUNDS] [DIST]
+// The stacks are made in FOLDER (default: a temporary one) unless they are there. Kept results are off.
+import { execFileSync, spawn } from "node:child_process";
+import { existsSync, mkdtempSync, readFileSync } from "node:fs";
+import { tmpdir } from "node:os";
 import { join, resolve } from "node:path";
-import { pathToFileURL } from "node:url";
+import { createInterface } from "node:readline";
+import { fileURLToPath, pathToFileURL } from "node:url";
 
-const [folder, dist = "dist"] = process.argv.slice(2);
-const load = (name) => import(pathToFileURL(resolve(dist, "layers", name)).href);
-const { extractLayers } = await load("extract.js");
-const { resolveSystem } = await load("system.js");
+const [folder = mkdtempSync(join(tmpdir(), "layers-")), rounds = "25", dist = "dist"] = process.argv.slice(2);
+const script = fileURLToPath(new URL("layers.py", import.meta.url));
+if (!existsSync(join(folder, "points.json"))) execFileSync("/usr/bin/python3", [script, "make", folder]);
 
-const points = JSON.parse(readFileSync(join(folder, "points.json"), "utf8"));
-const expected = JSON.parse(readFileSync(join(folder, "values.json"), "utf8"));
-const system = resolveSystem({
-  path: "",
-  user: "EPSG:32632",
-  keys: { numbers: new Map(), texts: new Map() },
-});
+const load = (name) => import(pathToFileURL(resolve(dist, name)).href);
+const { extractLayers } = await load("layers/extract.js");
+const { resolveSystem } = await load("layers/system.js");
+const { filesBelow } = await load("pipeline/effects/files.js");
 
+const { layouts, points } = JSON.parse(readFileSync(join(folder, "points.json"), "utf8"));
+const none = { numbers: new Map(), texts: new Map() };
+const system = resolveSystem({ path: "", user: "EPSG:32632", keys: none, wkt: undefined });
+const wanted = points.map(([x, y], i) => ({
+  place: {
+    type: "point",
+    name: `p${i}`,
+    position: system.toLonLat(500000 + 30 * (x + 0.5), 5500000 - 30 * (y + 0.5)),
+  },
+  use: { by: "nearest" },
+}));
+const options = {
+  files: ["*.tif"],
+  date: { name: "x_{yyyy}_{MM}" },
+  covers: "month",
+  unit: "1",
+  kind: "mean",
+};
+
+/** The files as a run has them, but listed and hashed once: those are costs of the run, whatever reads the file. */
 function effectsBelow(root) {
-  const known = new Map();
+  const files = filesBelow(root);
+  const once = (work) => {
+    const known = new Map();
+    return (of) => {
+      const key = JSON.stringify(of);
+      if (!known.has(key)) known.set(key, work(of));
+      return known.get(key);
+    };
+  };
   return {
-    files: {
-      list: async (patterns) => (patterns.length === 1 ? readdirSync(root).sort() : []),
-      readText: async (path) => readFileSync(join(root, path), "utf8"),
-      // Hashing is the run record's cost, paid once whatever reads the file.
-      identity: async (path) => {
-        if (!known.has(path))
-          known.set(
-            path,
-            createHash("sha256")
-              .update(readFileSync(join(root, path)))
-              .digest("hex"),
-          );
-        return { path, bytes: 0, sha256: known.get(path) };
-      },
-      open: (path) => {
-        const fd = openSync(join(root, path), "r");
-        return {
-          path,
-          size: fstatSync(fd).size,
-          read: (offset, length) => {
-            const bytes = new Uint8Array(length);
-            if (readSync(fd, bytes, 0, length, offset) !== length) throw new Error("short read");
-            return bytes;
-          },
-          close: () => closeSync(fd),
-        };
-      },
-    },
+    files: { ...files, list: once(files.list), identity: once(files.identity) },
     progress: { start: () => ({ tick: () => {}, done: () => {} }) },
     reuse: { get: async () => undefined, put: async () => {} },
     checkInterrupted: () => {},
   };
 }
 
-for (const name of Object.keys(expected)) {
-  const effects = effectsBelow(join(folder, name));
-  const wanted = points.map(([x, y], i) => ({
-    place: {
-      type: "point",
-      name: `p${i}`,
-      position: system.toLonLat(500000 + 30 * (x + 0.5), 5500000 - 30 * (y + 0.5)),
-    },
-    use: { by: "nearest" },
-  }));
-  const options = {
-    files: ["*.tif"],
-    date: { name: "x_{yyyy}_{MM}" },
-    covers: "month",
-    unit: "1",
-    kind: "mean",
-  };
-  let best = Number.POSITIVE_INFINITY;
-  let series;
-  for (let i = 0; i < 12; i++) {
-    const before = process.cpuUsage();
-    ({ series } = await extractLayers("x", options, wanted, effects));
-    const { user, system: kernel } = process.cpuUsage(before);
-    best = Math.min(best, (user + kernel) / 1000);
-  }
-  const same = expected[name].every((file, i) =>
-    file.every((value, p) => Object.is(value, series[p].values[i])),
-  );
-  console.log(
-    `${name}  covey ${(best / expected[name].length).toFixed(2)} ms a file; ${same ? "values bit-equal" : "VALUES DIFFER"}`,
-  );
+const python = spawn("/usr/bin/python3", [script, "serve", folder], { stdio: ["pipe", "pipe", "ignore"] });
+const answers = createInterface({ input: python.stdout })[Symbol.asyncIterator]();
+async function ask(reader, layout) {
+  python.stdin.write(`${reader} ${layout}\n`);
+  return JSON.parse((await answers.next()).value);
 }
+
+const median = (values) => values.toSorted((a, b) => a - b)[Math.floor(values.length / 2)];
+const cells = (texts) => console.log(`| ${texts.join(" | ")} |`);
+cells(["layout", "covey", "GDAL", "rasterio", "covey / GDAL", "covey / rasterio", "values"]);
+cells(new Array(7).fill("---"));
+for (const layout of layouts) {
+  const effects = effectsBelow(join(folder, layout));
+  const times = { covey: [], GDAL: [], rasterio: [] };
+  let same = true;
+  const warm = 3;
+  for (let round = 0; round < warm + Number(rounds); round++) {
+    const before = process.cpuUsage();
+    const { series } = await extractLayers("x", options, wanted, effects);
+    const { user, system: kernel } = process.cpuUsage(before);
+    const theirs = await ask("GDAL", layout);
+    const others = await ask("rasterio", layout);
+    const files = theirs.values.length;
+    same &&= theirs.values.every((file, i) =>
+      file.every((value, p) => Object.is(value, series[p].values[i])),
+    );
+    if (round < warm) continue;
+    times.covey.push((user + kernel) / 1000 / files);
+    times.GDAL.push((1000 * theirs.seconds) / files);
+    times.rasterio.push((1000 * others.seconds) / files);
+  }
+  const [covey, gdal, rasterio] = [times.covey, times.GDAL, times.rasterio].map(median);
+  const numbers = [covey, gdal, rasterio, covey / gdal, covey / rasterio].map((one) => one.toFixed(2));
+  cells([layout, ...numbers, same ? "bit-equal" : "DIFFER"]);
+  if (!same) process.exitCode = 1;
+}
+python.stdin.end();
