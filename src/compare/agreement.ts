@@ -13,7 +13,7 @@ export interface SurvivalAgreement {
   readonly r: number;
 }
 
-/** Effects on logit survival per sd of one covariate, three ways. */
+/** Effects on logit survival per sd of one covariate, by selection, by components and by ridge. */
 export interface CarriedEffect {
   readonly name: string;
   /** Shrunken lasso solution at the chosen λ. */
@@ -22,6 +22,8 @@ export interface CarriedEffect {
   readonly refit: number;
   /** Components kept, carried back: β = V γ. */
   readonly components: number;
+  /** All covariates at once, shrunken by ridge. */
+  readonly ridge: number;
 }
 
 export interface Agreement {
@@ -37,6 +39,7 @@ const COMPARED: readonly CandidateKey[] = [
   "chosen by years",
   "components kept",
   "components screened",
+  "ridge",
 ];
 
 /** Whether lasso and components tell the same story: fitted survivals, and effects carried back to covariates. */
@@ -52,6 +55,7 @@ export function agreement(
   );
   const carried = carriedBack(problem, candidates, components);
   const fixed = fixedSurvivalColumns(problem.frame);
+  const ridge = candidates.find((one) => one.key === "ridge");
   const { byAnimals, path, choice } = screened;
   const effects = problem.covariates.map((one, k) => {
     const at = byAnimals.names.indexOf(one.name);
@@ -60,6 +64,7 @@ export function agreement(
       lasso: path.steps[choice.index].coefficients[k],
       refit: at < 0 ? 0 : byAnimals.fit.estimates[fixed + at],
       components: carried === undefined ? Number.NaN : carried[k],
+      ridge: ridge === undefined ? Number.NaN : ridge.fit.estimates[fixed + k],
     };
   });
   const chosen = effects.filter((one) => one.lasso !== 0);

@@ -11,8 +11,9 @@ import { bestSmallSubset } from "../screen/subsets.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
 import { aicc, bic } from "../survival/criteria.ts";
 import { type NamedColumn, occasionIntervals } from "../survival/design.ts";
-import { type Fit, fitModel } from "../survival/fit.ts";
+import { type Fit, fitModel, inverseLogit } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
+import { ridgeChoice, ridgeFit } from "./ridge.ts";
 
 export type CandidateKey =
   | "constant"
@@ -22,6 +23,7 @@ export type CandidateKey =
   | "chosen by animals"
   | "chosen by years"
   | "best small subset"
+  | "ridge"
   | "first component"
   | "components kept"
   | "components screened";
@@ -31,7 +33,7 @@ export interface Candidate {
   readonly key: CandidateKey;
   /** Survival in plain words. */
   readonly words: string;
-  /** True where these survival data chose the terms: then no F and no p of its own may be shown. */
+  /** True where these survival data chose the terms, or how far they are shrunken: then no F and no p of its own may be shown. */
   readonly chosenOnData: boolean;
   readonly fit: Fit;
   readonly deviance: AnalysisOfDeviance;
@@ -91,6 +93,19 @@ export function buildCandidates(
   const nothing = solveNull(problem, cjsLikelihood(problem.data, designWith(problem)));
   const subset = bestSmallSubset(refitsOf(problem, nothing.x), setting, options);
   if (subset !== undefined) add("best small subset", fitOf(subset.set), true);
+  const ridge = ridgeChoice(screened.ridge, options, sampleSize);
+  const full = designWith(problem);
+  const rows = problem.frame.strata.length * problem.frame.intervals;
+  add(
+    "ridge",
+    ridgeFit(
+      ridge,
+      inverseLogit(full.survival.columns, ridge.estimates, rows),
+      constantFit,
+      full.survival.names,
+    ),
+    true,
+  );
   if (components === undefined) return out;
 
   const scores: ScreenProblem = { ...problem, covariates: componentCovariates(components) };

@@ -53,7 +53,7 @@ export async function runStages(
     judged(await screen(posed.problem, posed.recapture, spec.screen, animals, spec.seed, effects)).result;
   const comparison =
     posed && screened && goes("compare")
-      ? compareStage(spec, posed, screened, components, diagnosis)
+      ? await compareStage(spec, posed, screened, components, diagnosis, matrix, effects)
       : undefined;
 
   const study: StudyResult = {

@@ -1,12 +1,14 @@
 import { diagnose } from "../collinearity/diagnose.ts";
 import type { Diagnosis } from "../collinearity/result.ts";
-import { type Comparison, compare } from "../compare/compare.ts";
+import { type Comparison, compare, FOLD_TASK, foldChunks } from "../compare/compare.ts";
+import type { Fold, FoldChunk } from "../compare/fold.ts";
 import { groupsOf, reduceColumns } from "../components/reduce.ts";
 import type { Components } from "../components/result.ts";
 import type { CovariateMatrix } from "../covariates/result.ts";
 import { yearIndex } from "../covariates/time.ts";
 import type { RawFinding } from "../data/finding.ts";
 import { type Matrix, pickColumns } from "../data/matrix.ts";
+import type { Effects } from "../effects/effects.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Spec } from "../spec/spec.ts";
 import { goodnessFindings } from "../survival/goodness-findings.ts";
@@ -74,15 +76,28 @@ export function goodnessStage({ captures }: Ingested): {
 }
 
 /** Selection beside components, on the data and the recapture part of the screen. */
-export function compareStage(
+export async function compareStage(
   spec: Spec,
   posed: Posed,
   screened: ScreenResult,
   components: Components | undefined,
   diagnosis: Diagnosis | undefined,
-): Comparison {
+  matrix: CovariateMatrix,
+  effects: Pick<Effects, "parallel" | "progress">,
+): Promise<Comparison> {
   const names = posed.problem.covariates.map((one) => one.name);
   const kept = diagnosis?.kept ?? names;
   const pruned = names.filter((name) => kept.includes(name));
-  return compare(posed.problem, screened, components, pruned, spec.screen);
+  const chunks = foldChunks(posed.problem, screened, spec.screen, {
+    collinearity: spec.collinearity,
+    components:
+      components === undefined
+        ? undefined
+        : { keep: spec.components.keep, groups: candidateGroups(spec, matrix) },
+    seed: spec.seed,
+  });
+  const step = effects.progress.start("leaving one interval out", chunks.length);
+  const folds = await effects.parallel.map<FoldChunk, readonly Fold[]>(FOLD_TASK, chunks, step);
+  step.done();
+  return compare(posed.problem, screened, components, pruned, spec.screen, folds.flat());
 }

@@ -7,7 +7,7 @@ import {
   loadingsTable,
   scoresTable,
 } from "./collinearity-tables.ts";
-import { agreementTable, comparisonTable, effectsTable } from "./comparison-tables.ts";
+import { agreementTable, comparisonTable, effectsTable, foretoldTables } from "./comparison-tables.ts";
 import { loadingIntervalsTable, simplifiedTables } from "./component-tables.ts";
 import {
   dictionaryTable,
@@ -72,7 +72,12 @@ export function allTables(study: StudyResult): readonly Table[] {
         ]
       : []),
     ...(comparison
-      ? [comparisonTable(comparison), effectsTable(comparison), agreementTable(comparison)]
+      ? [
+          comparisonTable(comparison),
+          effectsTable(comparison),
+          agreementTable(comparison),
+          ...foretoldTables(comparison, study.matrix.rows),
+        ]
       : []),
     findingsTable(study),
   ];

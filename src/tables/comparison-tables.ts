@@ -12,7 +12,7 @@ export function comparisonTable(comparison: Comparison): Table {
       text("candidate", "candidate", "how survival is modelled"),
       text("survival", "survival", "its terms in words"),
       truth("chosen_on_data", "chosen on these data", "its terms were chosen on these data"),
-      whole("parameters", "parameters", "1", "parameters the data determine"),
+      number("parameters", "parameters", "1", "parameters the data determine; effective ones for ridge"),
       number("minus_2_log_l", "−2 log L", "1", "without the multinomial constant"),
       number("aicc", "AICc", "1", "counts animals"),
       number("bic", "BIC", "1", "counts animals"),
@@ -22,8 +22,22 @@ export function comparisonTable(comparison: Comparison): Table {
       whole("df_1", "df", "1", "degrees of freedom of the terms"),
       whole("df_2", "df left", "1", "intervals left"),
       number("p", "p", "1", "empty for terms chosen on these data"),
+      number(
+        "foretold",
+        "foretold",
+        "1",
+        "share of what the constant model misses of left-out intervals that this one foretells",
+      ),
+      number(
+        "log_score_gain",
+        "log score gain",
+        "1",
+        "over the constant model, summed over left-out intervals",
+      ),
+      number("log_score_gain_se", "its standard error", "1", "root n times the sd over intervals"),
     ],
     rows: comparison.candidates.map((one) => {
+      const left = comparison.prediction?.candidates.find((other) => other.key === one.key);
       const test = !one.chosenOnData && one.deviance.df1 > 0 && one.deviance.df2 > 0;
       return [
         one.key,
@@ -39,6 +53,9 @@ export function comparisonTable(comparison: Comparison): Table {
         test ? one.deviance.df1 : undefined,
         test ? one.deviance.df2 : undefined,
         test ? one.deviance.p : undefined,
+        left?.share,
+        left?.gain,
+        left?.gainError,
       ];
     }),
   };
@@ -59,8 +76,15 @@ export function effectsTable(comparison: Comparison): Table {
         "logit per sd",
         "effects of the components kept, as effects of covariates",
       ),
+      number("ridge", "ridge", "logit per sd", "all covariates at once, shrunken"),
     ],
-    rows: comparison.agreement.effects.map((one) => [one.name, one.lasso, one.refit, one.components]),
+    rows: comparison.agreement.effects.map((one) => [
+      one.name,
+      one.lasso,
+      one.refit,
+      one.components,
+      one.ridge,
+    ]),
   };
 }
 
@@ -77,4 +101,40 @@ export function agreementTable(comparison: Comparison): Table {
     ],
     rows: comparison.agreement.survival.map((one) => [one.a, one.b, one.r]),
   };
+}
+
+/** Each left-out interval as each candidate foretold it; nothing where no interval was left out. */
+export function foretoldTables(comparison: Comparison, intervals: readonly string[]): readonly Table[] {
+  const { prediction } = comparison;
+  if (prediction === undefined) return [];
+  return [
+    {
+      name: "left-out-intervals",
+      title: "Intervals left out one at a time",
+      description:
+        "Logit of apparent annual survival by the interval's own captures beside what each candidate, made again without that interval, foretold.",
+      columns: [
+        text("candidate", "candidate", "how survival is modelled"),
+        text("interval", "interval left out", "name of the interval"),
+        number("logit", "logit survival", "1", "from its own captures, first stratum"),
+        number("logit_se", "its standard error", "1", "sampling only"),
+        number("foretold", "foretold", "1", "prediction on the logit scale"),
+        number("between_sd", "sd between years", "1", "unexplained, from the other intervals"),
+        number("log_score", "log score", "1", "log density at the prediction"),
+        text("terms", "terms", "what was chosen without this interval"),
+      ],
+      rows: prediction.candidates.flatMap((one) =>
+        one.rows.map((row, i) => [
+          one.key,
+          intervals[row.interval],
+          row.logit,
+          Math.sqrt(row.variance),
+          row.predicted,
+          Math.sqrt(row.between),
+          one.scores[i],
+          row.terms.join(", "),
+        ]),
+      ),
+    },
+  ];
 }

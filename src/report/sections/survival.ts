@@ -5,6 +5,7 @@ import { type Html, html, type Piece } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { predictionBlock } from "./prediction.ts";
 
 const NAMES: Readonly<Record<CandidateKey, string>> = {
   constant: "one survival for all intervals",
@@ -13,6 +14,7 @@ const NAMES: Readonly<Record<CandidateKey, string>> = {
   "pruned covariates": "covariates left after pruning",
   "chosen by animals": "chosen by the lasso, counting animals",
   "best small subset": "best of all small subsets, by animals",
+  ridge: "all covariates, shrunken by ridge",
   "chosen by years": "chosen from the path, counting years",
   "first component": "first component",
   "components kept": "components kept",
@@ -59,7 +61,7 @@ ${grid(
     best: one.key === "chosen by years",
     cells: [
       html`${NAMES[one.key]}${termWords(one)}`,
-      String(one.fit.parameters),
+      brief(one.fit.parameters),
       show(one.fit.minus2LogL),
       show(one.aicc),
       show(one.aicc - aicc),
@@ -70,7 +72,7 @@ ${grid(
     ],
   })),
 )}
-<p>F and p stand only where the terms were fixed before survival was looked at. What was chosen on these data is tested by the permutation of years alone, in the section on the screen.</p>`,
+<p>F and p stand only where the terms were fixed before survival was looked at. What was chosen on these data is tested by the permutation of years alone, in the section on the screen.</p>${predictionBlock(input, cast, NAMES)}`,
   };
 }
 
@@ -97,6 +99,7 @@ export function agreementSection(input: ReportInput, cast: Cast, figures: readon
   return {
     ...head,
     body: html`<p>${verdict.agreement}</p>
+<h3>In one paragraph</h3><p>Made from the numbers of this page; to be pasted and defended, and no stronger than they are.</p><blockquote id="paragraph"><p>${input.comparison.paragraph}</p></blockquote>
 ${
   agreement.survival.length > 0 &&
   grid(
@@ -115,16 +118,23 @@ ${
 ${figureBlock(figures, "effects")}
 ${grid(
   cast,
-  "Effects three ways",
+  "Effects by selection, by components and by ridge",
   [
     { text: "covariate" },
     { text: "lasso", unit: "per sd", look: "n" },
     { text: "refit of its selection", unit: "per sd", look: "n" },
     { text: "components carried back", unit: "per sd", look: "n" },
+    { text: "ridge", unit: "per sd", look: "n" },
   ],
   agreement.effects.map((one) => ({
     covariate: one.name,
-    cells: [covariateName(cast, one.name), brief(one.lasso), brief(one.refit), show(one.components)],
+    cells: [
+      covariateName(cast, one.name),
+      brief(one.lasso),
+      brief(one.refit),
+      show(one.components),
+      show(one.ridge),
+    ],
   })),
 )}
 <p>Of ${agreement.chosen === 1 ? "the 1 covariate" : `the ${agreement.chosen} covariates`} the lasso chose (${covariateList(

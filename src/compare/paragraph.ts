@@ -1,0 +1,143 @@
+import { listWords } from "../data/words.ts";
+import { sampleSd } from "../math/quantile.ts";
+import type { ScreenResult } from "../screen/screen.ts";
+import type { Agreement } from "./agreement.ts";
+import type { Candidate, CandidateKey } from "./candidates.ts";
+import type { CandidatePrediction, Prediction } from "./prediction.ts";
+import type { Verdict } from "./verdict.ts";
+import { percentWords } from "./words.ts";
+
+/** A difference counts as clear where it is more than twice its standard error (common practice, no source). */
+const CLEAR = 2;
+
+/**
+ * One paragraph that a scientist can paste and defend: what was asked of how many intervals and candidates, what stands
+ * (the verdict's own sentence, with its grade), what selection and components account for on the same data, how both
+ * foretell intervals they have not seen, whether they agree, and what none of it can show. Every clause comes from a
+ * number; where the evidence is none or untested the paragraph says so before anything else is told.
+ */
+export function paragraph(
+  screened: ScreenResult,
+  candidates: readonly Candidate[],
+  agreed: Agreement,
+  verdict: Verdict,
+  prediction: Prediction | undefined,
+): string {
+  return [
+    askedWords(screened),
+    verdict.headline,
+    weakWords(verdict),
+    accountedWords(screened, candidates),
+    predictionWords(prediction),
+    verdict.agreement,
+    agreed.survival.length === 0 ? "" : sharedWords(verdict),
+    "Apparent survival counts death and permanent emigration together, and an association over these years is not a cause.",
+  ]
+    .filter((one) => one !== "")
+    .join(" ");
+}
+
+function askedWords({ names, releases, constantFit }: ScreenResult): string {
+  const many = names.length === 1 ? "1 candidate covariate" : `${names.length} candidate covariates`;
+  return `Apparent annual survival (${releases} releases; recapture ${constantFit.recaptureWords}) was set against ${many}.`;
+}
+
+/** What the numbers that follow must not be taken for. */
+function weakWords({ grade }: Verdict): string {
+  if (grade === "none") return "What follows describes these data and is no evidence of an effect.";
+  if (grade === "not tested") return "What follows describes these data; nothing was tested.";
+  if (grade === "faint") return "This is weak evidence, and what follows should be read in that light.";
+  return "";
+}
+
+function accountedWords({ permutation }: ScreenResult, candidates: readonly Candidate[]): string {
+  const by = new Map(candidates.map((one) => [one.key, one]));
+  const [years, kept, first] = [
+    by.get("chosen by years"),
+    by.get("components kept"),
+    by.get("first component"),
+  ];
+  const parts: string[] = [];
+  if (years !== undefined && years.deviance.df1 > 0) {
+    const chance =
+      permutation === undefined
+        ? ""
+        : `; with years permuted the same procedure chooses something in ${percentWords(permutation.falseByYears)} of runs`;
+    parts.push(
+      `the selection accounts for ${percentWords(years.deviance.share)}, which choosing on the same data flatters${chance}`,
+    );
+  }
+  if (kept !== undefined) {
+    const many = kept.deviance.df1 === 1 ? "the component kept" : `the ${kept.deviance.df1} components kept`;
+    const verb = kept.deviance.df1 === 1 ? "accounts" : "account";
+    parts.push(
+      `${many}, fixed without a look at survival, ${verb} for ${percentWords(kept.deviance.share)} (${testWords(kept)})`,
+    );
+  }
+  if (first !== undefined && kept !== undefined && kept.deviance.df1 > 1)
+    parts.push(
+      `the first component alone accounts for ${percentWords(first.deviance.share)} (${testWords(first)})`,
+    );
+  return parts.length === 0 ? "" : `Of the deviance between years on the same captures, ${parts.join("; ")}.`;
+}
+
+function testWords({ deviance: { f, df1, df2, p } }: Candidate): string {
+  if (Number.isNaN(p)) return "too few intervals for a test";
+  return `F(${df1}, ${df2}) = ${f.toPrecision(3)}, p ${p < 0.001 ? "< 0.001" : p.toPrecision(2)}`;
+}
+
+/** Names of the ways that are set against each other, as a sentence has them. */
+const SAID: Readonly<Partial<Record<CandidateKey, string>>> = {
+  "chosen by years": "selection counting years",
+  "components kept": "the set of components kept",
+  ridge: "ridge on all covariates",
+};
+
+function predictionWords(prediction: Prediction | undefined): string {
+  if (prediction === undefined) return "";
+  const of = (key: CandidateKey) => prediction.candidates.find((one) => one.key === key);
+  const told = (["chosen by years", "components kept", "ridge"] as const).flatMap((key) => of(key) ?? []);
+  if (told.length === 0) return "";
+  const shares = told.map((one) => `${SAID[one.key]} ${shareWords(one)}`);
+  const [years, kept] = [of("chosen by years"), of("components kept")];
+  const against =
+    years === undefined || kept === undefined || Math.max(years.share, kept.share) <= 0
+      ? ""
+      : ` ${againstWords(years, kept, prediction.intervals)}`;
+  return `Each interval was also left out in turn and everything done again without it; of what one common survival misses in the intervals left out, ${listWords(shares)}.${against}`;
+}
+
+/** What a candidate foretells, and whether that is more than a constant survival does. */
+function shareWords({ share, gain, gainError }: CandidatePrediction): string {
+  if (share <= 0) return "foretells nothing";
+  const clear = gain > CLEAR * gainError ? "clearly more than none" : "not clearly more than none";
+  return `foretells ${percentWords(share)} (log score ${gain < 0 ? "−" : "+"}${Math.abs(gain).toFixed(1)}, standard error ${gainError.toFixed(1)}: ${clear})`;
+}
+
+function againstWords(years: CandidatePrediction, kept: CandidatePrediction, n: number): string {
+  const { difference, error } = scoreDifference(years, kept);
+  const numbers = `difference in log score ${Math.abs(difference).toFixed(1)}, standard error ${error.toFixed(1)}, ${n} intervals`;
+  if (!(Math.abs(difference) > CLEAR * error))
+    return `Neither clearly foretells better than the other (${numbers}).`;
+  return difference > 0
+    ? `Selection foretells better than components (${numbers}).`
+    : `Components foretell better than selection (${numbers}).`;
+}
+
+/** Sum over intervals of the difference in log score, a above b, and its standard error √n·sd. */
+export function scoreDifference(
+  a: CandidatePrediction,
+  b: CandidatePrediction,
+): { readonly difference: number; readonly error: number } {
+  const each = a.scores.map((value, i) => value - b.scores[i]);
+  return {
+    difference: each.reduce((sum, value) => sum + value, 0),
+    error: Math.sqrt(each.length) * sampleSd(each),
+  };
+}
+
+function sharedWords({ grade }: Verdict): string {
+  return grade === "firm" || grade === "fair"
+    ? "Covariates that rise and fall together stay exchangeable, whichever of them was chosen."
+    : "";
+}

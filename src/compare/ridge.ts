@@ -1,0 +1,46 @@
+import type { ScreenOptions } from "../screen/options.ts";
+import type { RidgePath, RidgeStep } from "../screen/ridge-path.ts";
+import { aicc, bic } from "../survival/criteria.ts";
+import type { Fit } from "../survival/fit.ts";
+
+/**
+ * The ridge solution that the criterion of the whole comparison chooses, counting effective parameters, so that ridge
+ * stands on the same terms as the lasso. Ties go to the stronger penalty, which comes first.
+ */
+export function ridgeChoice(
+  { steps }: Pick<RidgePath, "steps">,
+  options: Pick<ScreenOptions, "chooseBy">,
+  sampleSize: number,
+): RidgeStep {
+  const value = (step: RidgeStep) =>
+    (options.chooseBy === "BIC" ? bic : aicc)(step.minus2LogL, step.effective, sampleSize);
+  return steps.reduce((best, step) => (value(step) < value(best) - 1e-9 ? step : best));
+}
+
+/** The ridge solution as a fit beside the others: no standard errors, since shrinking biases every effect. */
+export function ridgeFit(step: RidgeStep, survival: Float64Array, like: Fit, names: readonly string[]): Fit {
+  const d = step.estimates.length;
+  return {
+    survivalWords: "all covariates, shrunken",
+    recaptureWords: like.recaptureWords,
+    names,
+    estimates: step.estimates,
+    se: new Float64Array(d).fill(Number.NaN),
+    covariance: { rows: d, columns: d, data: new Float64Array(d * d).fill(Number.NaN) },
+    minus2LogL: step.minus2LogL,
+    parameters: step.effective,
+    condition: Number.NaN,
+    atBound: [],
+    notSeparable: [],
+    survival: like.survival.map((one, r) => ({
+      ...one,
+      value: survival[r],
+      se: Number.NaN,
+      low: Number.NaN,
+      high: Number.NaN,
+    })),
+    recapture: [],
+    largestGradient: step.largestGradient,
+    stopped: "optimum",
+  };
+}
