@@ -1,6 +1,6 @@
 import type { Components } from "../components/result.ts";
 import type { ScreenOptions } from "../screen/options.ts";
-import type { ScreenProblem } from "../screen/problem.ts";
+import { oneValuePerInterval, type ScreenProblem } from "../screen/problem.ts";
 import type { ProcedureSetting } from "../screen/procedure.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import { twoStep } from "../survival/two-step.ts";
@@ -52,7 +52,7 @@ export function compare(
 
 /**
  * The folds of the prediction, one interval each, ready to be shared out to workers under `FOLD_TASK`; none where there are
- * too few intervals, no candidates, or recapture is known (no interval then has captures that inform the others).
+ * too few intervals or no candidates, or where an interval has more than one survival (time since marking, split years).
  */
 export function foldChunks(
   problem: ScreenProblem,
@@ -61,7 +61,8 @@ export function foldChunks(
   rules: FoldRules,
 ): readonly FoldChunk[] {
   const { intervals } = problem.frame;
-  if (intervals < LEAST_INTERVALS || problem.covariates.length === 0) return [];
+  if (intervals < LEAST_INTERVALS || problem.covariates.length === 0 || !oneValuePerInterval(problem))
+    return [];
   const { intervalFit, constantFit, sampleSize } = screened;
   const setting: ProcedureSetting = {
     intervals,

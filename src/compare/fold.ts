@@ -231,10 +231,11 @@ function logitsOf(
 ): Float64Array {
   const { frame, covariates } = problem;
   const forced = frame.forced.slice(0, -1);
+  const first = fixedSurvivalColumns(frame) - frame.forced.length;
   return Float64Array.from({ length: frame.intervals }, (_, u) => {
     let eta = estimates[0];
     forced.forEach((one, f) => {
-      eta += estimates[frame.strata.length + f] * one.values[u];
+      eta += estimates[first + f] * one.values[u];
     });
     for (let k = 0; k < beta.length; k++) eta += beta[k] * (u === t ? row[k] : covariates[k].values[u]);
     return eta;
