@@ -48,6 +48,9 @@ export const FINDING_KINDS = [
   "layer-methods",
   "layer-quality",
   "few-fixes",
+  "accumulated",
+  "part-day",
+  "moved",
 ] as const;
 
 export type FindingKind = (typeof FINDING_KINDS)[number];

@@ -39,7 +39,7 @@ export interface TableLook {
  */
 export async function lookTable(path: string, files: Files): Promise<TableLook> {
   const { table, facts } = await withDatabase(async (database) => {
-    const table = await loadTable(database, files, path, [], [], undefined);
+    const table = await loadTable(database, files, path, { texts: [], numbers: [] });
     return { table, facts: await columnFacts(database, table) };
   });
   const { roles, kind } = guessRoles(facts, table.rows);

@@ -43,7 +43,7 @@ function seriesProblems(spec: Spec): Problem[] {
   const kinds = new Map<string, string>();
   return spec.records.flatMap((record, i) => {
     const variables =
-      record.layout === "wide"
+      record.layout !== "long"
         ? [
             {
               path: ["records", i, "variable"],
@@ -81,7 +81,7 @@ function seriesProblems(spec: Spec): Problem[] {
 function infillProblems(spec: Spec): Problem[] {
   const kinds = new Map<string, string>();
   for (const record of spec.records) {
-    if (record.layout === "wide") kinds.set(record.variable, record.kind);
+    if (record.layout !== "long") kinds.set(record.variable, record.kind);
     else for (const [name, { kind }] of Object.entries(record.series)) kinds.set(name, kind);
   }
   return spec.covariates.flatMap((one, i): Problem[] => {

@@ -16,6 +16,7 @@ const STATED: Readonly<Partial<Record<FindingKind, Severity>>> = {
   "place-outside": "stop",
   "constant-column": "stop",
   "definition-differs": "stop",
+  moved: "stop",
 };
 
 /** The severity of each kind of finding where the pipeline file says nothing; `warn` unless stated above. */

@@ -1,33 +1,55 @@
 import { isoDay } from "../data/day.ts";
 import type { Series } from "../data/series.ts";
 import { InputError } from "../errors.ts";
-import { type Block, countText, type DraftFinding, NO_DAY, type RowRef, type Source } from "./block.ts";
-import type { DateColumn, DuplicateRule } from "./options.ts";
+import { settleAccumulated } from "./accumulated.ts";
+import {
+  type Block,
+  type Cover,
+  countText,
+  type DraftFinding,
+  NO_DAY,
+  placeOf,
+  type RowRef,
+  type Source,
+} from "./block.ts";
+import type { DuplicateRule } from "./options.ts";
 import { convertUnit } from "./units.ts";
 
 /** A series with the row that each of its values came from. */
 export interface TracedSeries {
   readonly series: Series;
-  readonly covers: DateColumn["covers"];
+  readonly covers: Cover;
   readonly refs: readonly RefRun[];
   /** Per value: index into all rows of the variable's blocks. */
-  readonly rows: Uint32Array;
+  readonly rows: RowIndex;
+}
+
+/** Row numbers one by one, or the first of rows that follow one another. */
+export type RowIndex = Uint32Array | number;
+
+export function rowAt(rows: RowIndex, i: number): number {
+  return typeof rows === "number" ? rows + i : rows[i];
 }
 
 interface RefRun {
   readonly first: number;
-  readonly source: number;
+  readonly block: Block;
 }
 
 /** The file and row of value i. */
 export function refOf(traced: TracedSeries, i: number): RowRef {
-  return locate(traced.rows[i], traced.refs);
+  return locate(rowAt(traced.rows, i), traced.refs);
+}
+
+function runOf(row: number, refs: readonly RefRun[]): RefRun {
+  let run = refs[0];
+  for (const one of refs) if (one.first <= row) run = one;
+  return run;
 }
 
 function locate(row: number, refs: readonly RefRun[]): RowRef {
-  let run = refs[0];
-  for (const one of refs) if (one.first <= row) run = one;
-  return { source: run.source, row: row - run.first };
+  const { block, first } = runOf(row, refs);
+  return placeOf(block, row - first);
 }
 
 /**
@@ -55,7 +77,7 @@ export function assembleVariable(
   const refs: RefRun[] = [];
   let first = 0;
   for (const block of blocks) {
-    refs.push({ first, source: block.source });
+    refs.push({ first, block });
     first += block.starts.length;
   }
   const findings: DraftFinding[] = [];
@@ -63,7 +85,9 @@ export function assembleVariable(
     const sorted = sortRows(rows);
     const merged = mergeRepeats(sorted, rule, variable, refs, sources);
     findings.push(...merged.findings);
-    const kept = merged.rows;
+    const settled = settle(merged.rows, variable, refs);
+    findings.push(...settled.findings);
+    const kept = settled.rows;
     const files = rows.sources.map((source) => sources[source].file).sort((a, b) => (a < b ? -1 : 1));
     const series: Series = {
       site: rows.site,
@@ -86,64 +110,120 @@ export function assembleVariable(
   return { traced, findings };
 }
 
+/** Totals of several days are treated as their block says. */
+function settle(rows: StationRows, variable: string, refs: readonly RefRun[]) {
+  if (refs.every(({ block }) => block.accumulated === undefined)) return { rows, findings: [] };
+  const settled = settleAccumulated(rows, variable, (row) => {
+    const { block, first } = runOf(row, refs);
+    const { marks, rule } = block.accumulated ?? {};
+    return marks === undefined || marks[row - first] === 0 ? undefined : rule;
+  });
+  return {
+    rows: { ...rows, ...settled.rows },
+    findings: settled.findings.map(({ row, ...one }): DraftFinding => ({ ...one, at: locate(row, refs) })),
+  };
+}
+
 interface StationRows {
   readonly site: string;
   readonly starts: Int32Array;
   readonly ends: Int32Array;
   readonly values: Float64Array;
-  readonly rows: Uint32Array;
+  readonly rows: RowIndex;
   /** Files that the rows came from, in the order read. */
   readonly sources: readonly number[];
 }
 
 /**
  * Rows of each station in order of file and row, stations by code unit; two passes: count, then place. Rows of one station
- * follow one another in most files, so whole runs are copied.
+ * follow one another in most files: where all of them do, they are looked at where they are, and not copied.
  */
 function gather(blocks: readonly Block[], unit: string): StationRows[] {
-  const counts = new Map<string, number>();
+  const counts = new Map<string, { rows: number; runs: number }>();
   for (const block of blocks) {
-    const perCode = new Float64Array(block.stations.ids.length);
+    const { ids } = block.stations;
+    const [perCode, runs] = [new Float64Array(ids.length), new Float64Array(ids.length)];
     forRuns(block, (code, from, to) => {
       perCode[code] += to - from;
+      runs[code]++;
     });
-    for (const [code, n] of perCode.entries())
-      if (n > 0) counts.set(block.stations.ids[code], (counts.get(block.stations.ids[code]) ?? 0) + n);
+    for (const [code, n] of perCode.entries()) {
+      if (n === 0) continue;
+      const before = counts.get(ids[code]) ?? { rows: 0, runs: 0 };
+      counts.set(ids[code], { rows: before.rows + n, runs: before.runs + runs[code] });
+    }
   }
   counts.delete("");
-  const into = new Map<string, StationRows & { at: number; readonly sources: number[] }>();
+  const into = new Map<string, Gathered>();
   for (const site of [...counts.keys()].sort((a, b) => (a < b ? -1 : 1))) {
-    const n = counts.get(site) ?? 0;
-    const columns = { starts: new Int32Array(n), ends: new Int32Array(n), values: new Float64Array(n) };
-    into.set(site, { site, ...columns, rows: new Uint32Array(n), sources: [], at: 0 });
+    const { rows, runs } = counts.get(site) ?? { rows: 0, runs: 0 };
+    into.set(site, { site, n: rows, whole: runs === 1, at: 0, rows: undefined, sources: [] });
   }
   let first = 0;
   for (const block of blocks) {
     const targets = block.stations.ids.map((id) => into.get(id));
     const values = scaled(block, unit);
-    const { starts, ends, source } = block;
     forRuns(block, (code, from, to) => {
       const target = targets[code];
       if (target === undefined) return;
-      const { at, rows } = target;
-      // Short runs are copied by hand: a view costs more than a few numbers.
-      if (to - from > 32) {
-        target.starts.set(starts.subarray(from, to), at);
-        target.ends.set(ends.subarray(from, to), at);
-        target.values.set(values.subarray(from, to), at);
-      } else
-        for (let i = from; i < to; i++) {
-          target.starts[at + i - from] = starts[i];
-          target.ends[at + i - from] = ends[i];
-          target.values[at + i - from] = values[i];
-        }
-      for (let i = from; i < to; i++) rows[at + i - from] = first + i;
-      target.at += to - from;
-      if (target.sources.at(-1) !== source) target.sources.push(source);
+      place(target, block, values, from, to, first);
+      if (block.places !== undefined)
+        target.sources.push(...new Set(block.places.sources.subarray(from, to)));
+      else if (target.sources.at(-1) !== block.source) target.sources.push(block.source);
     });
-    first += starts.length;
+    first += block.starts.length;
   }
-  return [...into.values()];
+  return [...into.values()].map(({ site, rows, sources }) => {
+    if (rows === undefined) throw new Error(`the rows of ${site} were counted and are gone`);
+    return { site, ...rows, sources };
+  });
+}
+
+interface Gathered {
+  readonly site: string;
+  readonly n: number;
+  /** All rows follow one another in one block. */
+  readonly whole: boolean;
+  at: number;
+  rows: Pick<StationRows, "starts" | "ends" | "values" | "rows"> | undefined;
+  readonly sources: number[];
+}
+
+/** Puts the rows [from, to) of a block behind those that the station has already. */
+function place(
+  target: Gathered,
+  { starts, ends }: Block,
+  values: Float64Array,
+  from: number,
+  to: number,
+  first: number,
+): void {
+  const { n, at } = target;
+  if (target.whole) {
+    const part = { starts: starts.subarray(from, to), ends: ends.subarray(from, to) };
+    target.rows = { ...part, values: values.subarray(from, to), rows: first + from };
+    return;
+  }
+  target.rows ??= {
+    starts: new Int32Array(n),
+    ends: new Int32Array(n),
+    values: new Float64Array(n),
+    rows: new Uint32Array(n),
+  };
+  const { rows } = target;
+  // Short runs are copied by hand: a view costs more than a few numbers.
+  if (to - from > 32) {
+    rows.starts.set(starts.subarray(from, to), at);
+    rows.ends.set(ends.subarray(from, to), at);
+    rows.values.set(values.subarray(from, to), at);
+  } else
+    for (let i = from; i < to; i++) {
+      rows.starts[at + i - from] = starts[i];
+      rows.ends[at + i - from] = ends[i];
+      rows.values[at + i - from] = values[i];
+    }
+  if (typeof rows.rows !== "number") for (let i = from; i < to; i++) rows.rows[at + i - from] = first + i;
+  target.at += to - from;
 }
 
 /** Runs of rows [from, to) that have a date and one station. */
@@ -192,7 +272,7 @@ function sortRows(rows: StationRows): StationRows {
     starts: Int32Array.from(order, (i) => rows.starts[i]),
     ends: Int32Array.from(order, (i) => rows.ends[i]),
     values: Float64Array.from(order, (i) => rows.values[i]),
-    rows: Uint32Array.from(order, (i) => rows.rows[i]),
+    rows: Uint32Array.from(order, (i) => rowAt(rows.rows, i)),
     sources: rows.sources,
   };
 }
@@ -227,7 +307,7 @@ function mergeRepeats(
     let value = rows.values[stands];
     if (j - i > 1) {
       const contradicts = finite.some((k) => rows.values[k] !== value);
-      const places = Array.from({ length: j - i }, (_, k) => locate(rows.rows[i + k], refs).source);
+      const places = Array.from({ length: j - i }, (_, k) => locate(rowAt(rows.rows, i + k), refs).source);
       const exception = rule.except.find((one) => places.some((source) => sources[source].file === one.file));
       const how = exception?.keep ?? rule.keep;
       const shown = finite.map((k) => rows.values[k]).join(" and ");
@@ -256,7 +336,7 @@ function mergeRepeats(
       starts: Int32Array.from(keep, (i) => starts[i]),
       ends: Int32Array.from(keep, (i) => ends[i]),
       values: Float64Array.from(values),
-      rows: Uint32Array.from(keep, (i) => rows.rows[i]),
+      rows: Uint32Array.from(keep, (i) => rowAt(rows.rows, i)),
       sources: rows.sources,
     },
     findings: [...tallies].map(([sort, tally]) => duplicateFinding(sort, tally, variable, rows, refs)),
@@ -274,7 +354,7 @@ function duplicateFinding(
   const times = `${countText(tally.count, "period")} of ${subject} ${tally.count === 1 ? "stands" : "stand"} in more than one row`;
   const shared = {
     subject,
-    at: locate(rows.rows[tally.firstAt], refs),
+    at: locate(rowAt(rows.rows, tally.firstAt), refs),
     value: tally.example,
     count: tally.count,
   };

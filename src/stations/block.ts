@@ -1,9 +1,12 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { ValueKind } from "../data/series.ts";
-import type { DateColumn } from "./options.ts";
+import type { AccumulatedRule, DateColumn, WithinDay } from "./options.ts";
 
 /** A row without a real date; it takes part in nothing. */
 export const NO_DAY = -2_147_483_648;
+
+/** What a value stands for, once readings within the day have become days. */
+export type Cover = Exclude<DateColumn["covers"], "reading">;
 
 /** What one column of one file holds of one variable; row i of every array is row i of the file. */
 export interface Block {
@@ -15,7 +18,7 @@ export interface Block {
   readonly kind: ValueKind;
   readonly unit: string;
   readonly scale: number;
-  readonly covers: DateColumn["covers"];
+  readonly covers: Cover;
   /** The user's own least and greatest possible value, in `unit`. */
   readonly limits?: readonly [number, number];
   readonly stations: StationColumn;
@@ -23,6 +26,17 @@ export interface Block {
   readonly ends: Int32Array;
   /** As written, before scale; NaN where missing. */
   readonly raw: Float64Array;
+  /** Readings within the day, not made into days yet: minutes since 1970 of every row, shifted as `rule` says. */
+  readonly readings?: { readonly minutes: Float64Array; readonly rule: WithinDay; readonly offset: number };
+  /** 1 for a total of all days since the last value, and what becomes of it. */
+  readonly accumulated?: { readonly marks: Uint8Array; readonly rule: AccumulatedRule };
+  /** Where row i came from, if the rows are no longer those of one file. */
+  readonly places?: { readonly sources: Int32Array; readonly rows: Int32Array };
+}
+
+/** The file and row that row i of a block came from. */
+export function placeOf({ source, places }: Block, row: number): RowRef {
+  return places === undefined ? { source, row } : { source: places.sources[row], row: places.rows[row] };
 }
 
 /** Ids by code; one code for all rows where the whole column is one station's. */

@@ -1,5 +1,6 @@
 import iconv from "iconv-lite";
 import { InputError } from "../errors.ts";
+import type { TableOptions } from "./options.ts";
 
 export type Encoding = "utf-8" | "utf-16le" | "utf-16be" | "windows-1252";
 
@@ -16,9 +17,14 @@ export interface Dialect {
   readonly skip: number;
   /** The cells of a row of units beneath the header, if there is one. */
   readonly units: readonly string[] | undefined;
+  /** What lines of comment begin with, if there are such lines below the header. */
+  readonly comment: string | undefined;
 }
 
 const DELIMITERS = [",", ";", "\t", "|"] as const;
+/** Cells parted by any number of blanks. */
+export const BLANKS = " ";
+const NAMED = { comma: ",", semicolon: ";", tab: "\t", bar: "|", blanks: BLANKS } as const;
 const NUMBER = /^[-+]?(\d+([.,]\d*)?|[.,]\d+)([eE][-+]?\d+)?$/;
 
 /**
@@ -43,8 +49,9 @@ export function decodeText(bytes: Uint8Array, encoding: Encoding): string {
   return iconv.decode(bytes, encoding);
 }
 
-/** The cells of one line; quotes as in RFC 4180, blanks around cells taken off. */
+/** The cells of one line; quotes as in RFC 4180, blanks around cells taken off. Blanks as delimiter know no quotes. */
 export function splitLine(line: string, delimiter: string): string[] {
+  if (delimiter === BLANKS) return line.trim().split(/\s+/);
   const cells: string[] = [];
   let [cell, quoted] = ["", false];
   for (let i = 0; i < line.length; i++) {
@@ -70,6 +77,7 @@ export function splitLine(line: string, delimiter: string): string[] {
 /**
  * Tells the dialect from a file's head. The header is the first line that holds all `wanted` columns; without any, the
  * first line with as many cells as most lines have. `dateColumn` serves to know a row of units (no digit in its date).
+ * Everything that `table` says stands instead of the guess.
  * Throws `stations.empty-file`, `stations.column-missing` and `stations.repeated-column`.
  */
 export function sniffDialect(
@@ -78,41 +86,97 @@ export function sniffDialect(
   file: string,
   wanted: readonly string[],
   dateColumn: string | undefined,
+  table: TableOptions = {},
 ): Dialect {
   const { encoding, bom } = encodingOf(head, cut);
-  const text = decodeText(head, encoding).replace(/^\uFEFF/, "");
+  const used = table.encoding ?? encoding;
+  const text = decodeText(head, used).replace(/^\uFEFF/, "");
   const lines = text.split(/\r\n|\n|\r/);
   if (cut && lines.length > 1) lines.pop();
   if (lines.every((line) => line.trim() === "")) throw emptyFile(file);
-  const found = wanted.length > 0 ? headerByNames(lines, wanted) : headerByShape(lines);
-  const { delimiter, at } = found ?? headerByShape(lines);
-  const header = splitLine(lines[at], delimiter);
-  for (const name of wanted) checkColumn(header, name, file, at + 1);
-  const below = unitsRow(lines, at, delimiter, header, dateColumn);
+  const delimiters = table.delimiter === undefined ? undefined : [NAMED[table.delimiter]];
+  const { delimiter, at } = placeOfHeader(lines, wanted, delimiters, table.headerRow);
+  const rows = table.headerRows ?? 1;
+  const split = lines.slice(at, at + rows).map((line) => splitLine(line, delimiter));
+  const header = joinedHeader(split);
+  const last = at + rows - 1;
+  for (const name of wanted) checkColumn(header, name, file, last + 1);
+  const below = unitsRow(lines, last, delimiter, header, dateColumn, table.unitsRow);
+  const comment = commentMark(lines.slice(below.skip), table.comment);
+  const data = lines
+    .slice(below.skip)
+    .filter((line) => comment === undefined || !line.trimStart().startsWith(comment));
+  const decimal = decimalMark(data, delimiter, header.indexOf(dateColumn ?? ""));
   return {
-    encoding,
-    bom,
+    encoding: used,
+    bom: bom && used === encoding,
     delimiter,
-    decimal: decimalMark(lines.slice(below.skip), delimiter, header.indexOf(dateColumn ?? "")),
-    headerLine: at + 1,
+    decimal: table.decimal === undefined ? decimal : table.decimal === "comma" ? "," : ".",
+    headerLine: last + 1,
     header,
+    comment,
     ...below,
   };
 }
 
-function headerByNames(lines: readonly string[], wanted: readonly string[]) {
+function placeOfHeader(
+  lines: readonly string[],
+  wanted: readonly string[],
+  delimiters: readonly string[] | undefined,
+  row: number | undefined,
+): { readonly delimiter: string; readonly at: number } {
+  if (row !== undefined) {
+    const at = Math.min(row, lines.length) - 1;
+    return { delimiter: delimiters?.[0] ?? headerByShape(lines.slice(at), DELIMITERS).delimiter, at };
+  }
+  const named = (marks: readonly string[]) =>
+    wanted.length === 0 ? undefined : headerByNames(lines, wanted, marks);
+  if (delimiters !== undefined) return named(delimiters) ?? headerByShape(lines, delimiters);
+  // Blanks come last: sentences above the header may hold all the names.
+  return named(DELIMITERS) ?? named([BLANKS]) ?? headerByShape(lines, DELIMITERS);
+}
+
+/** Several header rows as one: merged cells above stand for the empty ones to their right. */
+export function joinedHeader(rows: readonly (readonly string[])[]): readonly string[] {
+  if (rows.length === 1) return rows[0];
+  const width = Math.max(...rows.map((row) => row.length));
+  const above = rows.slice(0, -1).map((row) => {
+    let last = "";
+    return Array.from({ length: width }, (_, i) => {
+      last = (row[i] ?? "") === "" ? last : row[i];
+      return last;
+    });
+  });
+  const below = rows[rows.length - 1];
+  return Array.from({ length: width }, (_, i) =>
+    [...above.map((row) => row[i]), below[i] ?? ""].filter((part) => part !== "").join(" "),
+  );
+}
+
+/** `#` where lines below the header begin with it. */
+function commentMark(lines: readonly string[], said: string | undefined): string | undefined {
+  if (said !== undefined) return said === "none" ? undefined : said;
+  return lines.some((line) => line.startsWith("#")) ? "#" : undefined;
+}
+
+function headerByNames(lines: readonly string[], wanted: readonly string[], delimiters: readonly string[]) {
   for (const [at, line] of lines.slice(0, 500).entries())
-    for (const delimiter of DELIMITERS) {
+    for (const delimiter of delimiters) {
       const cells = splitLine(line, delimiter);
       if (wanted.every((name) => cells.includes(name))) return { delimiter, at };
     }
   return undefined;
 }
 
-function headerByShape(lines: readonly string[]): { delimiter: string; at: number } {
+function headerByShape(
+  lines: readonly string[],
+  delimiters: readonly string[],
+): { delimiter: string; at: number } {
   const sample = lines.slice(0, 500);
-  let best = { delimiter: ",", at: sample.findIndex((line) => line.trim() !== ""), score: 0 };
-  for (const delimiter of DELIMITERS) {
+  let best = { delimiter: delimiters[0], at: sample.findIndex((line) => line.trim() !== ""), score: 0 };
+  // Blanks part the words of every sentence: they are tried only where nothing else parts the lines.
+  for (const delimiter of [...delimiters, BLANKS]) {
+    if (delimiter === BLANKS && best.score > 0) break;
     const widths = sample.map((line) => (line.trim() === "" ? 0 : splitLine(line, delimiter).length));
     const tally = new Map<number, number>();
     for (const width of widths) if (width > 1) tally.set(width, (tally.get(width) ?? 0) + 1);
@@ -132,9 +196,15 @@ function unitsRow(
   delimiter: string,
   header: readonly string[],
   dateColumn: string | undefined,
+  said: boolean | undefined,
 ): { skip: number; units: readonly string[] | undefined } {
   const index = dateColumn === undefined ? -1 : header.indexOf(dateColumn);
-  const cells = at + 1 < lines.length ? splitLine(lines[at + 1], delimiter) : [];
+  const written = at + 1 < lines.length ? splitLine(lines[at + 1], delimiter) : [];
+  // Parted by blanks the units of the last columns stand alone: those of the date are left out.
+  const short = delimiter === BLANKS && written.every((cell) => !/\d/.test(cell)) ? header.length : 0;
+  const cells = [...Array<string>(Math.max(0, short - written.length)).fill(""), ...written];
+  if (said === false) return { skip: at + 1, units: undefined };
+  if (said === true) return { skip: at + 2, units: header.map((_, i) => cells[i] ?? "") };
   const isUnits =
     cells.length === header.length &&
     cells.some((cell) => cell !== "") &&

@@ -38,6 +38,7 @@ export async function loadParquet(
       header,
       skip: 0,
       units: undefined,
+      comment: undefined,
     },
     rows: Number(rows),
     refused: [],

@@ -36,14 +36,53 @@ export async function readWhole(files: Files, path: string): Promise<Uint8Array>
  */
 export async function checkPacked(files: Files, path: string): Promise<void> {
   if (!path.endsWith(".gz")) return;
+  await throughBytes(files, path, () => {});
+}
+
+/** What one pass over the (unpacked) bytes of a text file tells. */
+export interface BytesSeen {
+  /** `_` stands between two digits somewhere. */
+  readonly parted: boolean;
+  /** Lines that end with a line feed, and a last one that does not. */
+  readonly lines: number;
+}
+
+export async function seeBytes(files: Files, path: string): Promise<BytesSeen> {
+  const digit = (byte: number | undefined) => byte !== undefined && byte >= 0x30 && byte <= 0x39;
+  let [parted, feeds, last, before] = [false, 0, 0x0a, 0];
+  await throughBytes(files, path, (part) => {
+    // The seam: `_` as the last byte of the part before, or as the first of this one.
+    if (last === 0x5f && digit(before) && digit(part[0])) parted = true;
+    if (part[0] === 0x5f && digit(last) && digit(part[1])) parted = true;
+    for (let i = part.indexOf(0x5f, 1); i >= 0 && !parted; i = part.indexOf(0x5f, i + 1))
+      parted = digit(part[i - 1]) && digit(part[i + 1]);
+    for (let i = 0; i < part.length; i++) if (part[i] === 0x0a) feeds++;
+    before = part.length > 1 ? part[part.length - 2] : last;
+    last = part[part.length - 1];
+  });
+  return { parted, lines: feeds + (last === 0x0a ? 0 : 1) };
+}
+
+/** The same bytes, not a copy: a Buffer searches many times faster than a plain array of bytes. */
+function asBuffer(bytes: Uint8Array): Buffer {
+  return Buffer.from(bytes.buffer, bytes.byteOffset, bytes.length);
+}
+
+async function throughBytes(files: Files, path: string, use: (bytes: Buffer) => void): Promise<void> {
   const access = files.open(path);
   function* parts() {
     for (let at = 0; at < access.size; at += PART_BYTES)
-      yield access.read(at, Math.min(PART_BYTES, access.size - at));
+      yield asBuffer(access.read(at, Math.min(PART_BYTES, access.size - at)));
   }
-  const nowhere = new Writable({ write: (_chunk, _encoding, done) => done() });
+  const sink = new Writable({
+    write: (chunk: Buffer, _encoding, done) => {
+      use(chunk);
+      done();
+    },
+  });
   try {
-    await pipeline(Readable.from(parts()), createGunzip(), nowhere);
+    if (!path.endsWith(".gz")) for (const part of parts()) use(part);
+    else await pipeline(Readable.from(parts()), createGunzip(), sink);
   } catch (error) {
     if (!(error instanceof Error && "code" in error && String(error.code).startsWith("Z_"))) throw error;
     throw new InputError(

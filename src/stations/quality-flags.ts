@@ -1,4 +1,4 @@
-import { countText, type DraftFinding } from "./block.ts";
+import { countText, type DraftFinding, NO_DAY } from "./block.ts";
 import type { SeriesColumn } from "./options.ts";
 import type { CodedColumn } from "./read-columns.ts";
 
@@ -12,13 +12,14 @@ export function passFlags(
   column: SeriesColumn & { readonly variable: string },
   source: number,
   file: string,
+  starts: Int32Array,
 ): DraftFinding[] {
   const pass = flags.texts.map((text) => column.quality?.pass.includes(text) === true);
   const counts = new Float64Array(flags.texts.length);
   let first = -1;
   for (let row = 0; row < values.length; row++) {
     const code = flags.codes[row];
-    if (pass[code] || Number.isNaN(values[row])) continue;
+    if (pass[code] || Number.isNaN(values[row]) || starts[row] === NO_DAY) continue;
     if (first < 0) first = row;
     counts[code]++;
     values[row] = Number.NaN;

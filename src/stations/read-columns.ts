@@ -21,6 +21,11 @@ export interface NumberColumn {
   readonly odd: readonly OddText[];
 }
 
+export interface ReadColumns {
+  readonly texts: readonly CodedColumn[];
+  readonly numbers: readonly NumberColumn[];
+}
+
 /**
  * The text columns (each one column, or several joined by blanks) coded, and the numbers as they were loaded, row by row as
  * in the file. Texts become codes in the database: a station or date is written thousands of times, but parsed once.
@@ -31,7 +36,7 @@ export async function readColumns(
   texts: readonly (readonly string[])[],
   numbers: number,
   missing: readonly string[],
-): Promise<{ readonly texts: readonly CodedColumn[]; readonly numbers: readonly NumberColumn[] }> {
+): Promise<ReadColumns> {
   const column = (name: string) => `coalesce(c${table.dialect.header.indexOf(name)}, '')`;
   const joined = (names: readonly string[]) => names.map(column).join(" || ' ' || ");
   const distinct: string[][] = [];
@@ -62,7 +67,7 @@ export async function readColumns(
       at += n;
     }
   }
-  const declared = missing.filter((text) => text.trim() !== "").map((text) => Number(text.replace(",", ".")));
+  const declared = declaredMissing(missing);
   const odd: (readonly OddText[])[] = [];
   for (const [j, one] of values.entries())
     odd.push(blankOut(one, declared) ? await oddTexts(database, `o${j}`, missing) : []);
@@ -77,17 +82,29 @@ export async function readColumns(
  * takes most of the reading's time); where this version of the package keeps none, its items are asked for.
  */
 function copyInto(into: Int32Array | Float64Array, at: number, vector: DuckDBVector, n: number): void {
-  const items: unknown = "items" in vector ? vector.items : undefined;
+  const items = itemsOf(vector);
   if (items instanceof Float64Array || items instanceof Int32Array) into.set(items.subarray(0, n), at);
   else for (let i = 0; i < n; i++) into[at + i] = Number(vector.getItem(i));
+}
+
+/** A vector's own array, where this version of the package keeps one. */
+export function itemsOf(vector: DuckDBVector): unknown {
+  return "items" in vector ? vector.items : undefined;
+}
+
+/** The numbers among the texts that mean missing. */
+export function declaredMissing(missing: readonly string[]): readonly number[] {
+  return missing
+    .filter((text) => text.trim() !== "")
+    .map((text) => Number(text.replace(",", ".")))
+    .filter((one) => !Number.isNaN(one));
 }
 
 /**
  * Declared missing numbers become NaN (−9999 also where it is written −9999.0), so do `nan` and `inf`, which the cast
  * takes; true if any value is NaN then.
  */
-function blankOut(values: Float64Array, declared: readonly number[]): boolean {
-  const marks = declared.filter((one) => !Number.isNaN(one));
+export function blankOut(values: Float64Array, marks: readonly number[]): boolean {
   let holes = false;
   for (let i = 0; i < values.length; i++) {
     const value = values[i];

@@ -8,28 +8,34 @@ import {
   NO_DAY,
   type Source,
   type StationColumn,
+  stationAt,
 } from "./block.ts";
-import { compileDateFormat, coveredPeriod, recogniseFormats } from "./dates.ts";
-import { loadTable } from "./load-table.ts";
+import { compileDateFormat, recogniseFormats } from "./dates.ts";
+import { dialectOf, isSheet, loadTable, loadText, type TableWish } from "./load-table.ts";
 import type { LoadedTable } from "./loaded-table.ts";
+import { placesIn, type SeenPlace } from "./moved.ts";
 import type { DateColumn, RecordOptions, SeriesColumn, StationOf } from "./options.ts";
+import { checkPacked } from "./packed.ts";
 import { passFlags } from "./quality-flags.ts";
-import { type CodedColumn, type NumberColumn, readColumns } from "./read-columns.ts";
+import { quickRead } from "./quick-read.ts";
+import { type CodedColumn, type NumberColumn, type ReadColumns, readColumns } from "./read-columns.ts";
 import { knownUnit, sameDimension } from "./units.ts";
+import {
+  coverOf,
+  onlyRows,
+  periodsOf,
+  sameNumbers,
+  type ValueColumn,
+  valueColumns,
+} from "./value-columns.ts";
 
 /** More different odd texts than this are told as one finding. */
 const MOST_ODD = 20;
 
-/** One value column of a file: whose it is and how it is read. */
-interface ValueColumn extends SeriesColumn {
-  readonly variable: string;
-  /** The station of the whole column (wide tables). */
-  readonly site?: string;
-}
-
 export interface FileRead {
   readonly blocks: readonly Block[];
   readonly findings: readonly DraftFinding[];
+  readonly places: readonly SeenPlace[];
   readonly source: Source;
   readonly rows: number;
 }
@@ -44,40 +50,46 @@ export async function readFile(
   index: number,
 ): Promise<FileRead> {
   const columns = valueColumns(options);
-  const stationColumn =
-    options.layout === "long" && "column" in options.station ? options.station.column : undefined;
-  const dateColumns = [options.date.column, ...(options.date.with ?? [])];
-  const flagColumns = [
-    ...new Set(columns.flatMap(({ quality }) => (quality === undefined ? [] : [quality.column]))),
-  ];
-  const texts = [
-    dateColumns,
-    ...flagColumns.map((name) => [name]),
-    ...(stationColumn === undefined ? [] : [[stationColumn]]),
-  ];
-  const table = await loadTable(database, files, file, texts.flat(), columns, options.date.column);
-  const read = await readColumns(database, table, texts, columns.length, options.missing);
+  const station = options.layout === "wide" ? undefined : options.station;
+  const own = station !== undefined && "column" in station ? station : undefined;
+  const groups = groupsOf(options, columns, own);
+  // Several variables may stand in one column, told apart by another one: it is read once.
+  const numbers = columns.filter((one, j) => columns.findIndex((other) => sameNumbers(one, other)) === j);
+  const wish: TableWish = {
+    texts: groups.flat(),
+    numbers,
+    date: options.date,
+    ...(options.table === undefined ? {} : { table: options.table }),
+  };
+  const { table, read } = await readTable(database, files, file, wish, groups, options.missing);
+  const textsOf = (names: readonly string[]) =>
+    read.texts[groups.findIndex((one) => one.join("\n") === names.join("\n"))];
   const dates = read.texts[0];
-  const ids = read.texts[texts.length - 1];
-  const refusals = columns.flatMap((column, j) => {
-    const flags = read.texts[1 + flagColumns.indexOf(column.quality?.column ?? "")];
-    return column.quality === undefined ? [] : passFlags(read.numbers[j].values, flags, column, index, file);
-  });
+  const fixed = station === undefined || "column" in station ? undefined : fixedStation(station, file);
   const findings: DraftFinding[] = [
     ...refusedFindings(table),
-    ...unitsRowFindings(table, columns),
+    ...unitsRowFindings(table, numbers),
     ...dateFindings(dates, options.date, table, index),
-    ...refusals,
-    ...columns.flatMap((column, j) => oddFindings(read.numbers[j], column, index, file)),
+    ...numbers.flatMap((column, j) => oddFindings(read.numbers[j], column, index, file)),
   ];
-  const fixed = options.layout === "long" ? fixedStation(options.station, file) : undefined;
-  const periods = new Map<number, Pick<Block, "starts" | "ends">>();
-  const blocks = columns.map((column, j): Block => {
-    const known = periods.get(column.day) ?? periodColumns(dates, options.date, column.day);
-    periods.set(column.day, known);
+  const periods = periodsOf(dates, options.date);
+  const blocks = columns.map((column): Block => {
+    const number = numbers.findIndex((one) => sameNumbers(one, column));
+    const shared = columns.filter((one) => sameNumbers(one, column)).length > 1;
+    const values = read.numbers[number].values;
+    const raw = shared ? values.slice() : values;
+    const only = column.only === undefined ? undefined : textsOf([column.only.column]);
+    const placed = onlyRows(periods(column), only, column);
+    if (column.across === "days across")
+      findings.push(...noSuchDay(periods(column).starts, raw, column, only, index, dates, options.date.format));
+    if (column.quality !== undefined)
+      findings.push(...passFlags(raw, textsOf([column.quality.column]), column, index, file, placed.starts));
     const site = column.site ?? fixed;
+    const ids = own === undefined ? undefined : textsOf([own.column]);
     const stations: StationColumn =
-      site === undefined ? { codes: ids.codes, ids: ids.texts } : { codes: 0, ids: [site] };
+      site !== undefined || ids === undefined
+        ? { codes: 0, ids: [site ?? ""] }
+        : { codes: ids.codes, ids: ids.texts };
     return {
       source: index,
       entry,
@@ -85,29 +97,105 @@ export async function readFile(
       kind: column.kind,
       unit: column.unit,
       scale: column.scale,
-      covers: options.date.covers,
+      covers: coverOf(options),
       ...(column.limits === undefined ? {} : { limits: column.limits }),
+      ...(column.accumulated === undefined
+        ? {}
+        : { accumulated: accumulatedMarks(textsOf([column.accumulated.column]), column.accumulated) }),
       stations,
-      ...known,
-      raw: read.numbers[j].values,
+      ...placed,
+      raw,
     };
   });
-  return { blocks, findings, source: { file, lines: table.lines }, rows: table.rows };
+  const places =
+    own?.longitude === undefined || own.latitude === undefined
+      ? []
+      : placesIn(
+          (row) => stationAt(blocks[0].stations, row),
+          textsOf([own.longitude]),
+          textsOf([own.latitude]),
+          index,
+        );
+  return { blocks, findings, places, source: { file, lines: table.lines }, rows: table.rows };
 }
 
-function valueColumns(options: RecordOptions): readonly ValueColumn[] {
-  if (options.layout === "long")
-    return Object.entries(options.series).map(([variable, column]) => ({ variable, ...column }));
-  const { variable, unit, kind, day, scale } = options;
-  return Object.entries(options.columns).map(([column, site]) => ({
-    variable,
-    column,
-    unit,
-    kind,
-    day,
-    scale,
-    site,
-  }));
+/** The text columns to read, each group joined to one text: the date first. */
+function groupsOf(
+  { date }: RecordOptions,
+  columns: readonly ValueColumn[],
+  own: { readonly column: string; readonly longitude?: string; readonly latitude?: string } | undefined,
+): readonly (readonly string[])[] {
+  const names = [
+    ...columns.flatMap(({ quality, only, accumulated }) =>
+      [quality, only, accumulated].flatMap((one) => (one === undefined ? [] : [one.column])),
+    ),
+    ...[own?.column, own?.longitude, own?.latitude].filter((one) => one !== undefined),
+  ];
+  return [[date.column, ...(date.with ?? [])], ...[...new Set(names)].map((name) => [name])];
+}
+
+function accumulatedMarks(
+  flags: CodedColumn,
+  { flags: marks, rule }: NonNullable<SeriesColumn["accumulated"]>,
+): NonNullable<Block["accumulated"]> {
+  const marked = flags.texts.map((text) => (marks.includes(text) ? 1 : 0));
+  return { marks: Uint8Array.from(flags.codes, (code) => marked[code]), rule };
+}
+
+/** Values that stand on a day their month does not have; rows whose date is no date at all are told elsewhere. */
+function noSuchDay(
+  starts: Int32Array,
+  raw: Float64Array,
+  column: ValueColumn,
+  only: CodedColumn | undefined,
+  source: number,
+  dates: CodedColumn,
+  format: string,
+): DraftFinding[] {
+  const parse = compileDateFormat(format);
+  const meant = (row: number) =>
+    only === undefined || column.only?.is.includes(only.texts[only.codes[row]]) === true;
+  const rows = Array.from(starts.keys()).filter(
+    (row) =>
+      starts[row] === NO_DAY &&
+      !Number.isNaN(raw[row]) &&
+      meant(row) &&
+      !Number.isNaN(parse(dates.texts[dates.codes[row]])),
+  );
+  const [first] = rows;
+  if (first === undefined) return [];
+  const told = dates.texts[dates.codes[first]];
+  return [
+    {
+      kind: "bad-date",
+      subject: column.variable,
+      message: `${JSON.stringify(column.column)} holds a value of ${column.variable} for a day that ${told} does not have (${countText(rows.length, "row")}); not used.`,
+      at: { source, row: first },
+      value: String(raw[first]),
+      count: rows.length,
+      remedy: "correct the file, or declare the value missing",
+    },
+  ];
+}
+
+/** A table read the quick way where it is clean, else by way of `raw`, which finds out what is the matter. */
+async function readTable(
+  database: DuckDBConnection,
+  files: Files,
+  file: string,
+  wish: TableWish,
+  groups: readonly (readonly string[])[],
+  missing: readonly string[],
+): Promise<{ readonly table: LoadedTable; readonly read: ReadColumns }> {
+  const slow = async (table: LoadedTable) => ({
+    table,
+    read: await readColumns(database, table, groups, wish.numbers.length, missing),
+  });
+  if (isSheet(file) || file.endsWith(".parquet")) return slow(await loadTable(database, files, file, wish));
+  await checkPacked(files, file);
+  const dialect = dialectOf(files, file, wish);
+  const quick = await quickRead(database, files, file, wish, groups, missing, dialect);
+  return quick ?? slow(await loadText(database, files, file, wish, dialect));
 }
 
 /** The station that a whole file belongs to, by `always` or from its name by a pattern with {id}. */
@@ -127,18 +215,6 @@ function fixedStation(station: StationOf, file: string): string | undefined {
     where: { file },
     remedy: "change `station: { name: … }`, or narrow `files:` to the files that follow the pattern",
   });
-}
-
-/** Start and end of every row; the pattern is applied once per distinct text. */
-function periodColumns(dates: CodedColumn, date: DateColumn, offset: number): Pick<Block, "starts" | "ends"> {
-  const parse = compileDateFormat(date.format);
-  const periods = dates.texts.map((text) => {
-    const day = parse(text);
-    return Number.isNaN(day) ? { start: NO_DAY, end: NO_DAY } : coveredPeriod(day + offset, date.covers);
-  });
-  const startOf = Int32Array.from(periods, (one) => one.start);
-  const endOf = Int32Array.from(periods, (one) => one.end);
-  return { starts: dates.codes.map((code) => startOf[code]), ends: dates.codes.map((code) => endOf[code]) };
 }
 
 function dateFindings(

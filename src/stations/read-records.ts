@@ -9,11 +9,13 @@ import { withDatabase } from "./database.ts";
 import { compileDateFormat } from "./dates.ts";
 import { gapFindings } from "./gaps.ts";
 import { unknownStations } from "./known-stations.ts";
+import { movedFindings, type SeenPlace } from "./moved.ts";
 import type { DuplicateRule, RecordOptions } from "./options.ts";
 import { readFile } from "./read-file.ts";
 import { streakFindings } from "./streaks.ts";
 import { suspectFindings } from "./suspect-values.ts";
 import { checkUnit } from "./units.ts";
+import { daysOfReadings } from "./within-day.ts";
 
 /**
  * Reads all `records:` entries and merges them into one series per station and variable, ordered by variable as first named,
@@ -40,6 +42,7 @@ export async function readRecords(
   const blocks: Block[] = [];
   const drafts: DraftFinding[] = [];
   const sources: Source[] = [];
+  const places: SeenPlace[] = [];
   let rows = 0;
   const step = effects.progress.start("reading station records", plan.length);
   await withDatabase(async (database) => {
@@ -49,15 +52,25 @@ export async function readRecords(
       blocks.push(...read.blocks);
       drafts.push(...read.findings);
       sources.push(read.source);
+      places.push(...read.places);
       rows += read.rows;
       step.tick();
     }
   });
   step.done();
   drafts.push(...unknownStations(blocks, stations));
-  for (const group of groupBy(blocks, (block) => `${block.entry}\n${block.variable}`))
+  drafts.push(...movedFindings(places, stations));
+  const daily: Block[] = [];
+  for (const group of groupBy(blocks, (block) => `${block.entry}\n${block.variable}`)) {
     drafts.push(...suspectFindings(group));
-  const assembled = groupBy(blocks, (block) => block.variable).map((group) =>
+    if (group[0].readings === undefined) daily.push(...group);
+    else {
+      const { block, findings } = daysOfReadings(group, duplicates);
+      drafts.push(...findings);
+      daily.push(block);
+    }
+  }
+  const assembled = groupBy(daily, (block) => block.variable).map((group) =>
     assembleVariable(group, duplicates, sources),
   );
   const traced = assembled.flatMap((one) => one.traced);
@@ -74,7 +87,7 @@ export async function readRecords(
 function checkOptions(records: readonly RecordOptions[]): void {
   for (const options of records) {
     compileDateFormat(options.date.format);
-    if (options.layout === "wide") checkUnit(options.unit);
+    if (options.layout !== "long") checkUnit(options.unit);
     else for (const column of Object.values(options.series)) checkUnit(column.unit);
   }
 }

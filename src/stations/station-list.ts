@@ -8,8 +8,8 @@ import type { StationListOptions } from "./options.ts";
 
 /**
  * Reads the list of stations: one row each, sorted by id (code unit). Coordinates are WGS 84 degrees, elevation metres; an
- * empty cell is NaN. Repeated ids with the same place count once; findings tell of repeats.
- * Throws `table.column-missing`, `stations.no-id`, `stations.bad-coordinate`, `stations.moved` (one id, two places).
+ * empty cell is NaN. Repeated ids count once, with their first place; findings tell of repeats and of stations that move.
+ * Throws `table.column-missing`, `stations.no-id`, `stations.bad-coordinate`.
  */
 export async function readStationList(
   options: StationListOptions,
@@ -55,14 +55,18 @@ export async function readStationList(
       sites.set(id, { site, line });
       continue;
     }
-    if (!samePlace(earlier.site, site))
-      throw new InputError({
-        name: "stations.moved",
-        expected: `one place for station ${id}`,
-        found: `another than in line ${earlier.line}`,
+    if (!samePlace(earlier.site, site)) {
+      findings.push({
+        kind: "moved",
+        subject: id,
+        message: `Station ${id} stands in the list at two places (lines ${earlier.line} and ${line}): it may have moved, and its values may step; its first place is used.`,
         where,
-        remedy: "give the station a new id from the day it moved, or remove one of the rows",
+        value: placeText(site),
+        remedy:
+          "give the station a new id from the day it moved, remove one of the rows, or accept it with a note",
       });
+      continue;
+    }
     findings.push({
       kind: "duplicate",
       subject: id,
@@ -74,6 +78,10 @@ export async function readStationList(
   }
   const sorted = [...sites.values()].map(({ site }) => site).sort((a, b) => (a.id < b.id ? -1 : 1));
   return { sites: sorted, findings };
+}
+
+function placeText({ longitude, latitude, elevation }: Site): string {
+  return `${longitude}, ${latitude}, ${elevation} m`;
 }
 
 function samePlace(a: Site, b: Site): boolean {

@@ -45,6 +45,7 @@ export function suspectFindings(blocks: readonly Block[]): readonly DraftFinding
   const marks = new Map<number, { count: number; first: RowRef }>();
   let [least, greatest] = [Number.POSITIVE_INFINITY, Number.NEGATIVE_INFINITY];
   const candidates = new Set(SENTINELS);
+  let impossible = false;
   // Every block has one source, so the row with the block tells the place.
   for (const block of blocks)
     for (let row = 0; row < block.raw.length; row++) {
@@ -56,7 +57,10 @@ export function suspectFindings(blocks: readonly Block[]): readonly DraftFinding
         else mark.count++;
         continue;
       }
-      if (outside(value * scale)) continue;
+      if (outside(value * scale)) {
+        impossible = true;
+        continue;
+      }
       if (value < least) least = value;
       if (value > greatest) greatest = value;
     }
@@ -80,7 +84,9 @@ export function suspectFindings(blocks: readonly Block[]): readonly DraftFinding
       remedy: `declare it: \`missing: [${value}]\`, or accept it if it was measured`,
     });
   }
-  findings.push(...impossibleFindings(blocks, sentinels, outside, limits?.words ?? ""));
+  // A sentinel that lies outside was not counted as one: it is looked at again, like every value, only then.
+  if (impossible || [...marks.keys()].some((value) => outside(value * scale)))
+    findings.push(...impossibleFindings(blocks, sentinels, outside, limits?.words ?? ""));
   const suspicion = suspectUnit(blocks, sentinels, unit, kind, covers);
   return suspicion === undefined ? findings : [...findings, suspicion];
 }

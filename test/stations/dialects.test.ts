@@ -1,46 +1,7 @@
 import { gzipSync } from "node:zlib";
 import iconv from "iconv-lite";
 import { describe, expect, test } from "vitest";
-import { isoDay } from "../../src/data/day.ts";
-import { placeText } from "../../src/errors.ts";
-import type { LongRecords, RecordOptions, SeriesColumn, WideRecords } from "../../src/stations/options.ts";
-import { readRecords } from "../../src/stations/read-records.ts";
-import { folder } from "./memory-files.ts";
-
-const MM: SeriesColumn = { column: "rain", unit: "mm", kind: "total", day: 0, scale: 1 };
-const long = (over: Partial<LongRecords> = {}): LongRecords => ({
-  layout: "long",
-  files: ["*"],
-  station: { column: "site" },
-  date: { column: "day", format: "yyyy-MM-dd", covers: "day" },
-  missing: [],
-  series: { rain: MM },
-  ...over,
-});
-const wide = (over: Partial<WideRecords> = {}): WideRecords => ({
-  layout: "wide",
-  files: ["*"],
-  date: { column: "day", format: "yyyy-MM-dd", covers: "day" },
-  missing: [],
-  variable: "rain",
-  unit: "mm",
-  kind: "total",
-  day: 0,
-  scale: 1,
-  columns: { Ash: "Ash", Beck: "Beck" },
-  ...over,
-});
-
-/** Files as real sources write them; `rows` is the expected table, one `station start value` a line. */
-interface Case {
-  readonly name: string;
-  readonly files: Readonly<Record<string, string | Uint8Array>>;
-  readonly options?: RecordOptions;
-  readonly rows?: readonly string[];
-  /** `kind file:line count value` of each finding. */
-  readonly findings?: readonly string[];
-  readonly error?: string;
-}
+import { type Case, holdCase, long, MM, wide } from "./dialect-case.ts";
 
 const PLAIN = "site,day,rain\nAsh,2001-01-01,1.5\nAsh,2001-01-02,0\nBeck,2001-01-01,2\n";
 const ROWS = ["Ash 2001-01-01 1.5", "Ash 2001-01-02 0", "Beck 2001-01-01 2"];
@@ -352,25 +313,7 @@ const CASES: readonly Case[] = [
 ];
 
 describe("dialects: files as real sources write them", () => {
-  test.each(CASES)("$name", async ({ files, options, rows, findings, error }) => {
-    const reading = readRecords([options ?? long()], undefined, { keep: "first", except: [] }, folder(files));
-    if (error !== undefined)
-      return expect(reading.catch((thrown: Error) => thrown.message)).resolves.toBe(error);
-    const read = await reading;
-    const table = read.series.flatMap((series) =>
-      Array.from(series.starts, (start, i) => {
-        const days = series.ends[i] - start;
-        const period = days === 1 ? isoDay(start) : `${isoDay(start)}..${isoDay(series.ends[i] - 1)}`;
-        return `${series.site} ${period} ${series.values[i]}`;
-      }),
-    );
-    expect(table).toEqual(rows);
-    const told = read.findings.map(
-      (one) => `${one.kind} ${placeText(one.where)} ${one.count ?? 1} ${one.value}`,
-    );
-    if (findings !== undefined) expect(told).toEqual(findings);
-    return undefined;
-  });
+  test.each(CASES)("$name", holdCase);
 
   test("there are at least forty", () => expect(CASES.length).toBeGreaterThanOrEqual(40));
 });

@@ -23,16 +23,18 @@ test("sorted by code unit, unknown numbers NaN, Latin-1 names, ids as written", 
   expect(findings).toEqual([]);
 });
 
-test("a repeated row is a finding; a station at two places, no id or a bad coordinate an error", async () => {
+test("a repeated row and a station at two places are findings, no id or a bad coordinate an error", async () => {
   const { sites, findings } = await read("id,name,lon,lat,m\na,A,8,50,1\na,A,8,50,1\n");
   expect([sites.length, findings[0].kind, findings[0].where]).toEqual([
     1,
     "duplicate",
     { file: "list.csv", line: 3 },
   ]);
-  await expect(read("id,name,lon,lat,m\na,A,8,50,1\na,A,9,50,1\n")).rejects.toThrow(
-    "list.csv:3: expected one place for station a, found another than in line 2",
-  );
+  const moved = await read("id,name,lon,lat,m\na,A,8,50,1\na,A,9,50,1\n");
+  expect(moved.sites.map(({ longitude }) => longitude)).toEqual([8]);
+  expect(moved.findings.map(({ kind, where, value }) => [kind, where?.line, value])).toEqual([
+    ["moved", 3, "9, 50, 1 m"],
+  ]);
   await expect(read("id,name,lon,lat,m\n,A,8,50,1\n")).rejects.toThrow(
     'expected an id in the column "id", found an empty cell',
   );
