@@ -11,8 +11,8 @@ import type { IntervalCovariate, WindowValue } from "./result.ts";
 import { type SiteWindow, siteWindow } from "./site-window.ts";
 import { filesOf } from "./sites.ts";
 import { cut } from "./slice.ts";
-import { seasonEnding, type WindowPeriods, windowPeriod } from "./window.ts";
-import { definitionText, statisticUnit } from "./words.ts";
+import { seasonEnding, type WindowPeriods, windowPeriod, windowText } from "./window.ts";
+import { completenessText, definitionText, statisticText, statisticUnit } from "./words.ts";
 
 /** One covariate over all intervals, and what a person should know of how it came about. */
 export interface Aggregated {
@@ -105,10 +105,12 @@ export function aggregateCovariate(
   const windows = intervals.map((interval) => windowPeriod(definition.window, interval));
   const { series: sites, filled, findings: before } = siteSeries(definition);
   const names = sites.map((one) => one.site);
-  const pooled = definition.join === "mean of days" && sites.length > 1 ? meanOfDays(sites) : undefined;
+  const weights = sites.map((one) => definition.weights?.bySite.get(one.site) ?? 1);
+  const pooled =
+    definition.join === "mean of days" && sites.length > 1 ? meanOfDays(sites, weights) : undefined;
   const rows = siteRows(definition, pooled === undefined ? sites : [pooled.series], windows);
   const cells = rows.map((row) => Float64Array.from(row.windows, (one) => one?.value ?? Number.NaN));
-  const joined = meanOfWindows(cells, intervals.length);
+  const joined = meanOfWindows(cells, intervals.length, pooled === undefined ? weights : undefined);
 
   const values = windows.map((one, t): WindowValue => {
     if (one.periods.length === 0) return emptyWindow(one.words);
@@ -146,6 +148,9 @@ export function aggregateCovariate(
     theme: definition.theme,
     unit: statisticUnit(definition.statistic, definition.unit),
     definition: definitionText(definition, names),
+    window: windowText(definition.window),
+    statistic: statisticText(definition.statistic, definition.unit),
+    complete: completenessText(definition),
     files: filesOf([...definition.series, ...(definition.second ?? [])]),
     values,
   };

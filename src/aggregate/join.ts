@@ -69,9 +69,13 @@ function interceptsOf(values: readonly Float64Array[], kept: Uint8Array): Float6
  * out; so each station's departures from its own base mean are averaged, and the mean of the base means is added
  * back. The base means come from the additive fit, so a station that was only there in warm years is not taken
  * for a warm station. Intervals that no chain of shared stations links to the others have no common base and are
- * missing (`adrift`).
+ * missing (`adrift`). With weights every mean over stations is a weighted one: Σ w_s x_s / Σ w_s over those that are there.
  */
-export function meanOfWindows(values: readonly Float64Array[], intervals: number): Joined {
+export function meanOfWindows(
+  values: readonly Float64Array[],
+  intervals: number,
+  weights: readonly number[] = values.map(() => 1),
+): Joined {
   const taking = values.flatMap((row, s) => (row.some((value) => !Number.isNaN(value)) ? [s] : []));
   const absent = values.flatMap((_, s) => (taking.includes(s) ? [] : [s]));
   const rows = taking.map((s) => values[s]);
@@ -81,21 +85,29 @@ export function meanOfWindows(values: readonly Float64Array[], intervals: number
   );
   const changing = Array.from(counts.keys()).filter((t) => counts[t] > 0 && counts[t] < rows.length);
   const out = new Float64Array(intervals).fill(Number.NaN);
-  const plain = (t: number) => rows.reduce((sum, row) => sum + row[t], 0) / rows.length;
+  const own = taking.map((s) => weights[s]);
+  const whole = own.reduce((sum, w) => sum + w, 0);
+  const plain = (t: number) => rows.reduce((sum, row, s) => sum + own[s] * row[t], 0) / whole;
   const kept = largestLinked(rows, intervals);
   const adrift = Array.from(counts.keys()).filter((t) => counts[t] > 0 && kept[t] === 0);
   // Stations seen only in intervals that are adrift have no base mean beside the others.
-  const based = rows.filter((row) => row.some((value, t) => kept[t] === 1 && !Number.isNaN(value)));
+  const some = rows.map((row) => row.some((value, t) => kept[t] === 1 && !Number.isNaN(value)));
+  const based = rows.filter((_, s) => some[s]);
+  const weight = own.filter((_, s) => some[s]);
   const base = changing.length === 0 ? new Float64Array(based.length) : interceptsOf(based, kept);
-  const level = base.reduce((sum, one) => sum + one, 0) / Math.max(1, based.length);
+  const all = weight.reduce((sum, w) => sum + w, 0);
+  const level = all === 0 ? 0 : base.reduce((sum, one, s) => sum + weight[s] * one, 0) / all;
   for (let t = 0; t < intervals; t++) {
     if (kept[t] === 0) continue;
     if (counts[t] === rows.length) out[t] = plain(t);
     else {
-      let departures = 0;
-      for (let s = 0; s < based.length; s++)
-        if (!Number.isNaN(based[s][t])) departures += based[s][t] - base[s];
-      out[t] = level + departures / counts[t];
+      let [departures, there] = [0, 0];
+      for (let s = 0; s < based.length; s++) {
+        if (Number.isNaN(based[s][t])) continue;
+        departures += weight[s] * (based[s][t] - base[s]);
+        there += weight[s];
+      }
+      out[t] = level + departures / there;
     }
   }
   return { values: out, changing, absent, adrift };

@@ -127,6 +127,8 @@ export interface CovariateDefinition {
   /** Values become departures from the site's base mean of the calendar month, or day, before the window. */
   readonly anomaly?: { readonly by: "month" | "day"; readonly base: YearRange };
   readonly infill?: Infill;
+  /** Weights of the stations when they are joined, and in words where they come from; equal if not said. */
+  readonly weights?: { readonly bySite: ReadonlyMap<string, number>; readonly words: string };
   /** Other stations' series of the same variable, in `unit`: infilling may use them, nothing else does. */
   readonly neighbours?: readonly Series[];
   /** The same for `second`. */

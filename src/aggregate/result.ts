@@ -34,6 +34,10 @@ export interface IntervalCovariate {
   /** The definition in words: statistic of variable at place over window. */
   readonly definition: string;
   readonly files: readonly string[];
+  /** Window, statistic and rule of completeness in words; absent for ready-made values. */
+  readonly window?: string;
+  readonly statistic?: string;
+  readonly complete?: string;
   /** One per interval. */
   readonly values: readonly WindowValue[];
 }

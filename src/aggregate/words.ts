@@ -10,7 +10,7 @@ function pastText(
 }
 
 /** A statistic in words, to be followed by `of` and the variable. */
-function statisticText(statistic: Statistic, unit: string): string {
+export function statisticText(statistic: Statistic, unit: string): string {
   switch (statistic.type) {
     case "sd":
       return "standard deviation (n − 1)";
@@ -96,7 +96,7 @@ export function statisticUnit(statistic: Statistic, unit: string): string {
 
 /** `sum of rain over Nov to Feb, mean of 6 stations`, and whether gaps are filled. */
 export function definitionText(definition: CovariateDefinition, sites: readonly string[]): string {
-  const { window, statistic, unit, join, anomaly, series, second, infill } = definition;
+  const { window, statistic, unit, join, anomaly, series, second, infill, weights } = definition;
   const variables = [series, second ?? []].flatMap((list) => (list.length > 0 ? [list[0].variable] : []));
   const what =
     anomaly === undefined
@@ -109,5 +109,17 @@ export function definitionText(definition: CovariateDefinition, sites: readonly 
       : `, gaps of up to ${infill.longest} day${infill.longest === 1 ? "" : "s"} filled by ${infill.method} on neighbours`;
   if (sites.length === 1) return `${head}, at ${sites[0]}${filled}`;
   const how = join === "mean of days" ? "of the daily mean of" : "mean of";
-  return `${head}, ${how} ${sites.length} stations${filled}`;
+  const weighted = weights === undefined ? "" : `, ${weights.words}`;
+  return `${head}, ${how} ${sites.length} stations${weighted}${filled}`;
+}
+
+/** The rule of completeness in words. */
+export function completenessText({ complete, allowedMissing }: CovariateDefinition): string {
+  const rule =
+    complete.type === "share"
+      ? `a share of ${complete.share} of the days`
+      : complete.type === "wmo"
+        ? "WMO-No. 1203 (2017)"
+        : "the 5/3 rule";
+  return allowedMissing === undefined ? rule : `${rule}; ${allowedMissing} missing days allowed`;
 }

@@ -1,6 +1,7 @@
 import { aggregateCovariate, baseValues } from "../aggregate/aggregate.ts";
 import type { CovariateDefinition } from "../aggregate/options.ts";
 import type { IntervalCovariate, WindowValue } from "../aggregate/result.ts";
+import { inverseDistance } from "../aggregate/weights.ts";
 import { prepareCovariates } from "../covariates/prepare.ts";
 import type { Prepared } from "../covariates/result.ts";
 import type { RawFinding } from "../data/finding.ts";
@@ -14,7 +15,7 @@ import type {
   Spec,
   StationCovariate,
 } from "../spec/spec.ts";
-import { convertUnit } from "../stations/units.ts";
+import { seriesInUnit } from "../stations/series-unit.ts";
 import { type Ingested, layerKey } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 
@@ -53,7 +54,7 @@ export function makeCovariates(
   wanted: (one: CovariateSpec) => boolean,
 ): readonly Made[] {
   return loaded.spec.covariates.flatMap((one, i) =>
-    wanted(one) ? [makeCovariate(one, i, loaded, found)] : [],
+    wanted(one) ? [makeCovariate(one, one.entry ?? i, loaded, found)] : [],
   );
 }
 
@@ -74,9 +75,10 @@ function makeCovariate(one: CovariateSpec, index: number, loaded: Loaded, found:
     statistic: one.statistic,
     complete: one.complete,
     join: one.source === "stations" ? one.join : "mean of windows",
-    series: series.map((each) => inUnit(each, unit)),
-    ...(second === undefined ? {} : { second: second.map((each) => inUnit(each, unit)) }),
+    series: series.map((each) => seriesInUnit(each, unit)),
+    ...(second === undefined ? {} : { second: second.map((each) => seriesInUnit(each, unit)) }),
     ...(one.source === "stations" ? infilling(one, unit, found) : {}),
+    ...(one.source === "stations" ? weighting(one, index, series, loaded, found) : {}),
     ...(one.anomaly === undefined ? {} : { anomaly: one.anomaly }),
     ...(one.allowedMissing === undefined ? {} : { allowedMissing: one.allowedMissing }),
   };
@@ -87,7 +89,7 @@ function makeCovariate(one: CovariateSpec, index: number, loaded: Loaded, found:
 function infilling(one: StationCovariate, unit: string, found: Ingested): Partial<CovariateDefinition> {
   if (one.infill === undefined) return {};
   const having = (variable: string) =>
-    found.stationSeries.filter((each) => each.variable === variable).map((each) => inUnit(each, unit));
+    found.stationSeries.filter((each) => each.variable === variable).map((each) => seriesInUnit(each, unit));
   return {
     infill: one.infill,
     neighbours: having(one.variable),
@@ -95,9 +97,32 @@ function infilling(one: StationCovariate, unit: string, found: Ingested): Partia
   };
 }
 
-function inUnit(series: Series, unit: string): Series {
-  if (series.unit === unit) return series;
-  return { ...series, unit, values: convertUnit(series.values, series.unit, unit, "reading") };
+/** Weights of the stations by their distance to a place, which must be a point. */
+function weighting(
+  one: StationCovariate,
+  index: number,
+  series: readonly Series[],
+  loaded: Loaded,
+  found: Ingested,
+): Pick<CovariateDefinition, "weights"> {
+  if (one.weights === undefined) return {};
+  const { near, power } = one.weights;
+  const place = found.places.get(near);
+  if (place?.type !== "point")
+    throw new InputError({
+      name: "aggregate.weights-place",
+      expected: "a place that is a point, to measure distances to",
+      found: `${near}, which is an area`,
+      where: {
+        file: loaded.file,
+        ...(loaded.positions(["covariates", index, "weights"]) ?? {}),
+        cell: `covariates > ${one.name} > weights`,
+      },
+      remedy: "name a point, e.g. one in the middle of the area",
+    });
+  const names = [...new Set(series.map((each) => each.site))];
+  const bySite = inverseDistance(names, found.sites, place.position, power, one.name);
+  return { weights: { bySite, words: `weighted by 1/distance^${power} to ${near}` } };
 }
 
 function layerSeries(one: LayerCovariate, found: Ingested): readonly Series[] {

@@ -17,7 +17,7 @@ function conflict(path: KeyPath, expected: string, found: string, remedy: string
 function nameProblems(spec: Spec): Problem[] {
   const seen = new Set<string>();
   const written: (readonly [KeyPath, string])[] = [
-    ...spec.covariates.map(({ name }, i) => [["covariates", i, "name"], name] as const),
+    ...spec.covariates.map(({ name, entry }, i) => [["covariates", entry ?? i, "name"], name] as const),
     ...spec.prepare.derive.map(({ name }, i) => [["derive", i, "name"], name] as const),
   ];
   return written.flatMap(([path, name]): Problem[] => {
@@ -88,7 +88,7 @@ function infillProblems(spec: Spec): Problem[] {
     if (one.source !== "stations" || one.infill?.method !== "normal ratio") return [];
     const kind = kinds.get(one.variable);
     if (kind === undefined || kind === "total") return [];
-    const path = ["covariates", i, "infill", "method"];
+    const path = ["covariates", one.entry ?? i, "infill", "method"];
     const expected = "neighbour regression for what is not a total";
     return [conflict(path, expected, `normal ratio for a ${kind}`, "write method: neighbour regression")];
   });
@@ -117,7 +117,7 @@ function needProblems(spec: Spec): Problem[] {
     if (dates >= 0)
       problems.push(
         needs(
-          ["covariates", dates, "window"],
+          ["covariates", covariates[dates].entry ?? dates, "window"],
           "occasions, which windows are counted from",
           "no occasions",
           remedy,
@@ -312,7 +312,7 @@ function rangeProblems(spec: Spec): Problem[] {
         return;
       problems.push(
         conflict(
-          ["covariates", i, "window"],
+          ["covariates", covariate.entry ?? i, "window"],
           "a season or calendar year, which every year of a base period has",
           "a window counted from occasions",
           "give it a season, or write standardise: sample",
@@ -320,8 +320,9 @@ function rangeProblems(spec: Spec): Problem[] {
       );
     });
   }
-  spec.covariates.forEach((covariate, i) => {
+  spec.covariates.forEach((covariate, at) => {
     if (covariate.source === "ready-made") return;
+    const i = covariate.entry ?? at;
     const { statistic, anomaly } = covariate;
     if ("base" in statistic && typeof statistic.base === "object")
       years(["covariates", i, "statistic", statistic.type, "base"], statistic.base, 1);

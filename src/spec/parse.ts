@@ -5,7 +5,7 @@ import { schemaProblems } from "./issues.ts";
 import type { KeyPath } from "./path.ts";
 import { pathProblems } from "./path-checks.ts";
 import { orderedFacts, type Problem, placeOf, refuseProblems } from "./problems.ts";
-import { covariateUnit, readCovariate, readDerived, sourcesOf } from "./read-covariates.ts";
+import { covariateUnit, readCovariates, readDerived, sourcesOf } from "./read-covariates.ts";
 import { readCaptures, readLayer, readReadyMade, readRecords, readStudy } from "./read-inputs.ts";
 import {
   readCollinearity,
@@ -45,7 +45,7 @@ function refuseSchemaNumber(yaml: YamlText, found: unknown): void {
 
 function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
   const sources = sourcesOf(raw);
-  const covariates = raw.covariates.map((one, i) => readCovariate(one, sources, ["covariates", i], problems));
+  const covariates = readCovariates(raw.covariates, sources, problems);
   const units = new Map(covariates.map((one) => [one.name, covariateUnit(one, sources)]));
   const derive = raw.derive.map((one, i) => readDerived(one, units, ["derive", i], problems));
   return given({
@@ -58,7 +58,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     captures: raw.captures === undefined ? undefined : readCaptures(raw.captures),
     places: raw.places,
     stations: raw.stations === undefined ? undefined : given(raw.stations),
-    records: raw.records.map((one, i) => readRecords(one, yaml, ["records", i])),
+    records: raw.records.map((one, i) => readRecords(one, yaml, ["records", i], problems)),
     layers: mapValues(raw.layers, readLayer),
     readyMade: readReadyMade(raw["ready-made"]),
     covariates,

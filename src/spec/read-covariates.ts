@@ -50,7 +50,7 @@ export interface Sources {
 export function sourcesOf(raw: RawPipeline): Sources {
   const series = new Map<string, string>();
   for (const record of raw.records) {
-    if (record.layout === "wide") series.set(record.variable, record.unit);
+    if (record.layout !== "long") series.set(record.variable, record.unit);
     else for (const [name, { unit }] of Object.entries(record.series)) series.set(name, unit);
   }
   const tables = Object.entries(raw["ready-made"]).flatMap(([table, { columns }]) =>
@@ -135,7 +135,7 @@ function readUse(raw: RawLayerCovariate, path: KeyPath, problems: Problem[]): Pl
 }
 
 /** Where the covariate comes from is told by its keys; a layer's or variable's name settles what keys leave open. */
-export function readCovariate(
+function readCovariate(
   raw: RawCovariate,
   sources: Sources,
   path: KeyPath,
@@ -212,6 +212,28 @@ export function readCovariate(
       found: ofExtremes ? "no second variable" : JSON.stringify(raw.second),
       remedy: ofExtremes ? "add the variable with the daily minima, e.g. second: tmin" : "remove it",
     });
+  const apart = raw.join === "apart";
+  const conflict = (key: string, expected: string, found: string, remedy: string) =>
+    problems.push({ name: "spec.conflict", path: [...path, key], expected, found, remedy });
+  if (apart && raw.stations === "all")
+    conflict(
+      "stations",
+      "the names of stations that are kept apart, since each makes a covariate of its own",
+      "all",
+      "list them, e.g. stations: [Ash, Beck]",
+    );
+  if (apart && raw.weights !== undefined)
+    conflict("weights", "weights only where stations are joined", "join: apart", "remove the weights");
+  if (raw.weights !== undefined && !sources.places.includes(raw.weights.near))
+    problems.push(
+      unknownName(
+        [...path, "weights", "near"],
+        "a place",
+        raw.weights.near,
+        sources.places,
+        "add the place under places",
+      ),
+    );
   return given({
     source: "stations" as const,
     name,
@@ -219,10 +241,33 @@ export function readCovariate(
     variable: raw.from,
     second: raw.second,
     stations: raw.stations,
-    join: raw.join,
+    join: raw.join === "apart" ? ("mean of windows" as const) : raw.join,
+    weights: raw.weights,
     infill: readInfill(raw.infill),
     ...values,
   });
+}
+
+/** One covariate, or one per station where they are kept apart, named after it. */
+export function readCovariates(
+  raw: readonly RawCovariate[],
+  sources: Sources,
+  problems: Problem[],
+): readonly CovariateSpec[] {
+  const read = raw.flatMap((one, entry): CovariateSpec[] => {
+    const covariate = readCovariate(one, sources, ["covariates", entry], problems);
+    const apart = "join" in one && one.join === "apart";
+    if (!apart || covariate.source !== "stations" || covariate.stations === "all")
+      return [{ ...covariate, entry }];
+    return covariate.stations.map((station) => ({
+      ...covariate,
+      entry,
+      name: `${covariate.name} at ${station}`,
+      stations: [station],
+    }));
+  });
+  if (read.length > raw.length) return read;
+  return read.map(({ entry: _, ...one }) => one);
 }
 
 type RawInfill = Extract<RawCovariate, { join: unknown }>["infill"];

@@ -1,8 +1,9 @@
 import type { ImageCover, LayerOptions } from "../layers/options.ts";
-import type { RecordOptions } from "../stations/options.ts";
+import type { DateColumn, RecordOptions, TableOptions } from "../stations/options.ts";
 import type { CaptureOptions, ReadyMadeOptions } from "../study/options.ts";
 import { given, mapValues } from "./given.ts";
 import type { KeyPath } from "./path.ts";
+import type { Problem } from "./problems.ts";
 import type { RawPipeline } from "./schema.ts";
 import type { StudyOptions } from "./spec.ts";
 import { readMetres } from "./windows.ts";
@@ -29,12 +30,78 @@ export function readRecords(
   raw: RawPipeline["records"][number],
   yaml: YamlText,
   path: KeyPath,
+  problems: Problem[],
 ): RecordOptions {
   const missing = missingTexts(raw.missing, yaml, [...path, "missing"]);
-  const date = given(raw.date);
-  return raw.layout === "wide"
-    ? { ...raw, date, missing }
-    : { ...raw, date, missing, series: mapValues(raw.series, (one) => given(one)) };
+  const shared = { date: readDate(raw, path, problems), missing, table: readTable(raw.table) };
+  if (raw.layout === "long") {
+    const { station, series, files, layout } = raw;
+    return given({
+      files,
+      layout,
+      ...shared,
+      station: given(station),
+      series: mapValues(series, (one) => given(one)),
+    });
+  }
+  if (raw.layout === "wide") return given({ ...raw, ...shared });
+  return given({ ...raw, ...shared, station: given(raw.station) });
+}
+
+function readTable(raw: RawPipeline["records"][number]["table"]): TableOptions | undefined {
+  if (raw === undefined) return undefined;
+  const { "header row": headerRow, "header rows": headerRows, "units row": unitsRow, ...rest } = raw;
+  return given({ ...rest, headerRow, headerRows, unitsRow });
+}
+
+/** Readings must be told how they make days, and nothing else may be. */
+function readDate(
+  { date, layout }: RawPipeline["records"][number],
+  path: KeyPath,
+  problems: Problem[],
+): DateColumn {
+  const { "within day": within, ...rest } = date;
+  const readings = date.covers === "reading";
+  if (readings && within === undefined)
+    problems.push({
+      name: "spec.missing-key",
+      path: [...path, "date", "within day"],
+      expected: 'the key "within day" where one row is a reading',
+      found: "no such key",
+      remedy: "say when a day ends and how many readings make one, e.g. within day: { readings: 24 }",
+    });
+  if (!readings && within !== undefined)
+    problems.push({
+      name: "spec.conflict",
+      path: [...path, "date", "within day"],
+      atKey: true,
+      expected: "readings within the day",
+      found: `covers: ${date.covers}`,
+      remedy: "write covers: reading, or remove it",
+    });
+  if ((layout === "months across" || layout === "days across") && (readings || date.covers !== "day"))
+    problems.push({
+      name: "spec.conflict",
+      path: [...path, "date", "covers"],
+      expected: `no word on what a row covers: ${layout} says it`,
+      found: `covers: ${date.covers}`,
+      remedy: "remove it",
+    });
+  return given({ ...rest, within: within === undefined ? undefined : readWithin(within) });
+}
+
+function readWithin(
+  raw: NonNullable<RawPipeline["records"][number]["date"]["within day"]>,
+): NonNullable<DateColumn["within"]> {
+  const [hours, minutes] = raw["day ends"].split(":").map(Number);
+  const { stamped, readings } = raw;
+  return {
+    ends: hours * 60 + minutes,
+    stamped,
+    shift: Math.round(raw["add hours"] * 60),
+    readings,
+    least: raw["at least"] ?? readings,
+  };
 }
 
 function readCover(text: string): ImageCover {

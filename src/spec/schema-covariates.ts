@@ -176,7 +176,14 @@ const stationCovariate = keys("a covariate from station records", {
     ]),
     "all",
   ),
-  join: stated(choice("how stations are joined", ["mean of windows", "mean of days"]), "mean of windows"),
+  join: stated(
+    choice("how stations are joined", ["mean of windows", "mean of days", "apart"]),
+    "mean of windows",
+  ),
+  weights: keys("weights of the stations by inverse distance to a place", {
+    near: text("the name of a place that is a point", "roost"),
+    power: stated(number("the power of the distance", 2, { above: 0, max: 10 }), 2),
+  }).optional(),
   infill: infill.optional(),
   ...values,
 });

@@ -2,6 +2,7 @@ import { z } from "zod";
 import {
   choice,
   column,
+  flag,
   inputPath,
   keys,
   list,
@@ -35,6 +36,37 @@ const files = (example: string) =>
     [example],
   );
 
+const CLOCK = /^(?:[01]\d|2[0-4]):[0-5]\d$/;
+
+const withinDay = keys(
+  "how readings within the day become one value per day",
+  {
+    "day ends": stated(text("when a day ends, by the clock of the records", "07:00", CLOCK), "00:00"),
+    stamped: stated(
+      choice("whether a time is that of the beginning or of the end of what was measured", ["start", "end"]),
+      "start",
+    ),
+    "add hours": stated(
+      number("hours added to every written time first, e.g. from UTC to the local time", 1, {
+        min: -24,
+        max: 24,
+      }),
+      0,
+    ),
+    readings: number("the number of readings that make a whole day", 24, {
+      min: 1,
+      max: 86_400,
+      whole: true,
+    }),
+    "at least": number("the fewest readings of a day that counts; all, if left out", 20, {
+      min: 1,
+      max: 86_400,
+      whole: true,
+    }).optional(),
+  },
+  { "day ends": "07:00", readings: 24 },
+);
+
 const date = keys(
   "the column of dates",
   {
@@ -45,10 +77,14 @@ const date = keys(
       ["month", "day"],
     ).optional(),
     format: stated(
-      text("the pattern of dates, with yyyy, MM, dd, or D for the day of the year", "dd.MM.yyyy"),
+      text(
+        "the pattern of dates, with yyyy, MM (MMM: Jan), dd, D for the day of the year, HH:mm",
+        "dd.MM.yyyy",
+      ),
       "yyyy-MM-dd",
     ),
-    covers: stated(choice("what one row stands for", ["day", "month", "year", "dekad"]), "day"),
+    covers: stated(choice("what one row stands for", ["day", "month", "year", "dekad", "reading"]), "day"),
+    "within day": withinDay.optional(),
   },
   { column: "day", format: "yyyy-MM-dd", covers: "day" },
 );
@@ -72,20 +108,75 @@ const dayOffset = stated(
 );
 const scale = () => stated(number("what each value is multiplied by before its unit is read", 0.1), 1);
 
+const table = keys(
+  "how the tables are written, where the guess from their first lines does not hold",
+  {
+    delimiter: choice("what parts the cells", ["comma", "semicolon", "tab", "bar", "blanks"]).optional(),
+    decimal: choice("the decimal mark", ["point", "comma"]).optional(),
+    encoding: choice("the encoding", ["utf-8", "utf-16le", "utf-16be", "windows-1252"]).optional(),
+    "header row": number("the line, or row of a sheet, of the header", 3, {
+      min: 1,
+      max: 500,
+      whole: true,
+    }).optional(),
+    "header rows": number("how many rows the header has; they are joined by blanks", 2, {
+      min: 1,
+      max: 5,
+      whole: true,
+    }).optional(),
+    comment: text("what lines of comment begin with, none if no line is one", "#").optional(),
+    "units row": flag("whether a row of units stands below the header, true or false").optional(),
+    sheet: oneOf("the sheet of an Excel file", [
+      number("its number", 1, { min: 1, max: 10_000, whole: true }),
+      text("its name", "Daily"),
+    ]).optional(),
+  },
+  { delimiter: "semicolon" },
+);
+
+const only = keys("a column that tells which rows are meant", {
+  column: column("what each row holds", "element"),
+  is: someOf("the texts of the rows that are meant", text("a text", "PRCP"), ["PRCP"]),
+});
+
+/** How the values of one variable are read, wherever they stand. */
+const reading = {
+  day: dayOffset,
+  scale: scale(),
+  trace: keys("a text that stands for an amount too small to measure", {
+    text: text("the text", "T"),
+    value: number("the value it is given, as if written in its place", 0.1),
+  }).optional(),
+  limits: pair(
+    "the least and greatest possible value, in the column's unit",
+    "the least possible value",
+    "the greatest possible value",
+    [-60, 60],
+  ).optional(),
+  only: only.optional(),
+};
+
+const station = oneOf(
+  "where the station's identifier stands: { column: … }, { always: … } or { name: … } with {id}",
+  [
+    keys("a column of identifiers", {
+      column: column("the station's identifier", "site"),
+      longitude: column("the station's longitude, which must not change", "lon").optional(),
+      latitude: column("the station's latitude, which must not change", "lat").optional(),
+    }),
+    keys("the same station in every row", { always: text("the station's identifier", "050114") }),
+    keys("the identifier in the file's name", {
+      name: text("a pattern of file names with {id}", "station_{id}", /^[^\n]*\{id\}[^\n]*$/),
+    }),
+  ],
+  { column: "site" },
+);
+
 const longRecords = keys("records with a row per station and date", {
   layout: stated(word("the layout of the records", "long"), "long"),
   files: files("stations/lowland_*.csv"),
-  station: oneOf(
-    "where the station's identifier stands: { column: … }, { always: … } or { name: … } with {id}",
-    [
-      keys("a column of identifiers", { column: column("the station's identifier", "site") }),
-      keys("the same station in every row", { always: text("the station's identifier", "050114") }),
-      keys("the identifier in the file's name", {
-        name: text("a pattern of file names with {id}", "station_{id}", /^[^\n]*\{id\}[^\n]*$/),
-      }),
-    ],
-    { column: "site" },
-  ),
+  table: table.optional(),
+  station,
   date,
   missing,
   series: named(
@@ -97,22 +188,16 @@ const longRecords = keys("records with a row per station and date", {
         column: column("the variable's values", "precip"),
         unit: unit("the column"),
         kind: valueKind(),
-        day: dayOffset,
-        scale: scale(),
-        trace: keys("a text that stands for an amount too small to measure", {
-          text: text("the text", "T"),
-          value: number("the value it is given, as if written in its place", 0.1),
-        }).optional(),
+        ...reading,
         quality: keys("a column of quality flags", {
           column: column("the flags", "quality"),
           pass: someOf("the flags whose values pass", text("a flag", "A"), ["A"]),
         }).optional(),
-        limits: pair(
-          "the least and greatest possible value, in the column's unit",
-          "the least possible value",
-          "the greatest possible value",
-          [-60, 60],
-        ).optional(),
+        accumulated: keys("totals that stand for all days since the last value", {
+          column: column("the flags that mark them", "flag"),
+          flags: someOf("the flags", text("a flag", "A"), ["A"]),
+          rule: choice("what becomes of such a total", ["spread", "drop", "keep"]),
+        }).optional(),
       },
       { column: "precip", unit: "mm", kind: "total" },
     ),
@@ -122,13 +207,13 @@ const longRecords = keys("records with a row per station and date", {
 const wideRecords = keys("records with a row per date and a column per station", {
   layout: word("the layout of the records", "wide"),
   files: files("stations/wide.csv"),
+  table: table.optional(),
   date,
   missing,
   variable: text("the name of the one variable", "rain"),
   unit: unit("the values"),
   kind: valueKind(),
-  day: dayOffset,
-  scale: scale(),
+  ...reading,
   columns: named(
     "the stations, by column",
     "the name of a column",
@@ -136,7 +221,42 @@ const wideRecords = keys("records with a row per date and a column per station",
   ),
 });
 
-export const records = oneOf("station records, long or wide", [longRecords, wideRecords]);
+const calendar = (layout: "months across" | "days across", count: number, what: string, example: string[]) =>
+  keys(what, {
+    layout: word("the layout of the records", layout),
+    files: files("stations/monthly.txt"),
+    table: table.optional(),
+    station,
+    date,
+    missing,
+    variable: text("the name of the one variable", "rain"),
+    unit: unit("the values"),
+    kind: valueKind(),
+    ...reading,
+    columns: tellColumns(count, example),
+  });
+
+const tellColumns = (count: number, example: string[]) =>
+  z
+    .array(text("the name of a column", example[0]))
+    .length(count)
+    .meta({ description: `the ${count} columns in the order of the calendar`, examples: [example] });
+
+const monthColumns = calendar("months across", 12, "records with a row per year and a column per month", [
+  "jan",
+  "feb",
+]);
+const dayColumns = calendar("days across", 31, "records with a row per month and a column per day", [
+  "1",
+  "2",
+]);
+
+export const records = oneOf("station records: long, wide, months across or days across", [
+  longRecords,
+  wideRecords,
+  monthColumns,
+  dayColumns,
+]);
 
 const DATE_PART = /^[^\n]*\{[yMDd]+\}[^\n]*$/;
 

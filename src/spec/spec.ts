@@ -20,6 +20,8 @@ export interface StudyOptions {
 interface CovariateName {
   readonly name: string;
   readonly theme: string;
+  /** Its place in the file, where covariates kept apart by station have shifted those that follow. */
+  readonly entry?: number;
 }
 
 /** How observations become one value per interval. */
@@ -44,6 +46,8 @@ export interface StationCovariate extends CovariateName, CovariateValues {
   readonly stations: "all" | readonly string[];
   readonly join: Join;
   readonly infill?: Infill;
+  /** Stations are weighted by 1/distance^power to a place. */
+  readonly weights?: { readonly near: string; readonly power: number };
 }
 
 /** From a layer at a place. */
@@ -95,7 +99,7 @@ export interface Spec {
   readonly records: readonly RecordOptions[];
   readonly layers: Readonly<Record<string, LayerOptions>>;
   readonly readyMade: Readonly<Record<string, ReadyMadeOptions>>;
-  /** In the order of the file: entry i is written at the key path `["covariates", i]`. */
+  /** In the order of the file: one is written at the key path `["covariates", entry]`, `entry` being its index if not said. */
   readonly covariates: readonly CovariateSpec[];
   readonly prepare: PrepareOptions;
   readonly collinearity: CollinearityOptions;

@@ -81,7 +81,9 @@ export async function readFile(
     const only = column.only === undefined ? undefined : textsOf([column.only.column]);
     const placed = onlyRows(periods(column), only, column);
     if (column.across === "days across")
-      findings.push(...noSuchDay(periods(column).starts, raw, column, only, index, dates, options.date.format));
+      findings.push(
+        ...noSuchDay(periods(column).starts, raw, column, only, index, dates, options.date.format),
+      );
     if (column.quality !== undefined)
       findings.push(...passFlags(raw, textsOf([column.quality.column]), column, index, file, placed.starts));
     const site = column.site ?? fixed;

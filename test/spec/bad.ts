@@ -101,7 +101,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "    themes: rain\n",
     name: "spec.unknown-key",
     message:
-      'p.yaml:37:5 (covariates > #1 > themes): expected one of the keys "name", "theme", "from", "second", "stations", "join", "infill", "window", "statistic", "complete", "unit", "departures", "allowed missing", found "themes"; did you mean "theme"?',
+      'p.yaml:37:5 (covariates > #1 > themes): expected one of the keys "name", "theme", "from", "second", "stations", "join", "weights", "infill", "window", "statistic", "complete", "unit", "departures", "allowed missing", found "themes"; did you mean "theme"?',
   },
   {
     title: "keys: key of the other branch",
@@ -1248,7 +1248,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "    layout: tall\n    station: { column: site }\n",
     name: "spec.not-a-choice",
     message:
-      'p.yaml:19:13 (records > #1 > layout): expected the layout of the records (if left out: long): long, wide, found "tall"; write one of them',
+      'p.yaml:19:13 (records > #1 > layout): expected the layout of the records (if left out: long): long, wide, months across, days across, found "tall"; write one of them',
   },
   {
     title: "keys: station of two ways",
@@ -1256,7 +1256,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "station: { column: site, always: x }",
     name: "spec.unknown-key",
     message:
-      'p.yaml:19:30 (records > #1 > station > always): expected one of the keys "column", found "always"; remove it, or use one of those keys',
+      'p.yaml:19:30 (records > #1 > station > always): expected one of the keys "column", "longitude", "latitude", found "always"; remove it, or use one of those keys',
   },
   {
     title: "keys: place without anything",
