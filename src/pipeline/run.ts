@@ -6,7 +6,7 @@ import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { judge, stopIfAsked } from "./policy.ts";
-import { compareStage, diagnoseStage, goodnessStage, reduceStage } from "./stages.ts";
+import { compareStage, diagnoseStage, goodnessStage, inflationOf, reduceStage } from "./stages.ts";
 import { poseScreen } from "./survival-problem.ts";
 
 /** How far a run goes. Each stage includes those before it; reading is part of the first. */
@@ -48,9 +48,10 @@ export async function runStages(
   const goodness = goes("screen") ? judged(goodnessStage(ingested)).goodness : undefined;
   const posed = goes("screen") ? poseScreen(spec, ingested, matrix) : undefined;
   const animals = ingested.captures?.animals ?? Number.NaN;
+  const criterion = { ...spec.screen, ...inflationOf(spec, goodness) };
   const screened =
     posed &&
-    judged(await screen(posed.problem, posed.recapture, spec.screen, animals, spec.seed, effects)).result;
+    judged(await screen(posed.problem, posed.recapture, criterion, animals, spec.seed, effects)).result;
   const comparison =
     posed && screened && goes("compare")
       ? await compareStage(spec, posed, screened, components, diagnosis, matrix, effects)

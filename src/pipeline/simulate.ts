@@ -19,6 +19,7 @@ import type { Loaded } from "./load.ts";
 import type { Maker } from "./output.ts";
 import { runStages } from "./run.ts";
 import { positionRule } from "./sensitive.ts";
+import { goodnessStage, inflationOf } from "./stages.ts";
 import { type Posed, poseScreen } from "./survival-problem.ts";
 
 /** What is asked about a study. */
@@ -93,7 +94,13 @@ export async function simulate(
       replicates: request.replicates,
     };
     const design = studyDesign(posed.problem);
-    const detection = await detect(design, asked, spec.screen, spec.seed, effects);
+    const detection = await detect(
+      design,
+      asked,
+      { ...spec.screen, ...inflationOf(spec, goodnessStage(run.ingested).goodness) },
+      spec.seed,
+      effects,
+    );
     const simulated: Simulated = {
       detection,
       sentences: detectionSentences(detection),

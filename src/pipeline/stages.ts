@@ -9,6 +9,7 @@ import { yearIndex } from "../covariates/time.ts";
 import type { RawFinding } from "../data/finding.ts";
 import { type Matrix, pickColumns } from "../data/matrix.ts";
 import type { Effects } from "../effects/effects.ts";
+import type { ScreenOptions } from "../screen/options.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Spec } from "../spec/spec.ts";
 import { goodnessFindings } from "../survival/goodness-findings.ts";
@@ -75,6 +76,20 @@ export function goodnessStage({ captures }: Ingested): {
   return { goodness, findings: goodnessFindings(goodness) };
 }
 
+/**
+ * ĉ between animals for the criteria (methods §7): of the sum of all components, or without transience where the models
+ * have time since marking; left out where the captures cannot give it.
+ */
+export function inflationOf(
+  spec: Spec,
+  goodness: GoodnessOfFit | undefined,
+): Pick<ScreenOptions, "betweenAnimals"> {
+  const marking = spec.survival.sinceMarking === "first interval apart";
+  const overall = goodness?.overall;
+  const value = marking ? overall?.betweenAnimalsAfterMarking : overall?.betweenAnimals;
+  return value === undefined || Number.isNaN(value) ? {} : { betweenAnimals: value };
+}
+
 /** Selection beside components, on the data and the recapture part of the screen. */
 export async function compareStage(
   spec: Spec,
@@ -88,7 +103,7 @@ export async function compareStage(
   const names = posed.problem.covariates.map((one) => one.name);
   const kept = diagnosis?.kept ?? names;
   const pruned = names.filter((name) => kept.includes(name));
-  const chunks = foldChunks(posed.problem, screened, spec.screen, {
+  const chunks = foldChunks(posed.problem, screened, screened.options, {
     collinearity: spec.collinearity,
     components:
       components === undefined
@@ -99,5 +114,5 @@ export async function compareStage(
   const step = effects.progress.start("leaving one interval out", chunks.length);
   const folds = await effects.parallel.map<FoldChunk, readonly Fold[]>(FOLD_TASK, chunks, step);
   step.done();
-  return compare(posed.problem, screened, components, pruned, spec.screen, folds.flat());
+  return compare(posed.problem, screened, components, pruned, screened.options, folds.flat());
 }

@@ -1,10 +1,10 @@
 import { InputError } from "../errors.ts";
-import { aicc, bic } from "../survival/criteria.ts";
+import { type Criteria, checkInflation, criteriaOf, criterionValue } from "./criterion.ts";
 import type { ScreenOptions } from "./options.ts";
 import type { LassoPath } from "./path.ts";
 
 /** The criteria of one λ. */
-export interface CriterionRow {
+export interface CriterionRow extends Criteria {
   readonly lambda: number;
   readonly active: number;
   /** Non-zero β + unpenalised parameters. */
@@ -12,9 +12,8 @@ export interface CriterionRow {
   readonly minus2LogL: number;
   /** −2 log L of the unpenalised refit on the same covariates. */
   readonly minus2LogLRefit: number;
-  readonly bic: number;
-  /** NaN where n − k − 1 ≤ 0. */
-  readonly aicc: number;
+  /** The criterion asked for; NaN where n − k − 1 ≤ 0. */
+  readonly criterion: number;
 }
 
 export interface PathChoice {
@@ -26,39 +25,45 @@ export interface PathChoice {
 }
 
 /**
- * BIC = −2 log L + df·log n and AICc along the path, at the shrunken solutions or at the refits; the least value
- * wins, ties go to the sparser model, which comes first. Rows with n − k − 1 ≤ 0 are not chosen. Throws
- * `screen.no-criterion` where it is nowhere defined.
+ * BIC, AICc, extended BIC, QBIC and QAICc (see `criteria.ts`) along the path, at the shrunken solutions or at the refits;
+ * the least value of the one asked for wins, ties go to the sparser model, which comes first. Rows with n − k − 1 ≤ 0
+ * are not chosen. Throws `screen.no-criterion` where it is nowhere defined, and what `checkInflation` throws.
  */
 export function chooseOnPath(
   path: LassoPath,
   unpenalised: number,
   sampleSize: number,
-  options: Pick<ScreenOptions, "chooseBy" | "fit">,
+  options: Pick<ScreenOptions, "chooseBy" | "fit" | "betweenAnimals">,
   refit: (active: readonly number[]) => number,
 ): PathChoice {
+  const betweenAnimals = options.betweenAnimals ?? Number.NaN;
+  checkInflation(options.chooseBy, betweenAnimals);
+  const setting = { sampleSize, covariates: path.weights.length, betweenAnimals };
   const rows = path.steps.map((step): CriterionRow => {
-    const parameters = unpenalised + step.active.length;
+    const active = step.active.length;
+    const parameters = unpenalised + active;
     const minus2LogLRefit = refit(step.active);
-    const used = options.fit === "refit" ? minus2LogLRefit : step.minus2LogL;
+    const minus2LogL = options.fit === "refit" ? minus2LogLRefit : step.minus2LogL;
+    const criteria = criteriaOf({ minus2LogL, parameters, active }, setting);
     return {
       lambda: step.lambda,
-      active: step.active.length,
+      active,
       parameters,
       minus2LogL: step.minus2LogL,
       minus2LogLRefit,
-      bic: bic(used, parameters, sampleSize),
-      aicc: aicc(used, parameters, sampleSize),
+      ...criteria,
+      criterion: criterionValue(options.chooseBy, criteria, parameters, sampleSize),
     };
   });
-  // with as many parameters as observations a criterion ranks nothing, whichever it is
-  const value = (row: CriterionRow) => {
-    if (sampleSize - row.parameters - 1 <= 0) return Number.NaN;
-    return options.chooseBy === "BIC" ? row.bic : row.aicc;
-  };
   const index = rows.reduce(
     (best, row, i) =>
-      best < 0 ? (Number.isNaN(value(row)) ? -1 : i) : value(row) < value(rows[best]) - 1e-9 ? i : best,
+      best < 0
+        ? Number.isNaN(row.criterion)
+          ? -1
+          : i
+        : row.criterion < rows[best].criterion - 1e-9
+          ? i
+          : best,
     -1,
   );
   if (index < 0)
@@ -69,7 +74,7 @@ export function chooseOnPath(
       where: { cell: "screen.sample size" },
       remedy: "count releases or animals, or keep the recapture part constant",
     });
-  const least = value(rows[index]);
-  const band = rows.flatMap((row, i) => (value(row) <= least + 2 ? [i] : []));
+  const least = rows[index].criterion;
+  const band = rows.flatMap((row, i) => (row.criterion <= least + 2 ? [i] : []));
   return { rows, index, band };
 }

@@ -1,4 +1,4 @@
-export type Criterion = "BIC" | "AICc";
+export type Criterion = "BIC" | "AICc" | "extended BIC" | "QBIC" | "QAICc";
 export type SampleSize = "releases" | "animals" | "intervals";
 
 export interface ScreenOptions {
@@ -11,6 +11,8 @@ export interface ScreenOptions {
   readonly sampleSize: SampleSize;
   /** Where −2 log L of the criterion is taken: at the shrunken solution or at the refit. */
   readonly fit: "shrunken" | "refit";
+  /** ĉ between animals from the goodness of fit, for QBIC and QAICc; not known if not said. */
+  readonly betweenAnimals?: number;
   /** Permutations of years over the whole procedure. */
   readonly permutations: number;
 }

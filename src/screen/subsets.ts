@@ -1,4 +1,4 @@
-import { aicc, bic } from "../survival/criteria.ts";
+import { criteriaOf, criterionValue } from "./criterion.ts";
 import type { ScreenOptions } from "./options.ts";
 import type { ProcedureSetting } from "./procedure.ts";
 import type { Refits } from "./refits.ts";
@@ -20,7 +20,7 @@ export interface BestSubset {
 export function bestSmallSubset(
   refit: Refits,
   setting: ProcedureSetting,
-  options: Pick<ScreenOptions, "chooseBy">,
+  options: Pick<ScreenOptions, "chooseBy" | "betweenAnimals">,
 ): BestSubset | undefined {
   const most = Math.floor(setting.intervals / 5);
   if (countSubsets(setting.covariates, most) > MOST_SUBSETS) return undefined;
@@ -29,7 +29,13 @@ export function bestSmallSubset(
   for (const set of subsets(setting.covariates, most)) {
     tried++;
     const parameters = setting.constantParameters + set.length;
-    const value = (options.chooseBy === "BIC" ? bic : aicc)(refit(set), parameters, setting.sampleSize);
+    const model = { minus2LogL: refit(set), parameters, active: set.length };
+    const criteria = criteriaOf(model, {
+      sampleSize: setting.sampleSize,
+      covariates: setting.covariates,
+      betweenAnimals: options.betweenAnimals ?? Number.NaN,
+    });
+    const value = criterionValue(options.chooseBy, criteria, parameters, setting.sampleSize);
     if (value < best.criterion - 1e-9) best = { set, criterion: value, tried };
   }
   return { ...best, tried };

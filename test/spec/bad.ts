@@ -454,6 +454,14 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
       'p.yaml:51:51 (survival > split): expected whether intervals of several years are cut into years with covariates of their own: none, years (if left out: none), found "months"; write one of them',
   },
   {
+    title: "choices: a criterion that is none",
+    from: "screen: { steps: 50, down to: 0.01 }",
+    to: "screen: { steps: 50, down to: 0.01, choose by: EBIC }",
+    name: "spec.not-a-choice",
+    message:
+      'p.yaml:53:48 (screen > choose by): expected the criterion that chooses the penalty: BIC, AICc, extended BIC, QBIC, QAICc (if left out: BIC), found "EBIC"; did you mean "BIC"?',
+  },
+  {
     title: "choices: misspelt severity",
     from: "gap: accept",
     to: "gap: wran",
@@ -515,7 +523,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "steps: 50, choose by: AIC,",
     name: "spec.not-a-choice",
     message:
-      'p.yaml:53:33 (screen > choose by): expected the criterion that chooses the penalty: BIC, AICc (if left out: BIC), found "AIC"; did you mean "AICc"?',
+      'p.yaml:53:33 (screen > choose by): expected the criterion that chooses the penalty: BIC, AICc, extended BIC, QBIC, QAICc (if left out: BIC), found "AIC"; did you mean "AICc"?',
   },
   {
     title: "forms: season backwards",

@@ -10,7 +10,7 @@ import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, PATH_WIDTH } from "
 export async function criterion({ screened }: ReportInput): Promise<Figure | undefined> {
   if (screened === undefined || screened.path.lambdaMax === 0) return undefined;
   const { choice, options, byAnimals } = screened;
-  const value = (i: number) => (options.chooseBy === "BIC" ? choice.rows[i].bic : choice.rows[i].aicc);
+  const value = (i: number) => choice.rows[i].criterion;
   const data = choice.rows
     .map((row, i) => ({ lambda: row.lambda, value: value(i), active: row.active }))
     .filter((one) => Number.isFinite(one.value));
