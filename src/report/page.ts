@@ -14,6 +14,7 @@ import { findingsSection } from "./sections/findings.ts";
 import { inputsSection, timeSection, whereSection } from "./sections/inputs.ts";
 import { methodsSection } from "./sections/methods.ts";
 import { recaptureSection } from "./sections/recapture.ts";
+import { refitsSection } from "./sections/refits.ts";
 import { screenSection } from "./sections/screen.ts";
 import { agreementSection, comparisonSection, survivalSection } from "./sections/survival.ts";
 import { verdictSection } from "./sections/verdict.ts";
@@ -38,6 +39,7 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
     componentsSection(input, cast, drawn),
     recaptureSection(input, cast),
     screenSection(input, cast, drawn),
+    refitsSection(input, cast),
     survivalSection(drawn),
     comparisonSection(input, cast),
     agreementSection(input, cast, drawn),

@@ -3,8 +3,10 @@ import type { Effects } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { randomStream } from "../math/random.ts";
 import { type AnalysisOfDeviance, analysisOfDeviance } from "../survival/analysis-of-deviance.ts";
-import { occasionIntervals } from "../survival/design.ts";
+import { fixedSurvivalColumns, occasionIntervals } from "../survival/design.ts";
 import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
+import { type PredictedCurve, predictedSurvival } from "../survival/predict.ts";
+import { type ProfileInterval, profileInterval } from "../survival/profile-interval.ts";
 import type { RecaptureComparison } from "../survival/recapture-choice.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
 import { type InfluenceRow, leaveOneIntervalOut } from "./influence.ts";
@@ -32,6 +34,9 @@ export interface RefittedSet {
   readonly fit: Fit;
   /** R²_dev and ĉ between years; F and p of a set that was chosen on these data are not to be shown. */
   readonly deviance: AnalysisOfDeviance;
+  /** Of the forced covariates and those of the set, in that order; they take the choice as made before looking. */
+  readonly profiles: readonly ProfileInterval[];
+  readonly predicted: readonly PredictedCurve[];
 }
 
 export interface ScreenResult {
@@ -123,8 +128,25 @@ export async function screen(
   const names = problem.covariates.map((one) => one.name);
   const named = (set: readonly number[]) => set.map((k) => names[k]);
   const refitted = (set: readonly number[]): RefittedSet => {
-    const fit = fitModel(problem.data, designWith(problem, set));
-    return { names: named(set), fit, deviance: analysisOfDeviance(constantFit, fit, intervalFit) };
+    const design = designWith(problem, set);
+    const fit = fitModel(problem.data, design);
+    const forced = problem.frame.forced.length;
+    const from = fixedSurvivalColumns(problem.frame) - forced;
+    const inflation = options.betweenAnimals ?? 1;
+    return {
+      names: named(set),
+      fit,
+      deviance: analysisOfDeviance(constantFit, fit, intervalFit),
+      profiles: Array.from({ length: forced + set.length }, (_, i) =>
+        profileInterval(problem.data, design, fit, from + i, inflation),
+      ),
+      predicted: predictedSurvival(
+        problem.frame,
+        set.map((k) => problem.covariates[k]),
+        fit,
+        inflation,
+      ),
+    };
   };
   const chosen = found.path.steps[choice.index];
   const bandSets = new Map(

@@ -17,6 +17,7 @@ import {
 } from "./covariate-tables.ts";
 import { goodnessTable } from "./goodness-table.ts";
 import { penalisedTable } from "./penalised-table.ts";
+import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import {
@@ -65,6 +66,8 @@ export function allTables(study: StudyResult): readonly Table[] {
           pathTable(screened),
           selectionTable(screened),
           penalisedTable(screened),
+          refitEffectsTable(study, screened),
+          predictedSurvivalTable(study, screened),
           survivalTable(screened, study.intervals),
           evidenceTable(screened),
           randomIntervalTable(screened),
