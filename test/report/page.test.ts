@@ -38,6 +38,7 @@ describe("the page", () => {
       "components",
       "recapture",
       "screen",
+      "refits",
       "survival",
       "comparison",
       "agreement",
