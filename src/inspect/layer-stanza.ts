@@ -44,7 +44,7 @@ export function layerStanza(
     lines.push(
       `    files: [${quote(folder + inName.glob + ending)}]`,
       `    date: { name: ${quote(inName.pattern)} }`,
-      `    covers: ${inName.covers} # guessed from the name; composites: { days: 16 }`,
+      `    covers: ${inName.covers} # guessed from the name; composites: 16 days anew each year`,
     );
   } else if (inBands !== undefined) {
     lines.push(

@@ -1,6 +1,8 @@
-import { addMonths, type Day, dayOf, daysInMonth, isCivilDate, isoDay, parseIsoDay } from "../data/day.ts";
+import { addMonths, type Day, dayOf, isCivilDate, parseIsoDay } from "../data/day.ts";
 import type { Period } from "../data/period.ts";
 import { InputError } from "../errors.ts";
+import { coveredPeriod, noAxis } from "./cover.ts";
+import { periodInTable } from "./date-table.ts";
 import type { ImageCover, ImageDates, LayerOptions } from "./options.ts";
 
 const TOKENS: Readonly<Record<string, string>> = {
@@ -115,27 +117,13 @@ function enough(date: NamedDate, covers: ImageCover): boolean {
   return toTheDay;
 }
 
-/** The period that an image dated `day` stands for: the month (dekad, year) that holds it, or so many days from it. */
-export function coveredPeriod(day: Day, covers: ImageCover): Period {
-  if (typeof covers === "object") return { start: day, end: day + covers.days };
-  if (covers === "bounds") throw noAxis(undefined);
-  if (covers === "day") return { start: day, end: day + 1 };
-  const [year, month, dom] = isoDay(day).split("-").map(Number);
-  if (covers === "year") return { start: dayOf(year, 1, 1), end: dayOf(year + 1, 1, 1) };
-  if (covers === "month") return { start: dayOf(year, month, 1), end: dayOf(year, month + 1, 1) };
-  // Dekads are days 1–10, 11–20 and 21 to the month's end.
-  const first = dom <= 10 ? 1 : dom <= 20 ? 11 : 21;
-  const last = first === 21 ? daysInMonth(year, month) : first + 9;
-  return { start: dayOf(year, month, first), end: dayOf(year, month, last) + 1 };
-}
-
 /** One period for each image (band) of a file that is used: its band, from 0, and what it covers. */
 export interface ImagePeriod extends Period {
   readonly band: number;
 }
 
 /**
- * The periods of a file's images. By name: one image, band `options.band` (the only one by default). By band
+ * The periods of a file's images. By name or table: one image, band `options.band` (the only one by default). By band
  * description or first and step: every band. Throws `layers.several-bands`, `layers.date-…`, `layers.bad-date`.
  */
 export function periodsOf(
@@ -146,6 +134,10 @@ export function periodsOf(
   const { date, covers, band } = options;
   if ("name" in date)
     return [{ band: bandFor(path, descriptions.length, band), ...fromName(path, date.name, covers) }];
+  if ("table" in date) {
+    if (!("periods" in date)) throw new Error("settleDates comes first");
+    return [{ band: bandFor(path, descriptions.length, band), ...periodInTable(path, date) }];
+  }
   if ("band" in date)
     return descriptions.map((text, index) => {
       const cell = `band ${index + 1}`;
@@ -156,16 +148,6 @@ export function periodsOf(
     band: index,
     ...coveredPeriod(stepped(date, index, path), covers),
   }));
-}
-
-function noAxis(file: string | undefined): InputError {
-  return new InputError({
-    name: "layers.no-time-axis",
-    expected: "a NetCDF file with a time axis, where images are dated or covered by it",
-    found: "a file without",
-    ...(file === undefined ? {} : { where: { file } }),
-    remedy: "date the images by name, band or first and step, and write what they cover",
-  });
 }
 
 /** The file's name without folder and ending. */
@@ -200,7 +182,7 @@ function bandFor(path: string, bands: number, wanted: number | undefined): numbe
   });
 }
 
-function stepped(date: Extract<ImageDates, { first: string }>, index: number, path: string): Day {
+function stepped(date: Extract<ImageDates, { step: string }>, index: number, path: string): Day {
   const text = /^\d{4}$/.test(date.first)
     ? `${date.first}-01-01`
     : date.first.length === 7

@@ -2,6 +2,7 @@ import type { RawFinding } from "../data/finding.ts";
 import type { Series } from "../data/series.ts";
 import type { Effects } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
+import { settleDates } from "./date-table.ts";
 import type { ImagePeriod } from "./dates.ts";
 import type { CellMethods } from "./netcdf/file.ts";
 import type { LayerOptions, Wanted } from "./options.ts";
@@ -41,10 +42,11 @@ export interface LayerExtraction {
  */
 export async function extractLayers(
   name: string,
-  options: LayerOptions,
+  given: LayerOptions,
   wanted: readonly Wanted[],
   effects: Effects,
 ): Promise<LayerExtraction> {
+  const options = await settleDates(given, effects.files);
   const paths = await effects.files.list(options.files);
   if (paths.length === 0) throw noFiles(name, options);
   const sides = await findSideFiles(paths, effects.files);

@@ -1,9 +1,26 @@
+import type { Period } from "../data/period.ts";
 import type { AnyPlace } from "../data/place.ts";
 import type { ValueKind } from "../data/series.ts";
 import type { QualityRule } from "./quality.ts";
 
 /** What one image of a stack stands for; `bounds`: what the time bounds of a NetCDF file say. */
-export type ImageCover = "day" | "month" | "year" | "dekad" | "bounds" | { readonly days: number };
+export type ImageCover =
+  | "day"
+  | "month"
+  | "year"
+  | "dekad"
+  | "bounds"
+  /** With `anew` the composites are counted from 1 January in each year, so that the last of a year is short. */
+  | { readonly days: number; readonly anew?: boolean };
+
+/** A table with a row for each file: its name, the first and the last day it stands for. */
+export interface DateTable {
+  readonly table: string;
+  /** Columns; without `last` the layer's `covers` says how long each image counts. */
+  readonly file: string;
+  readonly first: string;
+  readonly last?: string;
+}
 
 /** How the dates of a stack's images are known. */
 export type ImageDates =
@@ -13,6 +30,9 @@ export type ImageDates =
   | { readonly first: string; readonly step: "month" | "day" | "year" }
   /** In each band's description, by a pattern like `{yyyy}-{MM}`. */
   | { readonly band: string }
+  | DateTable
+  /** As a table gave them, once it has been read. */
+  | { readonly table: string; readonly periods: ReadonlyMap<string, Period> }
   /** On the time axis of a NetCDF file, by the CF conventions. */
   | { readonly axis: "time" };
 

@@ -1,5 +1,6 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Files, RandomAccess } from "../effects/effects.ts";
+import { settleDates } from "./date-table.ts";
 import { periodsOf } from "./dates.ts";
 import { noFiles } from "./extract.ts";
 import { describeLayer, type Layer } from "./layer.ts";
@@ -39,7 +40,8 @@ export interface LayerPlan {
  * of headers is thrown here already: unsupported encodings, broken files, unknown systems, dates that do not stand in
  * the names.
  */
-export async function planLayers(name: string, options: LayerOptions, files: Files): Promise<LayerPlan> {
+export async function planLayers(name: string, given: LayerOptions, files: Files): Promise<LayerPlan> {
+  const options = await settleDates(given, files);
   const paths = await files.list(options.files);
   if (paths.length === 0) throw noFiles(name, options);
   const sides = await findSideFiles(paths, files);

@@ -37,7 +37,7 @@ export async function fileKey(
     sums.push((await effects.files.identity(one)).sha256);
   const { scale, offset, fill, valid, system, date, band, variable, select, quality } = options;
   // Dates do not change values, but they say which bands are read.
-  const bands = "name" in date ? (band ?? 1) : "all";
+  const bands = "name" in date || "table" in date ? (band ?? 1) : "all";
   // Added only where they are said, so that what was kept before there were any is still found.
   const more = [variable, select, quality].some((one) => one !== undefined)
     ? [variable, select, quality]

@@ -76,7 +76,7 @@ export function orderImages(
       value: isoDay(cut[0].start),
       count: cut.length,
       remedy:
-        "check what the images cover; composites that start anew each year overlap at its end, which is right",
+        "check what the images cover; for composites counted anew each year write e.g. covers: 16 days anew each year",
     });
   return { images, findings };
 }

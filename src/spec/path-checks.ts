@@ -17,10 +17,12 @@ function inputPaths(raw: RawPipeline): (readonly [KeyPath, string])[] {
       paths.push([["records", i, "files", j], file]);
     });
   });
-  for (const [name, { files }] of Object.entries(raw.layers))
+  for (const [name, { files, date }] of Object.entries(raw.layers)) {
     files.forEach((file, j) => {
       paths.push([["layers", name, "files", j], file]);
     });
+    if ("table" in date) paths.push([["layers", name, "date", "table"], date.table]);
+  }
   for (const [name, { file }] of Object.entries(raw["ready-made"]))
     paths.push([["ready-made", name, "file"], file]);
   return paths.flatMap(([path, file]) => (file === undefined ? [] : [[path, file] as const]));

@@ -112,12 +112,12 @@ function readCover(text: string): ImageCover {
     case "dekad":
       return text;
     default:
-      return { days: Number.parseInt(text, 10) };
+      return { days: Number.parseInt(text, 10), ...(text.endsWith("anew each year") ? { anew: true } : {}) };
   }
 }
 
 export function readLayer(raw: RawPipeline["layers"][string]): LayerOptions {
-  return given({ ...raw, covers: readCover(raw.covers) });
+  return given({ ...raw, date: given(raw.date), covers: readCover(raw.covers) });
 }
 
 export function readReadyMade(raw: RawPipeline["ready-made"]): Record<string, ReadyMadeOptions> {

@@ -263,7 +263,7 @@ const DATE_PART = /^[^\n]*\{[yMDd]+\}[^\n]*$/;
 export const layer = keys("a stack of images", {
   files: files("layers/green_*.tif"),
   date: oneOf(
-    "how the images are dated: { name: … }, { first: …, step: … } or { band: … }",
+    "how the images are dated: { name: … }, { first: …, step: … }, { band: … } or { table: … }",
     [
       keys("dates in the names of the files", {
         name: text(
@@ -283,13 +283,19 @@ export const layer = keys("a stack of images", {
           DATE_PART,
         ),
       }),
+      keys("dates in a table with a row for each file", {
+        table: inputPath("the CSV file", "layers/dates.csv"),
+        file: column("the file's name, with or without its folder and ending", "file"),
+        first: column("the first day it stands for, yyyy-MM-dd", "first"),
+        last: column("the last day it stands for; without it, covers says how long", "last").optional(),
+      }),
     ],
     { name: "green_{yyyy}_{MM}" },
   ),
   covers: text(
-    "what one image stands for: day, month, year, dekad, or a number of days",
+    "what one image stands for: day, month, year, dekad, or a number of days, which may start anew each year",
     "16 days",
-    /^(?:day|month|year|dekad|[1-9]\d{0,2} days)$/,
+    /^(?:day|month|year|dekad|[1-9]\d{0,2} days(?: anew each year)?)$/,
   ),
   scale: number("what raw values are multiplied by, instead of what the file says", 0.0001).optional(),
   offset: number("what is added after the scale, instead of what the file says", 0).optional(),

@@ -1,8 +1,9 @@
 import { describe, expect, test } from "vitest";
 import { isoDay } from "../../src/data/day.ts";
 import { InputError } from "../../src/errors.ts";
+import { settleDates } from "../../src/layers/date-table.ts";
 import { periodsOf } from "../../src/layers/dates.ts";
-import type { ImageCover, ImageDates } from "../../src/layers/options.ts";
+import type { ImageCover, ImageDates, LayerOptions } from "../../src/layers/options.ts";
 import { orderImages } from "../../src/layers/series.ts";
 
 const periods = (
@@ -136,5 +137,120 @@ describe("images in order of time", () => {
     expect(images.length).toBe(46);
     expect(images[22].end - images[22].start).toBe(13);
     expect(findings.map((one) => [one.kind, one.count])).toEqual([["layer-overlap", 1]]);
+  });
+});
+
+describe("composites that are counted anew each year", () => {
+  const spans = (year: number, step: number, count: number) =>
+    Array.from({ length: count }, (_, i) =>
+      named(`A${year}${String(1 + step * i).padStart(3, "0")}.tif`, "A{yyyy}{DDD}", {
+        days: step,
+        anew: true,
+      }),
+    );
+  test("16 days: 23 in a year, the last of 13 days, or 14 in a leap year", () => {
+    expect(spans(2003, 16, 23).at(-1)).toBe("0: 2003-12-19 to 2003-12-31");
+    expect(spans(2004, 16, 23).at(-1)).toBe("0: 2004-12-18 to 2004-12-31");
+  });
+
+  test("8 days: 46 in a year, the last of 5 days, or 6", () => {
+    expect(spans(2003, 8, 46).at(-1)).toBe("0: 2003-12-27 to 2003-12-31");
+    expect(spans(2004, 8, 46).at(-1)).toBe("0: 2004-12-26 to 2004-12-31");
+  });
+
+  test("two whole years have neither gap nor overlap, and a missing composite is a gap", () => {
+    const stack = [2003, 2004].flatMap((year) =>
+      Array.from({ length: 23 }, (_, i) => `A${year}${String(1 + 16 * i).padStart(3, "0")}.tif`),
+    );
+    const found = (paths: readonly string[]) =>
+      orderImages(
+        "x",
+        paths.map((path) => ({
+          path,
+          periods: periodsOf(path, [""], {
+            date: { name: "A{yyyy}{DDD}" },
+            covers: { days: 16, anew: true },
+          }),
+        })),
+      ).findings.map((one) => [one.kind, one.count]);
+    expect(found(stack)).toEqual([]);
+    expect(found(stack.filter((path) => path !== "A2003353.tif"))).toEqual([["layer-gap", 13]]);
+  });
+
+  test("dekads: 36 in a year without gap or overlap, the last of February of 8 or 9 days", () => {
+    const paths = [2003, 2004].flatMap((year) =>
+      Array.from({ length: 36 }, (_, i) => `d_${year}_${i + 1}.tif`),
+    );
+    const { images, findings } = orderImages(
+      "x",
+      paths.map((path) => ({
+        path,
+        periods: periodsOf(path, [""], { date: { name: "d_{yyyy}_{dekad}" }, covers: "dekad" }),
+      })),
+    );
+    expect(findings).toEqual([]);
+    expect([images[5], images[41]].map((one) => one.end - one.start)).toEqual([8, 9]);
+  });
+});
+
+describe("dates in a table", () => {
+  const OPTIONS: LayerOptions = {
+    files: ["s/*.tif"],
+    date: { table: "dates.csv", file: "image", first: "from", last: "to" },
+    covers: "month",
+    unit: "1",
+    kind: "mean",
+  };
+  const settled = (csv: string, options = OPTIONS) => settleDates(options, { readText: async () => csv });
+  const failure = async (work: Promise<unknown>) =>
+    work.then(
+      () => undefined,
+      (error: unknown) => {
+        if (!(error instanceof InputError)) throw error;
+        return [error.facts.name, error.facts.where?.line, error.facts.where?.column];
+      },
+    );
+  const CSV =
+    "image,from,to\ns/a.tif,2001-01-05,2001-01-20\nb.tif,2001-01-21,2001-01-21\nc,2001-02-01,2001-03-31\n";
+
+  test("whole path, name, or name without ending; the last day is included; covers is not asked", async () => {
+    const options = await settled(CSV);
+    const texts = ["s/a.tif", "s/b.tif", "s/c.tif"].map((path) => {
+      const [one] = periodsOf(path, [""], options);
+      return `${isoDay(one.start)} to ${isoDay(one.end - 1)}`;
+    });
+    expect(texts).toEqual([
+      "2001-01-05 to 2001-01-20",
+      "2001-01-21 to 2001-01-21",
+      "2001-02-01 to 2001-03-31",
+    ]);
+    expect(refused(() => periodsOf("s/d.tif", [""], options))).toBe("layers.date-not-found");
+  });
+
+  test("without last days, covers says how long each image counts", async () => {
+    const date = { table: "dates.csv", file: "image", first: "from" };
+    const options = await settled(CSV, { ...OPTIONS, date });
+    const [one] = periodsOf("s/a.tif", [""], options);
+    expect([isoDay(one.start), isoDay(one.end)]).toEqual(["2001-01-01", "2001-02-01"]);
+  });
+
+  test("what is wrong is told by line and column", async () => {
+    expect(await failure(settled("image,from,to\na,2001-1-5,2001-01-20\n"))).toEqual([
+      "layers.bad-date",
+      2,
+      2,
+    ]);
+    expect(await failure(settled("image,from,to\na,2001-01-05,2001-01-04\n"))).toEqual([
+      "layers.bad-date",
+      2,
+      3,
+    ]);
+    const twice = "image,from,to\na,2001-01-05,2001-01-06\na,2001-02-05,2001-02-06\n";
+    expect(await failure(settled(twice))).toEqual(["layers.date-repeated", 3, 1]);
+    expect(await failure(settled("image,from\na,2001-01-05\n"))).toEqual([
+      "table.column-missing",
+      1,
+      undefined,
+    ]);
   });
 });

@@ -611,7 +611,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "covers: fortnight",
     name: "spec.format",
     message:
-      'p.yaml:29:13 (layers > snow > covers): expected what one image stands for: day, month, year, dekad, or a number of days, found "fortnight"; write it like 16 days',
+      'p.yaml:29:13 (layers > snow > covers): expected what one image stands for: day, month, year, dekad, or a number of days, which may start anew each year, found "fortnight"; write it like 16 days',
   },
   {
     title: "forms: valid with one value",

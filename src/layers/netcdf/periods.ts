@@ -1,7 +1,8 @@
 import { type Day, isoDay } from "../../data/day.ts";
 import type { RawFinding } from "../../data/finding.ts";
 import { InputError } from "../../errors.ts";
-import { coveredPeriod, type ImagePeriod } from "../dates.ts";
+import { coveredPeriod } from "../cover.ts";
+import type { ImagePeriod } from "../dates.ts";
 import type { ImageCover } from "../options.ts";
 import { boundsOf } from "./axes.ts";
 import { civilDay, labelOf } from "./calendar.ts";
