@@ -4,7 +4,7 @@ import type { Effects } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { settleDates } from "./date-table.ts";
 import type { ImagePeriod } from "./dates.ts";
-import type { CellMethods } from "./netcdf/file.ts";
+import type { CellMethods } from "./netcdf/cell-methods.ts";
 import type { LayerOptions, Wanted } from "./options.ts";
 import type { PixelTest } from "./quality.ts";
 import {
@@ -53,7 +53,7 @@ export async function extractLayers(
   // One hash a place, not one a place and file.
   const keyed = wanted.map((one) => ({ ...one, key: placeKey(one.place, one.use) }));
   const { quality } = options;
-  const index = quality === undefined ? undefined : await indexQuality(name, options, quality, effects);
+  const index = quality === undefined ? undefined : await indexQuality(name, options, quality, effects.files);
   const known: KnownPlaces = new Map();
   const read: FileValues[] = [];
   const findings: RawFinding[] = [];
@@ -115,7 +115,7 @@ async function withQuality(
   work: (test: ((image: number) => PixelTest) | undefined) => Promise<readonly Kept[]>,
 ): Promise<readonly Kept[]> {
   if (options.quality === undefined) return work(undefined);
-  const open = await openQuality(name, path, grid, periods, options, options.quality, index, effects);
+  const open = await openQuality(name, path, grid, periods, options, options.quality, index, effects.files);
   try {
     return await work(open.test);
   } finally {

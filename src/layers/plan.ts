@@ -7,6 +7,7 @@ import { describeLayer, type Layer } from "./layer.ts";
 import { netcdfStack } from "./netcdf/file.ts";
 import { isNetcdf, openNetcdf } from "./netcdf/open.ts";
 import type { LayerOptions } from "./options.ts";
+import { indexQuality, withoutQuality } from "./quality-stack.ts";
 import { type DatedImage, orderImages } from "./series.ts";
 import { findSideFiles, sideList } from "./side.ts";
 import { checkFit, resolveSystem } from "./system.ts";
@@ -76,6 +77,10 @@ export async function planLayers(name: string, given: LayerOptions, files: Files
       file.close();
     }
     await turn();
+  }
+  if (options.quality !== undefined) {
+    const index = await indexQuality(name, options, options.quality, files);
+    found.push(...withoutQuality(name, dated, index));
   }
   const { images, findings } = orderImages(name, dated);
   return { name, files: planned, images, findings: [...found, ...findings], systems: [...systems] };

@@ -1,6 +1,6 @@
 import { type Day, isoDay } from "../data/day.ts";
 import type { RawFinding } from "../data/finding.ts";
-import type { Effects, RandomAccess } from "../effects/effects.ts";
+import type { Files, RandomAccess } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { type ImagePeriod, periodsOf } from "./dates.ts";
 import type { Grid } from "./grid.ts";
@@ -51,10 +51,10 @@ export async function indexQuality(
   name: string,
   options: LayerOptions,
   quality: QualityOptions,
-  effects: Pick<Effects, "files">,
+  files: Files,
 ): Promise<QualityIndex | undefined> {
   if (quality.files === undefined) return undefined;
-  const paths = await effects.files.list(quality.files);
+  const paths = await files.list(quality.files);
   if (paths.length === 0)
     throw new InputError({
       name: "layers.no-files",
@@ -65,9 +65,9 @@ export async function indexQuality(
     });
   const index = new Map<Day, QualityImage>();
   for (const path of paths) {
-    const file = effects.files.open(path);
+    const file = files.open(path);
     try {
-      const periods = await periodsIn(file, name, optionsOf(options, quality), effects);
+      const periods = await periodsIn(file, name, optionsOf(options, quality), files);
       for (const { start, band } of periods) if (!index.has(start)) index.set(start, { path, band });
     } finally {
       file.close();
@@ -80,7 +80,7 @@ async function periodsIn(
   file: RandomAccess,
   name: string,
   options: LayerOptions,
-  { files }: Pick<Effects, "files">,
+  files: Files,
 ): Promise<readonly ImagePeriod[]> {
   if (isNetcdf(file)) {
     const dataset = await openNetcdf(file);
@@ -135,7 +135,7 @@ export async function openQuality(
   options: LayerOptions,
   quality: QualityOptions,
   index: QualityIndex | undefined,
-  effects: Pick<Effects, "files">,
+  inputs: Files,
 ): Promise<OpenQuality> {
   const own = optionsOf(options, quality);
   const places = periods.map(({ start, band }): QualityImage | undefined =>
@@ -157,9 +157,9 @@ export async function openQuality(
   const readers = new Map<string, RawReader>();
   try {
     for (const one of files) {
-      const file = effects.files.open(one);
+      const file = inputs.open(one);
       closing.unshift(() => file.close());
-      const reader = await rawReader(file, name, own, effects, closing);
+      const reader = await rawReader(file, name, own, inputs, closing);
       if (!sameGrid(reader.grid, grid)) throw otherGrid(one, reader.grid, path, grid);
       readers.set(one, reader);
     }
@@ -189,7 +189,7 @@ async function rawReader(
   file: RandomAccess,
   name: string,
   options: LayerOptions,
-  { files }: Pick<Effects, "files">,
+  files: Files,
   closing: (() => void)[],
 ): Promise<RawReader> {
   if (isNetcdf(file)) {

@@ -1,11 +1,13 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Interval, Occasion } from "../data/occasion.ts";
-import type { Where } from "../data/place.ts";
+import type { AnyPlace } from "../data/place.ts";
 import type { Series, Site } from "../data/series.ts";
 import type { Effects } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
-import { extractLayers } from "../layers/extract.ts";
+import { extractLayers, type LayerExtraction } from "../layers/extract.ts";
+import { statisticFinding } from "../layers/netcdf/cell-methods.ts";
 import type { Wanted } from "../layers/options.ts";
+import { type Refusal, refusalsOf } from "../layers/refusals.ts";
 import type { LayerCovariate, Spec } from "../spec/spec.ts";
 import { readRecords } from "../stations/read-records.ts";
 import { readStationList } from "../stations/station-list.ts";
@@ -25,13 +27,15 @@ export interface Ingested {
   readonly yearsOf?: Int32Array;
   /** Undefined where the pipeline only builds the covariate set. */
   readonly captures: CaptureResult | undefined;
-  readonly places: ReadonlyMap<string, Where>;
+  readonly places: ReadonlyMap<string, AnyPlace>;
   readonly sites: readonly Site[];
   readonly stationSeries: readonly Series[];
   /** Series of a layer covariate by `layerKey`. */
   readonly layerSeries: ReadonlyMap<string, Series>;
   /** By table and column. */
   readonly readyMade: ReadonlyMap<string, ReadonlyMap<string, ReadyMadeColumn>>;
+  /** What the layers' quality refused, by layer and reading. */
+  readonly refusals: readonly Refusal[];
   readonly findings: readonly RawFinding[];
 }
 
@@ -70,6 +74,7 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
   effects.checkInterrupted();
 
   const layerSeries = new Map<string, Series>();
+  const refusals: Refusal[] = [];
   for (const [name, wanted] of withLayers ? wantedByLayer(spec, places) : []) {
     const extraction = keep(
       await extractLayers(
@@ -82,6 +87,14 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
     wanted.forEach((one, i) => {
       layerSeries.set(one.key, extraction.series[i]);
     });
+    refusals.push(
+      ...refusalsOf(
+        name,
+        wanted.map((one) => one.wanted),
+        extraction,
+      ),
+    );
+    findings.push(...methodFindings(spec, name, extraction));
   }
   const readyMade = new Map<string, ReadonlyMap<string, ReadyMadeColumn>>();
   for (const [name, options] of Object.entries(spec.readyMade)) {
@@ -98,12 +111,23 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
     stationSeries: records.series,
     layerSeries,
     readyMade,
+    refusals,
     findings,
   };
 }
 
+/** Statistics that contradict what a layer's file says its values are. */
+function methodFindings(spec: Spec, layer: string, { methods }: LayerExtraction): RawFinding[] {
+  if (methods === undefined) return [];
+  return spec.covariates.flatMap((one) => {
+    if (one.source !== "layer" || one.layer !== layer) return [];
+    const found = statisticFinding(one.name, one.statistic.type, layer, methods);
+    return found === undefined ? [] : [found];
+  });
+}
+
 /** For each layer the places it is read at, each way of reading once. */
-function wantedByLayer(spec: Spec, places: ReadonlyMap<string, Where>) {
+function wantedByLayer(spec: Spec, places: ReadonlyMap<string, AnyPlace>) {
   const byLayer = new Map<string, { key: string; wanted: Wanted }[]>();
   for (const one of spec.covariates) {
     if (one.source !== "layer") continue;

@@ -70,6 +70,7 @@ export async function runStages(
     screened,
     comparison,
     findings,
+    refusals: ingested.refusals,
   };
   return { study, ingested, set };
 }

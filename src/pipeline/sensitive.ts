@@ -1,4 +1,4 @@
-import type { Position, Where } from "../data/place.ts";
+import type { AnyPlace, Position, Where } from "../data/place.ts";
 import type { Spec } from "../spec/spec.ts";
 import { coarsen } from "../study/coarsen.ts";
 
@@ -9,18 +9,23 @@ export function positionRule(study: Spec["study"]): (position: Position) => Posi
 
 /**
  * Places as they may be shown. In a sensitive study points go to the centre of their grid cell and areas become the box
- * around their coarsened corners, which tells the neighbourhood and nothing of the outline.
+ * around their coarsened corners, which tells the neighbourhood and nothing of the outline. Places that move become the
+ * box around their positions, coarsened likewise; single fixes are never shown.
  */
-export function shownPlaces(places: Iterable<Where>, study: Spec["study"]): Where[] {
+export function shownPlaces(places: Iterable<AnyPlace>, study: Spec["study"]): Where[] {
   const rule = positionRule(study);
   return [...places].map((place): Where => {
-    if (!study.sensitive) return place;
+    if (!study.sensitive && place.type !== "moving") return place;
     if (place.type === "point") return { ...place, position: rule(place.position) };
-    const corners = place.polygons.flat(2).map(rule);
+    const positions =
+      place.type === "moving" ? place.fixes.map((one) => one.position) : place.polygons.flat(2);
+    const corners = positions.map(rule);
     const longitudes = corners.map(([longitude]) => longitude);
     const latitudes = corners.map(([, latitude]) => latitude);
-    const [west, east] = [Math.min(...longitudes), Math.max(...longitudes)];
-    const [south, north] = [Math.min(...latitudes), Math.max(...latitudes)];
+    const least = (values: readonly number[]) => values.reduce((a, b) => Math.min(a, b));
+    const most = (values: readonly number[]) => values.reduce((a, b) => Math.max(a, b));
+    const [west, east] = [least(longitudes), most(longitudes)];
+    const [south, north] = [least(latitudes), most(latitudes)];
     const box: Position[] = [
       [west, south],
       [east, south],
@@ -28,6 +33,6 @@ export function shownPlaces(places: Iterable<Where>, study: Spec["study"]): Wher
       [west, north],
       [west, south],
     ];
-    return { ...place, polygons: [[box]] };
+    return { type: "area", name: place.name, polygons: [[box]] };
   });
 }

@@ -355,9 +355,54 @@ function rangeProblems(spec: Spec): Problem[] {
   return problems;
 }
 
+/** Layers whose quality or time axis needs what is not written, and areas asked of places that move. */
+function layerProblems(spec: Spec): Problem[] {
+  const layers = Object.entries(spec.layers).flatMap(([name, { covers, date, quality }]): Problem[] => [
+    ...(covers === "bounds" && !("axis" in date)
+      ? [
+          conflict(
+            ["layers", name, "covers"],
+            "covers: bounds only with date: { axis: time }",
+            "bounds",
+            "write what an image covers, e.g. month, or date: { axis: time }",
+          ),
+        ]
+      : []),
+    ...(quality !== undefined &&
+    quality.files === undefined &&
+    quality.band === undefined &&
+    quality.variable === undefined
+      ? [
+          needs(
+            ["layers", name, "quality"],
+            "files, a band or a variable, where the quality numbers stand",
+            "none of them",
+            'add e.g. files: ["layers/quality_*.tif"] or variable: quality',
+            true,
+          ),
+        ]
+      : []),
+  ]);
+  const areas = spec.covariates.flatMap((one, i): Problem[] => {
+    if (one.source !== "layer" || one.use.by !== "area") return [];
+    const place = Object.hasOwn(spec.places, one.place) ? spec.places[one.place] : undefined;
+    if (place === undefined || !("fixes" in place)) return [];
+    const remedy = "write by: nearest or bilinear, or by: radius for a circle round each position";
+    return [conflict(["covariates", i, "by"], "a place with an area", "a place that moves", remedy)];
+  });
+  return [...layers, ...areas];
+}
+
 /** What the parts of a pipeline say of each other. */
 export function crossProblems(spec: Spec): Problem[] {
-  return [nameProblems, seriesProblems, infillProblems, needProblems, modelProblems, rangeProblems].flatMap(
-    (check) => check(spec),
-  );
+  const checks = [
+    nameProblems,
+    seriesProblems,
+    infillProblems,
+    needProblems,
+    modelProblems,
+    rangeProblems,
+    layerProblems,
+  ];
+  return checks.flatMap((check) => check(spec));
 }

@@ -6,7 +6,7 @@ import type { KeyPath } from "./path.ts";
 import { pathProblems } from "./path-checks.ts";
 import { orderedFacts, type Problem, placeOf, refuseProblems } from "./problems.ts";
 import { covariateUnit, readCovariates, readDerived, sourcesOf } from "./read-covariates.ts";
-import { readCaptures, readLayer, readReadyMade, readRecords, readStudy } from "./read-inputs.ts";
+import { readCaptures, readLayer, readPlaces, readReadyMade, readRecords, readStudy } from "./read-inputs.ts";
 import {
   readCollinearity,
   readDuplicates,
@@ -56,7 +56,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     seed: raw.seed,
     occasions: raw.occasions === undefined ? undefined : given(raw.occasions),
     captures: raw.captures === undefined ? undefined : readCaptures(raw.captures),
-    places: raw.places,
+    places: readPlaces(raw.places),
     stations: raw.stations === undefined ? undefined : given(raw.stations),
     records: raw.records.map((one, i) => readRecords(one, yaml, ["records", i], problems)),
     layers: mapValues(raw.layers, readLayer),

@@ -12,16 +12,20 @@ function inputPaths(raw: RawPipeline): (readonly [KeyPath, string])[] {
   ];
   for (const [name, place] of Object.entries(raw.places))
     if ("file" in place) paths.push([["places", name, "file"], place.file]);
+    else if ("fixes" in place) paths.push([["places", name, "fixes"], place.fixes]);
   raw.records.forEach(({ files }, i) => {
     files.forEach((file, j) => {
       paths.push([["records", i, "files", j], file]);
     });
   });
-  for (const [name, { files, date }] of Object.entries(raw.layers)) {
+  for (const [name, { files, date, quality }] of Object.entries(raw.layers)) {
     files.forEach((file, j) => {
       paths.push([["layers", name, "files", j], file]);
     });
     if ("table" in date) paths.push([["layers", name, "date", "table"], date.table]);
+    quality?.files?.forEach((file, j) => {
+      paths.push([["layers", name, "quality", "files", j], file]);
+    });
   }
   for (const [name, { file }] of Object.entries(raw["ready-made"]))
     paths.push([["ready-made", name, "file"], file]);

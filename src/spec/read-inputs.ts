@@ -1,6 +1,7 @@
-import type { ImageCover, LayerOptions } from "../layers/options.ts";
+import type { ImageCover, LayerOptions, QualityOptions } from "../layers/options.ts";
+import type { QualityRule } from "../layers/quality.ts";
 import type { DateColumn, RecordOptions, TableOptions } from "../stations/options.ts";
-import type { CaptureOptions, ReadyMadeOptions } from "../study/options.ts";
+import type { CaptureOptions, PlaceOptions, ReadyMadeOptions } from "../study/options.ts";
 import { given, mapValues } from "./given.ts";
 import type { KeyPath } from "./path.ts";
 import type { Problem } from "./problems.ts";
@@ -110,6 +111,7 @@ function readCover(text: string): ImageCover {
     case "month":
     case "year":
     case "dekad":
+    case "bounds":
       return text;
     default:
       return { days: Number.parseInt(text, 10), ...(text.endsWith("anew each year") ? { anew: true } : {}) };
@@ -117,7 +119,25 @@ function readCover(text: string): ImageCover {
 }
 
 export function readLayer(raw: RawPipeline["layers"][string]): LayerOptions {
-  return given({ ...raw, date: given(raw.date), covers: readCover(raw.covers) });
+  const quality = raw.quality === undefined ? undefined : readQuality(raw.quality);
+  return given({ ...raw, date: given(raw.date), covers: readCover(raw.covers), quality });
+}
+
+function readQuality(raw: NonNullable<RawPipeline["layers"][string]["quality"]>): QualityOptions {
+  const pass = raw.pass.map(({ bits, values }): QualityRule => {
+    if (bits === undefined) return { values };
+    const [first, last = first] = bits.split(" to ").map(Number);
+    return { bits: [first, last], values };
+  });
+  return given({ ...raw, date: raw.date === undefined ? undefined : given(raw.date), pass });
+}
+
+export function readPlaces(raw: RawPipeline["places"]): Record<string, PlaceOptions> {
+  return mapValues(raw, (place): PlaceOptions => {
+    if (!("fixes" in place)) return place;
+    const { "at least": least, ...rest } = place;
+    return given({ ...rest, least });
+  });
 }
 
 export function readReadyMade(raw: RawPipeline["ready-made"]): Record<string, ReadyMadeOptions> {

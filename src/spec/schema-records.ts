@@ -260,10 +260,9 @@ export const records = oneOf("station records: long, wide, months across or days
 
 const DATE_PART = /^[^\n]*\{[yMDd]+\}[^\n]*$/;
 
-export const layer = keys("a stack of images", {
-  files: files("layers/green_*.tif"),
-  date: oneOf(
-    "how the images are dated: { name: … }, { first: …, step: … }, { band: … } or { table: … }",
+const imageDates = () =>
+  oneOf(
+    "how the images are dated: { name: … }, { first: …, step: … }, { band: … }, { table: … } or { axis: time }",
     [
       keys("dates in the names of the files", {
         name: text(
@@ -289,13 +288,50 @@ export const layer = keys("a stack of images", {
         first: column("the first day it stands for, yyyy-MM-dd", "first"),
         last: column("the last day it stands for; without it, covers says how long", "last").optional(),
       }),
+      keys("dates on the time axis of a NetCDF file", {
+        axis: word("the axis that holds the dates", "time"),
+      }),
     ],
     { name: "green_{yyyy}_{MM}" },
-  ),
+  );
+
+const quality = keys(
+  "quality numbers on the same grid, which say pixel by pixel what counts",
+  {
+    files: files("layers/quality_*.tif").optional(),
+    date: imageDates().optional(),
+    band: number("the band with the quality numbers, from 1", 2, {
+      min: 1,
+      max: 10_000,
+      whole: true,
+    }).optional(),
+    variable: text("the variable with the quality numbers, in NetCDF files", "quality").optional(),
+    pass: someOf(
+      "what lets a pixel pass; all must hold",
+      keys(
+        "bits and the values that pass",
+        {
+          bits: text(
+            "the bits, from 0 for the lowest: 2, or 0 to 1; the whole number if left out",
+            "0 to 1",
+            /^\d{1,2}(?: to \d{1,2})?$/,
+          ).optional(),
+          values: someOf("the values that pass", number("a value", 0, { min: 0, whole: true }), [0, 1]),
+        },
+        { bits: "0 to 1", values: [0, 1] },
+      ),
+    ),
+  },
+  { files: ["layers/quality_*.tif"], pass: [{ bits: "0 to 1", values: [0, 1] }] },
+);
+
+export const layer = keys("a stack of images", {
+  files: files("layers/green_*.tif"),
+  date: imageDates(),
   covers: text(
-    "what one image stands for: day, month, year, dekad, or a number of days, which may start anew each year",
+    "what one image stands for: day, month, year, dekad, a number of days, which may start anew each year, or bounds (those of the file's time axis)",
     "16 days",
-    /^(?:day|month|year|dekad|[1-9]\d{0,2} days(?: anew each year)?)$/,
+    /^(?:day|month|year|dekad|bounds|[1-9]\d{0,2} days(?: anew each year)?)$/,
   ),
   scale: number("what raw values are multiplied by, instead of what the file says", 0.0001).optional(),
   offset: number("what is added after the scale, instead of what the file says", 0).optional(),
@@ -311,6 +347,13 @@ export const layer = keys("a stack of images", {
     max: 10_000,
     whole: true,
   }).optional(),
+  variable: text("which variable of NetCDF files with several", "pr").optional(),
+  select: named(
+    "which entry of each further dimension of a NetCDF variable",
+    "the name of a dimension",
+    oneOf("the coordinate's value, or a name", [z.number(), text("a name", "r1i1p1f1")], 850),
+  ).optional(),
+  quality: quality.optional(),
   unit: unit("the layer"),
   kind: valueKind(),
   system: text("the coordinate system, where the file does not say it", "EPSG:32632").optional(),

@@ -100,7 +100,7 @@ export const captures = oneOf("the captures, by one of three layouts", [
   }),
 ]);
 
-export const place = oneOf("a feature of a GeoJSON file, or a point", [
+export const place = oneOf("a feature of a GeoJSON file, a point, or a table of dated positions", [
   keys("a feature of a GeoJSON file", {
     file: inputPath("the GeoJSON file", "places.geojson"),
     where: stated(
@@ -115,6 +115,26 @@ export const place = oneOf("a feature of a GeoJSON file, or a point", [
   keys("a point in WGS 84 degrees", {
     longitude: number("the longitude in degrees", 8.25, { min: -180, max: 180 }),
     latitude: number("the latitude in degrees", 49.5, { min: -90, max: 90 }),
+  }),
+  keys("a place that moves: a table of dated positions, a row each", {
+    fixes: inputPath("the CSV file of positions", "fixes.csv"),
+    date: column("the date, with the time of day behind it if there is one (UTC)", "time"),
+    format: dateFormat(),
+    longitude: column("the longitude in WGS 84 degrees", "lon"),
+    latitude: column("the latitude in WGS 84 degrees", "lat"),
+    animal: column("the animal's mark", "ring").optional(),
+    where: stated(
+      named("the rows to use, by column", "the name of a column", text("the cell's value", "roost")),
+      {},
+    ),
+    weigh: stated(
+      choice("what a fix counts in the mean of an image, one or the time it stands for", ["fixes", "time"]),
+      "fixes",
+    ),
+    "at least": stated(
+      number("the fixes an image's period must have", 5, { min: 1, max: 1_000_000, whole: true }),
+      5,
+    ),
   }),
 ]);
 

@@ -61,8 +61,26 @@ export interface CountCaptures {
 
 export type CaptureOptions = DatedCaptures | ZeroOneCaptures | CountCaptures;
 
-/** A place: a feature of a GeoJSON file (point, polygon, multipolygon), or a point written out. */
+/** A place that moves: a CSV with a row per dated position. */
+export interface MovingPlaceOptions {
+  readonly fixes: string;
+  /** Column with the date, the time of day behind it (UTC, or with its offset). */
+  readonly date: string;
+  /** Pattern of the date without the time of day. */
+  readonly format: string;
+  readonly longitude: string;
+  readonly latitude: string;
+  /** Column that tells animals apart. */
+  readonly animal?: string;
+  /** Rows that are used, by column and value. */
+  readonly where: Readonly<Record<string, string>>;
+  readonly weigh: "fixes" | "time";
+  readonly least: number;
+}
+
+/** A place: a feature of a GeoJSON file (point, polygon, multipolygon), a point written out, or one that moves. */
 export type PlaceOptions =
+  | MovingPlaceOptions
   | { readonly file: string; readonly where: Readonly<Record<string, string>> }
   | { readonly longitude: number; readonly latitude: number };
 

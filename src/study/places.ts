@@ -1,19 +1,20 @@
 import type { RawFinding } from "../data/finding.ts";
-import type { Polygon, Where } from "../data/place.ts";
+import type { AnyPlace, Polygon, Where } from "../data/place.ts";
 import type { Files } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
+import { readFixes } from "./fixes.ts";
 import { type GeoFeature, readFeatures } from "./geojson.ts";
 import type { PlaceOptions } from "./options.ts";
 import { checkPosition, readPolygon } from "./rings.ts";
 
 export interface PlacesResult {
-  readonly places: ReadonlyMap<string, Where>;
+  readonly places: ReadonlyMap<string, AnyPlace>;
   readonly findings: readonly RawFinding[];
 }
 
 /**
  * Reads the places: a feature of a GeoJSON file (RFC 7946; point, polygon or multipolygon, WGS 84) chosen by its
- * properties, or a point written out in the pipeline.
+ * properties, a point written out in the pipeline, or a table of dated positions.
  * Throws `study.no-feature`, `study.several-features`, `study.geometry-type`, and what `readFeatures`,
  * `checkPosition` and `readPolygon` throw.
  */
@@ -22,8 +23,15 @@ export async function readPlaces(
   files: Files,
 ): Promise<PlacesResult> {
   const read = new Map<string, readonly GeoFeature[]>();
-  const places = new Map<string, Where>();
+  const places = new Map<string, AnyPlace>();
+  const findings: RawFinding[] = [];
   for (const [name, one] of Object.entries(options)) {
+    if ("fixes" in one) {
+      const moving = await readFixes(name, one, files);
+      places.set(name, moving.place);
+      findings.push(...moving.findings);
+      continue;
+    }
     if (!("file" in one)) {
       const position = checkPosition([one.longitude, one.latitude], { cell: `places.${name}` });
       places.set(name, { type: "point", name, position });
@@ -33,7 +41,7 @@ export async function readPlaces(
     read.set(one.file, features);
     places.set(name, whereOf(name, pick(features, one.where, one.file, name), one.file));
   }
-  return { places, findings: [] };
+  return { places, findings };
 }
 
 function pick(

@@ -17,6 +17,7 @@ import {
 } from "./covariate-tables.ts";
 import { goodnessTable } from "./goodness-table.ts";
 import { penalisedTable } from "./penalised-table.ts";
+import { qualityTable } from "./quality-table.ts";
 import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
@@ -41,6 +42,7 @@ export function allTables(study: StudyResult): readonly Table[] {
     intervalValuesTable(study),
     ...(study.occasions.length > 0 ? [occasionsTable(study)] : []),
     intervalsTable(study),
+    ...(study.refusals !== undefined && study.refusals.length > 0 ? [qualityTable(study.refusals)] : []),
     ...(diagnosis
       ? [
           correlationsTable(diagnosis),

@@ -5,6 +5,7 @@ import type { Components } from "../components/result.ts";
 import type { CovariateMatrix, LeftOut } from "../covariates/result.ts";
 import type { Finding } from "../data/finding.ts";
 import type { Interval, Occasion } from "../data/occasion.ts";
+import type { Refusal } from "../layers/refusals.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { GoodnessOfFit } from "../survival/goodness-of-fit.ts";
 
@@ -30,4 +31,6 @@ export interface StudyResult {
   readonly screened: ScreenResult | undefined;
   readonly comparison: Comparison | undefined;
   readonly findings: readonly Finding[];
+  /** What the layers' quality refused; empty or absent where none was asked. */
+  readonly refusals?: readonly Refusal[];
 }

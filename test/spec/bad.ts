@@ -9,6 +9,46 @@ export interface BadPipeline {
 
 export const BAD_PIPELINES: readonly BadPipeline[] = [
   {
+    title: "layers: bounds without a time axis",
+    from: "    covers: month\n",
+    to: "    covers: bounds\n",
+    name: "spec.conflict",
+    message:
+      "p.yaml:29:13 (layers > snow > covers): expected covers: bounds only with date: { axis: time }, found bounds; write what an image covers, e.g. month, or date: { axis: time }",
+  },
+  {
+    title: "layers: quality that stands nowhere",
+    from: "    valid: [0, 100]\n",
+    to: "    quality: { pass: [{ values: [0] }] }\n",
+    name: "spec.needs",
+    message:
+      'p.yaml:30:5 (layers > snow > quality): expected files, a band or a variable, where the quality numbers stand, found none of them; add e.g. files: ["layers/quality_*.tif"] or variable: quality',
+  },
+  {
+    title: "layers: bits that are no bits",
+    from: "    valid: [0, 100]\n",
+    to: "    quality: { band: 2, pass: [{ bits: 0-1, values: [0] }] }\n",
+    name: "spec.format",
+    message:
+      'p.yaml:30:40 (layers > snow > quality > pass > #1 > bits): expected the bits, from 0 for the lowest: 2, or 0 to 1; the whole number if left out, found "0-1"; write it like 0 to 1',
+  },
+  {
+    title: "layers: quality files beyond the data folder",
+    from: "    valid: [0, 100]\n",
+    to: "    quality: { files: [../q.tif], pass: [{ values: [0] }] }\n",
+    name: "spec.path",
+    message:
+      'p.yaml:30:24 (layers > snow > quality > files > #1): expected a path below `data`, with / between folders, found a step out of the folder (..): "../q.tif"; write the path from the data folder, or move `data` up to a folder that holds all inputs',
+  },
+  {
+    title: "places: an area asked of a place that moves",
+    from: "  roost: { file: places.geojson, where: { name: roost } }\n",
+    to: "  roost: { fixes: fixes.csv, date: time, longitude: lon, latitude: lat }\n",
+    name: "spec.conflict",
+    message:
+      "p.yaml:43:59 (covariates > #3 > by): expected a place with an area, found a place that moves; write by: nearest or bilinear, or by: radius for a circle round each position",
+  },
+  {
     title: "infilling: a ratio of temperatures",
     from: "window: whole interval, statistic: { days below: 0 } }",
     to: "window: whole interval, statistic: { days below: 0 }, infill: { method: normal ratio, longest gap: 3 days } }",
@@ -611,7 +651,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "covers: fortnight",
     name: "spec.format",
     message:
-      'p.yaml:29:13 (layers > snow > covers): expected what one image stands for: day, month, year, dekad, or a number of days, which may start anew each year, found "fortnight"; write it like 16 days',
+      'p.yaml:29:13 (layers > snow > covers): expected what one image stands for: day, month, year, dekad, a number of days, which may start anew each year, or bounds (those of the file\'s time axis), found "fortnight"; write it like 16 days',
   },
   {
     title: "forms: valid with one value",
@@ -1272,7 +1312,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "  point: {}",
     name: "spec.wrong-type",
     message:
-      "p.yaml:15:10 (places > point): expected a feature of a GeoJSON file, or a point, found an empty mapping; write it in one of those ways",
+      "p.yaml:15:10 (places > point): expected a feature of a GeoJSON file, a point, or a table of dated positions, found an empty mapping; write it in one of those ways",
   },
   {
     title: "keys: point without latitude",

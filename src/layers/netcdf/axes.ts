@@ -52,7 +52,8 @@ export function axesOf(dataset: Dataset, variable: NcVariable): readonly Axis[] 
     return {
       dimension,
       length: variable.shape[d],
-      kind: told?.kind ?? "other",
+      // A series without times still runs along a dimension that everybody calls so.
+      kind: told?.kind ?? (coordinate === undefined && /(^|\/)time$/i.test(dimension) ? "time" : "other"),
       degrees: told?.degrees ?? false,
       coordinate,
     };

@@ -13,6 +13,14 @@ export function methodsOverTime(cellMethods: string, time: string): readonly str
   return out;
 }
 
+/** What a file says its values are. */
+export interface CellMethods {
+  readonly path: string;
+  readonly text: string;
+  /** Name of the time dimension. */
+  readonly time: string;
+}
+
 /** What each method makes of a value; others (point, variance, …) make neither. */
 const KINDS: Readonly<Record<string, ValueKind>> = {
   sum: "total",
@@ -63,11 +71,9 @@ export function statisticFinding(
   covariate: string,
   statistic: string,
   layer: string,
-  path: string,
-  cellMethods: string | undefined,
-  time: string,
+  { path, text, time }: CellMethods,
 ): RawFinding | undefined {
-  const methods = methodsOverTime(cellMethods ?? "", time);
+  const methods = methodsOverTime(text, time);
   const told = kindByMethods(methods);
   const extremes = methods.includes("maximum") || methods.includes("minimum");
   if (
@@ -79,7 +85,7 @@ export function statisticFinding(
   return {
     kind: "layer-methods",
     subject: covariate,
-    message: `${statistic} is asked of ${layer}, whose values the file calls ${JSON.stringify(cellMethods)}`,
+    message: `${statistic} is asked of ${layer}, whose values the file calls ${JSON.stringify(text)}`,
     where: { file: path },
     value: statistic,
     remedy: "choose a statistic that the values allow, or another variable",

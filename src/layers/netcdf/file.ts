@@ -5,7 +5,7 @@ import type { LayerOptions } from "../options.ts";
 import type { PixelTest } from "../quality.ts";
 import { checkFit, type System } from "../system.ts";
 import { lostBounds } from "./axes.ts";
-import { kindFinding } from "./cell-methods.ts";
+import { type CellMethods, kindFinding } from "./cell-methods.ts";
 import { type Dataset, textOf } from "./dataset.ts";
 import { type ActiveImages, gatherNetcdf } from "./gather.ts";
 import { describeNetcdf, type NetcdfLayer, netcdfSystem } from "./layer.ts";
@@ -20,14 +20,6 @@ export interface NetcdfStack {
   readonly periods: readonly ImagePeriod[];
   readonly findings: readonly RawFinding[];
   readonly methods: CellMethods | undefined;
-}
-
-/** What a file says its values are. */
-export interface CellMethods {
-  readonly path: string;
-  readonly text: string;
-  /** Name of the time dimension. */
-  readonly time: string;
 }
 
 /** Settles variable, grid, system and dates of an open file. Throws InputErrors named `layers.…`. */

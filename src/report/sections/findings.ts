@@ -46,6 +46,10 @@ const WORDS: Readonly<Partial<Record<FindingKind, string>>> = {
   "part-day": "Days with missing readings",
   moved: "Stations that moved",
   "layer-small-place": "Places smaller than a pixel",
+  "layer-bounds": "Bounds of layers",
+  "layer-methods": "Values formed otherwise",
+  "layer-quality": "Images without quality",
+  "few-fixes": "Too few positions",
   spike: "Spikes",
   excepted: "Exceptions made",
 };
