@@ -1,4 +1,5 @@
 import type { CaptureOptions } from "../study/options.ts";
+import { layerProblems } from "./layer-checks.ts";
 import type { KeyPath } from "./path.ts";
 import type { Problem } from "./problems.ts";
 import { unknownName } from "./read-covariates.ts";
@@ -353,44 +354,6 @@ function rangeProblems(spec: Spec): Problem[] {
         ordered(["records", i, "series", name, "limits"], limits);
   });
   return problems;
-}
-
-/** Layers whose quality or time axis needs what is not written, and areas asked of places that move. */
-function layerProblems(spec: Spec): Problem[] {
-  const layers = Object.entries(spec.layers).flatMap(([name, { covers, date, quality }]): Problem[] => [
-    ...(covers === "bounds" && !("axis" in date)
-      ? [
-          conflict(
-            ["layers", name, "covers"],
-            "covers: bounds only with date: { axis: time }",
-            "bounds",
-            "write what an image covers, e.g. month, or date: { axis: time }",
-          ),
-        ]
-      : []),
-    ...(quality !== undefined &&
-    quality.files === undefined &&
-    quality.band === undefined &&
-    quality.variable === undefined
-      ? [
-          needs(
-            ["layers", name, "quality"],
-            "files, a band or a variable, where the quality numbers stand",
-            "none of them",
-            'add e.g. files: ["layers/quality_*.tif"] or variable: quality',
-            true,
-          ),
-        ]
-      : []),
-  ]);
-  const areas = spec.covariates.flatMap((one, i): Problem[] => {
-    if (one.source !== "layer" || one.use.by !== "area") return [];
-    const place = Object.hasOwn(spec.places, one.place) ? spec.places[one.place] : undefined;
-    if (place === undefined || !("fixes" in place)) return [];
-    const remedy = "write by: nearest or bilinear, or by: radius for a circle round each position";
-    return [conflict(["covariates", i, "by"], "a place with an area", "a place that moves", remedy)];
-  });
-  return [...layers, ...areas];
 }
 
 /** What the parts of a pipeline say of each other. */
