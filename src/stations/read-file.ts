@@ -75,7 +75,9 @@ export async function readFile(
   const periods = periodsOf(dates, options.date);
   const blocks = columns.map((column): Block => {
     const number = numbers.findIndex((one) => sameNumbers(one, column));
-    const shared = columns.filter((one) => sameNumbers(one, column)).length > 1;
+    // Flags blank values out where they stand, which other variables of the same column must not see.
+    const shared =
+      column.quality !== undefined && columns.filter((one) => sameNumbers(one, column)).length > 1;
     const values = read.numbers[number].values;
     const raw = shared ? values.slice() : values;
     const only = column.only === undefined ? undefined : textsOf([column.only.column]);
