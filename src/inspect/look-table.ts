@@ -8,7 +8,7 @@ import type { RecordOptions, SeriesColumn } from "../stations/options.ts";
 import { readRecords } from "../stations/read-records.ts";
 import { type ColumnFacts, columnFacts } from "./column-facts.ts";
 import { guessRoles, guessValue, type Role, type TableKind } from "./guess-roles.ts";
-import { stanzaFor, stem } from "./stanza.ts";
+import { monthColumns, stanzaFor, stem } from "./stanza.ts";
 
 export interface ColumnLook extends ColumnFacts {
   readonly role: Role;
@@ -83,6 +83,20 @@ function recordsFor(
   };
   const values = columns.filter((_, i) => roles[i] === "value");
   if (kind === "wide records") {
+    const months = monthColumns(columns, roles);
+    if (months !== undefined)
+      return {
+        layout: "months across",
+        ...shared,
+        date: { column: date.name, format: "yyyy", covers: "day" },
+        station: { always: stem(path) },
+        variable: "value",
+        unit: "1",
+        kind: "mean",
+        day: 0,
+        scale: 1,
+        columns: months,
+      };
     const own = Object.fromEntries(values.map(({ name }) => [name, name]));
     // A unit without limits: which variable it is, is not known.
     return {

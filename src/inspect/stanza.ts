@@ -81,7 +81,39 @@ function longStanza(input: StanzaInput): string[] {
   ];
 }
 
+const MONTHS = ["jan", "feb", "mar", "apr", "may", "jun", "jul", "aug", "sep", "oct", "nov", "dec"];
+
+/** The twelve columns that are named like the months, in order, if all are there beside a column of years. */
+export function monthColumns(
+  columns: readonly ColumnFacts[],
+  roles: readonly Role[],
+): readonly string[] | undefined {
+  const found = MONTHS.map((month) =>
+    columns.find(({ name }, i) => roles[i] === "value" && name.toLowerCase().startsWith(month)),
+  );
+  const years = columns[roles.indexOf("date")]?.formats[0] === "yyyy";
+  return years && found.every((one) => one !== undefined) ? found.map((one) => one.name) : undefined;
+}
+
+function monthsStanza(input: StanzaInput, months: readonly string[]): string[] {
+  const { variable, unit, kind, sure } = guessValue(stem(input.path));
+  return [
+    "records:",
+    `  - files: [${yamlText(input.path)}]`,
+    "    layout: months across",
+    `    station: { always: ${yamlText(stem(input.path))} }  # no column of stations was recognised`,
+    `    date: { column: ${yamlText(columnOf(input, "date")?.name ?? "year")}, format: yyyy }`,
+    ...missingLine(input.missing),
+    `    variable: ${yamlText(variable)}  # ${sure ? "guessed from the file's name: check unit and kind" : "name, unit and kind are not known: write them"}`,
+    `    unit: ${yamlText(unit)}`,
+    `    kind: ${kind}`,
+    `    columns: [${months.map(yamlText).join(", ")}]`,
+  ];
+}
+
 function wideStanza(input: StanzaInput): string[] {
+  const months = monthColumns(input.columns, input.roles);
+  if (months !== undefined) return monthsStanza(input, months);
   const values = input.columns.filter((_, i) => input.roles[i] === "value");
   const { variable, unit, kind, sure } = guessValue(stem(input.path));
   return [

@@ -2,6 +2,8 @@ import type { Files, Progress } from "../effects/effects.ts";
 import { CoveyError, InputError } from "../errors.ts";
 import { stemOf } from "../layers/dates.ts";
 import { readFeatures } from "../study/geojson.ts";
+
+import { stationsOf, withKnownStations } from "./known-station.ts";
 import { guessPattern } from "./layer-stanza.ts";
 import { lookLayer } from "./look-layer.ts";
 import { lookTable, type TableLook } from "./look-table.ts";
@@ -32,7 +34,7 @@ export interface Start {
 /** Sections that a pipeline has once; the others are lists or named. */
 const SINGLE = ["occasions", "captures", "stations"];
 const ORDER = ["occasions", "captures", "places", "stations", "records", "layers", "ready-made"];
-const TABLE = /\.(csv|tsv|txt|dat|tab|parquet)(\.gz)?$/i;
+const TABLE = /\.((csv|tsv|txt|dat|tab|parquet)(\.gz)?|xlsx)$/i;
 const LAYER = /\.(tiff?|gtiff)$/i;
 const PLACES = /\.geojson$/i;
 
@@ -83,7 +85,7 @@ export async function startPipeline(files: Files, options: StartOptions, progres
       left.push({ paths: [path], as: "not a table, a GeoTIFF or a GeoJSON file by its name" });
   if (groups.length === 0) throw nothing(all.length);
 
-  const { lines, used } = sectionLines(groups);
+  const { lines, used } = sectionLines(withKnownStations(groups, await stationsOf(groups, files)));
   const covariates = covariateLines(lines.join("\n"), places);
   const text = [
     "# A first pipeline, guessed from the files: read every line before you trust it. `covey check` says what is missing.",

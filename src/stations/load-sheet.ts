@@ -58,10 +58,41 @@ export async function readSheet(
   return rows.map((row) => Array.from({ length: width }, (_, i) => text(row[i])));
 }
 
+/** Rows of a header that are tried where `table` does not say how many there are. */
+const MOST_DEEP = 3;
+
 /**
- * How a sheet is laid out: the header is the row that `table` says, or the first that holds all wanted columns, or the first
- * with a text in every column.
+ * The row that `table` says, or the first (of one row, else of two or three joined) that holds all wanted columns; where none is
+ * wanted, the words above the first row of figures, two rows of them where the lower one has holes.
  */
+function placeOfHeader(
+  rows: readonly (readonly string[])[],
+  wanted: readonly string[],
+  { headerRow, headerRows }: TableOptions,
+): { readonly at: number; readonly deep: number } {
+  if (headerRow !== undefined) return { at: headerRow - 1, deep: headerRows ?? 1 };
+  const depths = headerRows === undefined ? Array.from({ length: MOST_DEEP }, (_, i) => i + 1) : [headerRows];
+  if (wanted.length > 0)
+    for (const deep of depths) {
+      const holds = (at: number) => {
+        const header = joinedHeader(rows.slice(at, at + deep));
+        return wanted.every((name) => header.includes(name));
+      };
+      const at = rows.slice(0, 500).findIndex((_, i) => holds(i));
+      if (at >= 0) return { at, deep };
+    }
+  const filled = (row: readonly string[]) => row.filter((cell) => cell !== "");
+  const figures = rows.findIndex((row) => {
+    const cells = filled(row);
+    return cells.length > 1 && 2 * cells.filter((cell) => /^[-+]?\d/.test(cell)).length >= cells.length;
+  });
+  const last = Math.max(0, figures - 1);
+  const holed = last > 0 && rows[last].includes("") && filled(rows[last - 1]).length > 1;
+  const deep = headerRows ?? (holed ? 2 : 1);
+  return { at: Math.max(0, last - deep + 1), deep };
+}
+
+/** How a sheet is laid out. Throws `stations.empty-file` and those of `checkColumn`. */
 export function sheetDialect(
   rows: readonly (readonly string[])[],
   file: string,
@@ -69,14 +100,8 @@ export function sheetDialect(
   dateColumn: string | undefined,
   table: TableOptions = {},
 ): Dialect {
-  const deep = table.headerRows ?? 1;
-  const headerAt = (at: number) => joinedHeader(rows.slice(at, at + deep));
-  const holds = rows.findIndex(
-    (_, at) => wanted.length > 0 && wanted.every((name) => headerAt(at).includes(name)),
-  );
-  const most = Math.max(0, ...rows.map((row) => row.filter((cell) => cell !== "").length));
-  const full = rows.findIndex((row) => row.filter((cell) => cell !== "").length === most);
-  const at = table.headerRow === undefined ? (holds >= 0 ? holds : Math.max(0, full)) : table.headerRow - 1;
+  const { at, deep } = placeOfHeader(rows, wanted, table);
+  const headerAt = (row: number) => joinedHeader(rows.slice(row, row + deep));
   if (at >= rows.length)
     throw new InputError({
       name: "stations.empty-file",
