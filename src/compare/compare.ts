@@ -7,8 +7,9 @@ import { twoStep } from "../survival/two-step.ts";
 import { type Agreement, agreement } from "./agreement.ts";
 import { buildCandidates, type Candidate } from "./candidates.ts";
 import type { Fold, FoldChunk, FoldRules } from "./fold.ts";
-import { paragraph } from "./paragraph.ts";
+import { CAUTION, paragraph } from "./paragraph.ts";
 import { type Prediction, scorePredictions } from "./prediction.ts";
+import type { Sensitivity } from "./sensitivity.ts";
 import { type Verdict, verdict } from "./verdict.ts";
 
 export interface Comparison {
@@ -17,6 +18,8 @@ export interface Comparison {
   readonly verdict: Verdict;
   /** Intervals left out one at a time; undefined where that was not done. */
   readonly prediction: Prediction | undefined;
+  /** Other ways to do the study; undefined where none were stated. */
+  readonly sensitivity?: Sensitivity | undefined;
   /** All of it in one paragraph. */
   readonly paragraph: string;
 }
@@ -48,6 +51,16 @@ export function compare(
     prediction,
     paragraph: paragraph(screened, candidates, agreed, said, prediction),
   };
+}
+
+/** The comparison with its sensitivity, which the paragraph tells before its caution. */
+export function withSensitivity(comparison: Comparison, sensitivity: Sensitivity | undefined): Comparison {
+  if (sensitivity === undefined) return comparison;
+  const { sentence } = sensitivity;
+  const told = comparison.paragraph.replace(CAUTION, () =>
+    sentence === "" ? CAUTION : `${sentence} ${CAUTION}`,
+  );
+  return { ...comparison, sensitivity, paragraph: told };
 }
 
 /**

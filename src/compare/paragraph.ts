@@ -7,6 +7,10 @@ import type { CandidatePrediction, Prediction } from "./prediction.ts";
 import type { Verdict } from "./verdict.ts";
 import { percentWords } from "./words.ts";
 
+/** How the paragraph ends. */
+export const CAUTION =
+  "Apparent survival counts death and permanent emigration together, and an association over these years is not a cause.";
+
 /** A difference counts as clear where it is more than twice its standard error (common practice, no source). */
 const CLEAR = 2;
 
@@ -31,7 +35,7 @@ export function paragraph(
     predictionWords(prediction),
     verdict.agreement,
     agreed.survival.length === 0 ? "" : sharedWords(verdict),
-    "Apparent survival counts death and permanent emigration together, and an association over these years is not a cause.",
+    CAUTION,
   ]
     .filter((one) => one !== "")
     .join(" ");

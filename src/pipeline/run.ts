@@ -1,3 +1,4 @@
+import { withSensitivity } from "../compare/compare.ts";
 import type { Finding, RawFinding } from "../data/finding.ts";
 import type { Effects } from "../effects/effects.ts";
 import { screen } from "../screen/screen.ts";
@@ -6,6 +7,7 @@ import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { judge, stopIfAsked } from "./policy.ts";
+import { sensitivityStage } from "./sensitivity.ts";
 import { compareStage, diagnoseStage, goodnessStage, inflationOf, reduceStage } from "./stages.ts";
 import { poseScreen } from "./survival-problem.ts";
 
@@ -52,10 +54,17 @@ export async function runStages(
   const screened =
     posed &&
     judged(await screen(posed.problem, posed.recapture, criterion, animals, spec.seed, effects)).result;
-  const comparison =
+  const compared =
     posed && screened && goes("compare")
       ? await compareStage(spec, posed, screened, components, diagnosis, matrix, effects)
       : undefined;
+
+  const comparison =
+    compared &&
+    withSensitivity(
+      compared,
+      await sensitivityStage({ ...loaded, spec: { ...spec, screen: criterion } }, ingested, set, effects),
+    );
 
   const study: StudyResult = {
     occasions: ingested.occasions,

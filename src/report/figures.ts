@@ -10,6 +10,7 @@ import { loadings } from "./figures/loadings.ts";
 import { placesMap } from "./figures/map.ts";
 import { paths } from "./figures/paths.ts";
 import { ribbon } from "./figures/ribbon.ts";
+import { sensitivityFigure } from "./figures/sensitivity.ts";
 import { seriesFigure } from "./figures/series.ts";
 import { survival } from "./figures/survival.ts";
 import { values } from "./figures/values.ts";
@@ -33,6 +34,7 @@ const ALL: readonly Draw[] = [
   evidence,
   survival,
   effects,
+  sensitivityFigure,
 ];
 
 /** Every figure that this study has, ready to be saved as a file of its own. */

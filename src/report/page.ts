@@ -16,6 +16,7 @@ import { methodsSection } from "./sections/methods.ts";
 import { recaptureSection } from "./sections/recapture.ts";
 import { refitsSection } from "./sections/refits.ts";
 import { screenSection } from "./sections/screen.ts";
+import { sensitivitySection } from "./sections/sensitivity.ts";
 import { agreementSection, comparisonSection, survivalSection } from "./sections/survival.ts";
 import { verdictSection } from "./sections/verdict.ts";
 import { STYLE } from "./style.ts";
@@ -43,6 +44,7 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
     survivalSection(drawn),
     comparisonSection(input, cast),
     agreementSection(input, cast, drawn),
+    sensitivitySection(input, cast, drawn),
     findingsSection(input),
     cautionsSection(input),
     methodsSection(input),

@@ -3,6 +3,7 @@ import { layerProblems } from "./layer-checks.ts";
 import type { KeyPath } from "./path.ts";
 import type { Problem } from "./problems.ts";
 import { unknownName } from "./read-covariates.ts";
+import { sensitivityProblems } from "./sensitivity-checks.ts";
 import type { Spec } from "./spec.ts";
 
 const quote = (name: string) => JSON.stringify(name);
@@ -366,6 +367,7 @@ export function crossProblems(spec: Spec): Problem[] {
     modelProblems,
     rangeProblems,
     layerProblems,
+    sensitivityProblems,
   ];
   return checks.flatMap((check) => check(spec));
 }

@@ -17,6 +17,7 @@ import {
   readStandardise,
   readSurvival,
 } from "./read-model.ts";
+import { readSensitivity } from "./read-sensitivity.ts";
 import { pipelineSchema, type RawPipeline, SCHEMA_NUMBER } from "./schema.ts";
 import type { Spec } from "./spec.ts";
 import { type Position, readYaml, type YamlText } from "./yaml.ts";
@@ -74,6 +75,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     survival: readSurvival(raw.survival),
     ...readRecapture(raw.recapture),
     screen: readScreen(raw.screen),
+    sensitivity: readSensitivity(raw.sensitivity, problems),
     findings: readFindings(raw.findings),
     duplicates: readDuplicates(raw.findings),
   });

@@ -138,9 +138,12 @@ export const completeness = stated(
 const name = () => text("the covariate's name", "winter rain");
 const theme = () => text("the covariate's theme, a word for what it is about", "rain");
 
+export const windowValue = shared("window", window);
+export const statisticValue = shared("statistic", statistic);
+
 const values = {
-  window: shared("window", window),
-  statistic: shared("statistic", statistic),
+  window: windowValue,
+  statistic: statisticValue,
   complete: completeness,
   unit: unit("the values before the statistic; if left out, the unit they are read in").optional(),
   departures: keys(

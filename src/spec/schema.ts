@@ -2,6 +2,7 @@ import { z } from "zod";
 import { covariates, derive } from "./schema-covariates.ts";
 import { collinearity, components, findings, prepare, screen } from "./schema-model.ts";
 import { layer, readyMade, records, stationList } from "./schema-records.ts";
+import { sensitivity } from "./schema-sensitivity.ts";
 import { captures, occasions, place, recapture, study, survival } from "./schema-study.ts";
 import { keys, list, named, number, stated, text } from "./words.ts";
 
@@ -33,6 +34,7 @@ export const pipelineSchema = keys("a pipeline file", {
   survival,
   recapture,
   screen,
+  sensitivity,
   findings,
 });
 

@@ -68,6 +68,28 @@ export interface ReadyMadeCovariate extends CovariateName {
 
 export type CovariateSpec = StationCovariate | LayerCovariate | ReadyMadeCovariate;
 
+/** One other way to do the study; keys that are absent stay as they are. */
+export interface Alternative {
+  readonly name: string;
+  /** The covariate that `window`, `lag` and `statistic` change. */
+  readonly of?: string;
+  readonly window?: Window;
+  readonly lag?: number;
+  readonly statistic?: Statistic;
+  readonly standardise?: PrepareOptions["standardise"];
+  readonly detrend?: PrepareOptions["detrend"];
+  readonly chooseBy?: ScreenOptions["chooseBy"];
+  readonly sampleSize?: ScreenOptions["sampleSize"];
+  readonly recapture?: RecaptureChoice;
+  readonly yearTrend?: boolean;
+}
+
+export interface SensitivityOptions {
+  /** Permutations of years over the study and all alternatives together; 0 for none. */
+  readonly permutations: number;
+  readonly alternatives: readonly Alternative[];
+}
+
 /** Findings of one file or subject that are treated otherwise. */
 export interface FindingException {
   readonly file?: string;
@@ -109,6 +131,8 @@ export interface Spec {
   /** Covariates that recapture goes by, where `recapture` is `covariates`. */
   readonly recaptureCovariates?: readonly string[];
   readonly screen: ScreenOptions;
+  /** Absent: only the study as it stands is run. */
+  readonly sensitivity?: SensitivityOptions;
   readonly findings: Readonly<Record<FindingKind, FindingPolicy>>;
   readonly duplicates: DuplicateRule;
 }

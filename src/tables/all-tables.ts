@@ -19,6 +19,7 @@ import { goodnessTable } from "./goodness-table.ts";
 import { penalisedTable } from "./penalised-table.ts";
 import { qualityTable } from "./quality-table.ts";
 import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
+import { sensitivityTables } from "./sensitivity-tables.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import {
@@ -82,6 +83,7 @@ export function allTables(study: StudyResult): readonly Table[] {
           effectsTable(comparison),
           agreementTable(comparison),
           ...foretoldTables(comparison, study.matrix.rows),
+          ...(comparison.sensitivity ? sensitivityTables(comparison.sensitivity) : []),
         ]
       : []),
     findingsTable(study),
