@@ -46,7 +46,7 @@ export function sensitivityProblems(spec: Spec): Problem[] {
       needs(at(i), "the covariate whose window, lag or statistic changes", "no key of", "add of: its name");
     if (of !== undefined && !values)
       needs(at(i, "of"), "a window, lag or statistic that changes", "none of them", "add one of them");
-    if (!values && Object.keys(rest).length === 0)
+    if (!values && of === undefined && Object.keys(rest).length === 0)
       needs(at(i), "something that differs from the study", "only a name", "add a window, lag, criterion …");
     if (one.recapture === "effort" && occasions?.effort === undefined)
       needs(
