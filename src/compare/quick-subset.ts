@@ -1,8 +1,8 @@
+import { criteriaOf, criterionValue } from "../screen/criterion.ts";
 import type { ScreenOptions } from "../screen/options.ts";
 import type { ScreenProblem } from "../screen/problem.ts";
 import type { ProcedureSetting } from "../screen/procedure.ts";
 import type { Refits } from "../screen/refits.ts";
-import { aicc, bic } from "../survival/criteria.ts";
 import { glsFit, rotateColumns } from "../survival/gls.ts";
 import type { TwoStep } from "../survival/two-step.ts";
 
@@ -22,7 +22,7 @@ export function quickSubset(
   two: TwoStep,
   refit: Refits,
   setting: ProcedureSetting,
-  options: Pick<ScreenOptions, "chooseBy">,
+  options: Pick<ScreenOptions, "chooseBy" | "betweenAnimals">,
 ): readonly number[] | undefined {
   const { frame, covariates } = problem;
   const K = covariates.length;
@@ -31,9 +31,13 @@ export function quickSubset(
   const shared = [ones, ...frame.forced.map((one) => one.values)];
   const rotated = rotateColumns(two, [...shared, ...covariates.map((one) => one.values)]);
   const always = shared.map((_, i) => i);
-  const criterion = options.chooseBy === "BIC" ? bic : aicc;
-  const worth = (set: readonly number[]) =>
-    criterion(refit(set), setting.constantParameters + set.length, setting.sampleSize);
+  const { sampleSize } = setting;
+  const counted = { sampleSize, covariates: K, betweenAnimals: options.betweenAnimals ?? Number.NaN };
+  const worth = (set: readonly number[]) => {
+    const parameters = setting.constantParameters + set.length;
+    const criteria = criteriaOf({ minus2LogL: refit(set), parameters, active: set.length }, counted);
+    return criterionValue(options.chooseBy, criteria, parameters, sampleSize);
+  };
   let best: { readonly set: readonly number[]; readonly value: number } = { set: [], value: worth([]) };
   let level: readonly (readonly number[])[] = [[]];
   let tried = 1;

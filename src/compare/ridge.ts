@@ -1,6 +1,6 @@
+import { criteriaOf, criterionValue } from "../screen/criterion.ts";
 import type { ScreenOptions } from "../screen/options.ts";
 import type { RidgePath, RidgeStep } from "../screen/ridge-path.ts";
-import { aicc, bic } from "../survival/criteria.ts";
 import type { Fit } from "../survival/fit.ts";
 
 /**
@@ -9,11 +9,17 @@ import type { Fit } from "../survival/fit.ts";
  */
 export function ridgeChoice(
   { steps }: Pick<RidgePath, "steps">,
-  options: Pick<ScreenOptions, "chooseBy">,
+  options: Pick<ScreenOptions, "chooseBy" | "betweenAnimals">,
   sampleSize: number,
 ): RidgeStep {
-  const value = (step: RidgeStep) =>
-    (options.chooseBy === "BIC" ? bic : aicc)(step.minus2LogL, step.effective, sampleSize);
+  const value = ({ minus2LogL, effective: parameters, coefficients: { length: K } }: RidgeStep) => {
+    // all covariates are in, so there is no choice among sets that an extended criterion would charge for
+    const criteria = criteriaOf(
+      { minus2LogL, parameters, active: K },
+      { sampleSize, covariates: K, betweenAnimals: options.betweenAnimals ?? Number.NaN },
+    );
+    return criterionValue(options.chooseBy, criteria, parameters, sampleSize);
+  };
   return steps.reduce((best, step) => (value(step) < value(best) - 1e-9 ? step : best));
 }
 

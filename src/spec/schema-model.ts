@@ -147,7 +147,10 @@ export const screen = allStated("the adaptive-lasso screen", {
     0.001,
   ),
   gamma: stated(number("the power of the adaptive weights", 1, { min: 0, max: 10 }), 1),
-  "choose by": stated(choice("the criterion that chooses the penalty", ["BIC", "AICc", "extended BIC", "QBIC", "QAICc"]), "BIC"),
+  "choose by": stated(
+    choice("the criterion that chooses the penalty", ["BIC", "AICc", "extended BIC", "QBIC", "QAICc"]),
+    "BIC",
+  ),
   "sample size": stated(
     choice("what the criterion counts as one observation", ["releases", "animals", "intervals"]),
     "releases",

@@ -20,7 +20,13 @@ const alternative = keys("one other way to do the study", {
     "sample",
   ).optional(),
   detrend: choice("how trends are taken out", ["none", "linear", "difference"]).optional(),
-  "choose by": choice("the criterion that chooses the penalty", ["BIC", "AICc"]).optional(),
+  "choose by": choice("the criterion that chooses the penalty", [
+    "BIC",
+    "AICc",
+    "extended BIC",
+    "QBIC",
+    "QAICc",
+  ]).optional(),
   "sample size": choice("what the criterion counts as one observation", [
     "releases",
     "animals",
@@ -31,7 +37,9 @@ const alternative = keys("one other way to do the study", {
     "constant",
     "effort",
     "strata",
+    "effort and strata",
     "each occasion",
+    "each occasion and strata",
   ]).optional(),
   "year trend": flag(
     "whether a linear trend over the years is always in the model, true or false",
