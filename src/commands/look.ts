@@ -1,7 +1,7 @@
 import { basename, dirname, resolve } from "node:path";
 import { isoDay } from "../data/day.ts";
-import { InputError } from "../errors.ts";
 import { type LayerLook, lookLayer } from "../inspect/look-layer.ts";
+import { lookNetcdf, looksLikeNetcdf, type NetcdfLook } from "../inspect/look-netcdf.ts";
 import { lookTable, type TableLook } from "../inspect/look-table.ts";
 import { filesBelow } from "../pipeline/effects/files.ts";
 import { findingLines } from "../terminal/findings.ts";
@@ -25,7 +25,10 @@ export async function lookCommand(
     const look = await lookLayer(name, files);
     return options.json ? [json(look)] : layerLines(look, terminal);
   }
-  if (/\.nc[4]?$/i.test(name)) throw unsupported(file);
+  if (looksLikeNetcdf(name, files)) {
+    const look = await lookNetcdf(name, files);
+    return options.json ? [json(look)] : netcdfLines(look, terminal);
+  }
   const look = await lookTable(name, files);
   return options.json ? [json(look)] : tableLines(look, terminal);
 }
@@ -51,6 +54,27 @@ function layerLines(look: LayerLook, { style }: Terminal): Lines {
         `band ${i + 1}     ${plain(band.description) || "no description"}; scale ${band.scale}, offset ${band.offset}; missing ${(100 * band.missingShare).toFixed(2)} %; ${short(band.least)} to ${short(band.greatest)}, mean ${short(band.mean)}${band.unit === "" ? "" : ` ${plain(band.unit)}`}`,
     ),
     ...(look.beside.length === 0 ? [] : [`beside     ${look.beside.join(", ")}`]),
+    "",
+    style.strong("to paste"),
+    ...look.stanza.trimEnd().split("\n"),
+  ];
+}
+
+function netcdfLines(look: NetcdfLook, { style }: Terminal): Lines {
+  return [
+    style.strong(`${plain(look.path)}  ${look.format}, ${look.bytes} bytes`),
+    ...look.variables.flatMap((one) => {
+      const [west, south, east, north] = one.bounds;
+      return [
+        style.strong(`${plain(one.name)}${one.title === "" ? "" : `  ${plain(one.title)}`}`),
+        `  values   ${one.type}${one.unit === "" ? "" : ` in ${plain(one.unit)}`}; scale ${one.scale}, offset ${one.offset}; ${one.dimensions}; ${one.storage}`,
+        `  dates    ${one.dates}${one.methods === "" ? "" : `; ${plain(one.methods)}`}`,
+        `  system   ${plain(one.system)}; ${short(west)} to ${short(east)} °E, ${short(south)} to ${short(north)} °N`,
+        `  first    missing ${(100 * one.missingShare).toFixed(2)} %; ${short(one.least)} to ${short(one.greatest)}, mean ${short(one.mean)}`,
+        ...one.notes.map((note) => `  note     ${plain(note)}`),
+      ];
+    }),
+    ...(look.others.length === 0 ? [] : [`beside     ${look.others.map(plain).join(", ")}`]),
     "",
     style.strong("to paste"),
     ...look.stanza.trimEnd().split("\n"),
@@ -85,14 +109,4 @@ function tableLines(look: TableLook, { style, width }: Terminal): Lines {
     style.strong("to paste"),
     ...look.stanza.trimEnd().split("\n"),
   ];
-}
-
-function unsupported(file: string): InputError {
-  return new InputError({
-    name: "look.unsupported",
-    expected: "a text table or a GeoTIFF",
-    found: "a NetCDF file, which this version does not read yet",
-    where: { file },
-    remedy: "convert the variable to GeoTIFF images, one a date",
-  });
 }

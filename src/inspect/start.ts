@@ -6,6 +6,7 @@ import { readFeatures } from "../study/geojson.ts";
 import { stationsOf, withKnownStations } from "./known-station.ts";
 import { guessPattern } from "./layer-stanza.ts";
 import { lookLayer } from "./look-layer.ts";
+import { lookNetcdf, looksLikeNetcdf } from "./look-netcdf.ts";
 import { lookTable, type TableLook } from "./look-table.ts";
 import { yamlText } from "./stanza.ts";
 import { covariateLines, type KnownPlace, kindsIn } from "./start-covariates.ts";
@@ -35,7 +36,7 @@ export interface Start {
 const SINGLE = ["occasions", "captures", "stations"];
 const ORDER = ["occasions", "captures", "places", "stations", "records", "layers", "ready-made"];
 const TABLE = /\.((csv|tsv|txt|dat|tab|parquet)(\.gz)?|xlsx)$/i;
-const LAYER = /\.(tiff?|gtiff)$/i;
+const LAYER = /\.(tiff?|gtiff|nc4?|cdf)$/i;
 const PLACES = /\.geojson$/i;
 
 /**
@@ -65,9 +66,9 @@ export async function startPipeline(files: Files, options: StartOptions, progres
   }
   groups.push(...groupTables(looks, all));
   for (const paths of images) {
-    const look = await orReason(lookLayer(paths[0], files));
-    if (typeof look === "string") left.push({ paths, as: look });
-    else groups.push({ section: "layers", paths, lines: look.stanza.trimEnd().split("\n").slice(1) });
+    const stanzas = await orReason(layerStanzas(paths[0], files));
+    if (typeof stanzas === "string") left.push({ paths, as: stanzas });
+    else for (const lines of stanzas) groups.push({ section: "layers", paths, lines });
     step.tick();
   }
   step.done();
@@ -82,7 +83,7 @@ export async function startPipeline(files: Files, options: StartOptions, progres
   }
   for (const path of all)
     if (!TABLE.test(path) && !LAYER.test(path) && !PLACES.test(path))
-      left.push({ paths: [path], as: "not a table, a GeoTIFF or a GeoJSON file by its name" });
+      left.push({ paths: [path], as: "not a table, a GeoTIFF, a NetCDF or a GeoJSON file by its name" });
   if (groups.length === 0) throw nothing(all.length);
 
   const { lines, used } = sectionLines(withKnownStations(groups, await stationsOf(groups, files)));
@@ -163,6 +164,16 @@ function renamed(lines: readonly string[], names: Set<string>): string[] {
   return [`  ${free}:`, ...lines.slice(1)];
 }
 
+/** The lines of each layer that a file's look suggests: one, or one for each variable of a NetCDF file. */
+async function layerStanzas(path: string, files: Files): Promise<string[][]> {
+  const look = looksLikeNetcdf(path, files) ? await lookNetcdf(path, files) : await lookLayer(path, files);
+  const layers: string[][] = [];
+  for (const line of look.stanza.trimEnd().split("\n").slice(1))
+    if (/^ {2}\S/.test(line)) layers.push([line]);
+    else layers[layers.length - 1].push(line);
+  return layers;
+}
+
 /** Images of one folder whose names differ in their date alone are one layer. */
 function imageGroups(paths: readonly string[]): string[][] {
   const groups = new Map<string, string[]>();
@@ -219,7 +230,7 @@ function nothing(count: number): InputError {
   return new InputError({
     name: "start.nothing-recognised",
     expected:
-      "tables, GeoTIFF or GeoJSON files that look like records, captures, occasions, layers or places",
+      "tables, GeoTIFF, NetCDF or GeoJSON files that look like records, captures, occasions, layers or places",
     found:
       count === 0
         ? "an empty folder"

@@ -97,8 +97,13 @@ export function resolveSystem({ path, user, keys, wkt }: SystemSources): System 
 }
 
 /** A system by its definition in PROJ's words. Throws `layers.system-unknown`. */
-export function systemOf(definition: string, from: System["from"], path: string): System {
-  return build(definition, definition, from, path);
+export function systemOf(
+  definition: string,
+  from: System["from"],
+  path: string,
+  label: string = definition,
+): System {
+  return build(definition, label, from, path);
 }
 
 function fromUser(user: string, path: string): System {

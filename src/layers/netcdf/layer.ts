@@ -177,7 +177,12 @@ export function netcdfSystem(layer: NetcdfLayer, user: string | undefined): Syst
     return rotatedSystem(mapping.pole, grid.affine.x0 + (grid.affine.a * grid.width) / 2);
   if (axes[layer.x].degrees && axes[layer.y].degrees) {
     if (mapping?.type === "definition") return systemOf(mapping.definition, "grid mapping of the file", path);
-    return systemOf("+proj=longlat +datum=WGS84 +no_defs", "longitudes and latitudes of the file", path);
+    return systemOf(
+      "+proj=longlat +datum=WGS84 +no_defs",
+      "longitudes and latitudes of the file",
+      path,
+      "EPSG:4326",
+    );
   }
   const byAttributes =
     mapping?.type === "definition"
