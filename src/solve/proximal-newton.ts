@@ -95,7 +95,7 @@ function positiveCurvature(smooth: Smooth, which: Int32Array): Float64Array {
     if (damping > 0)
       for (let a = 0; a < m; a++)
         trial[a * m + a] = Math.abs(curvature[a * m + a]) * (1 + damping) + damping * (scale || 1);
-    const model = Float64Array.from(trial);
+    const model = damping === 0 ? curvature : trial.slice();
     if (choleskyInPlace(trial, m, 1e-11)) return model;
     if (damping > 1e12) return model;
   }

@@ -120,53 +120,72 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const dRecapture = new Float64Array(rows);
   const dChi = new Float64Array(rows + strata);
   const dV = new Float64Array(rows);
+  // what the derivatives of all columns share, by row, with a = 1 − qχ₊ and σ = Δ(1 − s) = d log φ/d logit s:
+  const e = new Float64Array(rows); // φσa: −∂χ/∂ logit s
+  const h = new Float64Array(rows); // φχ₊pq: −∂χ/∂ logit p
+  const c = new Float64Array(rows); // φq: ∂χ/∂χ₊
+  const sigma = new Float64Array(rows);
+  const bend = new Float64Array(rows); // U/χ²: −∂v/∂χ of the own releases
+  const ownSurvival = new Float64Array(rows); // second derivative in the row's own logit s, v and χ₊ held
+  const ownRecapture = new Float64Array(rows);
+  const vpq = new Float64Array(rows); // vφpq
 
-  /** Derivatives of `bySurvival` and `byRecapture` along one coefficient's column. */
+  function prepare(): void {
+    for (let g = 0; g < strata; g++) {
+      const { alive, seen, passed, lastSeen } = data[g];
+      for (let t = 0; t < n; t++) {
+        const r = g * n + t;
+        const next = chi[to[r] * (n + 1) + t + 1];
+        const pq = p[r] * q[r];
+        const slope = design.lengths[t] * s1[r];
+        const s = 1 - s1[r];
+        sigma[r] = slope;
+        e[r] = phi[r] * slope * (1 - q[r] * next);
+        h[r] = phi[r] * next * pq;
+        c[r] = phi[r] * q[r];
+        bend[r] = lastSeen[t] > 0 ? lastSeen[t] / chi[g * (n + 1) + t] ** 2 : 0;
+        // dσ = −σ s, dφ = φσ
+        ownSurvival[r] = -alive[t] * slope * s - v[r] * e[r] * (slope - s);
+        ownRecapture[r] = -(seen[t] + passed[t]) * pq - v[r] * h[r] * (1 - 2 * p[r]);
+        vpq[r] = v[r] * phi[r] * pq;
+      }
+    }
+  }
+
+  /**
+   * Derivatives of `bySurvival` and `byRecapture` along one coefficient's column, the two sweeps differentiated: χ′ backwards,
+   * v′ forwards. Recapture rows only if there are recapture columns to be multiplied with.
+   */
   function along(k: number): void {
-    const column = k < b ? survivalColumns[k] : recaptureColumns[k - b];
     const survives = k < b;
+    const column = survives ? survivalColumns[k] : recaptureColumns[k - b];
+    const down = survives ? e : h;
     for (let t = n - 1; t >= 0; t--)
       for (let g = 0; g < strata; g++) {
         const r = g * n + t;
-        const after = to[r] * (n + 1) + t + 1; // where dChi is 0 for t = n − 1, as it never is written
-        const dPhi = survives ? phi[r] * design.lengths[t] * s1[r] * column[r] : 0;
-        const dQ = survives ? 0 : -p[r] * q[r] * column[r];
-        dChi[g * (n + 1) + t] =
-          -dPhi * (1 - q[r] * chi[after]) + phi[r] * (dQ * chi[after] + q[r] * dChi[after]);
+        // after the last interval dChi is 0, as it never is written
+        dChi[g * (n + 1) + t] = c[r] * dChi[to[r] * (n + 1) + t + 1] - down[r] * column[r];
       }
     dV.fill(0);
     for (let t = 0; t < n; t++)
       for (let g = 0; g < strata; g++) {
-        const { alive, seen, passed, lastSeen } = data[g];
         const r = g * n + t;
-        const c = column[r];
-        const own = g * (n + 1) + t;
-        const after = to[r] * (n + 1) + t + 1;
-        const next = chi[after];
-        if (lastSeen[t] > 0) dV[r] -= (lastSeen[t] * dChi[own]) / chi[own] ** 2;
-        const slope = design.lengths[t] * s1[r];
-        const s = 1 - s1[r];
-        const dSlope = survives ? -slope * s * c : 0;
-        const dPhi = survives ? phi[r] * slope * c : 0;
-        const dQ = survives ? 0 : -p[r] * q[r] * c;
-        if (t + 1 < n) dV[to[r] * n + t + 1] += dV[r] * phi[r] * q[r] + v[r] * (dPhi * q[r] + phi[r] * dQ);
-        const away = 1 - q[r] * next;
-        const dAway = -(dQ * next + q[r] * dChi[after]);
+        const x = column[r];
+        const after = dChi[to[r] * (n + 1) + t + 1];
+        const dv = dV[r] - bend[r] * dChi[g * (n + 1) + t];
+        const vc = v[r] * c[r];
+        if (t + 1 < n) dV[to[r] * n + t + 1] += dv * c[r] + (survives ? vc * sigma[r] : -vpq[r]) * x;
         dSurvival[r] =
-          alive[t] * dSlope -
-          (dV[r] * phi[r] * slope * away +
-            v[r] * (dPhi * slope * away + phi[r] * dSlope * away + phi[r] * slope * dAway));
-        const pq = p[r] * q[r];
-        const dPq = -dQ * (1 - 2 * p[r]); // dp = −dq
+          sigma[r] * vc * after - dv * e[r] + (survives ? ownSurvival[r] : -v[r] * sigma[r] * h[r]) * x;
+        if (recapture === undefined) continue;
         dRecapture[r] =
-          (seen[t] + passed[t]) * dQ -
-          (dV[r] * phi[r] * next * pq +
-            v[r] * (dPhi * next * pq + phi[r] * dChi[after] * pq + phi[r] * next * dPq));
+          (survives ? -v[r] * sigma[r] * h[r] : ownRecapture[r]) * x - dv * h[r] - vpq[r] * after;
       }
   }
 
   function curvature(which: Int32Array, out: Float64Array): void {
     const m = which.length;
+    prepare();
     for (let i = 0; i < m; i++) {
       along(which[i]);
       for (let j = i; j < m; j++) {
