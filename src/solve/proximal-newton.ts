@@ -53,8 +53,7 @@ export function proximalNewton(
     const violation = largestViolation(penalty, x, gradient);
     if (violation <= options.tolerance) return finish("optimum", iteration);
     const which = workingSet(penalty, x, gradient);
-    const curvature = positiveCurvature(smooth, which);
-    const target = minimiseQuadratic({ which, x, gradient, curvature }, penalty);
+    const target = minimiseQuadratic({ which, x, gradient, ...positiveCurvature(smooth, which) }, penalty);
     const stepped = lineSearch(smooth, penalty, { x, gradient, objective, violation }, which, target);
     if (stepped === undefined) return finish("no lower point", iteration);
     ({ x, gradient, value, objective } = stepped);
@@ -82,8 +81,14 @@ function workingSet(penalty: Penalty, x: Float64Array, gradient: Float64Array): 
   return Int32Array.from(which);
 }
 
-/** The curvature on the working set, with a multiple of its diagonal added until it is safely positive definite. */
-function positiveCurvature(smooth: Smooth, which: Int32Array): Float64Array {
+/**
+ * The curvature on the working set, with a multiple of its diagonal added until it is safely positive definite, and its
+ * Cholesky factor.
+ */
+function positiveCurvature(
+  smooth: Smooth,
+  which: Int32Array,
+): { readonly curvature: Float64Array; readonly factor?: Float64Array } {
   const m = which.length;
   const curvature = new Float64Array(m * m);
   smooth.curvature(which, curvature);
@@ -96,8 +101,8 @@ function positiveCurvature(smooth: Smooth, which: Int32Array): Float64Array {
       for (let a = 0; a < m; a++)
         trial[a * m + a] = Math.abs(curvature[a * m + a]) * (1 + damping) + damping * (scale || 1);
     const model = damping === 0 ? curvature : trial.slice();
-    if (choleskyInPlace(trial, m, 1e-11)) return model;
-    if (damping > 1e12) return model;
+    if (choleskyInPlace(trial, m, 1e-11)) return { curvature: model, factor: trial };
+    if (damping > 1e12) return { curvature: model };
   }
 }
 

@@ -8,6 +8,8 @@ export interface QuadraticModel {
   readonly gradient: Float64Array;
   /** m × m, positive definite. */
   readonly curvature: Float64Array;
+  /** Its Cholesky factor, where it has been worked out already. */
+  readonly factor?: Float64Array;
 }
 
 /** Zero coordinates further than this from optimal (relative to their slope) join the support. */
@@ -26,6 +28,7 @@ export function minimiseQuadratic(model: QuadraticModel, penalty: Penalty): Floa
   const search: Search = {
     which,
     curvature,
+    ...(model.factor === undefined ? {} : { factor: model.factor }),
     penalty,
     c: new Float64Array(m),
     z: Float64Array.from(which, (k) => x[k]),
@@ -42,6 +45,7 @@ export function minimiseQuadratic(model: QuadraticModel, penalty: Penalty): Floa
 interface Search {
   readonly which: Int32Array;
   readonly curvature: Float64Array;
+  readonly factor?: Float64Array;
   readonly penalty: Penalty;
   /** ∇f − Hx: the smooth part of the model is cᵀz + ½ zᵀHz. */
   readonly c: Float64Array;
@@ -53,20 +57,16 @@ interface Search {
 
 /** One exact solve on the support; true if no coordinate had to be let go at zero on the way. */
 function solveOnSupport(search: Search): boolean {
-  const { which, c, curvature, z, sign, penalty } = search;
+  const { which, c, z, sign, penalty } = search;
   const m = which.length;
   const support: number[] = [];
   for (let a = 0; a < m; a++) if (sign[a] !== 0 || !penalty.penalised(which[a])) support.push(a);
   const s = support.length;
-  const reduced = new Float64Array(s * s);
   const target = new Float64Array(s);
-  for (let i = 0; i < s; i++) {
-    const a = support[i];
-    for (let j = 0; j < s; j++) reduced[i * s + j] = curvature[a * m + support[j]];
-    target[i] = -c[a] - penalty.slope(which[a], sign[a]);
-  }
-  if (!choleskyInPlace(reduced, s)) return true;
-  choleskySolve(reduced, s, target);
+  for (let i = 0; i < s; i++) target[i] = -c[support[i]] - penalty.slope(which[support[i]], sign[support[i]]);
+  const factor = factorOn(search, support);
+  if (factor === undefined) return true;
+  choleskySolve(factor, s, target);
 
   // Where on the way from z to the target each penalised coordinate would change sides; 2 where it does not.
   const crossings = Float64Array.from(support, (a, i) => {
@@ -83,6 +83,20 @@ function solveOnSupport(search: Search): boolean {
     if (penalty.penalised(which[a])) sign[a] = Math.sign(z[a]);
   }
   return !crossed;
+}
+
+/** Cholesky factor of the curvature on the support; undefined where it is not positive definite. */
+function factorOn(
+  { which, curvature, factor }: Search,
+  support: readonly number[],
+): Float64Array | undefined {
+  const m = which.length;
+  const s = support.length;
+  if (s === m && factor !== undefined) return factor;
+  const reduced = new Float64Array(s * s);
+  for (let i = 0; i < s; i++)
+    for (let j = 0; j < s; j++) reduced[i * s + j] = curvature[support[i] * m + support[j]];
+  return choleskyInPlace(reduced, s) ? reduced : undefined;
 }
 
 /** Of the whole step and the crossings, the one with the least objective. */
