@@ -103,7 +103,7 @@ export function aggregateCovariate(
   intervals: readonly Interval[],
 ): Aggregated {
   const windows = intervals.map((interval) => windowPeriod(definition.window, interval));
-  const { series: sites, filled, findings: before } = siteSeries(definition);
+  const { series: sites, filled, listed, findings: before } = siteSeries(definition);
   const names = sites.map((one) => one.site);
   const weights = sites.map((one) => definition.weights?.bySite.get(one.site) ?? 1);
   const pooled =
@@ -151,6 +151,7 @@ export function aggregateCovariate(
     window: windowText(definition.window),
     statistic: statisticText(definition.statistic, definition.unit),
     complete: completenessText(definition),
+    ...(definition.infill === undefined ? {} : { infilled: listed }),
     files: filesOf([...definition.series, ...(definition.second ?? [])]),
     values,
   };

@@ -8,6 +8,7 @@ import { dailyFromExtremes } from "./degree-days.ts";
 import { indexStatistic, veryWetStatistic } from "./etccdi.ts";
 import { infillFindings, infillSeries } from "./infill.ts";
 import type { CovariateDefinition, WindowStatistic, YearRange } from "./options.ts";
+import type { InfilledValue } from "./result.ts";
 import { bySite } from "./sites.ts";
 import { cut } from "./slice.ts";
 import { fitGamma, LEAST_BASE, standardisedIndex } from "./spi.ts";
@@ -29,6 +30,8 @@ interface Sites {
   readonly series: readonly Series[];
   /** Periods of each site whose value was infilled (in either series, where there are two); empty without infilling. */
   readonly filled: readonly (readonly Period[])[];
+  /** The filled values one by one. */
+  readonly listed: readonly InfilledValue[];
   readonly findings: readonly RawFinding[];
 }
 
@@ -39,14 +42,22 @@ function filledSites(
   neighbours: readonly Series[],
 ): Sites {
   const sites = bySite(series);
-  if (infill === undefined || sites.length === 0) return { series: sites, filled: [], findings: [] };
+  if (infill === undefined || sites.length === 0)
+    return { series: sites, filled: [], listed: [], findings: [] };
   const done = infillSeries(sites, infill, bySite(neighbours));
   const filled = done.series.map(({ starts, ends }, s) =>
     Array.from(done.filled[s].keys())
       .filter((i) => done.filled[s][i] === 1)
       .map((i) => ({ start: starts[i], end: ends[i] })),
   );
-  return { series: done.series, filled, findings: infillFindings(name, infill, unit, done.sites) };
+  const listed = done.series.flatMap((one, s) =>
+    Array.from(done.filled[s].keys()).flatMap((i): InfilledValue[] => {
+      if (done.filled[s][i] !== 1) return [];
+      const period = { start: one.starts[i], end: one.ends[i] };
+      return [{ station: one.site, variable: one.variable, unit, period, value: one.values[i] }];
+    }),
+  );
+  return { series: done.series, filled, listed, findings: infillFindings(name, infill, unit, done.sites) };
 }
 
 /** Periods of both lists, each once, in order of time. */
@@ -81,6 +92,7 @@ export function siteSeries(definition: CovariateDefinition): Sites {
       const beside = other.series.findIndex(({ site }) => site === first.series[s].site);
       return together(one, other.filled[beside] ?? []);
     }),
+    listed: [...first.listed, ...other.listed],
     findings: [...first.findings, ...other.findings],
   };
 }

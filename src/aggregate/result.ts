@@ -26,6 +26,15 @@ export interface WindowValue {
   readonly periods?: readonly Period[];
 }
 
+/** A value that was filled from neighbouring stations. */
+export interface InfilledValue {
+  readonly station: string;
+  readonly variable: string;
+  readonly unit: string;
+  readonly period: Period;
+  readonly value: number;
+}
+
 /** One covariate over all intervals, before preparation. */
 export interface IntervalCovariate {
   readonly name: string;
@@ -38,6 +47,8 @@ export interface IntervalCovariate {
   readonly window?: string;
   readonly statistic?: string;
   readonly complete?: string;
+  /** Every filled value, whether or not a window takes it in; absent without infilling. */
+  readonly infilled?: readonly InfilledValue[];
   /** One per interval. */
   readonly values: readonly WindowValue[];
 }

@@ -23,7 +23,11 @@ export async function checkCommand(
     return [
       JSON.stringify(
         {
-          windows: plan.windows,
+          windows: plan.windows.map((one) => {
+            const t = plan.ingested.intervals.findIndex(({ name }) => name === one.interval);
+            const daysAvailable = plan.covered.get(one.covariate)?.[t];
+            return { ...one, ...(daysAvailable === undefined ? {} : { daysAvailable }) };
+          }),
           layers: plan.layers.map(({ name, files, systems }) => ({ name, files: files.length, systems })),
           findings: plan.findings,
         },

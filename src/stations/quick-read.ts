@@ -6,7 +6,7 @@ import { physicalLines } from "./lines.ts";
 import { csvSource, type TableWish } from "./load-table.ts";
 import type { LoadedTable } from "./loaded-table.ts";
 import { readWhole, seeBytes } from "./packed.ts";
-import { blankOut, type CodedColumn, declaredMissing, itemsOf, type ReadColumns } from "./read-columns.ts";
+import { type CodedColumn, declaredMissing, itemsOf, type ReadColumns } from "./read-columns.ts";
 import { newCoder } from "./text-codes.ts";
 
 /**
@@ -61,6 +61,7 @@ export async function quickRead(
   let room = Math.max(seen.lines - dialect.skip, 0);
   const codes = groups.map(() => new Int32Array(room));
   const values = numbers.map(() => new Float64Array(room));
+  const declared = declaredMissing(missing);
   let rows = 0;
   for (;;) {
     const chunk = await result.fetchChunk().catch(() => undefined);
@@ -83,7 +84,7 @@ export async function quickRead(
       const items = itemsOf(chunk.getColumnVector(2 * groups.length + j));
       if (!(items instanceof Float64Array)) return undefined;
       values[j].set(items.subarray(0, n), rows);
-      if (!emptied(values[j], rows, rows + n)) return undefined;
+      if (!emptied(values[j], rows, rows + n, declared)) return undefined;
     }
     if (marks.length > 0) {
       // A mark for a missing value in a text column would be lost as text.
@@ -94,7 +95,6 @@ export async function quickRead(
   }
   const told = await database.runAndReadAll("SELECT count(*)::INTEGER FROM reject_errors");
   if (Number(told.getRowsJson()[0][0]) > 0) return undefined;
-  const declared = declaredMissing(missing);
   const table: LoadedTable = {
     file,
     dialect,
@@ -110,20 +110,23 @@ export async function quickRead(
     table,
     read: {
       texts: coders.map((coder, j): CodedColumn => coder.finish(codes[j].subarray(0, rows))),
-      numbers: values.map((list) => {
-        const all = list.subarray(0, rows);
-        blankOut(all, declared);
-        return { values: all, odd: [] };
-      }),
+      numbers: values.map((list) => ({ values: list.subarray(0, rows), odd: [] })),
     },
   };
 }
 
-/** Turns −∞, which stands for an empty cell here, into NaN; false if there is a number that was not finite in the file. */
-function emptied(values: Float64Array, from: number, to: number): boolean {
+/**
+ * Turns −∞, which stands for an empty cell here, and declared missing numbers into NaN; false if there is a number that was not
+ * finite in the file. The first mark is compared by itself, since there is seldom another.
+ */
+function emptied(values: Float64Array, from: number, to: number, marks: readonly number[]): boolean {
+  const [mark = Number.NaN, ...others] = marks;
   for (let i = from; i < to; i++) {
     const value = values[i];
-    if (value - value === 0) continue;
+    if (value - value === 0) {
+      if (value === mark || (others.length > 0 && others.includes(value))) values[i] = Number.NaN;
+      continue;
+    }
     if (value !== Number.NEGATIVE_INFINITY) return false;
     values[i] = Number.NaN;
   }

@@ -104,7 +104,7 @@ export function declaredMissing(missing: readonly string[]): readonly number[] {
  * Declared missing numbers become NaN (−9999 also where it is written −9999.0), so do `nan` and `inf`, which the cast
  * takes; true if any value is NaN then.
  */
-export function blankOut(values: Float64Array, marks: readonly number[]): boolean {
+function blankOut(values: Float64Array, marks: readonly number[]): boolean {
   let holes = false;
   for (let i = 0; i < values.length; i++) {
     const value = values[i];

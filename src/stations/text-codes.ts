@@ -20,10 +20,12 @@ export interface Coder {
  * 64 bits has a probability of 3e-10.
  */
 export function newCoder(): Coder {
-  let size = 1 << 12;
+  let size = 1 << 16;
   let [low, high] = [new Uint32Array(size), new Uint32Array(size)];
   let slots = new Int32Array(size).fill(-1);
   const texts: string[] = [];
+  // The halves by code: the days of one station follow those of another in the same order, so the next code is tried first.
+  let [lowOf, highOf] = [new Uint32Array(1 << 16), new Uint32Array(1 << 16)];
   const slotOf = (a: number, b: number) => {
     let at = a & (size - 1);
     while (slots[at] >= 0 && (low[at] !== a || high[at] !== b)) at = (at + 1) & (size - 1);
@@ -46,7 +48,12 @@ export function newCoder(): Coder {
       let [lastA, lastB, last] = [0, 0, -1];
       for (let i = 0; i < n; i++) {
         const [a, b] = [halves[2 * i], halves[2 * i + 1]];
-        if (last < 0 || a !== lastA || b !== lastB) {
+        const next = last + 1;
+        if (last >= 0 && a === lastA && b === lastB) {
+          // The same text as in the row before.
+        } else if (next < texts.length && lowOf[next] === a && highOf[next] === b) {
+          [lastA, lastB, last] = [a, b, next];
+        } else {
           let at = slotOf(a, b);
           if (slots[at] < 0) {
             if (2 * texts.length > size) {
@@ -54,6 +61,14 @@ export function newCoder(): Coder {
               at = slotOf(a, b);
             }
             [low[at], high[at], slots[at]] = [a, b, texts.length];
+            if (texts.length === lowOf.length) {
+              [lowOf, highOf] = [lowOf, highOf].map((list) => {
+                const wider = new Uint32Array(4 * list.length);
+                wider.set(list);
+                return wider;
+              });
+            }
+            [lowOf[texts.length], highOf[texts.length]] = [a, b];
             texts.push(textAt(i));
           }
           [lastA, lastB, last] = [a, b, slots[at]];

@@ -16,6 +16,7 @@ import {
   standardMatrixTable,
 } from "./covariate-tables.ts";
 import { goodnessTable } from "./goodness-table.ts";
+import { infilledTables } from "./infilled-table.ts";
 import { penalisedTable } from "./penalised-table.ts";
 import { qualityTable } from "./quality-table.ts";
 import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
@@ -41,6 +42,7 @@ export function allTables(study: StudyResult): readonly Table[] {
     standardMatrixTable(study),
     dictionaryTable(study),
     intervalValuesTable(study),
+    ...infilledTables(study.covariates),
     ...(study.occasions.length > 0 ? [occasionsTable(study)] : []),
     intervalsTable(study),
     ...(study.refusals !== undefined && study.refusals.length > 0 ? [qualityTable(study.refusals)] : []),

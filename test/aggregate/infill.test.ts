@@ -8,6 +8,7 @@ import { columnIndex, readCsv } from "../../src/data/csv.ts";
 import { dayOf } from "../../src/data/day.ts";
 import type { Series } from "../../src/data/series.ts";
 import { InputError } from "../../src/errors.ts";
+import { infilledTables } from "../../src/tables/infilled-table.ts";
 import { daily, on, yearly } from "./made.ts";
 
 const NaNs = Number.NaN;
@@ -165,7 +166,16 @@ describe("infilling", () => {
     expect(findings[0].message).toMatch(
       /^Ash: 1 day in 1 gap filled by regression on B \(leave-one-out error /,
     );
+    // Row 20 from 1 January is the 21st.
+    const period = { start: on("2001-01-21"), end: on("2001-01-22") };
+    expect(covariate.infilled).toEqual([
+      { station: "Ash", variable: "x", unit: "mm", period, value: expect.closeTo(wave[20] + 1, 9) },
+    ]);
+    expect(infilledTables([covariate])[0].rows.map((row) => row.slice(0, 5))).toEqual([
+      ["January", "Ash", "x", "2001-01-21", "2001-01-21"],
+    ]);
     const { infill: _, ...without } = definition;
+    expect(infilledTables([aggregateCovariate(without, []).covariate])).toEqual([]);
     const plain = aggregateCovariate(without, yearly("07-20", 2000, 1));
     expect(plain.covariate.values[0].stations).toEqual(["B"]);
   });
