@@ -91,10 +91,16 @@ program
   .argument("<file>", "a table (CSV, TSV, gzip) or a layer (GeoTIFF)")
   .description("tell what a data file holds, and the stanza to paste into a pipeline")
   .option("--json", "print what was found as JSON")
+  .option("--picture <file>", "write a small picture of a layer (PNG)")
+  .option("--places <file>", "places to draw in it (GeoJSON), as squares of 10 km that give no roost away")
+  .option("--exact", "draw the places where they are")
   .addHelpText("after", "\nExample:\n  covey look sample-data/layers/green_2009_05.tif")
-  .action(async (file: string, options: Common) => {
+  .action(async (file: string, options: Common & { picture?: string; places?: string; exact?: boolean }) => {
     const { lookCommand } = await import("./commands/look.ts");
-    print(await lookCommand(file, { json: options.json ?? false }, await terminalFor(options)), options);
+    print(
+      await lookCommand(file, { ...options, json: options.json ?? false }, await terminalFor(options)),
+      options,
+    );
   });
 
 program

@@ -1,16 +1,29 @@
 import { basename, dirname, resolve } from "node:path";
 import { isoDay } from "../data/day.ts";
+import type { Files } from "../effects/effects.ts";
+import { InputError } from "../errors.ts";
+import { layerPicture } from "../inspect/layer-picture.ts";
 import { type LayerLook, lookLayer } from "../inspect/look-layer.ts";
 import { lookNetcdf, looksLikeNetcdf, type NetcdfLook } from "../inspect/look-netcdf.ts";
 import { lookTable, type TableLook } from "../inspect/look-table.ts";
 import { filesBelow } from "../pipeline/effects/files.ts";
+import { nodeDisk } from "../pipeline/effects.ts";
 import { findingLines } from "../terminal/findings.ts";
 import { cut, plain } from "../terminal/style.ts";
 import type { Lines, Terminal } from "./io.ts";
 
 export interface LookCommandOptions {
   readonly json: boolean;
+  /** Where a layer's picture is written; it must not be there yet. */
+  readonly picture?: string;
+  /** GeoJSON file with places to draw in it. */
+  readonly places?: string;
+  /** Draw them where they are, not as squares of 10 km. */
+  readonly exact?: boolean;
 }
+
+/** As the pipeline file's own default for sensitive studies. */
+const COARSEN_KM = 10;
 
 /** `covey look FILE`: what a data file holds, and the stanza to paste into a pipeline file. */
 export async function lookCommand(
@@ -23,7 +36,8 @@ export async function lookCommand(
   const name = basename(path);
   if (/\.(tiff?|gtiff)$/i.test(name)) {
     const look = await lookLayer(name, files);
-    return options.json ? [json(look)] : layerLines(look, terminal);
+    const drawn = await drawPicture(name, files, options);
+    return options.json ? [json(look)] : [...layerLines(look, terminal), ...drawn];
   }
   if (looksLikeNetcdf(name, files)) {
     const look = await lookNetcdf(name, files);
@@ -31,6 +45,27 @@ export async function lookCommand(
   }
   const look = await lookTable(name, files);
   return options.json ? [json(look)] : tableLines(look, terminal);
+}
+
+async function drawPicture(name: string, files: Files, options: LookCommandOptions): Promise<Lines> {
+  const { picture, places, exact = false } = options;
+  if (picture === undefined) return [];
+  const text = async (file: string) => filesBelow(dirname(resolve(file))).readText(basename(file));
+  const bytes = await layerPicture(name, files, {
+    places: places === undefined ? undefined : { file: places, text: await text(places) },
+    exact,
+    coarsenKm: COARSEN_KM,
+  });
+  if (!nodeDisk().create(resolve(picture), bytes))
+    throw new InputError({
+      name: "look.file-exists",
+      expected: "a name for a new picture",
+      found: "a file of that name, which is left as it is",
+      where: { file: picture },
+      remedy: "choose another name with --picture",
+    });
+  const how = exact ? "where they are" : `as squares of some ${COARSEN_KM} km`;
+  return ["", `wrote ${plain(picture)}${places === undefined ? "" : `, with the places ${how}`}`];
 }
 
 function json(look: unknown): string {
@@ -49,10 +84,12 @@ function layerLines(look: LayerLook, { style }: Terminal): Lines {
     `pixel      ${short(across)} × ${short(down)} m in the middle`,
     `extent     ${short(west)} to ${short(east)} °E, ${short(south)} to ${short(north)} °N`,
     `nodata     ${look.nodataText === undefined ? "none declared" : plain(look.nodataText)}; mask ${look.mask}`,
+    `dates      ${datesText(look.dates)}`,
     ...look.bands.map(
       (band, i) =>
         `band ${i + 1}     ${plain(band.description) || "no description"}; scale ${band.scale}, offset ${band.offset}; missing ${(100 * band.missingShare).toFixed(2)} %; ${short(band.least)} to ${short(band.greatest)}, mean ${short(band.mean)}${band.unit === "" ? "" : ` ${plain(band.unit)}`}`,
     ),
+    ...(look.bandCount > look.bands.length ? [`and ${look.bandCount - look.bands.length} more bands`] : []),
     ...(look.beside.length === 0 ? [] : [`beside     ${look.beside.join(", ")}`]),
     "",
     style.strong("to paste"),
@@ -79,6 +116,11 @@ function netcdfLines(look: NetcdfLook, { style }: Terminal): Lines {
     style.strong("to paste"),
     ...look.stanza.trimEnd().split("\n"),
   ];
+}
+
+function datesText(dates: readonly string[]): string {
+  if (dates.length === 0) return "none in the name or the bands' descriptions";
+  return dates.length === 1 ? dates[0] : `${dates[0]} … ${dates[dates.length - 1]}, ${dates.length} images`;
 }
 
 function tableLines(look: TableLook, { style, width }: Terminal): Lines {

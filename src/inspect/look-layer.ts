@@ -7,6 +7,7 @@ import { scanBand } from "../layers/scan.ts";
 import { findSideFiles, sideList } from "../layers/side.ts";
 import { resolveSystem, type System } from "../layers/system.ts";
 import { valueRule } from "../layers/values.ts";
+import { guessDates } from "./layer-dates.ts";
 import { layerStanza } from "./layer-stanza.ts";
 import { Tally } from "./tally.ts";
 
@@ -33,6 +34,8 @@ export interface LayerLook {
   readonly type: string;
   readonly compression: string;
   readonly layout: string;
+  readonly bandCount: number;
+  /** The first twelve. */
   readonly bands: readonly BandLook[];
   /** The system's name, or why it is not known. */
   readonly system: string;
@@ -46,6 +49,8 @@ export interface LayerLook {
   readonly mask: "none" | "within the file" | "beside the file";
   readonly reducedImages: number;
   readonly beside: readonly string[];
+  /** What each band seems to stand for, from the file's name or the bands' descriptions; empty if neither tells. */
+  readonly dates: readonly string[];
   /** YAML to paste into a pipeline file. */
   readonly stanza: string;
 }
@@ -84,6 +89,7 @@ export async function lookLayer(path: string, files: Files): Promise<LayerLook> 
       type: image.type,
       compression: image.compression,
       layout: `${image.tiled ? "tiles" : "strips"} of ${image.blockWidth} × ${image.blockHeight}`,
+      bandCount: image.bands,
       bands,
       system: system?.label ?? String(settled),
       systemKnown: system !== undefined,
@@ -95,6 +101,10 @@ export async function lookLayer(path: string, files: Files): Promise<LayerLook> 
       mask: where,
       reducedImages: layer.overviews.length,
       beside: sideList(side),
+      dates: guessDates(
+        path,
+        layer.bands.map((band) => band.description),
+      ),
       stanza: layerStanza(
         path,
         layer.bands.map((band) => band.description),
