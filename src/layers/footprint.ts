@@ -61,7 +61,7 @@ function pointFootprint(at: Position, by: "nearest" | "bilinear", grid: Grid, sy
         pixels: 1,
       };
     }
-    return bilinear(x, y, grid);
+    return bilinear(x, y, grid, system);
   }
   return {
     columns: new Int32Array(0),
@@ -73,15 +73,21 @@ function pointFootprint(at: Position, by: "nearest" | "bilinear", grid: Grid, sy
   };
 }
 
-/** The four centres round (x, y), (1 − u)(1 − v) and so on; those beyond the layer's edge are left out. */
-function bilinear(x: number, y: number, grid: Grid): Footprint {
+/**
+ * The four centres round (x, y), (1 − u)(1 − v) and so on; those beyond the layer's edge are left out. A layer that goes
+ * round the globe has no edge in the east and west: its first column is the neighbour of its last.
+ */
+function bilinear(x: number, y: number, grid: Grid, system: System): Footprint {
+  const { a, b, d } = grid.affine;
+  const round = system.geographic && b === 0 && d === 0 && Math.abs(Math.abs(a * grid.width) - 360) < 1e-6;
+  const columnOf = (column: number) => (round ? (column + grid.width) % grid.width : column);
   const [left, top] = [Math.floor(x - 0.5), Math.floor(y - 0.5)];
   const [u, v] = [x - 0.5 - left, y - 0.5 - top];
   const all = [
-    { column: left, row: top, weight: (1 - u) * (1 - v) },
-    { column: left + 1, row: top, weight: u * (1 - v) },
-    { column: left, row: top + 1, weight: (1 - u) * v },
-    { column: left + 1, row: top + 1, weight: u * v },
+    { column: columnOf(left), row: top, weight: (1 - u) * (1 - v) },
+    { column: columnOf(left + 1), row: top, weight: u * (1 - v) },
+    { column: columnOf(left), row: top + 1, weight: (1 - u) * v },
+    { column: columnOf(left + 1), row: top + 1, weight: u * v },
   ].filter(
     ({ column, row, weight }) =>
       weight > 0 && column >= 0 && row >= 0 && column < grid.width && row < grid.height,

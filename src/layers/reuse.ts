@@ -5,7 +5,7 @@ import type { LayerOptions, PlaceUse } from "./options.ts";
 import { type SidePaths, sideList } from "./side.ts";
 
 /** Raised whenever the meaning of kept values changes, so that older ones are not taken for new. */
-const VERSION = 1;
+const VERSION = 2;
 
 /** Values and valid shares of one place, image by image. */
 export interface Kept {

@@ -76,6 +76,33 @@ describe("points", () => {
   });
 });
 
+describe("bilinear across the antimeridian", () => {
+  const globe = northUp(-180, 90, 10, 36, 18);
+  const at = (lon: number) => {
+    const { columns, weights, total } = footprintOf(point(lon, 5), { by: "bilinear" }, globe, WGS84);
+    return [[...columns], [...weights].map((one) => Number(one.toFixed(9))), total];
+  };
+  test("a global layer's first column is the neighbour of its last", () => {
+    expect(at(179)).toEqual([[35, 0], [0.6, 0.4], 1]);
+    expect(at(-179)).toEqual([[35, 0], [0.4, 0.6], 1]);
+    expect(at(181)).toEqual(at(-179));
+  });
+
+  test("a layer that ends there has an edge there", () => {
+    const half = northUp(0, 90, 10, 18, 18);
+    const foot = footprintOf(point(179, 5), { by: "bilinear" }, half, WGS84);
+    expect([...foot.columns]).toEqual([17]);
+  });
+
+  test("a circle across it weighs as one that does not", () => {
+    const weigh = (lon: number) =>
+      sum(
+        footprintOf(point(lon, -17), { by: "radius", metres: 900_000, validArea: 0 }, globe, WGS84).weights,
+      );
+    expect(Math.abs(weigh(179.5) / weigh(-0.5) - 1)).toBeLessThan(1e-9);
+  });
+});
+
 describe("areas in longitude and latitude", () => {
   test("weights are coverage times the cosine of the pixel centre's latitude (methods §3)", () => {
     const foot = footprintOf(area([box(10, 49, 11, 50)]), BY_AREA, northUp(10, 50, 0.5, 4, 4), WGS84);

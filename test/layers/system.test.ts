@@ -31,6 +31,30 @@ describe("examples of EPSG Guidance Note 7-2 (printed to about a centimetre)", (
       577274.99,
       69740.5,
     ],
+    [
+      "Lambert conic 2SP, Texas South Central (US survey feet)",
+      "+proj=lcc +lat_1=28.3833333333333 +lat_2=30.2833333333333 +lat_0=27.8333333333333 +lon_0=-99 +x_0=609601.219202438 +y_0=0 +ellps=clrk66 +to_meter=0.304800609601219",
+      -96,
+      28.5,
+      2963503.91,
+      254759.8,
+    ],
+    [
+      "Mercator variant A, Makassar",
+      "+proj=merc +lon_0=110 +k=0.997 +x_0=3900000 +y_0=900000 +ellps=bessel",
+      120,
+      -3,
+      5009726.58,
+      569150.82,
+    ],
+    [
+      "Mercator variant B, Caspian Sea",
+      "+proj=merc +lon_0=51 +lat_ts=42 +x_0=0 +y_0=0 +ellps=krass",
+      53,
+      53,
+      165704.29,
+      5171848.07,
+    ],
   ] as const)("%s", (_, system, lon, lat, east, north) => {
     const [x, y] = user(system).fromLonLat(lon, lat);
     expect(Math.abs(x - east)).toBeLessThan(0.011);
