@@ -1,6 +1,7 @@
 import { loadPipeline } from "../pipeline/load.ts";
-import { planRun } from "../pipeline/plan.ts";
+import { type Plan, planRun } from "../pipeline/plan.ts";
 import { findingLines } from "../terminal/findings.ts";
+import { timelineLines } from "../terminal/timeline.ts";
 import { windowPlanLines } from "../terminal/window-plan.ts";
 import type { Lines, Terminal } from "./io.ts";
 
@@ -48,8 +49,18 @@ export async function checkCommand(
         `layer ${one.name}: ${one.files.length} files, ${one.images.length} images, ${one.systems.join(", ")}`,
     ),
     "",
+    ...calendar(plan, terminal),
     ...windowPlanLines(plan.windows, plan.covered, { style, width, every: options.windows }),
     "",
     ...findingLines(plan.findings, { style, lines: 40, width }),
   ];
+}
+
+/** The windows of the interval in the middle of the study, and an empty line. */
+function calendar({ windows, ingested }: Plan, { style, width }: Terminal): Lines {
+  const middle = ingested.intervals[Math.floor(ingested.intervals.length / 2)];
+  if (middle === undefined) return [];
+  const own = windows.filter((one) => one.interval === middle.name);
+  const lines = timelineLines(own, middle, { style, width });
+  return lines.length === 0 ? [] : [...lines, ""];
 }

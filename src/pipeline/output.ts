@@ -66,6 +66,9 @@ export async function buildOutput(
     ),
     places: shownPlaces(run.ingested.places.values(), spec.study),
     stations: run.ingested.sites,
+    readAt: spec.covariates.flatMap((one) =>
+      one.source === "layer" ? [{ covariate: one.name, place: one.place }] : [],
+    ),
     map: await mapLayer(spec, effects.files),
     warn: spec.collinearity.warn,
     cut: spec.collinearity.cluster,
@@ -74,18 +77,15 @@ export async function buildOutput(
   };
   // the page and its figures draw with heavy libraries, which only a run needs
   const { renderPage } = await import("../report/page.ts");
-  const { figures } = await import("../report/figures.ts");
+  const { figureFiles } = await import("../report/export.ts");
   const text = new TextEncoder();
   const step = effects.progress.start("drawing the page", 2);
   const files = new Map(written.files);
-  const drawn = await figures(input);
+  files.set(PAGE_FILE, text.encode(await renderPage(input)));
   step.tick();
-  files.set(PAGE_FILE, text.encode(await renderPage(input, drawn)));
+  for (const { path, bytes } of await figureFiles(input)) files.set(`figures/${path}`, bytes);
   step.tick();
   step.done();
-  for (const figure of drawn) files.set(`figures/${figure.name}.svg`, text.encode(figure.svg));
-  const captions = drawn.map(({ name, title, caption }) => ({ file: `${name}.svg`, title, caption }));
-  files.set("figures/captions.json", jsonBytes(captions));
   if (run.study.components !== undefined)
     files.set(COMPONENTS_FILE, jsonBytes(componentsJson(run.study.components)));
   files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));

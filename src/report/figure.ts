@@ -3,6 +3,7 @@ import { type Html, html, type Piece } from "./html.ts";
 import type { ReportInput } from "./input.ts";
 import { px } from "./numbers.ts";
 import { ink, type Token } from "./palette.ts";
+import type { Size } from "./size.ts";
 
 /** A figure as the page shows it and as it is exported: one SVG with its caption. */
 export interface Figure {
@@ -13,7 +14,11 @@ export interface Figure {
 }
 
 /** Draws one figure, or says that there is nothing to draw. */
-export type Draw = (input: ReportInput, cast: Cast) => Figure | undefined | Promise<Figure | undefined>;
+export type Draw = (
+  input: ReportInput,
+  cast: Cast,
+  size: Size,
+) => Figure | undefined | Promise<Figure | undefined>;
 
 export const FONT = "Helvetica, Arial, 'Liberation Sans', sans-serif";
 
@@ -68,6 +73,6 @@ export function textWidth(text: string, size = 12): number {
 
 /** Text cut to a width, with an ellipsis; the whole name stands in the tables. */
 export function fitted(text: string, width: number, size = 12): string {
-  const letters = Math.floor(width / (0.55 * size));
+  const letters = Math.floor(width / (0.52 * size));
   return text.length <= letters ? text : `${text.slice(0, Math.max(1, letters - 1))}…`;
 }

@@ -3,6 +3,7 @@ import type { Draw, Figure } from "./figure.ts";
 import { completeness } from "./figures/completeness.ts";
 import { correlationMap, detrendedMap } from "./figures/correlation.ts";
 import { criterion } from "./figures/criterion.ts";
+import { drivers } from "./figures/drivers.ts";
 import { effects } from "./figures/effects.ts";
 import { evidence } from "./figures/evidence.ts";
 import { inflation } from "./figures/inflation.ts";
@@ -16,6 +17,7 @@ import { survival } from "./figures/survival.ts";
 import { values } from "./figures/values.ts";
 import { variance } from "./figures/variance.ts";
 import type { ReportInput } from "./input.ts";
+import { SCREEN, type Size } from "./size.ts";
 
 /** In the order in which the page shows them. */
 const ALL: readonly Draw[] = [
@@ -32,18 +34,21 @@ const ALL: readonly Draw[] = [
   criterion,
   paths,
   evidence,
-  survival,
+  survival("years"),
+  drivers("years"),
+  survival("animals"),
+  drivers("animals"),
   effects,
   sensitivityFigure,
 ];
 
-/** Every figure that this study has, ready to be saved as a file of its own. */
-export async function figures(input: ReportInput): Promise<readonly Figure[]> {
+/** Every figure that this study has, drawn for the page or for a journal's column. */
+export async function figures(input: ReportInput, size: Size = SCREEN): Promise<readonly Figure[]> {
   const cast = castOf(input);
   const out: Figure[] = [];
   // one after the other: the plot library counts its ids globally
   for (const draw of ALL) {
-    const figure = await draw(input, cast);
+    const figure = await draw(input, cast, size);
     if (figure !== undefined) out.push(figure);
   }
   return out;

@@ -57,6 +57,8 @@ export interface ReportInput {
   readonly shown: readonly ShownSeries[];
   readonly places: readonly Where[];
   readonly stations: readonly Site[];
+  /** Which covariates were read of a layer at which place. */
+  readonly readAt?: readonly { readonly covariate: string; readonly place: string }[];
   readonly map: MapLayer | undefined;
   readonly warn: CollinearityOptions["warn"];
   /** The mean absolute r at which the tree of clusters was cut. */

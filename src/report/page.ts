@@ -7,17 +7,16 @@ import type { ReportInput } from "./input.ts";
 import { counted, whole } from "./numbers.ts";
 import type { Section } from "./parts.ts";
 import { SCRIPT } from "./script.ts";
-import { cautionsSection } from "./sections/cautions.ts";
 import { componentsSection, storySection } from "./sections/collinearity.ts";
-import { recordSection, tablesSection } from "./sections/files.ts";
+import { detectableSection } from "./sections/detectable.ts";
+import { recordSection } from "./sections/files.ts";
 import { findingsSection } from "./sections/findings.ts";
 import { inputsSection, timeSection, whereSection } from "./sections/inputs.ts";
 import { methodsSection } from "./sections/methods.ts";
 import { recaptureSection } from "./sections/recapture.ts";
-import { refitsSection } from "./sections/refits.ts";
 import { screenSection } from "./sections/screen.ts";
 import { sensitivitySection } from "./sections/sensitivity.ts";
-import { agreementSection, comparisonSection, survivalSection } from "./sections/survival.ts";
+import { comparisonSection, survivalSection } from "./sections/survival.ts";
 import { verdictSection } from "./sections/verdict.ts";
 import { STYLE } from "./style.ts";
 
@@ -40,15 +39,12 @@ export async function renderPage(input: ReportInput, figuresDrawn?: readonly Fig
     componentsSection(input, cast, drawn),
     recaptureSection(input, cast),
     screenSection(input, cast, drawn),
-    refitsSection(input, cast),
-    survivalSection(drawn),
-    comparisonSection(input, cast),
-    agreementSection(input, cast, drawn),
+    survivalSection(input, cast, drawn),
+    comparisonSection(input, cast, drawn),
     sensitivitySection(input, cast, drawn),
+    detectableSection(input),
     findingsSection(input),
-    cautionsSection(input),
     methodsSection(input),
-    tablesSection(input),
     recordSection(input),
   ];
   return html`<!doctype html>

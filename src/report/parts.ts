@@ -42,9 +42,14 @@ export function figureBlock(figures: readonly Figure[], name: string): Html | un
     .replace(' xmlns="http://www.w3.org/2000/svg"', "")
     .replace(
       "<svg ",
-      `<svg style="max-width:${width}px;min-width:${Math.round(Math.min(width, Math.max(520, 0.74 * width)))}px" `,
+      `<svg style="max-width:${width}px;min-width:${Math.round(Math.min(width, Math.max(520, 0.8 * width)))}px" `,
     );
   return html`<figure id="figure-${name}"${width <= 760 && html` class="narrow"`}><div class="scroll" tabindex="0" role="group" aria-label="${figure.title}">${markup(sized)}</div><figcaption><b>${figure.title}</b> ${figure.caption}</figcaption></figure>`;
+}
+
+/** What the reader must not make the numbers say, where the temptation is. */
+export function caution(head: string, text: Piece): Html {
+  return html`<p class="caution"><b>${head}.</b> ${text}</p>`;
 }
 
 export interface Head {

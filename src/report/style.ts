@@ -45,7 +45,7 @@ nav li:has(.here)::before,nav li:hover::before{border-color:var(--mark)}}
 .said{display:grid;grid-template-columns:repeat(auto-fit,minmax(min(100%,16rem),1fr));gap:1.2rem 2rem;max-width:none;margin:0}
 .said dt{font-family:${SERIF};font-weight:600;border-top:2px solid var(--mark);padding-top:.5rem}
 .said dd{margin:.2rem 0 0}
-.note{border-left:3px solid var(--less);padding:.1rem 0 .1rem 1rem;margin:1rem 0}
+blockquote{margin:1rem 0;padding:.2rem 0 .2rem 1.2rem;border-left:3px solid var(--mark);max-width:70ch}.note{border-left:3px solid var(--less);padding:.1rem 0 .1rem 1rem;margin:1rem 0}
 figure{margin:1.6rem 0 2rem;background:var(--panel);border:1px solid var(--rule);border-radius:3px;padding:1.1rem 0 1rem}
 figure .scroll{padding:0 1.1rem;overflow-x:auto;overflow-y:hidden}
 figure svg{display:block;height:auto;width:100%;margin:0 auto 0 0}
@@ -53,7 +53,8 @@ figcaption{padding:.8rem 1.1rem 0;max-width:78ch;color:var(--muted)}
 figcaption b{display:block;color:var(--ink);font-family:${SERIF};font-size:1.08rem;font-weight:600}
 @media (min-width:1180px){figure.narrow{display:grid;grid-template-columns:minmax(0,max-content) minmax(15rem,1fr);align-items:start}figure.narrow figcaption{padding:.6rem 1.4rem 0 .4rem}}
 .grid{margin:1rem 0 1.6rem}
-.scroll{overflow-x:auto;overflow-y:hidden;max-width:100%;background:linear-gradient(90deg,var(--panel) 30%,transparent) left/3rem 100% no-repeat local,linear-gradient(270deg,var(--panel) 30%,transparent) right/3rem 100% no-repeat local,linear-gradient(90deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) left/.8rem 100% no-repeat,linear-gradient(270deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) right/.8rem 100% no-repeat}
+.scroll{overflow-x:auto;overflow-y:hidden;max-width:100%}
+.scroll.wide{background:linear-gradient(90deg,var(--panel) 30%,transparent) left/3rem 100% no-repeat local,linear-gradient(270deg,var(--panel) 30%,transparent) right/3rem 100% no-repeat local,linear-gradient(90deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) left/.8rem 100% no-repeat,linear-gradient(270deg,color-mix(in srgb,var(--ink) 22%,transparent),transparent) right/.8rem 100% no-repeat}
 .scroll{background-color:var(--panel)}.grid .scroll{width:fit-content}
 table{border-collapse:collapse;overflow-wrap:normal;font-size:.9rem;line-height:1.4}
 caption{text-align:left;background:var(--page);font-family:${SERIF};font-weight:600;font-size:1.08rem;padding:0 0 .5rem}
@@ -84,13 +85,17 @@ button,select,input{font:inherit;color:inherit}
 button,select{background:var(--panel);border:1px solid var(--muted);border-radius:2px;padding:.2rem .7rem;cursor:pointer}
 button.copy{font-size:.82rem;margin:.5rem 0 0;border-color:var(--rule);color:var(--muted)}button.copy:hover,button.copy:focus-visible{color:var(--ink);border-color:var(--muted)}
 .tools{display:flex;flex-wrap:wrap;gap:.6rem 1rem;align-items:center;margin:.8rem 0}
-.lit [data-covariate]{opacity:.22;transition:opacity .12s}
-.lit [data-covariate].on{opacity:1}
+.lit [data-covariate],.lit [data-covariates]{opacity:.22;transition:opacity .12s}
+.lit [data-covariate].on,.lit [data-covariates].on{opacity:1}
 .lit tr[data-covariate],.lit .cov{opacity:.55}.lit tr.on,.lit .cov.on{opacity:1}
 .pin{position:fixed;right:1rem;bottom:1rem;background:var(--panel);border:2px solid var(--mark);border-radius:3px;padding:.5rem .8rem;display:flex;gap:.8rem;align-items:center;z-index:4;max-width:calc(100vw - 2rem)}
 .walk{background:var(--panel);border:1px solid var(--rule);border-radius:3px;padding:.2rem 1.1rem .6rem;margin:1.6rem 0 2rem}.walk h3{margin-top:.8rem}
 .walk input{width:min(100%,44rem);accent-color:var(--mark);display:block}
-.walk output{display:block;min-height:3.2em}
+.walk output{display:block;min-height:3.2em}.walk h4{margin:.8rem 0 .1rem;font-weight:600;font-size:.9rem}.walk .pane svg{max-width:700px;width:100%}
+.standing{display:flex;flex-wrap:wrap;gap:.2rem .5rem;list-style:none;padding:0;max-width:none}.standing li{padding:.05rem .5rem;border:1px dashed transparent;border-radius:2px}.standing li.stands{border:1px solid var(--mark);font-weight:600}
+.choice{border:0;padding:0;margin:1rem 0 0;min-width:0}.choice legend{float:left;padding:0;margin-right:.4rem;font-weight:600}.choice label{display:inline-flex;align-items:center;gap:.35rem;cursor:pointer}.choice input{accent-color:var(--mark);margin:0}
+@media screen{.off{display:none}}
+.caution{border-left:3px solid var(--rule);padding:.05rem 0 .05rem 1rem;color:var(--muted)}.caution b{color:var(--ink);font-weight:600}
 @media (prefers-reduced-motion:reduce){*{transition:none!important}}
 @media print{:root{color-scheme:light}body{background:#fff;font-size:10.5pt}nav,.skip,button,.tools,.walk,.pin{display:none!important}
 .sheet{padding:0;max-width:none}header{padding-top:1rem}section{padding:1rem 0}

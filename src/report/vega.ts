@@ -1,8 +1,9 @@
 import type { LoggerInterface } from "vega";
 import type { TopLevelSpec } from "vega-lite";
-import { drawing, FONT } from "./figure.ts";
+import { drawing, FONT, textWidth } from "./figure.ts";
 import { markup } from "./html.ts";
 import { ink } from "./palette.ts";
+import type { Size } from "./size.ts";
 
 const CONFIG = {
   font: FONT,
@@ -29,6 +30,19 @@ const CONFIG = {
   view: { stroke: null },
 } as const;
 
+/** Names beside an axis, in a column of known width. */
+export function nameAxis({ names }: Size) {
+  return { labelLimit: names - 6, minExtent: names, maxExtent: names };
+}
+
+/** The description of the line at the chosen penalty, beside which the page's slider moves another. */
+export const CHOSEN_LAMBDA = "chosen lambda";
+
+/** What the library offers for measuring text, which its types leave out. */
+interface TextMetrics {
+  width: (item: { readonly fontSize?: number }, text: string) => number;
+}
+
 /** The description under which a mark is recognised as a covariate's. */
 export function covariateMark(index: number): string {
   return `covariate:${index}`;
@@ -53,6 +67,9 @@ const STRICT: LoggerInterface = {
 export async function chart(name: string, title: string, says: string, spec: TopLevelSpec): Promise<string> {
   const [vega, { compile }] = await Promise.all([import("vega"), import("vega-lite")]);
   vega.resetSVGDefIds();
+  // without a canvas it takes every letter for 0.8 em, half as wide again as letters are
+  (vega as unknown as { readonly textMetrics: TextMetrics }).textMetrics.width = (item, text) =>
+    textWidth(text, item.fontSize);
   const merged = { ...spec, config: { ...CONFIG, ...spec.config } } as TopLevelSpec; // the spread loses the union
   const { spec: full } = compile(merged, { logger: STRICT });
   const view = new vega.View(vega.parse(full), { renderer: "none", logger: STRICT });
@@ -68,6 +85,7 @@ function cleaned(body: string, name: string): string {
   return body.replace(/<[^>]*>/g, (tag) =>
     tag
       .replace(/aria-label="covariate:(\d+)"/, 'data-covariate="$1"')
+      .replace('aria-label="chosen lambda"', 'data-lambda=""')
       .replace(/ (?:aria-[a-z]+|role|class|pointer-events)="[^"]*"/g, "")
       .replace(/ font-family="[^"]*"/g, "")
       .replace(/ opacity="1"/g, "")

@@ -8,6 +8,7 @@ import { type Fit, fitModel, totalReleases } from "../survival/fit.ts";
 import { type PredictedCurve, predictedSurvival } from "../survival/predict.ts";
 import { type ProfileInterval, profileInterval } from "../survival/profile-interval.ts";
 import type { RecaptureComparison } from "../survival/recapture-choice.ts";
+import { survivalAlong } from "./along.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
 import { type InfluenceRow, leaveOneIntervalOut } from "./influence.ts";
 import type { ScreenOptions } from "./options.ts";
@@ -50,6 +51,8 @@ export interface ScreenResult {
   readonly weights: AdaptiveWeights;
   readonly path: LassoPath;
   readonly choice: PathChoice;
+  /** Apparent annual survival at each step of the path (see `survivalAlong`). */
+  readonly survivalAlong: readonly Float64Array[];
   /** Equal weights beside the adaptive ones, and ridge beside both: for comparison, no verdict rests on them. */
   readonly plain: PlainLasso;
   readonly ridge: RidgePath;
@@ -166,6 +169,7 @@ export async function screen(
     weights: found.weights,
     path: found.path,
     choice,
+    survivalAlong: survivalAlong(problem, found.path.steps),
     plain: plainLasso(problem, setting, options, found.refit),
     ridge: ridgePath(problem, setting.sampleSize),
     starts: agreeingStarts(problem, found.path, chosen, STARTS, randomStream(seed, "starts", 0)),

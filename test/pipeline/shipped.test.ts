@@ -87,7 +87,7 @@ describe.each(NAMES)("pipelines/%s.yaml", (name) => {
         ...due.flatMap((table) => [`tables/${table}.csv`, `tables/${table}.json`]),
         "tables/covariates.parquet",
         "tables/covariates-standardised.parquet",
-        "figures/time-ribbon.svg",
+        "figures/85mm/time-ribbon.png",
       ]),
     );
     expect(paths.includes("tables/selection.csv")).toBe(name !== "covariates-only");

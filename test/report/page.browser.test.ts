@@ -1,10 +1,12 @@
-import { existsSync } from "node:fs";
+import { existsSync, readFileSync } from "node:fs";
 import { mkdtemp, rm, writeFile } from "node:fs/promises";
+import { createRequire } from "node:module";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { pathToFileURL } from "node:url";
 import { type Browser, chromium, type Page } from "playwright-core";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import type { ReportInput } from "../../src/report/input.ts";
 import { renderPage } from "../../src/report/page.ts";
 import { reportInput } from "./fixture.ts";
 
@@ -16,7 +18,17 @@ const FOCUSED = `(() => {
   const one = document.activeElement;
   return one.tagName + " " + (one.getAttribute("href") || "") + " " + getComputedStyle(one).outlineStyle;
 })()`;
-const HOSTILE = `<img src=x onerror="document.title='broken in'"></script>`;
+const AXE = readFileSync(createRequire(import.meta.url).resolve("axe-core/axe.min.js"), "utf8");
+/** Markup, the end of a script, and a mark that turns the direction of writing. */
+const HOSTILE = `<img src=x onerror="document.title='broken in'"></script>\u202e`;
+
+/** The same study, in which counting animals chose one covariate fewer than counting years. */
+function differing(input: ReportInput): ReportInput {
+  const { screened } = input;
+  if (screened === undefined) return input;
+  const names = screened.byYears.names.slice(0, 1);
+  return { ...input, screened: { ...screened, byAnimals: { ...screened.byYears, names } } };
+}
 
 describe.runIf(FOUND !== undefined)("the page in a browser", () => {
   let browser: Browser;
@@ -32,7 +44,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
       await writeFile(join(folder, name), html);
       return pathToFileURL(join(folder, name)).href;
     };
-    address = await put("page.html", await renderPage(await reportInput({ permutations: 3 })));
+    address = await put("page.html", await renderPage(differing(await reportInput({ permutations: 3 }))));
     hostile = await put(
       "hostile.html",
       await renderPage(await reportInput({ hostile: HOSTILE, permutations: 0 })),
@@ -49,7 +61,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
         "--disable-sync",
       ],
     });
-  });
+  }, 240_000);
 
   afterAll(async () => {
     await browser?.close();
@@ -99,6 +111,47 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     await page.context().close();
   });
 
+  test("pointed at, a covariate is lit in path, correlation (row and column), series, map and tables", async () => {
+    const page = await open(1400);
+    const name = page.locator("#inputs td .cov[role=button]").first();
+    const index = await name.getAttribute("data-covariate");
+    await name.hover();
+    for (const place of ["coefficient-paths", "covariate-values", "observed-series", "time-ribbon", "map"]) {
+      const lit = page.locator(
+        `#figure-${place} [data-covariate="${index}"].on, #figure-${place} [data-covariates~="${index}"].on`,
+      );
+      expect([place, (await lit.count()) > 0]).toEqual([place, true]);
+    }
+    const cells = page.locator("#figure-correlation [data-covariates]");
+    const ofOne = page.locator(`#figure-correlation [data-covariates~="${index}"]`);
+    const lit = page.locator("#figure-correlation [data-covariates].on");
+    expect(await lit.count()).toBe(await ofOne.count());
+    // K covariates have K(K − 1)/2 squares; each is in K − 1 of them, and once more as a number
+    const K = (1 + Math.sqrt(1 + 4 * (await cells.count()))) / 2;
+    expect(await ofOne.count()).toBe(2 * (K - 1));
+    expect(await page.locator(`#inputs tr.on`).count()).toBe(1);
+    await page.context().close();
+  });
+
+  test("years and animals are switched everywhere at once, by keyboard; both are printed", async () => {
+    const page = await open(1400);
+    const seen = async () => [
+      await page.locator("#figure-survival").isVisible(),
+      await page.locator("#figure-survival-by-animals").isVisible(),
+      await page.getByText("What the choice by animals says, refitted without penalty").isVisible(),
+    ];
+    expect(await seen()).toEqual([true, false, false]);
+    await page.locator("#survival fieldset input").first().focus();
+    await page.keyboard.press("ArrowRight");
+    expect(await seen()).toEqual([false, true, true]);
+    expect(await page.locator("#screen fieldset input[value=animals]").isChecked()).toBe(true);
+    await page.emulateMedia({ media: "print" });
+    expect(await seen()).toEqual([true, true, true]);
+    expect(await page.locator("fieldset").first().isVisible()).toBe(false);
+    expect(await page.locator("#figure-correlation-detrended").isVisible()).toBe(true);
+    await page.context().close();
+  });
+
   test("Tab reaches the skip link, the sections and beyond, always where it can be seen", async () => {
     const page = await open(1400);
     const reached: string[] = [];
@@ -121,8 +174,26 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     await page.keyboard.press("Home");
     expect(await page.locator(".walk output").textContent()).toContain("no covariate stands");
     expect(before).toContain("(chosen)");
-    await page.locator("#findings select").selectOption("duplicate");
+    expect(await page.locator(".walk .stands").count()).toBe(0);
+    const flat = await page.locator(".walk svg[role=img] path").last().getAttribute("d");
+    await page.keyboard.press("End");
+    expect(await page.locator(".walk .stands").count()).toBeGreaterThan(2);
+    expect(await page.locator(".walk svg[role=img] path").last().getAttribute("d")).not.toBe(flat);
+    expect(await page.locator(".walk svg[role=img]").first().getAttribute("aria-label")).toMatch(
+      /from 0?\.?\d+ to 0?\.?\d+/,
+    );
+    // the line in the two figures along the path has moved to their right edge
+    expect(
+      await page.locator("#figure-criterion [stroke-dasharray='3 3']").getAttribute("transform"),
+    ).toMatch(/^translate\(700,/);
+    await page.getByLabel("Show").selectOption("duplicate");
     expect(await page.locator(".findings > details:visible").count()).toBe(1);
+    await page.getByLabel("Show").selectOption("");
+    await page.getByLabel("Severity").selectOption("accept");
+    expect(await page.locator(".findings .severity.warn:visible").count()).toBe(0);
+    expect(await page.locator("#findings output").textContent()).toBe(
+      `${await page.locator(".findings .severity.accept").count()} shown`,
+    );
     await page.context().close();
   });
 
@@ -131,8 +202,8 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     await page.evaluate(
       "Object.defineProperty(navigator, 'clipboard', { value: { writeText: async (text) => { document.body.dataset.copied = text; } } })",
     );
-    await page.locator("#tables summary").first().click();
-    await page.locator("#tables button.copy").first().click();
+    await page.locator("#record summary").nth(1).click();
+    await page.locator("#record button.copy").first().click();
     const rows = (await page.evaluate<string>("document.body.dataset.copied")).trim().split("\r\n");
     expect(rows).toHaveLength(21);
     const cells = rows[1].split(",");
@@ -140,11 +211,38 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     await page.context().close();
   });
 
+  test.each([
+    ["light", 1400],
+    ["dark", 420],
+  ] as const)("axe finds nothing, %s at %d pixels", { timeout: 240_000 }, async (colorScheme, width) => {
+    const context = await browser.newContext({
+      viewport: { width, height: 900 },
+      colorScheme,
+      // only so that the checker itself can be put into the page
+      bypassCSP: true,
+    });
+    const page = await context.newPage();
+    await page.goto(address);
+    await page.evaluate(
+      "document.querySelectorAll('.findings details').forEach((one) => { one.open = true; })",
+    );
+    await page.evaluate(AXE);
+    const { passes, violations } = await page.evaluate<{
+      readonly passes: readonly unknown[];
+      readonly violations: readonly { readonly id: string; readonly nodes: readonly { html: string }[] }[];
+    }>("axe.run(document, { resultTypes: ['violations'] })");
+    expect(violations.map(({ id, nodes }) => [id, nodes[0].html])).toEqual([]);
+    expect(passes.length).toBeGreaterThan(30);
+    await context.close();
+  });
+
   test("without JavaScript the page is whole", async () => {
     const page = await open(900, address, false);
-    expect(await page.locator("section").count()).toBe(16);
+    expect(await page.locator("section").count()).toBe(15);
     expect(await page.locator("figure svg").first().isVisible()).toBe(true);
     expect(await page.locator(".walk").isVisible()).toBe(false);
+    for (const option of await page.locator(".option").all()) expect(await option.isVisible()).toBe(true);
+    expect(await page.locator("details summary").first().isVisible()).toBe(true);
     await page.context().close();
   });
 

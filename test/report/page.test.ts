@@ -38,14 +38,12 @@ describe("the page", () => {
       "components",
       "recapture",
       "screen",
-      "refits",
       "survival",
       "comparison",
-      "agreement",
+      "sensitivity",
+      "detectable",
       "findings",
-      "cautions",
       "methods",
-      "tables",
       "record",
     ]);
     for (const id of ids) expect(page).toContain(`<a href="#${id}">`);
@@ -119,6 +117,7 @@ describe("the page", () => {
       "coefficient-paths",
       "evidence",
       "survival",
+      "survival-drivers",
       "effects",
     ]);
     for (const { name, title, caption, svg } of drawn) {
@@ -162,7 +161,8 @@ describe("other studies", () => {
       "screen",
       "survival",
       "comparison",
-      "agreement",
+      "sensitivity",
+      "detectable",
     ])
       expect(sectionOf(text, id), id).toMatch(/<p>[^<]+<\/p><\/section>|<p>[^<]+<\/p>$/);
     expect((await figures(alone)).map((one) => one.name)).not.toContain("correlation");

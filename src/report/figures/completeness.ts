@@ -5,15 +5,15 @@ import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, percent, px } from "../numbers.ts";
 import { ink } from "../palette.ts";
-
-const LEFT = 178;
+import type { Size } from "../size.ts";
 
 /** How much of each window was observed. */
-export function completeness(input: ReportInput, cast: Cast): Figure | undefined {
+export function completeness(input: ReportInput, cast: Cast, size: Size): Figure | undefined {
+  const left = size.names;
   const rows = input.covariates.filter((one) => one.values.some((value) => value.daysDue > 0));
   const n = input.intervals.length;
   if (rows.length === 0 || n === 0) return undefined;
-  const cell = Math.max(12, Math.min(40, 880 / n));
+  const cell = Math.max(size.narrow ? 6 : 12, Math.min(40, (size.width - left - 20) / n));
   const high = rows.length > 40 ? 12 : 20;
   const top = 26;
   const all = rows.flatMap((one) => one.values).filter((one) => one.daysDue > 0);
@@ -21,23 +21,25 @@ export function completeness(input: ReportInput, cast: Cast): Figure | undefined
   const missing = all.filter((one) => Number.isNaN(one.value)).length;
   const body = [
     input.intervals.map((one, t) =>
-      label(LEFT + (t + 0.5) * cell, 17, String(one.index + 1), {
-        anchor: "middle",
-        fill: "muted",
-        size: 11,
-      }),
+      cell < 18 && t % 5 !== 0
+        ? html``
+        : label(left + (t + 0.5) * cell, 17, String(one.index + 1), {
+            anchor: "middle",
+            fill: "muted",
+            size: 11,
+          }),
     ),
-    label(LEFT - 12, 17, "interval", { anchor: "end", fill: "muted" }),
+    label(left - 12, 17, "interval", { anchor: "end", fill: "muted" }),
     rows.map((row, r) => {
       const member = cast.byName.get(row.name);
       const y = top + r * high;
       return belongs(member, [
-        member !== undefined && marker(member.theme, LEFT - 18, y + high / 2, 4),
-        label(LEFT - 30, y + high / 2 + 4, fitted(row.name, LEFT - 34), {
+        member !== undefined && marker(member.theme, left - 18, y + high / 2, 4),
+        label(left - 30, y + high / 2 + 4, fitted(row.name, left - 34), {
           anchor: "end",
           size: high < 16 ? 10 : 12,
         }),
-        row.values.map((value, t) => square(value, LEFT + t * cell + 1.5, y + 2, cell - 3, high - 4)),
+        row.values.map((value, t) => square(value, left + t * cell + 1.5, y + 2, cell - 3, high - 4)),
       ]);
     }),
   ];
@@ -47,7 +49,7 @@ export function completeness(input: ReportInput, cast: Cast): Figure | undefined
     caption:
       "One cell per covariate and interval, numbered as on the ribbon: filled from below to the share of its days that were observed. A cross is a value that the rule of completeness refused; a dot is a sum scaled up to the whole window.",
     svg: drawing(
-      LEFT + n * cell + 10,
+      left + n * cell + 10,
       top + rows.length * high + 8,
       "How complete the windows are",
       `${counted(all.length, "window")}: ${full} fully observed (${percent(full / all.length)}), ${missing} without a value`,

@@ -1,20 +1,19 @@
 import type { CorrelationTable } from "../../collinearity/result.ts";
 import type { Cast } from "../cast.ts";
 import { belongs, drawing, type Figure, fitted, label, marker, segment } from "../figure.ts";
-import { html } from "../html.ts";
+import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, px } from "../numbers.ts";
 import { ink } from "../palette.ts";
+import type { Size } from "../size.ts";
 import { shortR, signedLegend, signedSquare } from "./signed.ts";
 
-const LEFT = 190;
-
 /** Correlations of the covariates, ordered so that those of one cluster stand together. */
-export function correlationMap(input: ReportInput, cast: Cast): Figure | undefined {
+export function correlationMap(input: ReportInput, cast: Cast, size: Size): Figure | undefined {
   const { diagnosis } = input;
   if (diagnosis === undefined || diagnosis.pearson.names.length < 2) return undefined;
   const many = diagnosis.clusters.filter((one) => one.members.length > 1).length;
-  return triangles(input, cast, diagnosis.pearson, diagnosis.pearson, {
+  return triangles(input, cast, size, diagnosis.pearson, diagnosis.pearson, {
     name: "correlation",
     title: "Which covariates tell the same story",
     caption: (numbers) =>
@@ -24,11 +23,11 @@ export function correlationMap(input: ReportInput, cast: Cast): Figure | undefin
 }
 
 /** The same once shared trends are taken out: given the year below the diagonal, of changes above it. */
-export function detrendedMap(input: ReportInput, cast: Cast): Figure | undefined {
+export function detrendedMap(input: ReportInput, cast: Cast, size: Size): Figure | undefined {
   const { diagnosis } = input;
   if (diagnosis?.partial === undefined || diagnosis.pearson.names.length < 2) return undefined;
   const changes = diagnosis.changes ?? diagnosis.partial;
-  return triangles(input, cast, diagnosis.partial, changes, {
+  return triangles(input, cast, size, diagnosis.partial, changes, {
     name: "correlation-detrended",
     title: "The same without shared trends",
     caption: (numbers) =>
@@ -48,6 +47,7 @@ interface Told {
 function triangles(
   input: ReportInput,
   cast: Cast,
+  room: Size,
   below: CorrelationTable,
   above: CorrelationTable,
   told: Told,
@@ -55,39 +55,41 @@ function triangles(
   const { diagnosis } = input;
   if (diagnosis === undefined) return undefined;
   const { names, r } = below;
+  const left = room.names + 12;
   const order = diagnosis.order;
   const K = names.length;
-  const cell = K <= 24 ? 34 : K <= 45 ? 18 : 9;
-  const numbers = K <= 24;
+  const cell = Math.min(K <= 24 ? 34 : K <= 45 ? 18 : 9, (room.width - left - 12) / K);
+  const numbers = cell >= 26;
   const top = 24;
-  const size = K <= 45 ? 12 : 8;
-  const at = (i: number) => LEFT + (i + 0.5) * cell;
+  const size = cell >= 13 ? 12 : 8;
+  const at = (i: number) => left + (i + 0.5) * cell;
   const down = (i: number) => top + (i + 0.5) * cell;
   const value = (i: number, j: number) => r.data[order[i] * K + order[j]];
   const other = (i: number, j: number) => above.r.data[order[i] * K + order[j]];
+  // a cell belongs to two covariates, the name before its row to one
+  const both = (i: number, j: number, body: Html) => {
+    const pair = [i, j].map((one) => cast.byName.get(names[order[one]])?.index ?? -1);
+    return html`<g data-covariates="${pair.join(" ")}">${body}</g>`;
+  };
   const rows = order.map((k, i) => {
     const member = cast.byName.get(names[k]);
-    const text = fitted(names[k], LEFT - 34, size);
-    return belongs(member, [
-      member !== undefined && marker(member.theme, LEFT - 14, down(i), size / 3),
-      label(LEFT - 24, down(i) + size / 3, text, { anchor: "end", size }),
-      order.slice(0, i).map((_, j) => signedSquare(value(i, j), at(j), down(i), cell)),
-      K <= 45
-        ? label(at(i), down(i) + 4, K <= 24 ? String(i + 1) : "", {
-            anchor: "middle",
-            fill: "muted",
-            size: 11,
-          })
-        : html``,
-      numbers &&
-        order.slice(i + 1).map((_, j) =>
-          label(at(i + 1 + j), down(i) + 4, shortR(other(i, i + 1 + j)), {
-            anchor: "middle",
-            size: 11,
-            weight: Math.abs(other(i, i + 1 + j)) > input.warn.correlation ? 700 : 400,
-          }),
-        ),
+    const head = belongs(member, [
+      member !== undefined && marker(member.theme, left - 14, down(i), size / 3),
+      label(left - 24, down(i) + size / 3, fitted(names[k], left - 34, size), { anchor: "end", size }),
+      cell >= 16 && label(at(i), down(i) + 4, String(i + 1), { anchor: "middle", fill: "muted", size: 11 }),
     ]);
+    const squares = order
+      .slice(0, i)
+      .map((_, j) => both(i, j, signedSquare(value(i, j), at(j), down(i), cell)));
+    const texts = !numbers
+      ? []
+      : order.slice(i + 1).map((_, above) => {
+          const j = i + 1 + above;
+          const strong = Math.abs(other(i, j)) > input.warn.correlation;
+          const look = { anchor: "middle", size: 11, weight: strong ? 700 : 400 } as const;
+          return both(i, j, label(at(j), down(i) + 4, shortR(other(i, j)), look));
+        });
+    return html`${head}${squares}${texts}`;
   });
   const position = (name: string) => order.indexOf(names.indexOf(name));
   const frames = diagnosis.clusters
@@ -96,7 +98,7 @@ function triangles(
       const places = one.members.map(position);
       const [a, b] = [Math.min(...places), Math.max(...places)];
       const side = (b - a + 1) * cell;
-      return html`<rect x="${px(LEFT + a * cell)}" y="${px(top + a * cell)}" width="${px(side)}" height="${px(side)}" fill="none" stroke="${ink("mark")}" stroke-width="2"/>`;
+      return html`<rect x="${px(left + a * cell)}" y="${px(top + a * cell)}" width="${px(side)}" height="${px(side)}" fill="none" stroke="${ink("mark")}" stroke-width="2"/>`;
     });
   const pairs = [];
   for (let i = 0; i < K; i++)
@@ -110,18 +112,18 @@ function triangles(
     title: told.title,
     caption: told.caption(numbers),
     svg: drawing(
-      Math.max(LEFT + K * cell + 12, 640),
+      Math.max(left + K * cell + 12, Math.min(640, room.width)),
       top + K * cell + 36,
       told.label,
       `${counted(K, "covariate")}; ${counted(pairs.length, "pair")} with |r| above ${brief(input.warn.correlation)}${strongest.length > 0 ? `: ${strongest.join(", ")}` : ""}`,
       [
-        segment(LEFT, top, LEFT + K * cell, top, "rule"),
+        segment(left, top, left + K * cell, top, "rule"),
         ...order.map((_, i) =>
-          segment(LEFT, top + (i + 1) * cell, LEFT + K * cell, top + (i + 1) * cell, "rule", 0.5),
+          segment(left, top + (i + 1) * cell, left + K * cell, top + (i + 1) * cell, "rule", 0.5),
         ),
         ...rows,
         ...frames,
-        signedLegend(LEFT, top + K * cell + 24),
+        signedLegend(room.narrow ? 4 : left, top + K * cell + 24, room.narrow),
       ],
     ),
   };

@@ -1,13 +1,20 @@
 import { listWords } from "../../data/words.ts";
+import type { Cast } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
-import { chart } from "../vega.ts";
-import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, PATH_WIDTH } from "./lambda.ts";
+import type { Size } from "../size.ts";
+import { CHOSEN_LAMBDA, chart } from "../vega.ts";
+import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, pathWidth } from "./lambda.ts";
 
 /** The criterion along the path, with the chosen penalty and all that are nearly as good. */
-export async function criterion({ screened }: ReportInput): Promise<Figure | undefined> {
+export async function criterion(
+  { screened }: ReportInput,
+  _cast: Cast,
+  size: Size,
+): Promise<Figure | undefined> {
+  const width = pathWidth(size);
   if (screened === undefined || screened.path.lambdaMax === 0) return undefined;
   const { choice, options, byAnimals } = screened;
   const value = (i: number) => choice.rows[i].criterion;
@@ -17,7 +24,7 @@ export async function criterion({ screened }: ReportInput): Promise<Figure | und
   const chosen = choice.rows[choice.index];
   const band = choice.band.map((i) => choice.rows[i].lambda);
   const least = value(choice.index);
-  const steps = changes(data);
+  const steps = changes(data, width);
   const title = "The criterion along the path";
   const x = {
     field: "lambda",
@@ -39,7 +46,7 @@ export async function criterion({ screened }: ReportInput): Promise<Figure | und
     title,
     `${options.chooseBy} is least, ${show(least)}, at penalty ${show(chosen.lambda)} with ${counted(chosen.active, "covariate")}: ${listWords(byAnimals.names)}; ${counted(band.length, "step")} of ${choice.rows.length} within 2 units`,
     {
-      width: PATH_WIDTH,
+      width,
       height: 200,
       layer: [
         {
@@ -58,7 +65,7 @@ export async function criterion({ screened }: ReportInput): Promise<Figure | und
         {
           data: { values: [{ lambda: chosen.lambda, value: least }] },
           mark: { type: "rule", color: ink("mark"), strokeWidth: 1.5 },
-          encoding: { x },
+          encoding: { x, description: { value: CHOSEN_LAMBDA } },
         },
         {
           data: { values: [{ lambda: chosen.lambda, value: least }] },
@@ -90,9 +97,9 @@ interface Point {
 }
 
 /** Where the number of covariates changes, as far as the numbers have room beside each other. */
-function changes(data: readonly Point[]): Point[] {
+function changes(data: readonly Point[], width: number): Point[] {
   const out: Point[] = [];
-  const perStep = PATH_WIDTH / Math.max(1, data.length - 1);
+  const perStep = width / Math.max(1, data.length - 1);
   let last = Number.NEGATIVE_INFINITY;
   data.forEach((one, i) => {
     if (i > 0 && one.active === data[i - 1].active) return;

@@ -3,7 +3,8 @@ import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { show } from "../numbers.ts";
 import { ink } from "../palette.ts";
-import { chart, covariateMark } from "../vega.ts";
+import type { Size } from "../size.ts";
+import { chart, covariateMark, nameAxis } from "../vega.ts";
 
 const WAYS = [
   { key: "lasso", text: "lasso, shrunken", shape: "square", colour: ink("mark") },
@@ -12,7 +13,11 @@ const WAYS = [
 ] as const;
 
 /** The effect of each covariate three ways, side by side. */
-export async function effects({ comparison }: ReportInput, cast: Cast): Promise<Figure | undefined> {
+export async function effects(
+  { comparison }: ReportInput,
+  cast: Cast,
+  size: Size,
+): Promise<Figure | undefined> {
   const rows = comparison?.agreement.effects ?? [];
   if (rows.length === 0) return undefined;
   const points = rows.flatMap((one) =>
@@ -32,14 +37,14 @@ export async function effects({ comparison }: ReportInput, cast: Cast): Promise<
     type: "nominal",
     sort: null,
     title: null,
-    axis: { ticks: false, domain: false, grid: true, labelColor: ink("ink"), labelLimit: 190 },
+    axis: { ticks: false, domain: false, grid: true, labelColor: ink("ink"), ...nameAxis(size) },
   } as const;
   const scale = { domain: used.map((one) => one.text), range: used.map((one) => one.colour) };
   const shapes = { domain: used.map((one) => one.text), range: used.map((one) => one.shape as string) };
   const legend = {
     title: null,
     orient: "top",
-    direction: "horizontal",
+    direction: size.narrow ? "vertical" : "horizontal",
     labelColor: ink("ink"),
     labelFontSize: 12,
     symbolSize: 70,
@@ -56,7 +61,7 @@ export async function effects({ comparison }: ReportInput, cast: Cast): Promise<
       )
       .join("; "),
     {
-      width: 600,
+      width: Math.min(600, size.width - size.names - 54),
       height: { step: rows.length > 40 ? 16 : 24 },
       data: { values: points },
       layer: [

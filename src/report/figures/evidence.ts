@@ -1,14 +1,20 @@
+import type { Cast } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { percent, pText } from "../numbers.ts";
 import { ink } from "../palette.ts";
+import type { Size } from "../size.ts";
 import { chart } from "../vega.ts";
 
 const ROWS: string[] = ["counting years", "counting animals"];
 const PERCENT: number[] = [0, 100];
 
 /** What the two selections account for, beside what they account for when the years are permuted. */
-export async function evidence({ screened }: ReportInput): Promise<Figure | undefined> {
+export async function evidence(
+  { screened }: ReportInput,
+  _cast: Cast,
+  size: Size,
+): Promise<Figure | undefined> {
   const permutation = screened?.permutation;
   if (screened === undefined || permutation === undefined) return undefined;
   const share = (value: number) => (Number.isFinite(value) ? 100 * value : 0);
@@ -52,7 +58,7 @@ export async function evidence({ screened }: ReportInput): Promise<Figure | unde
     title,
     `Counting years the selection accounts for ${percent(rows[0].observed / 100)}, with years permuted the median is ${percent(permutation.medianShareByYears)}; counting animals ${percent(rows[1].observed / 100)}, permuted ${percent(permutation.medianShareByAnimals)}, 95 % of permutations below ${percent(permutation.shareByAnimals95)}; family-wise p ${pText(permutation.p)} over ${permutation.replicates} permutations`,
     {
-      width: 560,
+      width: Math.min(560, size.width - 140),
       height: { step: 62 },
       data: { values: rows },
       layer: [

@@ -3,13 +3,14 @@ import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
-import { chart, covariateMark } from "../vega.ts";
+import type { Size } from "../size.ts";
+import { chart, covariateMark, nameAxis } from "../vega.ts";
 
 /** From 1, the least there is. A plain array: the plot library takes no readonly one. */
 const domainOf = (edge: number): number[] => [1, edge];
 
 /** Variance inflation by covariate, on a logarithmic scale; infinity has its own place at the right. */
-export async function inflation(input: ReportInput, cast: Cast): Promise<Figure | undefined> {
+export async function inflation(input: ReportInput, cast: Cast, size: Size): Promise<Figure | undefined> {
   const rows = input.diagnosis?.inflation ?? [];
   if (rows.length < 2) return undefined;
   const finite = rows.map((one) => one.inflation).filter(Number.isFinite);
@@ -40,7 +41,7 @@ export async function inflation(input: ReportInput, cast: Cast): Promise<Figure 
     type: "nominal",
     sort: null,
     title: null,
-    axis: { labelLimit: 190, ticks: false, domain: false, labelColor: ink("ink") },
+    axis: { ...nameAxis(size), ticks: false, domain: false, labelColor: ink("ink") },
   } as const;
   const x = {
     field: "value",
@@ -51,7 +52,7 @@ export async function inflation(input: ReportInput, cast: Cast): Promise<Figure 
   } as const;
   const description = { field: "mark" } as const;
   const svg = await chart("inflation", title, says, {
-    width: 500,
+    width: Math.min(500, size.width - size.names - 48),
     height: { step: rows.length > 40 ? 14 : 22 },
     data: { values: data },
     layer: [

@@ -1,7 +1,13 @@
 import type { ScreenResult } from "../../screen/screen.ts";
+import type { Size } from "../size.ts";
+
+/** Room for the names at the ends of the lines. */
+const PATH_NAMES = 182;
 
 /** Width of the two figures along the path, so that they line up below each other. */
-export const PATH_WIDTH = 700;
+export function pathWidth({ width, narrow }: Size): number {
+  return Math.min(700, width - PATH_EXTENT - (narrow ? 166 : PATH_NAMES));
+}
 
 export const LAMBDA_TITLE = "penalty λ (log scale, weaker to the right)";
 

@@ -1,6 +1,7 @@
 import type { Position } from "../../data/place.ts";
+import type { Site } from "../../data/series.ts";
 import { listWords } from "../../data/words.ts";
-import { unitText } from "../cast.ts";
+import { type Cast, unitText } from "../cast.ts";
 import { drawing, type Figure, label, rect, segment, textWidth } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { MapLayer, ReportInput } from "../input.ts";
@@ -8,6 +9,7 @@ import { brief, counted, px } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { pngUri } from "../png.ts";
 import { extent, line, roundBelow, ticks, tickText } from "../scale.ts";
+import type { Size } from "../size.ts";
 
 const LEFT = 62;
 const TOP = 10;
@@ -24,7 +26,7 @@ const RAMP = [
 ] as const;
 
 /** Places and stations over a layer, with a scale bar; plate carrée, true to scale at the middle latitude. */
-export function placesMap(input: ReportInput): Figure | undefined {
+export function placesMap(input: ReportInput, cast: Cast, size: Size): Figure | undefined {
   const sites = input.stations.filter(
     (one) => Number.isFinite(one.longitude) && Number.isFinite(one.latitude),
   );
@@ -33,7 +35,7 @@ export function placesMap(input: ReportInput): Figure | undefined {
     ...input.places.flatMap((one) => (one.type === "point" ? [one.position] : one.polygons.flat(2))),
   ];
   if (positions.length === 0) return undefined;
-  const frame = frameOf(positions, input.map);
+  const frame = frameOf(positions, input.map, size.width - LEFT - legendRoom(size));
   const { x, y, width, height } = frame;
   const body = [
     rect(LEFT, TOP, width, height, "wash"),
@@ -41,15 +43,17 @@ export function placesMap(input: ReportInput): Figure | undefined {
     graticule(frame),
     input.places.map((place) =>
       place.type === "area"
-        ? html`<path d="${place.polygons.flatMap((rings) => rings.map((ring) => `M${ring.map(([lon, lat]) => `${px(x(lon))},${px(y(lat))}`).join("L")}Z`)).join("")}" fill="${ink("mark")}" fill-opacity="0.12" fill-rule="evenodd" stroke="${ink("panel")}" stroke-width="4.5"/><path d="${place.polygons.flatMap((rings) => rings.map((ring) => `M${ring.map(([lon, lat]) => `${px(x(lon))},${px(y(lat))}`).join("L")}Z`)).join("")}" fill="none" stroke="${ink("mark")}" stroke-width="2"/>`
+        ? html`<g data-covariates="${placeUse(input, cast, place.name)}"><path d="${place.polygons.flatMap((rings) => rings.map((ring) => `M${ring.map(([lon, lat]) => `${px(x(lon))},${px(y(lat))}`).join("L")}Z`)).join("")}" fill="${ink("mark")}" fill-opacity="0.12" fill-rule="evenodd" stroke="${ink("panel")}" stroke-width="4.5"/><path d="${place.polygons.flatMap((rings) => rings.map((ring) => `M${ring.map(([lon, lat]) => `${px(x(lon))},${px(y(lat))}`).join("L")}Z`)).join("")}" fill="none" stroke="${ink("mark")}" stroke-width="2"/></g>`
         : html``,
     ),
     input.places.map((place) =>
-      place.type === "point" ? pointPlace(place.position, frame, input.coarsenedKm) : html``,
+      place.type === "point"
+        ? html`<g data-covariates="${placeUse(input, cast, place.name)}">${pointPlace(place.position, frame, input.coarsenedKm)}</g>`
+        : html``,
     ),
     sites.map(
       (one) =>
-        html`<path d="M0,-6L6,5H-6Z" transform="translate(${px(x(one.longitude))},${px(y(one.latitude))})" fill="${ink("ink")}" stroke="${ink("panel")}" stroke-width="1.5"/>`,
+        html`<path data-covariates="${stationUse(input, cast, one)}" d="M0,-6L6,5H-6Z" transform="translate(${px(x(one.longitude))},${px(y(one.latitude))})" fill="${ink("ink")}" stroke="${ink("panel")}" stroke-width="1.5"/>`,
     ),
     names(input, frame),
     scaleBar(frame),
@@ -65,13 +69,41 @@ export function placesMap(input: ReportInput): Figure | undefined {
     title: "Where the study looks",
     caption: `Stations (triangles) and places (${listWords(placeWords)})${input.map === undefined ? "" : ` over ${input.map.title}`}; longitude and latitude in degrees, WGS 84.${where}`,
     svg: drawing(
-      LEFT + width + 130,
+      LEFT + width + legendRoom(size),
       TOP + height + 34,
       "Map of places and stations",
       `${counted(sites.length, "station")}: ${listWords(sites.map((one) => one.name))}; ${counted(input.places.length, "place")}: ${listWords(placeWords)}; from ${frame.west.toFixed(2)}° to ${frame.east.toFixed(2)}° longitude and ${frame.south.toFixed(2)}° to ${frame.north.toFixed(2)}° latitude.${where}`,
       body,
     ),
   };
+}
+
+/** Positions in the cast of the covariates that a station fed. */
+function stationUse(input: ReportInput, cast: Cast, site: Site): string {
+  return indices(
+    cast,
+    input.covariates
+      .filter((one) =>
+        one.values.some((value) => value.stations.some((id) => id === site.id || id === site.name)),
+      )
+      .map((one) => one.name),
+  );
+}
+
+/** Those that were read of a layer at a place. */
+function placeUse(input: ReportInput, cast: Cast, place: string): string {
+  return indices(
+    cast,
+    (input.readAt ?? []).filter((one) => one.place === place).map((one) => one.covariate),
+  );
+}
+
+function indices(cast: Cast, names: readonly string[]): string {
+  return names.flatMap((name) => cast.byName.get(name)?.index ?? []).join(" ");
+}
+
+function legendRoom({ narrow }: Size): number {
+  return narrow ? 92 : 130;
 }
 
 interface Frame {
@@ -87,7 +119,7 @@ interface Frame {
   readonly perKm: number;
 }
 
-function frameOf(positions: readonly Position[], map: MapLayer | undefined): Frame {
+function frameOf(positions: readonly Position[], map: MapLayer | undefined, room: number): Frame {
   const corners: Position[] =
     map === undefined
       ? []
@@ -101,7 +133,7 @@ function frameOf(positions: readonly Position[], map: MapLayer | undefined): Fra
   const margin = Math.max(0.05 * Math.max(e - w, n - s), e - w === 0 && n - s === 0 ? 0.1 : 0.02);
   const [west, east, south, north] = [w - margin, e + margin, s - margin, n + margin];
   const shrink = Math.cos((((south + north) / 2) * Math.PI) / 180);
-  const perDegree = Math.min(760 / ((east - west) * shrink), 520 / (north - south));
+  const perDegree = Math.min(Math.min(760, room) / ((east - west) * shrink), 520 / (north - south));
   const [width, height] = [(east - west) * shrink * perDegree, (north - south) * perDegree];
   return {
     x: line([west, east], [LEFT, LEFT + width]),

@@ -1,18 +1,20 @@
 import type { Cast } from "../cast.ts";
-import type { Figure } from "../figure.ts";
+import { type Figure, fitted } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { extent, spread } from "../scale.ts";
-import { chart, covariateMark } from "../vega.ts";
-import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, PATH_WIDTH } from "./lambda.ts";
+import type { Size } from "../size.ts";
+import { CHOSEN_LAMBDA, chart, covariateMark } from "../vega.ts";
+import { LAMBDA_TITLE, lambdaAxis, lambdaScale, PATH_EXTENT, pathWidth } from "./lambda.ts";
 
 const HEIGHT = 380;
 /** How many lines get their name; the others are told by pointing and in the table. */
 const NAMED = 20;
 
 /** Each covariate's coefficient along the path, named where it ends. */
-export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figure | undefined> {
+export async function paths({ screened }: ReportInput, cast: Cast, size: Size): Promise<Figure | undefined> {
+  const width = pathWidth(size);
   if (screened === undefined || screened.path.lambdaMax === 0 || screened.names.length === 0)
     return undefined;
   const { path, names, choice, byAnimals } = screened;
@@ -54,7 +56,7 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
     domain[1],
   );
   const labels = named.map((k, i) => ({
-    name: names[k],
+    name: fitted(names[k], size.narrow ? 100 : 140),
     value: last.coefficients[k],
     at: heights[i],
     lambda: last.lambda,
@@ -81,7 +83,7 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
   const title = "Coefficients along the path";
   const says = `${counted(ever.length, "covariate")} of ${names.length} enter. At the chosen penalty ${show(chosen.lambda)}: ${byAnimals.names.map((name) => `${name} ${show(chosen.coefficients[names.indexOf(name)])}`).join(", ") || "none"}`;
   const svg = await chart("coefficient-paths", title, says, {
-    width: PATH_WIDTH,
+    width,
     height: HEIGHT,
     layer: [
       {
@@ -92,7 +94,7 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
       {
         data: { values: [{ lambda: chosen.lambda }] },
         mark: { type: "rule", color: ink("mark"), strokeWidth: 1.5 },
-        encoding: { x },
+        encoding: { x, description: { value: CHOSEN_LAMBDA } },
       },
       {
         data: { values: points },
@@ -110,8 +112,8 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
         data: { values: labels },
         mark: { type: "rule", strokeWidth: 0.8, opacity: 0.7 },
         encoding: {
-          x: { value: PATH_WIDTH },
-          x2: { value: PATH_WIDTH + 14 },
+          x: { value: width },
+          x2: { value: width + 14 },
           y: y("value"),
           y2: { field: "at" },
           color,
@@ -122,7 +124,7 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
         data: { values: labels },
         mark: { type: "point", filled: true, size: 55, opacity: 1 },
         encoding: {
-          x: { value: PATH_WIDTH + 20 },
+          x: { value: width + 20 },
           y: y("at"),
           color,
           shape: { field: "shape", type: "nominal", scale: null },
@@ -132,7 +134,7 @@ export async function paths({ screened }: ReportInput, cast: Cast): Promise<Figu
       {
         data: { values: labels },
         mark: { type: "text", align: "left", fontSize: 12, color: ink("ink") },
-        encoding: { x: { value: PATH_WIDTH + 29 }, y: y("at"), text: { field: "name" }, description },
+        encoding: { x: { value: width + 29 }, y: y("at"), text: { field: "name" }, description },
       },
     ],
   });

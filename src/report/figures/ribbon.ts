@@ -7,17 +7,16 @@ import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, px, whole } from "../numbers.ts";
 import { ink } from "../palette.ts";
+import type { Size } from "../size.ts";
 import { intervalSpan, occasionX, type TimeAxis, timeAxis, timeLabels } from "./axis-time.ts";
 
-const WIDTH = 1080;
-const LEFT = 178;
 const ROW = 19;
 const CATCH = 58;
 
 /** The time ribbon: captures at each occasion, the intervals between, and where in them each covariate looks. */
-export function ribbon(input: ReportInput, cast: Cast): Figure | undefined {
+export function ribbon(input: ReportInput, cast: Cast, size: Size): Figure | undefined {
   if (input.intervals.length === 0) return undefined;
-  const axis = timeAxis(input, LEFT, WIDTH - 14);
+  const axis = timeAxis(input, size.names, size.width - 14);
   const rows = rowsOf(input);
   const top = input.caught.length > 0 ? CATCH + 6 : 4;
   const bandY = top;
@@ -42,7 +41,7 @@ export function ribbon(input: ReportInput, cast: Cast): Figure | undefined {
     name: "time-ribbon",
     title: "The time ribbon",
     caption: `${input.caught.length > 0 ? "Above: animals caught at each occasion, newly marked (solid) and seen again (open). " : ""}The band is the run of intervals, each from one occasion to the next. ${rest}${derived(cast, input)}`,
-    svg: drawing(WIDTH, height, "The time ribbon", says, body),
+    svg: drawing(size.width, height, "The time ribbon", says, body),
   };
 }
 
@@ -58,8 +57,12 @@ function captures(input: ReportInput, axis: TimeAxis, base: number): Html[] {
   const unit = (CATCH - 14) / most;
   const width = Math.max(3, Math.min(11, ((axis.right - axis.left) / input.caught.length) * 0.4));
   return [
-    label(LEFT - 12, base - 24, "animals caught", { anchor: "end", fill: "muted" }),
-    label(LEFT - 12, base - 9, `at most ${most} at an occasion`, { anchor: "end", fill: "muted", size: 11 }),
+    label(axis.left - 12, base - 24, "animals caught", { anchor: "end", fill: "muted" }),
+    label(axis.left - 12, base - 9, axis.left < 150 ? `at most ${most}` : `at most ${most} at an occasion`, {
+      anchor: "end",
+      fill: "muted",
+      size: 11,
+    }),
     ...input.caught.map((one, i) => {
       const x = occasionX(input, axis, i) - width / 2;
       const [fresh, again] = [one.newlyMarked * unit, one.seenAgain * unit];
@@ -70,13 +73,20 @@ function captures(input: ReportInput, axis: TimeAxis, base: number): Html[] {
 }
 
 function band(input: ReportInput, axis: TimeAxis, y: number): Html[] {
+  const least = Math.min(
+    ...input.intervals.map((_, t) => intervalSpan(input, axis, t)[1] - intervalSpan(input, axis, t)[0]),
+  );
+  const step = [1, 5, 10].find((one) => one * least > 7 * String(input.intervals.length).length) ?? 20;
   return [
-    label(LEFT - 12, y + 15, "intervals and occasions", { anchor: "end", fill: "muted" }),
+    label(axis.left - 12, y + 15, axis.left < 150 ? "intervals" : "intervals and occasions", {
+      anchor: "end",
+      fill: "muted",
+    }),
     ...input.intervals.map((one, t) => {
       const [a, b] = intervalSpan(input, axis, t);
       const bar = rect(a, y + 4, b - a, 14, "mark", t % 2 === 0 ? 0.32 : 0.16);
       const text = String(one.index + 1);
-      return b - a > 7 * text.length
+      return one.index % step === 0
         ? html`${bar}${label((a + b) / 2, y + 15, text, { anchor: "middle", size: 11 })}`
         : bar;
     }),
@@ -132,9 +142,9 @@ function rowOf(input: ReportInput, cast: Cast, axis: TimeAxis, row: Row, y: numb
     });
   });
   return belongs(others.length === 0 ? member : undefined, [
-    html`<rect x="0" y="${y}" width="${LEFT - 6}" height="${ROW}" fill="none"/>`,
-    member !== undefined && marker(member.theme, LEFT - 18, y + 9, 4),
-    label(LEFT - 30, y + 13, fitted(text, LEFT - 34), { anchor: "end" }),
+    html`<rect x="0" y="${y}" width="${axis.left - 6}" height="${ROW}" fill="none"/>`,
+    member !== undefined && marker(member.theme, axis.left - 18, y + 9, 4),
+    label(axis.left - 30, y + 13, fitted(text, axis.left - 34), { anchor: "end" }),
     marks.map((one) => one as Html),
     html`<title>${listWords(row.covariates.map((one) => one.name))}</title>`,
   ]);

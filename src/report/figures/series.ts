@@ -7,19 +7,19 @@ import type { ReportInput, ShownSeries } from "../input.ts";
 import { counted, px, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { extent, line, ticks, tickText } from "../scale.ts";
+import type { Size } from "../size.ts";
 import { type TimeAxis, timeAxis, yearTicks } from "./axis-time.ts";
 
-const WIDTH = 1080;
-const LEFT = 60;
+const LEFT = 48;
 const HIGH = 108;
 const PLOT = 58;
 /** A site that is a mean of sites is no place. */
 const MEAN = /^mean of/;
 
 /** Observed series, with the windows of the covariate they feed shaded behind. */
-export function seriesFigure(input: ReportInput, cast: Cast): Figure | undefined {
+export function seriesFigure(input: ReportInput, cast: Cast, { width }: Size): Figure | undefined {
   const shown = input.shown.filter((one) => one.series.starts.length > 0);
-  const axis = timeAxis(input, LEFT, WIDTH - 10);
+  const axis = timeAxis(input, LEFT, width - 10);
   if (shown.length === 0 || !axis.dated) return undefined;
   const says = shown
     .map(({ covariate, series }) => {
@@ -33,7 +33,7 @@ export function seriesFigure(input: ReportInput, cast: Cast): Figure | undefined
     title: "Observed series and their windows",
     caption: `${counted(shown.length, "observed series", "observed series")}, thinned for the picture to at most one value a month. Shaded: the windows in which the covariate looks at it. Where the line breaks nothing was observed.`,
     svg: drawing(
-      WIDTH,
+      width,
       shown.length * HIGH + 4,
       "Observed series and their windows",
       says,
@@ -83,7 +83,7 @@ function panel(
   const head = `${series.variable}${unit === "" ? "" : ` (${unit})`}${MEAN.test(series.site) ? "," : " at"} ${series.site}, for ${covariate}`;
   return belongs(member, [
     member !== undefined && marker(member.theme, LEFT - 10, top + 10),
-    label(LEFT, top + 14, fitted(head, WIDTH - LEFT)),
+    label(LEFT, top + 14, fitted(head, axis.right - LEFT)),
     shade,
     ticks(low, high, 3).map(
       (value) =>

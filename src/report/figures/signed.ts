@@ -24,6 +24,6 @@ export function shortR(value: number): string {
   return (value < 0 && text !== "0.00" ? "−" : "") + (text.startsWith("0") ? text.slice(1) : text);
 }
 
-export function signedLegend(x: number, y: number): Html {
-  return html`${signedSquare(0.8, x + 8, y - 4, 16)}${label(x + 22, y, "positive (filled)", { fill: "muted" })}${signedSquare(-0.8, x + 144, y - 4, 16)}${label(x + 158, y, "negative (hollow); larger square, closer relation", { fill: "muted" })}`;
+export function signedLegend(x: number, y: number, brief = false): Html {
+  return html`${signedSquare(0.8, x + 8, y - 4, 16)}${label(x + 22, y, "positive (filled)", { fill: "muted" })}${signedSquare(-0.8, x + 144, y - 4, 16)}${label(x + 158, y, brief ? "negative (hollow)" : "negative (hollow); larger square, closer relation", { fill: "muted" })}`;
 }

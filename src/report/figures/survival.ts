@@ -1,20 +1,28 @@
 import { listWords } from "../../data/words.ts";
 import type { RateEstimate } from "../../survival/fit.ts";
+import type { Cast } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, show } from "../numbers.ts";
 import { ink } from "../palette.ts";
 import { extent } from "../scale.ts";
+import type { Size } from "../size.ts";
 import { chart } from "../vega.ts";
 import { isDated } from "./axis-time.ts";
+import { type Counting, chosenBy } from "./counting.ts";
 
 const MS_PER_DAY = 86_400_000;
 
-/** Apparent annual survival by interval: on its own, and by what was chosen counting years. */
-export async function survival(input: ReportInput): Promise<Figure | undefined> {
+/** Apparent annual survival by interval: on its own, and by what was chosen counting years or counting animals. */
+export function survival(counting: Counting) {
+  return (input: ReportInput, _cast: Cast, size: Size) => survivalOf(input, counting, size);
+}
+
+async function survivalOf(input: ReportInput, counting: Counting, size: Size): Promise<Figure | undefined> {
   const { screened } = input;
-  if (screened === undefined) return undefined;
-  const { intervalFit, byYears } = screened;
+  const chosen = chosenBy(input, counting);
+  if (screened === undefined || chosen === undefined) return undefined;
+  const { intervalFit } = screened;
   const dated = isDated(input);
   const at = (t: number) =>
     dated ? ((input.intervals[t].start + input.intervals[t].end) / 2) * MS_PER_DAY : t + 1;
@@ -28,10 +36,11 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
     // without a standard error there is no bar, and the point is hollow
     low: Number.isFinite(one.se) && Number.isFinite(one.low) ? one.low : null,
     high: Number.isFinite(one.se) && Number.isFinite(one.high) ? one.high : null,
-    sure: Number.isFinite(one.se),
+    // one that could be almost anything is no more told by the data than one at a bound
+    sure: Number.isFinite(one.se) && one.high - one.low < 0.95,
   });
   const own = intervalFit.survival.map(row);
-  const modelled = byYears.fit.survival.map(row);
+  const modelled = chosen.fit.survival.map(row);
   const strata = [...new Set(own.map((one) => one.stratum))];
   const x = {
     field: "x",
@@ -41,7 +50,10 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
           scale: { type: "utc" as const, domain: span, nice: false },
           axis: {
             labelExpr: "utcFormat(datum.value, '%Y')",
-            tickCount: { interval: "year" as const, step: input.intervals.length > 24 ? 5 : 2 },
+            tickCount: {
+              interval: "year" as const,
+              step: input.intervals.length > 24 || size.narrow ? 5 : 2,
+            },
           },
         }
       : {
@@ -53,17 +65,18 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
   };
   const y = (field: string) =>
     ({ field, type: "quantitative", scale: { domain: [0, 1] }, title: "apparent annual survival" }) as const;
+  const name = counting === "years" ? "survival" : "survival-by-animals";
   const title = "Apparent annual survival";
   const [low, high] = extent(own.map((one) => one.value));
   const unsure = own.filter((one) => !one.sure).length;
   const words =
-    byYears.names.length === 0
+    chosen.names.length === 0
       ? "the same in every interval (no covariate stands)"
-      : `by ${listWords(byYears.names)}`;
+      : `by ${listWords(chosen.names)}`;
   const svg = await chart(
-    "survival",
+    name,
     title,
-    `${strata.length > 1 ? `${counted(strata.length, "stratum", "strata")}: ${listWords(strata)}. ` : ""}One survival per interval runs from ${show(low)} to ${show(high)} over ${counted(input.intervals.length, "interval")}${unsure > 0 ? `, ${unsure} without a standard error` : ""}; the model chosen by years: ${words}, ${strata
+    `${strata.length > 1 ? `${counted(strata.length, "stratum", "strata")}: ${listWords(strata)}. ` : ""}One survival per interval runs from ${show(low)} to ${show(high)} over ${counted(input.intervals.length, "interval")}${unsure > 0 ? `, ${unsure} that the data hardly tell` : ""}; the model chosen counting ${counting}: ${words}, ${strata
       .map((stratum) => {
         const [a, b] = extent(modelled.filter((one) => one.stratum === stratum).map((one) => one.value));
         return `${strata.length > 1 ? `${stratum} ` : ""}${show(a)} to ${show(b)}`;
@@ -89,7 +102,7 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
         },
       },
       spec: {
-        width: 860,
+        width: Math.min(860, size.width - 80),
         height: strata.length > 1 ? 190 : 280,
         layer: [
           {
@@ -121,9 +134,9 @@ export async function survival(input: ReportInput): Promise<Figure | undefined> 
     } as never, // layer-in-facet specs are right but their inferred unions are not assignable one by one
   );
   return {
-    name: "survival",
+    name,
     title,
-    caption: `Points with bars: one survival per interval, 95 % intervals made on the logit scale; a hollow point lies at a bound or is not separable and has no standard error. Line and band: the model chosen by years, survival ${words}, with its 95 % interval, which knows nothing of the choosing.${strata.length > 1 ? " Strata stand apart." : ""} Apparent survival counts death and permanent emigration together.`,
+    caption: `Points with bars: one survival per interval, 95 % intervals made on the logit scale; a hollow point lies at a bound, is not separable, or could be almost anything. Line and band: the model chosen counting ${counting}, survival ${words}, with its 95 % interval, which knows nothing of the choosing.${strata.length > 1 ? " Strata stand apart." : ""} Apparent survival counts death and permanent emigration together.`,
     svg,
   };
 }

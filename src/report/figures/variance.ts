@@ -1,11 +1,17 @@
+import type { Cast } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import type { ReportInput } from "../input.ts";
 import { percent, sentence } from "../numbers.ts";
 import { ink } from "../palette.ts";
+import type { Size } from "../size.ts";
 import { chart } from "../vega.ts";
 
 /** Share of variance of each component beside what a stick broken at random would give it. */
-export async function variance({ components }: ReportInput): Promise<Figure | undefined> {
+export async function variance(
+  { components }: ReportInput,
+  _cast: Cast,
+  size: Size,
+): Promise<Figure | undefined> {
   if (components === undefined || components.share.length === 0) return undefined;
   const shown = Math.min(components.share.length, 20);
   const total = components.sd.reduce((sum, sd) => sum + sd * sd, 0);
@@ -34,7 +40,7 @@ export async function variance({ components }: ReportInput): Promise<Figure | un
       )
       .join("; ")}`,
     {
-      width: Math.max(360, Math.min(640, 48 * shown)),
+      width: Math.min(size.width - 150, Math.max(360, Math.min(640, 48 * shown))),
       height: 230,
       data: { values: data },
       layer: [

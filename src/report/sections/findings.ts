@@ -8,8 +8,7 @@ import type { Section } from "../parts.ts";
 /** Findings of one kind that go onto the page; the table in the files holds them all. */
 const MOST = 100;
 
-/** Kinds without words of their own are called by their name. */
-const WORDS: Readonly<Partial<Record<FindingKind, string>>> = {
+const WORDS: Readonly<Record<FindingKind, string>> = {
   gap: "Gaps in records",
   duplicate: "Repeated rows",
   "bad-value": "Values that cannot be read",
@@ -52,6 +51,10 @@ const WORDS: Readonly<Partial<Record<FindingKind, string>>> = {
   "few-fixes": "Too few positions",
   spike: "Spikes",
   excepted: "Exceptions made",
+  transience: "Animals seen once and never again",
+  "trap-dependence": "Animals that shun or seek being caught",
+  "out-of-range": "Values beyond the recorded range",
+  "definition-differs": "Definitions that differ from the record",
 };
 
 const SEVERITIES: Readonly<Record<Severity, string>> = {
@@ -68,13 +71,13 @@ export function findingsSection(input: ReportInput): Section {
   for (const one of input.findings) kinds.set(one.kind, [...(kinds.get(one.kind) ?? []), one]);
   return {
     ...head,
-    body: html`<p>${counted(input.findings.length, "thing")} to know about the data and the models, in ${counted(kinds.size, "kind")}. Each says where it was found and what can be done.</p><div class="findings">${[...kinds].map(([kind, found]) => group(kind, found))}</div>`,
+    body: html`<p>${counted(input.findings.length, "thing")} to know about the data and the models, in ${counted(kinds.size, "kind")}. Each says where it was found and what can be done. A gap in the records is no reason to disturb a site once more.</p><div class="findings">${[...kinds].map(([kind, found]) => group(kind, found))}</div>`,
   };
 }
 
 function group(kind: FindingKind, found: readonly Finding[]): Html {
   const shown = found.slice(0, MOST);
-  const words = WORDS[kind] ?? kind.replace(/-/g, " ");
+  const words = WORDS[kind];
   const worst: Severity =
     (["stop", "warn", "accept"] as const).find((one) => found.some((finding) => finding.severity === one)) ??
     "accept";

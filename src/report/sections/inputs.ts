@@ -6,7 +6,7 @@ import { valuesOf } from "../figures/values.ts";
 import { html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, show } from "../numbers.ts";
-import { covariateName, figureBlock, grid, type Section, themeMark } from "../parts.ts";
+import { caution, covariateName, figureBlock, grid, type Section, themeMark } from "../parts.ts";
 import { extent } from "../scale.ts";
 
 export function timeSection(input: ReportInput, figures: readonly Figure[]): Section {
@@ -37,10 +37,13 @@ export function whereSection(input: ReportInput, figures: readonly Figure[]): Se
     title: "Where",
     body: html`${
       input.coarsenedKm > 0
-        ? html`<p class="note">The study is marked sensitive: the places of the study, on this page and in every file beside it, were moved to the middle of a square of ${brief(input.coarsenedKm)} km before they came here; stations stand where their list puts them.</p>`
+        ? html`<p class="note">The study is marked sensitive: the places of the study, on this page and in every file beside it, were moved to the middle of a square of ${brief(input.coarsenedKm)} km before they came here; stations stand where their list puts them. Names, dates and landscape can still give a site away.</p>`
         : input.sensitive
           ? html`<p class="note">The study is marked sensitive, but its positions were not coarsened. Do not pass this page on.</p>`
-          : undefined
+          : caution(
+              "Sensitive sites",
+              "Positions are shown as they were given. If the site must not be found by others, mark the study sensitive before passing this page on.",
+            )
     }${map ?? html`<p>No position is known, so there is no map.</p>`}${unplaced.length > 0 && html`<p>Without a position, and so not on the map: ${unplaced.map((one) => one.name).join(", ")}.</p>`}`,
   };
 }

@@ -3,7 +3,7 @@ import type { Cast } from "../cast.ts";
 import { html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, show } from "../numbers.ts";
-import { grid, type Section } from "../parts.ts";
+import { caution, grid, type Section } from "../parts.ts";
 import { goodnessBlock } from "./goodness.ts";
 
 const WORDS: Readonly<Record<RecapturePart, string>> = {
@@ -51,6 +51,7 @@ ${grid(
   })),
 )}
 <p>In use: recapture ${WORDS[chosen]} (${because}).${constant && ` Under one survival per interval it is ${show(first.value)} (95 % interval ${show(first.low)} to ${show(first.high)}).`}${!constant && rates.length > 0 && ` Over ${counted(rates.length, "occasion and stratum", "occasions and strata")} it runs from ${show(Math.min(...rates.map((one) => one.value)))} to ${show(Math.max(...rates.map((one) => one.value)))}.`}</p>
-${goodnessBlock(goodness, cast)}`,
+${goodnessBlock(goodness, cast)}
+${caution("Animals first", "Catching and marking animals and visiting roosts, nests or dens needs permits, training and care for their welfare. A low chance of being seen is not a reason to disturb a site once more.")}`,
   };
 }

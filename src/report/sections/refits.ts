@@ -2,21 +2,17 @@ import type { Cast } from "../cast.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, show } from "../numbers.ts";
-import { covariateList, covariateName, grid, type Section } from "../parts.ts";
+import { covariateList, covariateName, grid } from "../parts.ts";
 
 /** After selection: profile intervals, survival over the observed range, and the other penalties beside the one used. */
-export function refitsSection(input: ReportInput, cast: Cast): Section {
-  const head = { id: "refits", title: "After selection" };
+export function refitsBlock(input: ReportInput, cast: Cast): Html | undefined {
   const { screened } = input;
-  if (screened === undefined) return { ...head, body: html`<p>No screen was run.</p>` };
+  if (screened === undefined) return undefined;
   const inflation = screened.options.betweenAnimals;
-  return {
-    ...head,
-    body: html`${profiles(input, cast)}
+  return html`<h3>After selection: how large, and over which range</h3>${profiles(input, cast)}
 ${predicted(input, cast)}
 <p>Intervals are by profile likelihood${inflation !== undefined && inflation > 1 && ` and widened by ĉ between animals (${show(inflation)})`}; they take what these data chose as if it had been fixed before looking, and so are too narrow. Beyond the observed range nothing in the data speaks of survival: predictions there are marked in the table predicted-survival and are not to be used.</p>
-${penalties(input, cast)}`,
-  };
+${penalties(input, cast)}`;
 }
 
 function profiles({ screened }: ReportInput, cast: Cast): Html | undefined {

@@ -6,8 +6,8 @@ import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
-import { influenceBlock } from "./influence.ts";
 import { randomIntervalsBlock } from "./random-intervals.ts";
+import { switchBlock } from "./switch.ts";
 import { walkBlock } from "./walk.ts";
 
 export function screenSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
@@ -21,19 +21,40 @@ export function screenSection(input: ReportInput, cast: Cast, figures: readonly 
     ...head,
     body: html`<p>An adaptive lasso walks from a penalty under which no covariate stands (λ = ${show(path.lambdaMax)}) down to ${brief(options.downTo)} of it, in ${counted(path.steps.length, "step")}. Two choices are made from that path. One counts animals, and takes every animal for a witness of its own; the other counts years, because animals of one year share that year's weather and all else that went with it. The verdict rests on the years.</p>
 <dl class="said"><div><dt>Counting years</dt><dd>${covariateList(cast, byYears.names)}</dd></div><div><dt>Counting animals</dt><dd>${covariateList(cast, byAnimals.names)}</dd></div></dl>
-${figureBlock(figures, "criterion")}${figureBlock(figures, "coefficient-paths")}${walkBlock(input)}
+${figureBlock(figures, "criterion")}${figureBlock(figures, "coefficient-paths")}${walkBlock(input, cast)}
 ${band(screened, cast)}
 ${apart(screened, cast)}
 <h3>Evidence: by years beside by animals</h3>
 ${evidenceTable(screened, cast)}
 ${permutationWords(screened)}
 ${figureBlock(figures, "evidence")}
-${effectsTable(input, cast, byYears, "What the choice by years says, refitted without penalty")}
-${byAnimals.names.join("\n") !== byYears.names.join("\n") && effectsTable(input, cast, byAnimals, "What the choice by animals says, refitted without penalty")}
+${
+  byAnimals.names.join("\n") === byYears.names.join("\n")
+    ? effectsTable(input, cast, byYears, "What both choices say, refitted without penalty")
+    : switchBlock("counting", "Counting", [
+        {
+          key: "years",
+          text: "years",
+          body:
+            effectsTable(input, cast, byYears, "What the choice by years says, refitted without penalty") ??
+            html`<p>Counting years, no covariate stands.</p>`,
+        },
+        {
+          key: "animals",
+          text: "animals",
+          body:
+            effectsTable(
+              input,
+              cast,
+              byAnimals,
+              "What the choice by animals says, refitted without penalty",
+            ) ?? html`<p>Counting animals, no covariate stands.</p>`,
+        },
+      ])
+}
 <p>These intervals take the choice as if it had been made before looking, and so are too narrow; they show size and direction. No F and no p is given for what was chosen on these data.</p>
 ${randomIntervalsBlock(screened, cast)}
 ${weighedTable(screened, cast)}
-${influenceBlock(input, cast)}
 <h3>Certificates</h3>
 <ul><li>Largest violation of the optimality conditions over the path: ${show(worst)} of λ<sub>max</sub>.</li><li>${starts.agree} of ${starts.starts} random starts ended at the solution at the chosen penalty (λ = ${show(choice.rows[choice.index].lambda)}).</li><li>Weights from ${weights.by === "ridge" ? "a ridge fit, since the maximum is too ill-conditioned to be trusted" : "the maximum-likelihood fit"}; condition number of its information ${show(weights.condition)}.</li></ul>`,
   };

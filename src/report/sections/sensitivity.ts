@@ -4,13 +4,17 @@ import { html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, figureBlock, grid, type Section } from "../parts.ts";
+import { influenceBlock } from "./influence.ts";
 
 /** Other ways to do the study, and what each of them selects. */
 export function sensitivitySection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
-  const head = { id: "sensitivity", title: "Other ways" };
+  const head = { id: "sensitivity", title: "Sensitivity" };
   const sensitivity = input.comparison?.sensitivity;
   if (sensitivity === undefined)
-    return { ...head, body: html`<p>The pipeline file states no other way to do the study.</p>` };
+    return {
+      ...head,
+      body: html`<p>The pipeline file states no other way to do the study.</p>${influenceBlock(input, cast)}`,
+    };
   const { analyses, tried, search, sentence } = sensitivity;
   const counts =
     search === undefined
@@ -48,6 +52,6 @@ export function sensitivitySection(input: ReportInput, cast: Cast, figures: read
           one.recapture,
         ],
       })),
-    )}`,
+    )}${influenceBlock(input, cast)}`,
   };
 }

@@ -1,11 +1,15 @@
 import type { Candidate, CandidateKey } from "../../compare/candidates.ts";
-import type { Cast } from "../cast.ts";
+import { listWords } from "../../data/words.ts";
+import { type Cast, unitText } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import { type Html, html, type Piece } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, percent, pText, show } from "../numbers.ts";
-import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { caution, covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { extent } from "../scale.ts";
 import { predictionBlock } from "./prediction.ts";
+import { refitsBlock } from "./refits.ts";
+import { switchBlock } from "./switch.ts";
 
 const NAMES: Readonly<Record<CandidateKey, string>> = {
   constant: "one survival for all intervals",
@@ -21,17 +25,45 @@ const NAMES: Readonly<Record<CandidateKey, string>> = {
   "components screened": "components chosen by the same screen",
 };
 
-export function survivalSection(figures: readonly Figure[]): Section {
+export function survivalSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
   const head = { id: "survival", title: "Survival by interval" };
   const figure = figureBlock(figures, "survival");
   if (figure === undefined) return { ...head, body: html`<p>No survival was modelled in this run.</p>` };
+  const animals = figureBlock(figures, "survival-by-animals");
+  const drivers = (name: string) =>
+    figureBlock(figures, name) ?? html`<p>No covariate stands, so nothing here drives survival.</p>`;
+  const ways = [{ key: "years", text: "years", body: html`${figure}${drivers("survival-drivers")}` }];
+  if (animals !== undefined)
+    ways.push({
+      key: "animals",
+      text: "animals",
+      body: html`${animals}${drivers("survival-drivers-by-animals")}`,
+    });
   return {
     ...head,
-    body: html`<p>What the captures say of each interval on its own, and what the model chosen by years makes of it.</p>${figure}`,
+    body: html`<p>What the captures say of each interval on its own, what the chosen model makes of it, and what in that model moves it.</p>${switchBlock("counting", "Chosen counting", ways)}${refitsBlock(input, cast)}${caution("Apparent survival", "An animal that moves away for good looks like one that died. Where emigration changes with the weather, so does apparent survival.")}${caution("No forecast", rangeWords(input))}`,
   };
 }
 
-export function comparisonSection(input: ReportInput, cast: Cast): Section {
+/** Beyond the range of what was seen nothing is said; the range itself is. */
+function rangeWords({ screened, matrix }: ReportInput): string {
+  const names = screened?.byYears.names ?? [];
+  const ranges = names.flatMap((name) => {
+    const k = matrix.names.indexOf(name);
+    if (k < 0) return [];
+    const values = Array.from(
+      { length: matrix.raw.rows },
+      (_, t) => matrix.raw.data[t * matrix.raw.columns + k],
+    );
+    const [low, high] = extent(values);
+    const unit = unitText(matrix.recipes.find((one) => one.name === name)?.unit ?? "");
+    return [`${name} ${show(low)} to ${show(high)}${unit === "" ? "" : ` ${unit}`}`];
+  });
+  const seen = ranges.length === 0 ? "" : ` (${listWords(ranges)})`;
+  return `The relations hold, if they hold, within the range seen here${seen}. Beyond it, and for coming years, this page says nothing.`;
+}
+
+export function comparisonSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
   const head = { id: "comparison", title: "Comparison" };
   if (input.comparison === undefined)
     return { ...head, body: html`<p>Nothing was compared in this run.</p>` };
@@ -53,7 +85,7 @@ ${grid(
     { text: "above the least", look: "n" },
     { text: "BIC", look: "n" },
     { text: "above the least", look: "n" },
-    { text: "share of deviance", unit: "R² of deviance", look: "n" },
+    { text: "share of deviance between years", look: "n" },
     { text: "F", unit: "(df)", look: "n" },
     { text: "p", look: "n" },
   ],
@@ -72,7 +104,8 @@ ${grid(
     ],
   })),
 )}
-<p>F and p stand only where the terms were fixed before survival was looked at. What was chosen on these data is tested by the permutation of years alone, in the section on the screen.</p>${predictionBlock(input, cast, NAMES)}`,
+<p>F and p stand only where the terms were fixed before survival was looked at. What was chosen on these data is tested by the permutation of years alone, in the section on the screen.</p>${predictionBlock(input, cast, NAMES)}
+${agreementBlock(input, cast, figures)}`,
   };
 }
 
@@ -91,14 +124,11 @@ function tested(one: Candidate): readonly Piece[] {
   return Number.isFinite(f) ? [html`${show(f)} <small>(${df1}, ${df2})</small>`, pText(p)] : ["–", "–"];
 }
 
-export function agreementSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
-  const head = { id: "agreement", title: "Agreement" };
-  if (input.comparison === undefined)
-    return { ...head, body: html`<p>Nothing was compared in this run.</p>` };
+/** Whether selection and components tell the same story. */
+function agreementBlock(input: ReportInput, cast: Cast, figures: readonly Figure[]): Html | undefined {
+  if (input.comparison === undefined) return undefined;
   const { agreement, verdict } = input.comparison;
-  return {
-    ...head,
-    body: html`<p>${verdict.agreement}</p>
+  return html`<h3>Do selection and components agree?</h3><p>${verdict.agreement}</p>
 <h3>In one paragraph</h3><p>Made from the numbers of this page; to be pasted and defended, and no stronger than they are.</p><blockquote id="paragraph"><p>${input.comparison.paragraph}</p></blockquote>
 ${
   agreement.survival.length > 0 &&
@@ -138,8 +168,7 @@ ${grid(
   })),
 )}
 <p>Of ${agreement.chosen === 1 ? "the 1 covariate" : `the ${agreement.chosen} covariates`} the lasso chose (${covariateList(
-      cast,
-      agreement.effects.filter((one) => one.lasso !== 0).map((one) => one.name),
-    )}), ${agreement.sameSign} ${agreement.sameSign === 1 ? "has" : "have"} the same sign by components.</p>`,
-  };
+    cast,
+    agreement.effects.filter((one) => one.lasso !== 0).map((one) => one.name),
+  )}), ${agreement.sameSign} ${agreement.sameSign === 1 ? "has" : "have"} the same sign by components.</p>`;
 }
