@@ -25,6 +25,18 @@ export interface Files {
   /** The absolute path, for libraries that open files themselves. */
   absolute(path: string): string;
   identity(path: string): Promise<FileIdentity>;
+  /** Files at addresses, for layers that allow it. */
+  readonly remote?: Remote;
+}
+
+/** Parts of files at addresses. */
+export interface Remote {
+  /** `length` bytes from a place on (fewer at the end), the file's size, and what marks its version. */
+  range(
+    address: string,
+    from: number,
+    length: number,
+  ): Promise<{ readonly bytes: Uint8Array; readonly size: number; readonly version: string }>;
 }
 
 export interface ProgressStep {

@@ -14,6 +14,7 @@ import {
   qualityFiles,
   withoutQuality,
 } from "./quality-stack.ts";
+import { fetching, isAddress, isRemote, layerPaths, openFile, versionHash } from "./remote.ts";
 import { fileKey, type Kept, placeKey, readKept, writeKept } from "./reuse.ts";
 import { type FileValues, seriesOf } from "./series.ts";
 import { findSideFiles } from "./side.ts";
@@ -47,9 +48,12 @@ export async function extractLayers(
   effects: Effects,
 ): Promise<LayerExtraction> {
   const options = await settleDates(given, effects.files);
-  const paths = await effects.files.list(options.files);
+  const paths = await layerPaths(options, effects.files);
   if (paths.length === 0) throw noFiles(name, options);
-  const sides = await findSideFiles(paths, effects.files);
+  const sides = await findSideFiles(
+    paths.filter((one) => !isAddress(one)),
+    effects.files,
+  );
   // One hash a place, not one a place and file.
   const keyed = wanted.map((one) => ({ ...one, key: placeKey(one.place, one.use) }));
   const { quality } = options;
@@ -63,21 +67,28 @@ export async function extractLayers(
   for (const path of paths) {
     effects.checkInterrupted();
     const side = sides(path);
-    const file = effects.files.open(path);
+    const file = await openFile(path, effects.files);
     try {
-      const source = await openSource(file, side, options, name, effects);
+      const source = await fetching(file, () => openSource(file, side, options, name, effects));
       try {
         const { periods } = source;
         findings.push(...source.findings);
         methods ??= source.methods;
         const beside = qualityFiles(periods, index);
-        const key = await fileKey(path, side, options, effects, beside);
+        const key = await fileKey(
+          path,
+          side,
+          options,
+          effects,
+          beside,
+          isRemote(file) ? versionHash(file) : undefined,
+        );
         const kept = new Map(await readKept(key, effects));
         const absent = keyed.filter(({ key: one }) => !isWhole(kept.get(one), periods));
         if (absent.length > 0) {
           filesRead++;
           const values = await withQuality(name, source, options, index, effects, (test) =>
-            source.read(absent, known, test),
+            fetching(file, () => source.read(absent, known, test)),
           );
           values.forEach((one, i) => {
             kept.set(absent[i].key, one);

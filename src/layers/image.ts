@@ -236,7 +236,8 @@ function readRows(
   return { samples, from: top * image.blockWidth };
 }
 
-function blockPlace(image: Image, blockColumn: number, blockRow: number, band: number) {
+/** Where a block stands in the file: its number, first byte and bytes (0: never written). */
+export function blockPlace(image: Image, blockColumn: number, blockRow: number, band: number) {
   const plane = image.planar ? band * image.across * image.down : 0;
   const index = plane + blockRow * image.across + blockColumn;
   return { index, offset: image.offsets[index], count: image.counts[index] };

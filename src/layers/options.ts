@@ -72,6 +72,8 @@ export interface LayerOptions {
   /** Which entry of each further dimension (level, member), by its coordinate's value. */
   readonly select?: Readonly<Record<string, string | number>>;
   readonly quality?: QualityOptions;
+  /** Whether addresses among the files may be read over the network. */
+  readonly network?: "allow";
 }
 
 /** How a layer is read at a place. */

@@ -8,6 +8,7 @@ import { netcdfStack } from "./netcdf/file.ts";
 import { isNetcdf, openNetcdf } from "./netcdf/open.ts";
 import type { LayerOptions } from "./options.ts";
 import { indexQuality, withoutQuality } from "./quality-stack.ts";
+import { fetching, isAddress, layerPaths, openFile } from "./remote.ts";
 import { type DatedImage, orderImages } from "./series.ts";
 import { findSideFiles, sideList } from "./side.ts";
 import { checkFit, resolveSystem } from "./system.ts";
@@ -43,16 +44,19 @@ export interface LayerPlan {
  */
 export async function planLayers(name: string, given: LayerOptions, files: Files): Promise<LayerPlan> {
   const options = await settleDates(given, files);
-  const paths = await files.list(options.files);
+  const paths = await layerPaths(options, files);
   if (paths.length === 0) throw noFiles(name, options);
-  const sides = await findSideFiles(paths, files);
+  const sides = await findSideFiles(
+    paths.filter((one) => !isAddress(one)),
+    files,
+  );
   const planned: PlannedFile[] = [];
   const dated: { path: string; periods: ReturnType<typeof periodsOf> }[] = [];
   const systems = new Set<string>();
   const found: RawFinding[] = [];
   const settled = new Map<string, string>();
   for (const path of paths) {
-    const file = files.open(path);
+    const file = await openFile(path, files);
     try {
       if (isNetcdf(file)) {
         const one = await planNetcdf(file, options, name);
@@ -62,7 +66,7 @@ export async function planLayers(name: string, given: LayerOptions, files: Files
         systems.add(one.stack.system.label);
         continue;
       }
-      const layer = await describeLayer(file, files, sides(path));
+      const layer = await fetching(file, () => describeLayer(file, files, sides(path)));
       planned.push(plannedFile(layer, file.size, sideList(sides(path))));
       dated.push({
         path,

@@ -31,9 +31,11 @@ export async function fileKey(
   options: LayerOptions,
   effects: Effects,
   qualityFiles: readonly string[] = [],
+  version?: string,
 ): Promise<string> {
-  const sums: string[] = [];
-  for (const one of [path, ...sideList(side), ...qualityFiles])
+  // A file at an address is told by its version; fetching all of it to hash it would undo what ranges save.
+  const sums: string[] = version === undefined ? [] : [version];
+  for (const one of [...(version === undefined ? [path] : []), ...sideList(side), ...qualityFiles])
     sums.push((await effects.files.identity(one)).sha256);
   const { scale, offset, fill, valid, system, date, band, variable, select, quality } = options;
   // Dates do not change values, but they say which bands are read.

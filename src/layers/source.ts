@@ -4,6 +4,7 @@ import { type NeededBlock, neededBlocks } from "./blocks.ts";
 import { type ImagePeriod, periodsOf } from "./dates.ts";
 import { gather } from "./gather.ts";
 import type { Grid } from "./grid.ts";
+import { blockPlace } from "./image.ts";
 import { describeLayer, type Layer } from "./layer.ts";
 import type { CellMethods } from "./netcdf/cell-methods.ts";
 import { layoutKey, netcdfStack, readStack } from "./netcdf/file.ts";
@@ -12,6 +13,7 @@ import { type Box, boxesOf } from "./netcdf/walk.ts";
 import type { LayerOptions, Wanted } from "./options.ts";
 import type { PixelTest } from "./quality.ts";
 import { type Gathered, keptOf, movingReadings, type Reading, stillReadings } from "./readings.ts";
+import { isRemote, type RemoteFile } from "./remote.ts";
 import type { Kept } from "./reuse.ts";
 import type { SidePaths } from "./side.ts";
 import { checkFit, resolveSystem, type System } from "./system.ts";
@@ -115,6 +117,14 @@ function geotiffSource(file: RandomAccess, layer: Layer, options: LayerOptions, 
           }),
         );
       };
+      if (isRemote(file))
+        await prefetchBlocks(file, image, bands, [
+          still.blocks,
+          neededBlocks(
+            moving.map((one) => one.footprint),
+            image,
+          ),
+        ]);
       const footprints = still.readings.map((one) => one.footprint);
       const all = bands.map((_, i) => i);
       const found = await gather(file, effects.files, layer, bands, still.blocks, footprints, quality);
@@ -134,6 +144,23 @@ function geotiffSource(file: RandomAccess, layer: Layer, options: LayerOptions, 
       return keptOf(wanted.length, readings, periods.length, out, quality !== undefined);
     },
   };
+}
+
+/** Fetches the blocks that places need, and no others. */
+async function prefetchBlocks(
+  file: RemoteFile,
+  image: Layer["image"],
+  bands: readonly { readonly band: number }[],
+  needed: readonly (readonly NeededBlock[])[],
+): Promise<void> {
+  const planes = image.planar ? bands : [{ band: 0 }];
+  const ranges = needed.flat().flatMap(({ column, row }) =>
+    planes.map(({ band }) => {
+      const { offset, count } = blockPlace(image, column, row, band);
+      return [offset, count] as const;
+    }),
+  );
+  await file.prefetch(ranges.filter(([, count]) => count > 0));
 }
 
 async function netcdfSource(file: RandomAccess, options: LayerOptions, name: string): Promise<Source> {

@@ -3,6 +3,7 @@ import type { Clock, Effects, Progress } from "../effects/effects.ts";
 import { InterruptedError } from "../errors.ts";
 import { filesBelow } from "./effects/files.ts";
 import { parallelTasks } from "./effects/parallel.ts";
+import { nodeRemote } from "./effects/remote.ts";
 import { noReuse, reuseIn } from "./effects/reuse.ts";
 
 export { nodeDisk } from "./effects/disk.ts";
@@ -24,7 +25,7 @@ export interface NodeEffectsOptions {
 export function nodeEffects(options: NodeEffectsOptions): Effects {
   const { signal } = options;
   return {
-    files: filesBelow(options.dataFolder),
+    files: { ...filesBelow(options.dataFolder), remote: nodeRemote },
     progress: options.progress,
     clock: nodeClock,
     parallel: parallelTasks({ workers: options.workers, signal, now: nodeClock.now }),

@@ -22,6 +22,7 @@ export function recording(files: Files): RecordingFiles {
       open: (path) => files.open(note(path)),
       absolute: (path) => files.absolute(note(path)),
       identity: (path) => files.identity(path),
+      ...(files.remote === undefined ? {} : { remote: files.remote }),
     },
     identities: async () => {
       const paths = [...used].sort((a, b) => (a < b ? -1 : 1));

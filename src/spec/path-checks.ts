@@ -18,8 +18,9 @@ function inputPaths(raw: RawPipeline): (readonly [KeyPath, string])[] {
       paths.push([["records", i, "files", j], file]);
     });
   });
-  for (const [name, { files, date, quality }] of Object.entries(raw.layers)) {
+  for (const [name, { files, date, quality, network }] of Object.entries(raw.layers)) {
     files.forEach((file, j) => {
+      if (network === "allow" && /^https?:\/\//i.test(file)) return;
       paths.push([["layers", name, "files", j], file]);
     });
     if ("table" in date) paths.push([["layers", name, "date", "table"], date.table]);

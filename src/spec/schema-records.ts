@@ -354,6 +354,7 @@ export const layer = keys("a stack of images", {
     oneOf("the coordinate's value, or a name", [z.number(), text("a name", "r1i1p1f1")], 850),
   ).optional(),
   quality: quality.optional(),
+  network: choice("whether files at http addresses may be read; not if left out", ["allow"]).optional(),
   unit: unit("the layer"),
   kind: valueKind(),
   system: text("the coordinate system, where the file does not say it", "EPSG:32632").optional(),
