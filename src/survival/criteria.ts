@@ -9,7 +9,7 @@ export function bic(minus2LogL: number, k: number, n: number): number {
 }
 
 /** log C(n, k). */
-export function logChoose(n: number, k: number): number {
+function logChoose(n: number, k: number): number {
   let sum = 0;
   for (let i = 1; i <= k; i++) sum += Math.log((n - k + i) / i);
   return sum;

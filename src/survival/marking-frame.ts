@@ -1,7 +1,7 @@
 import type { Frame, NamedColumn } from "./design.ts";
 
 /** The coefficient by which survival differs in the interval after an animal was marked. */
-export const FIRST_INTERVAL = "first interval after marking";
+const FIRST_INTERVAL = "first interval after marking";
 
 /**
  * The frame in which every stratum stands twice: later intervals (even places), then the first interval after marking

@@ -34,7 +34,7 @@ export interface RecaptureComparison {
 }
 
 /** The parts that a frame has what it takes for, simpler ones first. */
-export function availableParts(frame: Frame): readonly RecapturePart[] {
+function availableParts(frame: Frame): readonly RecapturePart[] {
   const effort = frame.effort !== undefined;
   const strata = recaptureContrasts(frame) > 0;
   const parts: readonly (readonly [RecapturePart, boolean])[] = [
