@@ -50,23 +50,27 @@ function testOf({ names, byYears, permutation }: ScreenResult): Test | undefined
 }
 
 /**
- * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the model
- * with random interval effects does not confirm every covariate chosen.
+ * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the other
+ * rule that counts years, analysis of deviance, does not confirm every covariate chosen, or a fit missed its optimum.
  */
 function gradeOf(screened: ScreenResult): Grade {
   const test = testOf(screened);
   if (test === undefined) return "not tested";
   if (screened.byYears.names.length === 0 || test.p > 0.1) return "none";
   const grade = test.p <= 0.01 ? 3 : test.p <= 0.05 ? 2 : 1;
-  return GRADES[unconfirmed(screened).length > 0 ? grade - 1 : grade];
+  const doubted = unconfirmed(screened).length > 0 || unsettled(screened);
+  return GRADES[doubted ? grade - 1 : grade];
 }
 
-/** Covariates chosen by years of which neither they nor a rival is chosen by random intervals. */
-function unconfirmed({ byYears, rivals, randomIntervals }: ScreenResult): readonly string[] {
-  if (randomIntervals === undefined || !randomIntervals.settled) return [];
+function unsettled({ randomIntervals }: ScreenResult): boolean {
+  return randomIntervals !== undefined && !randomIntervals.settled;
+}
+
+/** Covariates chosen by years of which neither they nor a rival is chosen by analysis of deviance. */
+function unconfirmed({ byYears, rivals, byDeviance }: ScreenResult): readonly string[] {
   return byYears.names.filter((name) => {
     const others = rivals.find((one) => one.chosen === name)?.others ?? [];
-    return ![name, ...others].some((one) => randomIntervals.chosen.includes(one));
+    return ![name, ...others].some((one) => byDeviance.includes(one));
   });
 }
 
@@ -96,10 +100,10 @@ function headline(screened: ScreenResult, grade: Grade): string {
   if (test === undefined)
     return `Counting years, ${chosen} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
   const doubtful = unconfirmed(screened);
-  const doubt =
-    doubtful.length === 0
-      ? ""
-      : ` A model with a random effect of each interval does not confirm ${listWords(doubtful)}.`;
+  const doubt = [
+    doubtful.length === 0 ? "" : ` An analysis of deviance does not confirm ${listWords(doubtful)}.`,
+    unsettled(screened) ? " A fit behind this choice did not reach its optimum." : "",
+  ].join("");
   if (grade === "none" && test.p <= 0.1)
     return `Counting years, the data hardly carry a selection: ${chosen} came out over ${years} (${test.words}).${doubt}`;
   if (grade === "none")

@@ -41,8 +41,8 @@ export function inflation(covariate: number, residual: number): number {
  */
 export function memoryOf(problem: ScreenProblem, quick: TwoStepProblem): MemoryInflation {
   const ofCovariates = problem.covariates.map((one) => correctedLagOne(one.values));
-  const fixed = Array.from({ length: quick.fixed }, (_, k) => k);
   const forced = problem.frame.forced.map((one) => one.values);
+  const fixed = Array.from({ length: quick.fixed }, (_, j) => j);
   return (k, others) => {
     const which = [...fixed, ...others.map((j) => quick.fixed + j)];
     const { coefficients } = glsFit(quick.rotated, which, "REML");

@@ -1,17 +1,33 @@
 import { mean } from "../math/quantile.ts";
+import { fixedSurvivalColumns, survivalContrasts } from "../survival/design.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
+import { maximiseRandomInterval } from "../survival/random-interval.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
+import { memoryOf } from "./memory.ts";
 import type { ScreenOptions } from "./options.ts";
 import { type LassoPath, lassoPath, solveNull } from "./path.ts";
-import { designWith, type ScreenProblem } from "./problem.ts";
+import { designWith, oneValuePerInterval, type ScreenProblem } from "./problem.ts";
+import { chooseByRandomIntervals, type RandomYearsChoice } from "./random-years.ts";
 import { type Refits, refitsOf } from "./refits.ts";
+import {
+  type TwoStepProblem,
+  twoStepCandidates,
+  twoStepEvidence,
+  twoStepProblem,
+} from "./two-step-candidates.ts";
 import { type AdaptiveWeights, adaptiveWeights, ridgeEstimates, weightsFrom } from "./weights.ts";
-import { chooseByYears, largestSet, type YearsChoice, type YearsSetting } from "./years.ts";
+import { chooseByYears, largestSet, type YearsSetting } from "./years.ts";
 
 /** What does not change when years are permuted. */
 export interface ProcedureSetting extends YearsSetting {
   readonly sampleSize: number;
 }
+
+/**
+ * How years are counted: by random interval effects, or by analysis of deviance where those are not written yet (time
+ * since marking, years of split intervals, covariates by stratum).
+ */
+export type YearsRule = "random intervals" | "analysis of deviance";
 
 export interface ProcedureResult {
   readonly weights: AdaptiveWeights;
@@ -19,14 +35,18 @@ export interface ProcedureResult {
   readonly choice: PathChoice;
   /** What the criterion that counts animals chooses. */
   readonly byAnimals: readonly number[];
-  readonly byYears: YearsChoice;
+  /** What stands when years are counted, by the rule named; memory is allowed for with random intervals. */
+  readonly yearsBy: YearsRule;
+  readonly byYears: RandomYearsChoice;
+  /** Random-interval fits of the choice that did not end at an optimum; above 0 it is not to be relied on. */
+  readonly unsettled: number;
   readonly refit: Refits;
   /** The sets that were weighed by years. */
   readonly candidates: readonly (readonly number[])[];
 }
 
 /**
- * The whole procedure from covariates to the two choices: weights, path, criterion, choice by years. It is what each
+ * The whole procedure from covariates to the two choices: weights, paths, criterion, choice by years. It is what each
  * permutation of years repeats, so nothing in it may look at anything but the problem.
  */
 export function runProcedure(
@@ -42,7 +62,7 @@ export function runProcedure(
     options.fit === "refit" ? refit(active) : Number.NaN,
   );
   // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
-  // candidates, and what is weighed by years may come from either path.
+  // candidates, and so does a path on the interval logits that knows about years; what is weighed may come from any.
   const ridge = weights.by === "ridge" ? weights.first : ridgeEstimates(problem, nothing.x);
   const most = largestSet(setting.intervals);
   const second =
@@ -53,20 +73,65 @@ export function runProcedure(
           downTo: options.downTo,
           most,
         });
-  const candidates = distinctSets([...path.steps, ...second.steps]);
+  const quick = oneValuePerInterval(problem) ? twoStepProblem(problem) : undefined;
+  const third = quick === undefined ? [] : twoStepCandidates(quick, options).map((active) => ({ active }));
+  const candidates = distinctSets([...path.steps, ...second.steps, ...third]);
   return {
     weights,
     path,
     choice,
     byAnimals: path.steps[choice.index].active,
-    byYears: chooseByYears(candidates, refit, setting, correlationOf(problem)),
+    ...(quick === undefined
+      ? byDeviance(problem, candidates, refit, setting)
+      : byRandomIntervals(problem, candidates, quick)),
     refit,
     candidates,
   };
 }
 
+/** Share of the releases that a derivative of the evidence may reach: it leaves D(S) exact to some 1e-7. */
+const PRECISION = 1e-6;
+
+type ChoiceByYears = Pick<ProcedureResult, "yearsBy" | "byYears" | "unsettled">;
+
+function byDeviance(
+  problem: ScreenProblem,
+  candidates: readonly (readonly number[])[],
+  refit: Refits,
+  setting: ProcedureSetting,
+): ChoiceByYears {
+  const choice = chooseByYears(candidates, refit, setting, correlationOf(problem));
+  return { yearsBy: "analysis of deviance", byYears: { ...choice, byMemory: [] }, unsettled: 0 };
+}
+
+/** The choice by random interval effects among the candidates (`chooseByRandomIntervals`). */
+function byRandomIntervals(
+  problem: ScreenProblem,
+  candidates: readonly (readonly number[])[],
+  quick: TwoStepProblem,
+): ChoiceByYears {
+  let unsettled = 0;
+  const byYears = chooseByRandomIntervals(
+    candidates,
+    (set) => {
+      const fit = maximiseRandomInterval(problem, set, PRECISION);
+      if (fit.stopped !== "optimum") unsettled++;
+      return fit.minus2LogL;
+    },
+    {
+      intervals: problem.frame.intervals,
+      covariates: problem.covariates.length,
+      spent: fixedSurvivalColumns(problem.frame) - survivalContrasts(problem.frame),
+    },
+    correlationOf(problem),
+    memoryOf(problem, quick),
+    twoStepEvidence(quick),
+  );
+  return { yearsBy: "random intervals", byYears, unsettled };
+}
+
 /** The distinct active sets among steps, in the order in which they appear. */
-function distinctSets(steps: LassoPath["steps"]): (readonly number[])[] {
+function distinctSets(steps: readonly { readonly active: readonly number[] }[]): (readonly number[])[] {
   const sets = new Map<string, readonly number[]>();
   for (const step of steps) sets.set(step.active.join(","), step.active);
   return [...sets.values()];

@@ -21,13 +21,14 @@ import {
   summarisePermutations,
 } from "./permutation.ts";
 import { type PlainLasso, plainLasso } from "./plain-lasso.ts";
-import { designWith, oneValuePerInterval, type ScreenProblem } from "./problem.ts";
-import { type ProcedureSetting, runProcedure } from "./procedure.ts";
+import { designWith, type ScreenProblem } from "./problem.ts";
+import { correlationOf, type ProcedureSetting, runProcedure, type YearsRule } from "./procedure.ts";
 import { type RandomIntervalEvidence, randomIntervalEvidence } from "./random-intervals.ts";
+import type { RandomYearsChoice } from "./random-years.ts";
 import { type RidgePath, ridgePath } from "./ridge-path.ts";
 import { agreeingStarts, type StartsReport } from "./starts.ts";
 import type { AdaptiveWeights } from "./weights.ts";
-import type { YearsChoice } from "./years.ts";
+import { chooseByYears } from "./years.ts";
 
 /** A set of covariates, refitted without penalty. */
 export interface RefittedSet {
@@ -61,9 +62,13 @@ export interface ScreenResult {
   readonly band: readonly (readonly string[])[];
   readonly byAnimals: RefittedSet;
   readonly byYears: RefittedSet;
-  readonly years: YearsChoice;
+  readonly years: RandomYearsChoice;
   /** For covariates chosen by years: others the data cannot tell from them. */
   readonly rivals: readonly { readonly chosen: string; readonly others: readonly string[] }[];
+  /** Covariates let go because they and survival both run on from year to year, so that n intervals are worth fewer. */
+  readonly byMemory: readonly string[];
+  /** What another rule that counts years, analysis of deviance, chooses from the same candidates: a second opinion. */
+  readonly byDeviance: readonly string[];
   /** Sets weighed by years, by name. */
   readonly weighed: readonly { readonly names: readonly string[]; readonly gain: number }[];
   /** Undefined if no permutation was asked for. */
@@ -72,10 +77,9 @@ export interface ScreenResult {
   readonly shifts: number | undefined;
   /** The choices with one interval left out at a time; empty without permutations. */
   readonly influence: readonly InfluenceRow[];
-  /**
-   * The same question asked of a model with a random effect of each interval. Undefined where recapture is known, and where
-   * effects of intervals are not written yet: time since marking, split years, covariates by stratum.
-   */
+  /** The rule that the choice by years was made with. */
+  readonly yearsBy: YearsRule;
+  /** The model with a random effect of each interval, with the covariates chosen by years; undefined by the other rule. */
   readonly randomIntervals: RandomIntervalEvidence | undefined;
 }
 
@@ -181,16 +185,24 @@ export async function screen(
       chosen: names[chosen],
       others: named(others),
     })),
+    byMemory: named(found.byYears.byMemory),
+    byDeviance: named(chooseByYears(found.candidates, found.refit, setting, correlationOf(problem)).chosen),
     weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
     shifts: outcomes.length === 0 ? undefined : shiftYears({ problem, setting, options }, found.byYears.gain),
+    yearsBy: found.yearsBy,
     randomIntervals:
-      "known" in problem.recapture || !oneValuePerInterval(problem)
+      found.yearsBy === "analysis of deviance"
         ? undefined
-        : randomIntervalEvidence(problem, found.candidates, found.byYears.chosen),
+        : settledEvidence(randomIntervalEvidence(problem, found.byYears.chosen), found.unsettled),
     influence: outcomes.length === 0 ? [] : leaveOneIntervalOut(problem, setting, options),
   };
   return { result, findings: screenFindings(result) };
+}
+
+/** A fit of the choice that missed its optimum unsettles the evidence as much as one of the model shown. */
+function settledEvidence(evidence: RandomIntervalEvidence, unsettled: number): RandomIntervalEvidence {
+  return { ...evidence, settled: evidence.settled && unsettled === 0 };
 }
 
 async function permutations(

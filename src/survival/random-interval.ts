@@ -47,17 +47,19 @@ export interface RandomIntervalMaximum extends LaplaceMaximum {
 
 /**
  * −2 log of the Laplace marginal likelihood, σ² ≥ 0 re-estimated by maximum likelihood, nothing penalised: the
- * evidence D(S) of the set `which` (positions among the covariates). At σ² = 0 it is the ordinary −2 log L.
+ * evidence D(S) of the set `which` (positions among the covariates). At σ² = 0 it is the ordinary −2 log L. Ends where no
+ * derivative exceeds `precision` times the releases.
  */
 export function maximiseRandomInterval(
   problem: RandomIntervalProblem,
   which: readonly number[],
+  precision = 1e-8,
 ): RandomIntervalMaximum {
   const model = effectsDesign(problem, which);
   const laplace = laplaceOf(problem.data, model);
   const n = model.intervals;
   const d = laplace.dimension;
-  const options = { tolerance: 1e-8 * Math.max(100, totalReleases(problem.data)), iterations: 200 };
+  const options = { tolerance: precision * Math.max(100, totalReleases(problem.data)), iterations: 200 };
   // without random effects first: an ordinary fit, where the derivative in σ² says whether there is anything to find
   const ordinary = jointMode(
     laplace,

@@ -184,7 +184,7 @@ export function influenceTable(screened: ScreenResult, intervals: readonly Inter
 export function evidenceTable(screened: ScreenResult): Table {
   const { permutation, years, shifts } = screened;
   const rows: (readonly [string, number, string])[] = [
-    ["gain of the choice by years", years.gain, "n log of the deviance ratio, less its price"],
+    ["gain of the choice by years", years.gain, "fall of −2 log marginal likelihood, less its price"],
     ["p each term had to pass", years.alpha, "min(.045, .1/K)"],
   ];
   if (permutation !== undefined)
@@ -230,7 +230,7 @@ export function randomIntervalTable(screened: ScreenResult): Table {
   return {
     name: "random-interval-effects",
     title: "Effects with a random effect of each interval",
-    description: `Covariates chosen by years, on logit apparent annual survival per standard deviation; the intervals allow for variation between years (REML, t), not for the choosing. The rule by random intervals chooses from the same candidates: ${randomIntervals?.chosen.join("; ") || "nothing"}.`,
+    description: `Covariates chosen by years, on logit apparent annual survival per standard deviation; the intervals allow for variation between years (REML, t), not for the choosing. As a second opinion an analysis of deviance chooses from the same candidates: ${screened.byDeviance.join("; ") || "nothing"}.`,
     columns: [
       text("covariate", "covariate", "name of the covariate"),
       number("effect", "effect", "logit per sd", "estimate"),

@@ -80,21 +80,21 @@ describe("the verdict", () => {
     expect(animals).toMatch(/^A criterion that counts animals \(BIC, n = \d+ releases\) chooses x1 and x2/);
   });
 
-  test("a covariate that the model with random interval effects does not confirm costs a grade and is named", async () => {
+  test("a covariate that analysis of deviance does not confirm costs a grade and is named", async () => {
     const { result, comparison } = await compared(1, [-0.9, 0.8], 0.05);
-    const { randomIntervals } = result;
-    if (randomIntervals === undefined)
-      throw new Error("recapture is estimated, so there is a second opinion");
-    expect([...randomIntervals.chosen].sort()).toEqual(["x1", "x2"]);
+    expect([...result.byDeviance].sort()).toEqual(["x1", "x2"]);
     expect(comparison.verdict.grade).toBe("fair");
-    const doubted = { ...result, randomIntervals: { ...randomIntervals, chosen: ["x1"] } };
+    const doubted = { ...result, byDeviance: ["x1"] };
     const verdictNow = verdict(doubted, comparison.agreement);
     expect(verdictNow.grade).toBe("faint");
     expect(verdictNow.headline).toMatch(/x1 and x2 may go with .* does not confirm x2\.$/);
     const rival = { ...doubted, rivals: [{ chosen: "x2", others: ["x1"] }] };
     expect(verdict(rival, comparison.agreement).grade).toBe("fair");
-    const unsettled = { ...doubted, randomIntervals: { ...doubted.randomIntervals, settled: false } };
-    expect(verdict(unsettled, comparison.agreement).grade).toBe("fair");
+    const { randomIntervals } = result;
+    if (randomIntervals === undefined) throw new Error("the choice is by random intervals");
+    const unsettled = { ...result, randomIntervals: { ...randomIntervals, settled: false } };
+    expect(verdict(unsettled, comparison.agreement).grade).toBe("faint");
+    expect(verdict(unsettled, comparison.agreement).headline).toMatch(/did not reach its optimum\.$/);
   });
 
   test("a lone candidate was not chosen, so its analysis of deviance is the test, permutations or none", async () => {

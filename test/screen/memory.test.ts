@@ -86,7 +86,11 @@ describe("memory from year to year", () => {
     const made = { ...quick.two, logits, rotated };
     const memory = memoryOf(
       { ...problem, covariates: [{ name: "slow", values: slow }] },
-      { ...quick, two: made, rotated: { ...quick.rotated, two: made } },
+      {
+        ...quick,
+        two: made,
+        rotated: { ...quick.rotated, two: made },
+      },
     );
     expect(memory(0, [])).toBeCloseTo(inflation(0.9, 0.9), 10);
   });

@@ -2,9 +2,10 @@ import { describe, expect, test } from "vitest";
 import { chooseOnPath } from "../../src/screen/choice.ts";
 import { lassoPath, solveNull } from "../../src/screen/path.ts";
 import { designWith, type ScreenProblem } from "../../src/screen/problem.ts";
-import { runProcedure } from "../../src/screen/procedure.ts";
+import { correlationOf, runProcedure } from "../../src/screen/procedure.ts";
 import { refitsOf } from "../../src/screen/refits.ts";
 import { adaptiveWeights } from "../../src/screen/weights.ts";
+import { chooseByYears } from "../../src/screen/years.ts";
 import { constantRecapture, type Frame, intervalSurvival } from "../../src/survival/design.ts";
 import { fitModel } from "../../src/survival/fit.ts";
 import { cjsLikelihood } from "../../src/survival/likelihood.ts";
@@ -101,7 +102,8 @@ describe("five worked selections", () => {
         permutations: 0,
       } as const;
       const found = runProcedure(problem, setting, options);
-      expect(code(found.byYears.chosen)).toBe(example.selected_code_by_rule["anodev_F_0.05"]);
+      const byDeviance = chooseByYears(found.candidates, found.refit, setting, correlationOf(problem));
+      expect(code(byDeviance.chosen)).toBe(example.selected_code_by_rule["anodev_F_0.05"]);
     },
   );
 });

@@ -6,6 +6,8 @@ import type { Section } from "../parts.ts";
 
 /** Cited works, in order of the alphabet, with where they are needed. */
 const WORKS = {
+  bartlett:
+    "Bartlett, M. S. (1935) Some aspects of the time-correlation problem in regard to tests of significance. Journal of the Royal Statistical Society 98: 536–543.",
   belsley: "Belsley, D. A., Kuh, E. & Welsch, R. E. (1980) Regression Diagnostics. Wiley.",
   burnham:
     "Burnham, K. P., Anderson, D. R., White, G. C., Brownie, C. & Pollock, K. H. (1987) Design and analysis methods for fish survival experiments based on release–recapture. American Fisheries Society Monograph 5.",
@@ -13,6 +15,8 @@ const WORKS = {
     "Dormann, C. F. et al. (2013) Collinearity: a review of methods to deal with it. Ecography 36: 27–46.",
   grosbois:
     "Grosbois, V. et al. (2008) Assessing the impact of climate variation on survival in vertebrate populations. Biological Reviews 83: 357–399.",
+  harville:
+    "Harville, D. A. (1974) Bayesian inference for variance components using only error contrasts. Biometrika 61: 383–385.",
   hastie: "Hastie, T., Tibshirani, R. & Wainwright, M. (2015) Statistical Learning with Sparsity. CRC Press.",
   horn: "Horn, J. L. (1965) A rationale and test for the number of factors in factor analysis. Psychometrika 30: 179–185.",
   jackson: "Jackson, D. A. (1993) Stopping rules in principal components analysis. Ecology 74: 2204–2214.",
@@ -23,6 +27,8 @@ const WORKS = {
     "Hurvich, C. M. & Tsai, C.-L. (1989) Regression and time series model selection in small samples. Biometrika 76: 297–307.",
   skalski:
     "Skalski, J. R. (1996) Regression of abundance estimates from mark–recapture surveys against environmental covariates. Canadian Journal of Fisheries and Aquatic Sciences 53: 196–204.",
+  tierney:
+    "Tierney, L. & Kadane, J. B. (1986) Accurate approximations for posterior moments and marginal densities. Journal of the American Statistical Association 81: 82–86.",
   wmo: "World Meteorological Organization (2017) Guidelines on the Calculation of Climate Normals. WMO-No. 1203.",
   zou: "Zou, H. (2006) The adaptive lasso and its oracle properties. Journal of the American Statistical Association 101: 1418–1429.",
 } as const;
@@ -54,11 +60,11 @@ export function methodsSection(input: ReportInput): Section {
   }
   if (screened !== undefined) {
     cite("lebreton", "burnham", "zou", "hastie", "skalski", "grosbois");
-    cite("schwarz", "hurvich");
+    cite("schwarz", "hurvich", "tierney", "bartlett", "harville");
     const { options } = screened;
     parts.push(
       html`<p><b>Survival.</b> The Cormack–Jolly–Seber likelihood of releases and recaptures (Burnham et al. 1987; Lebreton et al. 1992), with apparent annual survival and recapture each linear on the logit scale; over an interval of Δ years survival is annual survival to the power Δ. Recapture: ${screened.constantFit.recaptureWords}. Estimates at a bound are reported without a standard error; 95 % intervals are made on the logit scale.</p>`,
-      html`<p><b>Screen.</b> Adaptive lasso (Zou 2006; Hastie et al. 2015): −log L + λ Σ w|β| is minimised, with weights 1/|β̃|${options.gamma === 1 ? "" : html`<sup>${brief(options.gamma)}</sup>`} from the ${screened.weights.by} fit, covariates at unit standard deviation, everything else unpenalised, over ${counted(options.steps, "penalty", "penalties")}. The choice by animals takes the least ${options.chooseBy} (n = ${screened.sampleSize} ${options.sampleSize}) at the ${options.fit === "refit" ? "refit without penalty" : "shrunken solution"} (Schwarz 1978; Hurvich & Tsai 1989). The choice by years weighs the sets of the path, and of a second path with weights from a ridge fit, by the deviance they leave between years, in the manner of an analysis of deviance (Skalski 1996; Grosbois et al. 2008), pruning terms whose p on the years left is not below ${brief(screened.years.alpha)} and charging each further term a price. A chosen covariate that another, related one could replace at next to no cost is named together with it; where an unrelated one would do as well it is let go.${screened.permutation !== undefined && ` The family-wise p is that of the whole procedure over ${screened.permutation.replicates} permutations of years.`}</p>`,
+      html`<p><b>Screen.</b> Adaptive lasso (Zou 2006; Hastie et al. 2015): −log L + λ Σ w|β| is minimised, with weights 1/|β̃|${options.gamma === 1 ? "" : html`<sup>${brief(options.gamma)}</sup>`} from the ${screened.weights.by} fit, covariates at unit standard deviation, everything else unpenalised, over ${counted(options.steps, "penalty", "penalties")}. The choice by animals takes the least ${options.chooseBy} (n = ${screened.sampleSize} ${options.sampleSize}) at the ${options.fit === "refit" ? "refit without penalty" : "shrunken solution"} (Schwarz 1978; Hurvich & Tsai 1989). The choice by years weighs the sets of the path, and of a second path with weights from a ridge fit, by the marginal likelihood of a model with a random effect of each interval, N(0, σ²/Δ) on the logit (Laplace's approximation; Tierney & Kadane 1986), so that variation between years which no covariate tells raises the bar. Terms whose p on the years left, by F = ν[exp(ΔD/n) − 1], is not below ${brief(screened.years.alpha)} are pruned and each further term is charged a price. Where covariate and residual both run on from year to year the n intervals count as n(1 − rr′)/(1 + rr′) (Bartlett 1935). Standard deviations between years are by restricted maximum likelihood (Harville 1974); the second opinion is an analysis of deviance (Skalski 1996; Grosbois et al. 2008) on the same sets. A chosen covariate that another, related one could replace at next to no cost is named together with it; where an unrelated one would do as well it is let go.${screened.permutation !== undefined && ` The family-wise p is that of the whole procedure over ${screened.permutation.replicates} permutations of years.`}</p>`,
       html`<p><b>Comparison.</b> All candidates share the captures and the recapture part. The share of deviance is (D<sub>constant</sub> − D<sub>model</sub>)/(D<sub>constant</sub> − D<sub>interval</sub>), D = −2 log L; F tests the model against one survival per interval and is given only where its terms were fixed before looking. ĉ between years is the deviance left per degree of freedom; it is not a measure of fit between animals. Components are carried back to covariates by their loadings.</p>`,
     );
   }
