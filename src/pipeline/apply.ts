@@ -91,6 +91,7 @@ async function newStudy(loaded: Loaded, recorded: Recorded, effects: Parameters<
     diagnosis: undefined,
     components: undefined,
     screened: undefined,
+    resampling: undefined,
     comparison: undefined,
     goodness: undefined,
     findings,

@@ -2,6 +2,7 @@ import { withSensitivity } from "../compare/compare.ts";
 import type { Finding, RawFinding } from "../data/finding.ts";
 import type { Effects } from "../effects/effects.ts";
 import { screen } from "../screen/screen.ts";
+import { resample } from "../simulate/resampling.ts";
 import type { StudyResult } from "../tables/study-result.ts";
 import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
@@ -54,6 +55,8 @@ export async function runStages(
   const screened =
     posed &&
     judged(await screen(posed.problem, posed.recapture, criterion, animals, spec.seed, effects)).result;
+  const resampling =
+    posed && screened && (await resample(posed.problem, screened, criterion, spec.seed, effects));
   const compared =
     posed && screened && goes("compare")
       ? await compareStage(spec, posed, screened, components, diagnosis, matrix, effects)
@@ -77,6 +80,7 @@ export async function runStages(
     components,
     goodness,
     screened,
+    resampling,
     comparison,
     findings,
     refusals: ingested.refusals,

@@ -9,6 +9,7 @@ import type { Interval, Occasion } from "../data/occasion.ts";
 import type { Where } from "../data/place.ts";
 import type { Series, Site } from "../data/series.ts";
 import type { ScreenResult } from "../screen/screen.ts";
+import type { Resampling } from "../simulate/resampling.ts";
 import type { GoodnessOfFit } from "../survival/goodness-of-fit.ts";
 import type { Table } from "../tables/table.ts";
 
@@ -69,6 +70,8 @@ export interface ReportInput {
   readonly comparison: Comparison | undefined;
   /** Fit of the general model; undefined where no captures were read. */
   readonly goodness?: GoodnessOfFit | undefined;
+  /** What is chosen when the study is drawn again; undefined if not asked for. */
+  readonly resampling?: Resampling | undefined;
   readonly findings: readonly Finding[];
   readonly tables: readonly Table[];
   /** The run record as pretty JSON, places redacted. */

@@ -15,4 +15,6 @@ export interface ScreenOptions {
   readonly betweenAnimals?: number;
   /** Permutations of years over the whole procedure. */
   readonly permutations: number;
+  /** Resamples of the study from each of its worlds; none if not said. */
+  readonly resamples?: number;
 }

@@ -43,7 +43,7 @@ export const REPLICATES_TASK = "simulate.replicates";
 export function simulateReplicates(chunk: ReplicateChunk): Replicate[] {
   const { design, scenario, options, seed, stream } = chunk;
   return Array.from({ length: chunk.to - chunk.from }, (_, i) =>
-    screened(drawStudy(design, scenario, randomStream(seed, stream, chunk.from + i)), design, options),
+    screenedStudy(drawStudy(design, scenario, randomStream(seed, stream, chunk.from + i)), design, options),
   );
 }
 
@@ -67,7 +67,11 @@ export function drawStudy(design: StudyDesign, scenario: Scenario, random: Rando
 }
 
 /** The whole procedure on drawn captures, under the recapture part that the study chose. */
-function screened(problem: ScreenProblem, design: StudyDesign, options: ScreenOptions): Replicate {
+export function screenedStudy(
+  problem: ScreenProblem,
+  design: StudyDesign,
+  options: ScreenOptions,
+): Replicate {
   const { frame, recapture, data } = problem;
   const interval = fitModel(data, designOf(frame, intervalSurvival(frame), recapture));
   const animals = design.strata.reduce((sum, one) => one.marked.reduce((total, m) => total + m, sum), 0);

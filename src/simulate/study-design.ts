@@ -26,6 +26,7 @@ export interface StudyDesign {
 
 /** Rates at or next to a bound are drawn from this far inside, so that an effect on the logit still tells. */
 const INSIDE = 0.001;
+export const inside = (rate: number) => Math.min(1 - INSIDE, Math.max(INSIDE, rate));
 
 /**
  * The design of a study: its intervals, what was newly marked, its covariates, and survival and recapture as the model
@@ -52,7 +53,6 @@ function stratumDesign(
   recapture: StudyDesign["recapture"],
 ): StratumDesign {
   const rows = Array.from({ length: n }, (_, t) => g * n + t);
-  const inside = (rate: number) => Math.min(1 - INSIDE, Math.max(INSIDE, rate));
   return {
     stratum: data.stratum,
     marked: newlyMarked(data),

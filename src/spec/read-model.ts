@@ -55,6 +55,7 @@ export function readScreen(raw: RawPipeline["screen"]): ScreenOptions {
     sampleSize: raw["sample size"],
     fit: raw.fit,
     permutations: raw.permutations,
+    resamples: raw.resamples,
   };
 }
 

@@ -160,6 +160,14 @@ export const screen = allStated("the adaptive-lasso screen", {
     number("the permutations of years over the whole procedure", 199, { min: 0, max: 100_000, whole: true }),
     199,
   ),
+  resamples: stated(
+    number("the times the study is drawn again, years and animals anew, and screened; 0 for none", 50, {
+      min: 0,
+      max: 100_000,
+      whole: true,
+    }),
+    50,
+  ),
 });
 
 const SEVERITIES = ["accept", "warn", "stop"] as const;

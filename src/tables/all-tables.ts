@@ -21,6 +21,7 @@ import { penalisedTable } from "./penalised-table.ts";
 import { qualityTable } from "./quality-table.ts";
 import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
 import { sensitivityTables } from "./sensitivity-tables.ts";
+import { resamplingTable, togetherTable } from "./resampling-tables.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import {
@@ -79,6 +80,7 @@ export function allTables(study: StudyResult): readonly Table[] {
           influenceTable(screened, study.intervals),
         ]
       : []),
+    ...(study.resampling ? [resamplingTable(study.resampling), togetherTable(study.resampling)] : []),
     ...(comparison
       ? [
           comparisonTable(comparison),

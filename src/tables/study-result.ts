@@ -7,6 +7,7 @@ import type { Finding } from "../data/finding.ts";
 import type { Interval, Occasion } from "../data/occasion.ts";
 import type { Refusal } from "../layers/refusals.ts";
 import type { ScreenResult } from "../screen/screen.ts";
+import type { Resampling } from "../simulate/resampling.ts";
 import type { GoodnessOfFit } from "../survival/goodness-of-fit.ts";
 
 /** Numbers caught at one occasion. */
@@ -29,6 +30,8 @@ export interface StudyResult {
   /** Fit of the general model; undefined without captures, or where the screen was not reached. */
   readonly goodness: GoodnessOfFit | undefined;
   readonly screened: ScreenResult | undefined;
+  /** What is chosen when the study is drawn again; undefined if not asked for. */
+  readonly resampling: Resampling | undefined;
   readonly comparison: Comparison | undefined;
   readonly findings: readonly Finding[];
   /** What the layers' quality refused; empty or absent where none was asked. */

@@ -11,6 +11,7 @@ const TASKS: Readonly<Record<string, () => Promise<Task>>> = {
   "example.sum-of-powers": () => import("./example.ts").then((room) => room.sumOfPowers),
   "compare.folds": () => import("../compare/fold.ts").then((room) => room.predictLeftOut),
   "screen.permutation": () => import("../screen/permutation.ts").then((room) => room.permuteYears),
+  "simulate.resampling": () => import("../simulate/resampling.ts").then((room) => room.resampleStudies),
   "simulate.replicates": () => import("../simulate/replicate.ts").then((room) => room.simulateReplicates),
 };
 

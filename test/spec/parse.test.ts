@@ -150,6 +150,7 @@ describe("good pipelines", () => {
         sampleSize: "releases",
         fit: "shrunken",
         permutations: 199,
+        resamples: 50,
       },
       duplicates: { keep: "none", except: [] },
     });

@@ -8,6 +8,7 @@ import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
 import { randomIntervalsBlock } from "./random-intervals.ts";
 import { switchBlock } from "./switch.ts";
+import { resamplingBlock } from "./resampling.ts";
 import { walkBlock } from "./walk.ts";
 
 export function screenSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
@@ -55,6 +56,7 @@ ${
 <p>These intervals take the choice as if it had been made before looking, and so are too narrow; they show size and direction. No F and no p is given for what was chosen on these data.</p>
 ${randomIntervalsBlock(input, screened, cast)}
 ${weighedTable(screened, cast)}
+${resamplingBlock(input, cast)}
 <h3>Certificates</h3>
 <ul><li>Largest violation of the optimality conditions over the path: ${show(worst)} of λ<sub>max</sub>.</li><li>${starts.agree} of ${starts.starts} random starts ended at the solution at the chosen penalty (λ = ${show(choice.rows[choice.index].lambda)}).</li><li>Weights from ${weights.by === "ridge" ? "a ridge fit, since the maximum is too ill-conditioned to be trusted" : "the maximum-likelihood fit"}; condition number of its information ${show(weights.condition)}.</li></ul>`,
   };
