@@ -51,7 +51,7 @@ function testOf({ names, byYears, permutation }: ScreenResult): Test | undefined
 
 /**
  * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the other
- * rule that counts years, analysis of deviance, does not confirm every covariate chosen, or a fit missed its optimum.
+ * rule that counts years does not confirm every covariate chosen, or a fit missed its optimum.
  */
 function gradeOf(screened: ScreenResult): Grade {
   const test = testOf(screened);
@@ -66,11 +66,12 @@ function unsettled({ randomIntervals }: ScreenResult): boolean {
   return randomIntervals !== undefined && !randomIntervals.settled;
 }
 
-/** Covariates chosen by years of which neither they nor a rival is chosen by analysis of deviance. */
-function unconfirmed({ byYears, rivals, byDeviance }: ScreenResult): readonly string[] {
+/** Covariates chosen by years of which neither they nor a rival is chosen by the second opinion. */
+function unconfirmed({ byYears, rivals, secondOpinion }: ScreenResult): readonly string[] {
+  if (secondOpinion === undefined) return [];
   return byYears.names.filter((name) => {
     const others = rivals.find((one) => one.chosen === name)?.others ?? [];
-    return ![name, ...others].some((one) => byDeviance.includes(one));
+    return ![name, ...others].some((one) => secondOpinion.names.includes(one));
   });
 }
 
@@ -101,7 +102,9 @@ function headline(screened: ScreenResult, grade: Grade): string {
     return `Counting years, ${chosen} would be chosen over ${years} (${share} of the deviance between years); no permutation was run, so this is not tested.`;
   const doubtful = unconfirmed(screened);
   const doubt = [
-    doubtful.length === 0 ? "" : ` An analysis of deviance does not confirm ${listWords(doubtful)}.`,
+    doubtful.length === 0
+      ? ""
+      : ` ${screened.secondOpinion?.by === "random intervals" ? "A model with a random effect of each interval" : "An analysis of deviance"} does not confirm ${listWords(doubtful)}.`,
     unsettled(screened) ? " A fit behind this choice did not reach its optimum." : "",
   ].join("");
   if (grade === "none" && test.p <= 0.1)

@@ -24,8 +24,9 @@ export interface ProcedureSetting extends YearsSetting {
 }
 
 /**
- * How years are counted: by random interval effects, or by analysis of deviance where those are not written yet (time
- * since marking, years of split intervals, covariates by stratum).
+ * How years are counted: by random interval effects; by analysis of deviance where those are not written yet (time since
+ * marking, years of split intervals, covariates by stratum) and for a lone candidate, which is not chosen from anything
+ * and has that as its published test.
  */
 export type YearsRule = "random intervals" | "analysis of deviance";
 
@@ -81,12 +82,26 @@ export function runProcedure(
     path,
     choice,
     byAnimals: path.steps[choice.index].active,
-    ...(quick === undefined
+    ...(quick === undefined || problem.covariates.length < 2
       ? byDeviance(problem, candidates, refit, setting)
       : byRandomIntervals(problem, candidates, quick)),
     refit,
     candidates,
   };
+}
+
+/** What the other rule that counts years chooses from the same candidates; undefined where there is no other. */
+export function secondOpinion(
+  problem: ScreenProblem,
+  { candidates, refit, yearsBy }: ProcedureResult,
+  setting: ProcedureSetting,
+): { readonly by: YearsRule; readonly chosen: readonly number[] } | undefined {
+  if (!oneValuePerInterval(problem)) return undefined;
+  const other =
+    yearsBy === "random intervals"
+      ? byDeviance(problem, candidates, refit, setting)
+      : byRandomIntervals(problem, candidates, twoStepProblem(problem));
+  return { by: other.yearsBy, chosen: other.byYears.chosen };
 }
 
 /** Share of the releases that a derivative of the evidence may reach: it leaves D(S) exact to some 1e-7. */

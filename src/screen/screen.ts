@@ -22,13 +22,12 @@ import {
 } from "./permutation.ts";
 import { type PlainLasso, plainLasso } from "./plain-lasso.ts";
 import { designWith, type ScreenProblem } from "./problem.ts";
-import { correlationOf, type ProcedureSetting, runProcedure, type YearsRule } from "./procedure.ts";
+import { type ProcedureSetting, runProcedure, secondOpinion, type YearsRule } from "./procedure.ts";
 import { type RandomIntervalEvidence, randomIntervalEvidence } from "./random-intervals.ts";
 import type { RandomYearsChoice } from "./random-years.ts";
 import { type RidgePath, ridgePath } from "./ridge-path.ts";
 import { agreeingStarts, type StartsReport } from "./starts.ts";
 import type { AdaptiveWeights } from "./weights.ts";
-import { chooseByYears } from "./years.ts";
 
 /** A set of covariates, refitted without penalty. */
 export interface RefittedSet {
@@ -67,8 +66,8 @@ export interface ScreenResult {
   readonly rivals: readonly { readonly chosen: string; readonly others: readonly string[] }[];
   /** Covariates let go because they and survival both run on from year to year, so that n intervals are worth fewer. */
   readonly byMemory: readonly string[];
-  /** What another rule that counts years, analysis of deviance, chooses from the same candidates: a second opinion. */
-  readonly byDeviance: readonly string[];
+  /** What the other rule that counts years chooses from the same candidates; undefined where there is no other. */
+  readonly secondOpinion: { readonly by: YearsRule; readonly names: readonly string[] } | undefined;
   /** Sets weighed by years, by name. */
   readonly weighed: readonly { readonly names: readonly string[]; readonly gain: number }[];
   /** Undefined if no permutation was asked for. */
@@ -79,7 +78,7 @@ export interface ScreenResult {
   readonly influence: readonly InfluenceRow[];
   /** The rule that the choice by years was made with. */
   readonly yearsBy: YearsRule;
-  /** The model with a random effect of each interval, with the covariates chosen by years; undefined by the other rule. */
+  /** The model with a random effect of each interval, with the covariates chosen by years; undefined where none is to be had. */
   readonly randomIntervals: RandomIntervalEvidence | undefined;
 }
 
@@ -161,6 +160,7 @@ export async function screen(
   );
   const byAnimals = refitted(found.byAnimals);
   const byYears = refitted(found.byYears.chosen);
+  const second = secondOpinion(problem, found, setting);
   const outcomes = await permutations(problem, setting, options, seed, effects);
   const result: ScreenResult = {
     options,
@@ -186,13 +186,13 @@ export async function screen(
       others: named(others),
     })),
     byMemory: named(found.byYears.byMemory),
-    byDeviance: named(chooseByYears(found.candidates, found.refit, setting, correlationOf(problem)).chosen),
+    secondOpinion: second && { by: second.by, names: named(second.chosen) },
     weighed: found.byYears.weighed.map((one) => ({ names: named(one.set), gain: one.gain })),
     permutation: outcomes.length === 0 ? undefined : summarisePermutations(outcomes, found.byYears.gain),
     shifts: outcomes.length === 0 ? undefined : shiftYears({ problem, setting, options }, found.byYears.gain),
     yearsBy: found.yearsBy,
     randomIntervals:
-      found.yearsBy === "analysis of deviance"
+      second === undefined
         ? undefined
         : settledEvidence(randomIntervalEvidence(problem, found.byYears.chosen), found.unsettled),
     influence: outcomes.length === 0 ? [] : leaveOneIntervalOut(problem, setting, options),

@@ -230,7 +230,7 @@ export function randomIntervalTable(screened: ScreenResult): Table {
   return {
     name: "random-interval-effects",
     title: "Effects with a random effect of each interval",
-    description: `Covariates chosen by years, on logit apparent annual survival per standard deviation; the intervals allow for variation between years (REML, t), not for the choosing. As a second opinion an analysis of deviance chooses from the same candidates: ${screened.byDeviance.join("; ") || "nothing"}.`,
+    description: `Covariates chosen by years, on logit apparent annual survival per standard deviation; the intervals allow for variation between years (REML, t), not for the choosing. As a second opinion ${screened.secondOpinion?.by ?? "no other rule"} chooses from the same candidates: ${screened.secondOpinion?.names.join("; ") || "nothing"}.`,
     columns: [
       text("covariate", "covariate", "name of the covariate"),
       number("effect", "effect", "logit per sd", "estimate"),

@@ -82,9 +82,12 @@ describe("the verdict", () => {
 
   test("a covariate that analysis of deviance does not confirm costs a grade and is named", async () => {
     const { result, comparison } = await compared(1, [-0.9, 0.8], 0.05);
-    expect([...result.byDeviance].sort()).toEqual(["x1", "x2"]);
+    expect([...(result.secondOpinion?.names ?? [])].sort()).toEqual(["x1", "x2"]);
     expect(comparison.verdict.grade).toBe("fair");
-    const doubted = { ...result, byDeviance: ["x1"] };
+    const doubted = {
+      ...result,
+      secondOpinion: { by: "analysis of deviance" as const, names: ["x1"] },
+    };
     const verdictNow = verdict(doubted, comparison.agreement);
     expect(verdictNow.grade).toBe("faint");
     expect(verdictNow.headline).toMatch(/x1 and x2 may go with .* does not confirm x2\.$/);
