@@ -62,31 +62,30 @@ export function runProcedure(
   const choice = chooseOnPath(path, setting.constantParameters, setting.sampleSize, options, (active) =>
     options.fit === "refit" ? refit(active) : Number.NaN,
   );
-  // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
-  // candidates, and so does a path on the interval logits that knows about years; what is weighed may come from any.
-  const ridge = weights.by === "ridge" ? weights.first : ridgeEstimates(problem, nothing.x);
-  const most = largestSet(setting.intervals);
-  const second =
-    weights.by === "ridge"
-      ? path
-      : lassoPath(problem, weightsFrom(ridge, options.gamma), {
-          steps: options.steps,
-          downTo: options.downTo,
-          most,
-        });
-  const quick = oneValuePerInterval(problem) ? twoStepProblem(problem) : undefined;
-  const third = quick === undefined ? [] : twoStepCandidates(quick, options).map((active) => ({ active }));
-  const candidates = distinctSets([...path.steps, ...second.steps, ...third]);
+  // those that ask only what counts animals are spared the other paths and fits
+  let known: ChoiceByYears | undefined;
+  const years = () => {
+    known ??= choiceByYears(problem, setting, options, { weights, path, refit, nothing: nothing.x });
+    return known;
+  };
   return {
     weights,
     path,
     choice,
     byAnimals: path.steps[choice.index].active,
-    ...(quick === undefined || problem.covariates.length < 2
-      ? byDeviance(problem, candidates, refit, setting)
-      : byRandomIntervals(problem, candidates, quick)),
     refit,
-    candidates,
+    get yearsBy() {
+      return years().yearsBy;
+    },
+    get byYears() {
+      return years().byYears;
+    },
+    get unsettled() {
+      return years().unsettled;
+    },
+    get candidates() {
+      return years().candidates;
+    },
   };
 }
 
@@ -107,14 +106,45 @@ export function secondOpinion(
 /** Share of the releases that a derivative of the evidence may reach: it leaves D(S) exact to some 1e-7. */
 const PRECISION = 1e-6;
 
-type ChoiceByYears = Pick<ProcedureResult, "yearsBy" | "byYears" | "unsettled">;
+type Chosen = Pick<ProcedureResult, "yearsBy" | "byYears" | "unsettled">;
+type ChoiceByYears = Chosen & Pick<ProcedureResult, "candidates">;
+
+/** Candidates from three paths, and the choice among them by the rule that can be had. */
+function choiceByYears(
+  problem: ScreenProblem,
+  setting: ProcedureSetting,
+  options: ScreenOptions,
+  first: Pick<ProcedureResult, "weights" | "path" | "refit"> & { readonly nothing: Float64Array },
+): ChoiceByYears {
+  const { weights, path, refit, nothing } = first;
+  // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
+  // candidates, and so does a path on the interval logits that knows about years; what is weighed may come from any.
+  const ridge = weights.by === "ridge" ? weights.first : ridgeEstimates(problem, nothing);
+  const most = largestSet(setting.intervals);
+  const second =
+    weights.by === "ridge"
+      ? path
+      : lassoPath(problem, weightsFrom(ridge, options.gamma), {
+          steps: options.steps,
+          downTo: options.downTo,
+          most,
+        });
+  const quick = oneValuePerInterval(problem) ? twoStepProblem(problem) : undefined;
+  const third = quick === undefined ? [] : twoStepCandidates(quick, options).map((active) => ({ active }));
+  const candidates = distinctSets([...path.steps, ...second.steps, ...third]);
+  const chosen =
+    quick === undefined || problem.covariates.length < 2
+      ? byDeviance(problem, candidates, refit, setting)
+      : byRandomIntervals(problem, candidates, quick);
+  return { ...chosen, candidates };
+}
 
 function byDeviance(
   problem: ScreenProblem,
   candidates: readonly (readonly number[])[],
   refit: Refits,
   setting: ProcedureSetting,
-): ChoiceByYears {
+): Chosen {
   const choice = chooseByYears(candidates, refit, setting, correlationOf(problem));
   return { yearsBy: "analysis of deviance", byYears: { ...choice, byMemory: [] }, unsettled: 0 };
 }
@@ -124,7 +154,7 @@ function byRandomIntervals(
   problem: ScreenProblem,
   candidates: readonly (readonly number[])[],
   quick: TwoStepProblem,
-): ChoiceByYears {
+): Chosen {
   let unsettled = 0;
   const byYears = chooseByRandomIntervals(
     candidates,
