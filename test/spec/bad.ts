@@ -1280,7 +1280,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "gamma: 1,5",
     name: "spec.unknown-key",
     message:
-      'p.yaml:53:20 (screen > 5): expected one of the keys "steps", "down to", "gamma", "choose by", "sample size", "fit", "permutations", found "5"; write decimals after a point: inside braces a comma begins the next key',
+      'p.yaml:53:20 (screen > 5): expected one of the keys "steps", "down to", "gamma", "choose by", "sample size", "fit", "permutations", "resamples", found "5"; write decimals after a point: inside braces a comma begins the next key',
   },
   {
     title: "keys: a wide record that says long",
