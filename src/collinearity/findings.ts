@@ -1,5 +1,6 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Matrix } from "../data/matrix.ts";
+import { largeWords } from "../data/words.ts";
 import type { CollinearityOptions } from "./options.ts";
 import type { ConditionTable, CorrelationTable, Dependency, Diagnosis } from "./result.ts";
 
@@ -98,7 +99,7 @@ function inflated({ inflation, dependencies, allDepend }: Diagnosis, limit: numb
       kind: "inflated",
       subject: name,
       message: Number.isFinite(factor)
-        ? `variance inflation ${Number(factor.toPrecision(4))}, above ${limit}`
+        ? `variance inflation ${largeWords(factor)}, above ${limit}`
         : "the other covariates reproduce it exactly, by a relation of more than four of them",
       remedy: "see the pruning and what each step would drop",
     };
@@ -117,7 +118,7 @@ function illConditioned({ names, indices, proportions }: ConditionTable, limit: 
     return {
       kind: "ill-conditioned",
       subject: held[held.length - 1].name,
-      message: `condition index ${Number(index.toPrecision(4))}, above ${limit}, holds most of the variance of ${told}`,
+      message: `condition index ${largeWords(index)}, above ${limit}, holds most of the variance of ${told}`,
       count: held.length,
       remedy: "these coefficients cannot be told apart well: keep fewer of them, or use components",
     };

@@ -77,6 +77,7 @@ beforeAll(async () => {
   const prepare = "prepare: { transform: { winter rain: log } }\n";
   await run(pipeline("first", 2001, 2009, "", prepare));
   trend = await run(pipeline("trend", 2001, 2009, "", "prepare: { detrend: linear }\n"));
+  await execute(loadPipeline(pipeline("reduced", 2001, 2009)), MAKER, { ...OPTIONS, through: "reduce" });
   await run(pipeline("steps", 2001, 2009, "", "prepare: { detrend: difference }\n"));
   const extra =
     "  - { name: spring, theme: cold, from: tmin, window: { season: Mar to May }, statistic: mean }\n";
@@ -101,6 +102,35 @@ const moments = (values: readonly number[]) => {
 };
 
 describe("apply", () => {
+  test("scores of new years are those of the recorded loadings, means and sd on the recorded scale", async () => {
+    const applied = await apply("out-reduced", pipeline("scored", 2009, 2013));
+    const json = JSON.parse(readFileSync(join(folder, "out-reduced", "components.json"), "utf8")) as {
+      names: string[];
+      centre: number[];
+      scale: number[];
+      loadings: number[][];
+    };
+    const csv = readFileSync(join(folder, "out-scored", "tables", "component-scores.csv"), "utf8");
+    const { rows } = readCsv(csv, "component-scores.csv");
+    const { standard, names } = applied.matrix;
+    expect(json.names).toEqual(names);
+    for (let t = 0; t < 4; t++)
+      json.loadings[0].forEach((_, j) => {
+        const score = json.names.reduce((sum, _name, k) => {
+          const z = (standard.data[t * names.length + k] - json.centre[k]) / json.scale[k];
+          return sum + z * json.loadings[k][j];
+        }, 0);
+        expect(Number(rows[t].cells[j + 1])).toBeCloseTo(score, 9);
+      });
+    // the components go along, so that the new folder can be applied to still newer years
+    expect(readFileSync(join(folder, "out-scored", "components.json"))).toEqual(
+      readFileSync(join(folder, "out-reduced", "components.json")),
+    );
+    writeFileSync(join(folder, "out-reduced", "components.json"), "{}");
+    const facts = await refusal(apply("out-reduced", pipeline("again", 2009, 2013)));
+    expect(facts.name).toBe("apply.recipes-changed");
+  });
+
   const old = Array.from({ length: 8 }, (_, k) => winter(2001 + k));
   const late = Array.from({ length: 4 }, (_, k) => winter(2009 + k));
 
