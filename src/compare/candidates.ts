@@ -93,19 +93,22 @@ export function buildCandidates(
   const nothing = solveNull(problem, cjsLikelihood(problem.data, designWith(problem)));
   const subset = bestSmallSubset(refitsOf(problem, nothing.x), setting, options);
   if (subset !== undefined) add("best small subset", fitOf(subset.set), true);
-  const ridge = ridgeChoice(screened.ridge, options, sampleSize);
-  const full = designWith(problem);
-  const rows = problem.frame.strata.length * problem.frame.intervals;
-  add(
-    "ridge",
-    ridgeFit(
-      ridge,
-      inverseLogit(full.survival.columns, ridge.estimates, rows),
-      constantFit,
-      full.survival.names,
-    ),
-    true,
-  );
+  // one covariate has nothing to share with another, and room for one term leaves no strength to choose
+  if (names.length >= 2 && room >= 2) {
+    const ridge = ridgeChoice(screened.ridge, options, sampleSize);
+    const full = designWith(problem);
+    const rows = problem.frame.strata.length * problem.frame.intervals;
+    add(
+      "ridge",
+      ridgeFit(
+        ridge,
+        inverseLogit(full.survival.columns, ridge.estimates, rows),
+        constantFit,
+        full.survival.names,
+      ),
+      true,
+    );
+  }
   if (components === undefined) return out;
 
   const scores: ScreenProblem = { ...problem, covariates: componentCovariates(components) };

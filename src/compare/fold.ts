@@ -99,7 +99,7 @@ function foldPredictions({ problem, setting, options, rules, two }: Study, t: nu
   const nothing = solveNull(held, cjsLikelihood(held.data, designWith(held)));
   const subset = quickSubset(held, two, refitsOf(held, nothing.x), less, options);
   if (subset !== undefined) add("best small subset", own, subset);
-  out.push(ridgePrediction(own, less, options, t));
+  if (K >= 2 && room >= 2) out.push(ridgePrediction(own, less, options, t));
   if (rules.components === undefined) return out;
 
   const { scores, components } = componentsWithout(own, rules.components, rules.seed, t);
