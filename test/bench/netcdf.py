@@ -44,8 +44,15 @@ def write(path, form, options, steps=T, side=N):
         v.set_auto_maskandscale(False)
         rng = np.random.default_rng(1)
         r, c = np.mgrid[0:side, 0:side]
-        for t in range(steps):
-            v[t] = (300 + 200 * np.sin(c / 90 + t) * np.cos(r / 70) + rng.normal(0, 2, (side, side))).astype("i2")
+        def image(t):
+            return (300 + 200 * np.sin(c / 90 + t) * np.cos(r / 70) + rng.normal(0, 2, (side, side))).astype("i2")
+
+        if side == N:
+            v[:] = np.array([image(t) for t in range(steps)])
+        else:
+            first = image(0)
+            for t in range(steps):
+                v[t] = first + t
 
 
 def read(path, points):

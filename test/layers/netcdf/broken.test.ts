@@ -1,5 +1,6 @@
 import { readFileSync } from "node:fs";
 import { fileURLToPath } from "node:url";
+import { NetCDFReader } from "netcdfjs";
 import { describe, expect, test } from "vitest";
 import { InputError } from "../../../src/errors.ts";
 import { extractLayers } from "../../../src/layers/extract.ts";
@@ -115,5 +116,20 @@ describe("what the library and the format leave to the reader", () => {
     bytes.fill(0xff, 4, 8);
     const dataset = await openNetcdf(inMemory(bytes, "a.nc"));
     expect(dataset.variables.get("rain")?.shape).toEqual([4, 6, 8]);
+  });
+});
+
+// The general-purpose package netcdfjs reads CDF-1 and 2 (whole variables only, and no CDF-5).
+describe("the header as another reader has it", () => {
+  test.each(["cdf1.nc", "cdf2.nc", "one-record.nc"])("%s", async (name) => {
+    const other = new NetCDFReader(bytesOf(name));
+    const dataset = await openNetcdf(inMemory(bytesOf(name), name));
+    expect([...dataset.variables.keys()]).toEqual(other.variables.map((one) => one.name));
+    for (const one of dataset.variables.values()) {
+      // It takes the padding between records of bytes for values.
+      if (one.name === "odd") continue;
+      const values = other.getDataVariable(one.name).flat();
+      expect(Array.from(allOf(dataset, one))).toEqual(values);
+    }
   });
 });
