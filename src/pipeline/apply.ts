@@ -22,7 +22,7 @@ import type { Loaded } from "./load.ts";
 import type { Maker } from "./output.ts";
 import { judge, stopIfAsked } from "./policy.ts";
 import { COMPONENTS_FILE, RECIPES_FILE, type Recorded, readRecorded } from "./recorded.ts";
-import { positionRule } from "./sensitive.ts";
+import { positionRule, shownInputs } from "./sensitive.ts";
 
 export interface ApplyOptions {
   readonly workers: number;
@@ -125,7 +125,7 @@ async function filesOf(
     nodeMajor: maker.nodeMajor,
     seed: spec.seed,
     pipeline,
-    inputs,
+    inputs: shownInputs(inputs, spec),
     // The recipes go along, so that the new folder can be applied to still newer years.
     outputs: new Map([
       ...written.files,

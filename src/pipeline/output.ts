@@ -12,7 +12,7 @@ import { nodeDisk } from "./effects.ts";
 import type { Loaded } from "./load.ts";
 import { COMPONENTS_FILE, RECIPES_FILE } from "./recorded.ts";
 import type { RunResult } from "./run.ts";
-import { positionRule, shownPlaces } from "./sensitive.ts";
+import { positionRule, shownInputs, shownPlaces } from "./sensitive.ts";
 import { mapLayer, monthlyPicture } from "./shown.ts";
 
 /** Who made it, for the record. */
@@ -53,7 +53,13 @@ export async function buildOutput(
     nodeDisk(),
   );
   const pipeline = spec.study.sensitive ? redactPipeline(loaded.text, positionRule(spec.study)) : loaded.text;
-  const facts = { version: maker.version, nodeMajor: maker.nodeMajor, seed: spec.seed, pipeline, inputs };
+  const facts = {
+    version: maker.version,
+    nodeMajor: maker.nodeMajor,
+    seed: spec.seed,
+    pipeline,
+    inputs: shownInputs(inputs, spec),
+  };
   const input: ReportInput = {
     ...run.study,
     title: spec.study.title,

@@ -1,4 +1,5 @@
 import type { AnyPlace, Position, Where } from "../data/place.ts";
+import type { FileIdentity } from "../effects/effects.ts";
 import type { Spec } from "../spec/spec.ts";
 import { coarsen } from "../study/coarsen.ts";
 
@@ -35,4 +36,22 @@ export function shownPlaces(places: Iterable<AnyPlace>, study: Spec["study"]): W
     ];
     return { type: "area", name: place.name, polygons: [[box]] };
   });
+}
+
+/** Stands in the record where a fingerprint would let a guessed position be confirmed. */
+export const WITHHELD_HASH = "withheld: the study is sensitive";
+
+/**
+ * Input files as the record may name them. A file of places is small and of a known form, so whoever knows a position to
+ * ten kilometres can try every spot within them until size and hash agree: in a sensitive study neither is recorded.
+ * What that costs: the record cannot tell whether such a file was changed since.
+ */
+export function shownInputs(inputs: readonly FileIdentity[], spec: Spec): readonly FileIdentity[] {
+  if (!spec.study.sensitive) return inputs;
+  const secret = new Set(
+    Object.values(spec.places).flatMap((one) =>
+      "fixes" in one ? [one.fixes] : "file" in one ? [one.file] : [],
+    ),
+  );
+  return inputs.map((one) => (secret.has(one.path) ? { ...one, bytes: 0, sha256: WITHHELD_HASH } : one));
 }

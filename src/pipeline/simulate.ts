@@ -18,7 +18,7 @@ import { recording } from "./inputs.ts";
 import type { Loaded } from "./load.ts";
 import type { Maker } from "./output.ts";
 import { runStages } from "./run.ts";
-import { positionRule } from "./sensitive.ts";
+import { positionRule, shownInputs } from "./sensitive.ts";
 import { goodnessStage, inflationOf } from "./stages.ts";
 import { type Posed, poseScreen } from "./survival-problem.ts";
 
@@ -169,7 +169,14 @@ async function filesOf(
   files.set(`figures/${figure.name}.svg`, new TextEncoder().encode(figure.svg));
   const pipeline = spec.study.sensitive ? redactPipeline(text, positionRule(spec.study)) : text;
   const { version, nodeMajor } = maker;
-  return withRecord({ version, nodeMajor, seed: spec.seed, pipeline, inputs, outputs: files });
+  return withRecord({
+    version,
+    nodeMajor,
+    seed: spec.seed,
+    pipeline,
+    inputs: shownInputs(inputs, spec),
+    outputs: files,
+  });
 }
 
 function noCaptures({ file }: Loaded): InputError {

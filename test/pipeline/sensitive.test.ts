@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import type { Where } from "../../src/data/place.ts";
-import { positionRule, shownPlaces } from "../../src/pipeline/sensitive.ts";
+import { positionRule, shownInputs, shownPlaces, WITHHELD_HASH } from "../../src/pipeline/sensitive.ts";
+import type { Spec } from "../../src/spec/spec.ts";
 
 const study = { title: "t", sensitive: true, coarsenKm: 10 };
 const point: Where = { type: "point", name: "roost", position: [6.58123, 55.37891] };
@@ -41,5 +42,15 @@ describe("places of a sensitive study", () => {
 
   test("places of a study that is not sensitive are shown as they are", () => {
     expect(shownPlaces([point, area], { ...study, sensitive: false })).toEqual([point, area]);
+  });
+
+  test("size and hash of a file of places are not recorded, those of other files are", () => {
+    const inputs = ["places.geojson", "captures.csv"].map((path) => ({ path, bytes: 120, sha256: "abc" }));
+    const spec = { study, places: { roost: { file: "places.geojson", where: {} } } } as unknown as Spec;
+    const [places, captures] = shownInputs(inputs, spec);
+    expect(places).toEqual({ path: "places.geojson", bytes: 0, sha256: WITHHELD_HASH });
+    expect(captures).toEqual(inputs[1]);
+    const open = { ...spec, study: { ...study, sensitive: false } } as unknown as Spec;
+    expect(shownInputs(inputs, open)).toEqual(inputs);
   });
 });
