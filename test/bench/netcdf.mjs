@@ -62,11 +62,11 @@ for (const name of Object.keys(expected)) {
 }
 if (existsSync(join(folder, "two-gigabytes.nc"))) {
   const ring = [
-    [1, 41],
-    [19, 41],
-    [19, 59],
-    [1, 59],
-    [1, 41],
+    [5, 45],
+    [9, 45],
+    [9, 49],
+    [5, 49],
+    [5, 45],
   ];
   const area = {
     place: { type: "area", name: "a", polygons: [[ring]] },

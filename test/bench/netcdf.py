@@ -61,7 +61,7 @@ def read(path, points):
         v.set_auto_maskandscale(False)
         chunks = v.chunking()
         out = np.empty((len(points), T), "i2")
-        if chunks == "contiguous":
+        if chunks in (None, "contiguous"):
             for i, (x, y) in enumerate(points):
                 out[i] = v[:, y, x]
         elif chunks[1] == N:
