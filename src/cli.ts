@@ -11,6 +11,13 @@ interface Common {
   readonly json?: boolean;
 }
 
+interface RunFlags extends Common {
+  readonly through: string;
+  readonly workers?: number;
+  readonly reuse?: string;
+  readonly explain?: boolean;
+}
+
 interface SimulateFlags extends Common {
   readonly covariate: readonly string[];
   readonly effects: string;
@@ -50,11 +57,12 @@ program
     "compare",
   )
   .option("--workers <number>", "worker threads; 1 for none", wholeNumber)
-  .option("--reuse <folder>", "keep what was read of layers here, so that later runs read only new files")
+  .option("--reuse <folder>", "keep results here, so that later runs redo only what depends on what changed")
+  .option("--explain", "say of every step whether it ran or was reused, and why")
   .option("--json", "print the result as JSON")
   .option("--quiet", "no progress, no summary")
   .addHelpText("after", "\nExample:\n  covey run pipelines/roost.yaml")
-  .action(async (file: string, options: Common & { through: string; workers?: number; reuse?: string }) => {
+  .action(async (file: string, options: RunFlags) => {
     const [{ runCommand, stageNamed }, terminal] = [
       await import("./commands/run.ts"),
       await terminalFor(options),
@@ -65,6 +73,7 @@ program
         through: stageNamed(options.through),
         workers: options.workers ?? terminal.workers,
         json: options.json ?? false,
+        explain: options.explain ?? false,
         from: process.cwd(),
         ...(options.reuse === undefined ? {} : { reuse: options.reuse }),
       },

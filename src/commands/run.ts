@@ -7,6 +7,7 @@ import { loadPipeline } from "../pipeline/load.ts";
 import { PAGE_FILE } from "../pipeline/output.ts";
 import { STAGES, type Stage } from "../pipeline/run.ts";
 import { findingLines } from "../terminal/findings.ts";
+import { stepLines } from "../terminal/steps.ts";
 import { type SummarySection, summaryLines } from "../terminal/summary.ts";
 import type { Lines, Terminal } from "./io.ts";
 
@@ -18,6 +19,8 @@ export interface RunCommandOptions {
   readonly workers: number;
   readonly reuse?: string;
   readonly json: boolean;
+  /** Say of every step whether it ran or was reused, and why. */
+  readonly explain?: boolean;
   /** The working directory, to print paths people can type. */
   readonly from: string;
 }
@@ -38,7 +41,7 @@ export async function runCommand(
   });
   const page = shownPath(join(done.folder, PAGE_FILE), options.from);
   if (options.json) return [JSON.stringify(asJson(done, page), null, 2)];
-  const closing = [`page: ${page}`];
+  const closing = [...neutralisedLines(done.neutralised), `page: ${page}`];
   const findings = findingLines(done.study.findings, {
     style: terminal.style,
     lines: 6,
@@ -53,7 +56,15 @@ export async function runCommand(
       room,
     ),
     ...findings,
+    ...(options.explain === true ? stepLines(done.steps, terminal.style, terminal.width) : []),
   ];
+}
+
+/** Said, since the files differ from the data by these apostrophes. */
+function neutralisedLines(count: number): Lines {
+  if (count === 0) return [];
+  const cells = count === 1 ? "1 text cell" : `${count} text cells`;
+  return [`${cells} of the CSV files begin with an apostrophe, or a spreadsheet would run them`];
 }
 
 /** The stage of that name. Throws `run.unknown-stage`. */
@@ -84,6 +95,9 @@ function sections(done: Executed): SummarySection[] {
   ];
   if (captures !== undefined && Number.isFinite(captures.animals))
     read.push(["animals", `${captures.animals}, ${captures.captures} captures that count`]);
+  const reused = done.steps.filter((one) => one.outcome === "reused").length;
+  if (reused > 0)
+    read.push(["reused", `${reused} of ${done.steps.length} steps; --explain says which and why`]);
   const out: SummarySection[] = [{ title: `read in ${done.seconds.toFixed(1)} s`, rows: read }];
   const clusters = study.diagnosis?.clusters.filter((one) => one.members.length > 1) ?? [];
   if (clusters.length > 0)
@@ -131,5 +145,7 @@ function asJson(done: Executed, page: string) {
     chosenByYears: study.screened?.byYears.names,
     chosenByAnimals: study.screened?.byAnimals.names,
     findings: study.findings,
+    neutralised: done.neutralised,
+    steps: done.steps,
   };
 }

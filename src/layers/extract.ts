@@ -33,6 +33,8 @@ export interface LayerExtraction {
   readonly methods: CellMethods | undefined;
   /** Files whose values were not at hand and were read. */
   readonly filesRead: number;
+  /** Files the layer has. */
+  readonly files: number;
 }
 
 /**
@@ -113,6 +115,7 @@ export async function extractLayers(
     findings: [...repeatedOnce(findings), ...made.findings, ...without],
     methods,
     filesRead,
+    files: paths.length,
   };
 }
 

@@ -15,6 +15,7 @@ import { outOfRangeTable } from "../tables/range-table.ts";
 import type { StudyResult } from "../tables/study-result.ts";
 import type { Table } from "../tables/table.ts";
 import { makeCovariates } from "./covariates.ts";
+import { stampAt } from "./effects/files.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
 import { ingest } from "./ingest.ts";
 import { recording } from "./inputs.ts";
@@ -53,7 +54,7 @@ export async function applyRecorded(
   const recorded = readRecorded(disk, recordedFolder);
   if (disk.resolve(loaded.outputFolder) === recorded.folder) throw sameFolder(loaded);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
-  const inputs = recording(world.files);
+  const inputs = recording(world.files, stampAt);
   const output = openOutput(disk, loaded.outputFolder);
   try {
     const { study, applied } = await newStudy(loaded, recorded, { ...world, files: inputs.files });

@@ -17,7 +17,9 @@ import type {
 } from "../spec/spec.ts";
 import { seriesInUnit } from "../stations/series-unit.ts";
 import { type Ingested, layerKey } from "./ingest.ts";
+import { ofDefinition } from "./ingredients.ts";
 import type { Loaded } from "./load.ts";
+import type { Steps } from "./reuse/steps.ts";
 
 /** A covariate that was aggregated, with the definition it came from where there is one. */
 export interface Made {
@@ -33,9 +35,19 @@ export interface CovariateSet extends Prepared {
 }
 
 /** From observations to the prepared matrix: windows and statistics, then derive … standardise. */
-export function buildCovariates(loaded: Loaded, found: Ingested): CovariateSet {
+export async function buildCovariates(loaded: Loaded, found: Ingested, steps: Steps): Promise<CovariateSet> {
   const { spec } = loaded;
-  const made = makeCovariates(loaded, found, () => true);
+  const made: Made[] = [];
+  for (const [i, one] of spec.covariates.entries()) {
+    const { definition, make } = recipeFor(one, one.entry ?? i, loaded, found);
+    const from = () => ({ ...ofDefinition(definition), "the intervals": found.intervals });
+    // Ready-made values come from a small file and are taken over as they are.
+    made.push(
+      definition === undefined
+        ? make()
+        : { ...(await steps.once(`covariate ${one.name}`, from, make)), definition },
+    );
+  }
   const covariates = made.map((one) => one.covariate);
   const base = baseOf(spec, made);
   const prepared = prepareCovariates(covariates, found.intervals, spec.prepare, base);
@@ -54,12 +66,19 @@ export function makeCovariates(
   wanted: (one: CovariateSpec) => boolean,
 ): readonly Made[] {
   return loaded.spec.covariates.flatMap((one, i) =>
-    wanted(one) ? [makeCovariate(one, one.entry ?? i, loaded, found)] : [],
+    wanted(one) ? [recipeFor(one, one.entry ?? i, loaded, found).make()] : [],
   );
 }
 
-function makeCovariate(one: CovariateSpec, index: number, loaded: Loaded, found: Ingested): Made {
-  if (one.source === "ready-made") return readyMadeCovariate(one, found);
+/** What a covariate is made of, and its making, which may not be needed. */
+interface CovariateRecipe {
+  readonly definition: CovariateDefinition | undefined;
+  make(): Made;
+}
+
+function recipeFor(one: CovariateSpec, index: number, loaded: Loaded, found: Ingested): CovariateRecipe {
+  if (one.source === "ready-made")
+    return { definition: undefined, make: () => readyMadeCovariate(one, found) };
   const series =
     one.source === "stations" ? stationSeries(one, index, loaded, found) : layerSeries(one, found);
   const second =
@@ -82,7 +101,7 @@ function makeCovariate(one: CovariateSpec, index: number, loaded: Loaded, found:
     ...(one.anomaly === undefined ? {} : { anomaly: one.anomaly }),
     ...(one.allowedMissing === undefined ? {} : { allowedMissing: one.allowedMissing }),
   };
-  return { ...aggregateCovariate(definition, found.intervals), definition };
+  return { definition, make: () => ({ ...aggregateCovariate(definition, found.intervals), definition }) };
 }
 
 /** What a covariate whose gaps are filled needs beside its own stations: all others that have its variables. */

@@ -17,6 +17,8 @@ import { readOccasions } from "../study/occasions.ts";
 import { readPlaces } from "../study/places.ts";
 import { type ReadyMadeColumn, readReadyMade } from "../study/ready-made.ts";
 import { splitIntervals } from "../study/split-years.ts";
+import { ofRecords } from "./ingredients.ts";
+import { type StepNote, type Steps, withoutReuse } from "./reuse/steps.ts";
 
 /** All that was read, before anything is made of it. */
 export interface Ingested {
@@ -45,7 +47,12 @@ export function layerKey({ layer, place, use }: Pick<LayerCovariate, "layer" | "
 }
 
 /** Occasions and captures, stations and their records, layers at places (if wanted), ready-made values. */
-export async function ingest(spec: Spec, effects: Effects, withLayers = true): Promise<Ingested> {
+export async function ingest(
+  spec: Spec,
+  effects: Effects,
+  withLayers = true,
+  steps: Steps = withoutReuse(),
+): Promise<Ingested> {
   const findings: RawFinding[] = [];
   const keep = <Result extends { readonly findings: readonly RawFinding[] }>(result: Result): Result => {
     findings.push(...result.findings);
@@ -70,7 +77,13 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
   const records =
     spec.records.length === 0
       ? { series: [], findings: [], rows: 0 }
-      : keep(await readRecords(spec.records, sites, spec.duplicates, effects));
+      : keep(
+          await steps.once(
+            "station records",
+            () => ofRecords(spec, sites, effects.files),
+            () => readRecords(spec.records, sites, spec.duplicates, effects),
+          ),
+        );
   effects.checkInterrupted();
 
   const layerSeries = new Map<string, Series>();
@@ -84,6 +97,7 @@ export async function ingest(spec: Spec, effects: Effects, withLayers = true): P
         effects,
       ),
     );
+    steps.note(layerNote(name, extraction.filesRead, extraction.files, steps.keeps));
     wanted.forEach((one, i) => {
       layerSeries.set(one.key, extraction.series[i]);
     });
@@ -124,6 +138,17 @@ function methodFindings(spec: Spec, layer: string, { methods }: LayerExtraction)
     const found = statisticFinding(one.name, one.statistic.type, layer, methods);
     return found === undefined ? [] : [found];
   });
+}
+
+/** The layers' own store works file by file and place by place. */
+function layerNote(name: string, read: number, files: number, keeps: boolean): StepNote {
+  const kept = files - read;
+  const why = !keeps
+    ? "no results are kept without --reuse"
+    : read === 0
+      ? `the values of all ${files} files were kept`
+      : `${read} of ${files} files had no kept values for these places and options`;
+  return { step: `layer ${name}`, outcome: kept === files ? "reused" : "ran", why };
 }
 
 /** For each layer the places it is read at, each way of reading once. */

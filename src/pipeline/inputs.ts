@@ -1,4 +1,5 @@
 import type { FileIdentity, Files } from "../effects/effects.ts";
+import { changedWhileRead } from "./effects/files.ts";
 
 /** Files as they are, remembering which ones were used. */
 export interface RecordingFiles {
@@ -7,11 +8,18 @@ export interface RecordingFiles {
   identities(): Promise<readonly FileIdentity[]>;
 }
 
-/** Every file whose content or path was handed out counts as an input of the run. */
-export function recording(files: Files): RecordingFiles {
-  const used = new Set<string>();
+/**
+ * Every file whose content, path or identity was handed out counts as an input of the run. `stampOf` tells cheaply whether
+ * a file was written to (size, time of change): a file that is not at the end what it was when it was first used would
+ * make the record untrue. Throws `files.changed` (MachineError) then.
+ */
+export function recording(files: Files, stampOf: (absolute: string) => string): RecordingFiles {
+  const used = new Map<string, string>();
+  // What stands on a server has no stamp.
+  const stamp = (path: string) =>
+    /^[a-z][a-z0-9+.-]+:\/\//i.test(path) ? "" : stampOf(files.absolute(path));
   const note = (path: string) => {
-    used.add(path);
+    if (!used.has(path)) used.set(path, stamp(path));
     return path;
   };
   return {
@@ -21,13 +29,16 @@ export function recording(files: Files): RecordingFiles {
       readText: (path) => files.readText(note(path)),
       open: (path) => files.open(note(path)),
       absolute: (path) => files.absolute(note(path)),
-      identity: (path) => files.identity(path),
+      identity: (path) => files.identity(note(path)),
       ...(files.remote === undefined ? {} : { remote: files.remote }),
     },
     identities: async () => {
-      const paths = [...used].sort((a, b) => (a < b ? -1 : 1));
+      const sorted = [...used].sort(([a], [b]) => (a < b ? -1 : 1));
       const out: FileIdentity[] = [];
-      for (const path of paths) out.push(await files.identity(path));
+      for (const [path, first] of sorted) {
+        out.push(await files.identity(path));
+        if (stamp(path) !== first) throw changedWhileRead(path);
+      }
       return out;
     },
   };

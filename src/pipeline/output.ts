@@ -1,6 +1,6 @@
 import { componentsJson } from "../components/recorded.ts";
 import { preparationJson } from "../covariates/recorded.ts";
-import type { Effects, FileIdentity } from "../effects/effects.ts";
+import type { Effects, FileIdentity, Progress } from "../effects/effects.ts";
 import type { FileSet } from "../publish/disk.ts";
 import { jsonBytes } from "../publish/json.ts";
 import { redactPipeline } from "../publish/redact.ts";
@@ -11,6 +11,7 @@ import { allTables } from "../tables/all-tables.ts";
 import { nodeDisk } from "./effects.ts";
 import type { Loaded } from "./load.ts";
 import { COMPONENTS_FILE, RECIPES_FILE } from "./recorded.ts";
+import type { Steps } from "./reuse/steps.ts";
 import type { RunResult } from "./run.ts";
 import { positionRule, shownInputs, shownPlaces } from "./sensitive.ts";
 import { mapLayer, monthlyPicture } from "./shown.ts";
@@ -35,7 +36,7 @@ export async function buildOutput(
   loaded: Loaded,
   run: RunResult,
   inputs: readonly FileIdentity[],
-  effects: Pick<Effects, "files" | "progress">,
+  effects: Pick<Effects, "files" | "progress"> & { readonly steps: Steps },
   maker: Maker,
 ): Promise<Output> {
   const { spec } = loaded;
@@ -81,19 +82,27 @@ export async function buildOutput(
     tables,
     record: JSON.stringify({ ...facts, outputs: undefined }, null, 2),
   };
-  // the page and its figures draw with heavy libraries, which only a run needs
-  const { renderPage } = await import("../report/page.ts");
-  const { figureFiles } = await import("../report/export.ts");
-  const text = new TextEncoder();
-  const step = effects.progress.start("drawing the page", 2);
   const files = new Map(written.files);
-  files.set(PAGE_FILE, text.encode(await renderPage(input)));
-  step.tick();
-  for (const { path, bytes } of await figureFiles(input)) files.set(`figures/${path}`, bytes);
-  step.tick();
-  step.done();
+  const draw = () => drawPage(input, effects.progress);
+  const from = () => ({ "what it shows": input });
+  const { page, figures } = await effects.steps.once("page and figures", from, draw);
+  files.set(PAGE_FILE, new TextEncoder().encode(page));
+  for (const { path, bytes } of figures) files.set(`figures/${path}`, bytes);
   if (run.study.components !== undefined)
     files.set(COMPONENTS_FILE, jsonBytes(componentsJson(run.study.components)));
   files.set(RECIPES_FILE, jsonBytes(preparationJson(run.study.matrix, run.study.intervals)));
   return { files: withRecord({ ...facts, outputs: files }), neutralised: written.neutralised };
+}
+
+/** The page and its figures draw with heavy libraries, which are loaded only where something is drawn. */
+async function drawPage(input: ReportInput, progress: Progress) {
+  const { renderPage } = await import("../report/page.ts");
+  const { figureFiles } = await import("../report/export.ts");
+  const step = progress.start("drawing the page", 2);
+  const page = await renderPage(input);
+  step.tick();
+  const figures = await figureFiles(input);
+  step.tick();
+  step.done();
+  return { page, figures };
 }

@@ -6,11 +6,13 @@ import { resample } from "../simulate/resampling.ts";
 import type { StudyResult } from "../tables/study-result.ts";
 import { buildCovariates, type CovariateSet } from "./covariates.ts";
 import { type Ingested, ingest } from "./ingest.ts";
+import { stageIngredients } from "./ingredients.ts";
 import type { Loaded } from "./load.ts";
 import { judge, stopIfAsked } from "./policy.ts";
+import { type Steps, withoutReuse } from "./reuse/steps.ts";
 import { sensitivityStage } from "./sensitivity.ts";
 import { compareStage, diagnoseStage, goodnessStage, inflationOf, reduceStage } from "./stages.ts";
-import { poseScreen } from "./survival-problem.ts";
+import { type Posed, poseScreen } from "./survival-problem.ts";
 
 /** How far a run goes. Each stage includes those before it; reading is part of the first. */
 export const STAGES = ["aggregate", "diagnose", "reduce", "screen", "compare"] as const;
@@ -25,12 +27,14 @@ export interface RunResult {
 /**
  * The stages in order: ingest → aggregate and prepare → diagnose → reduce → screen → compare. Each is a pure function
  * of what came before; effects are handed to those that read files or share work out. Findings are judged by the
- * pipeline's policy after each stage, so that a stop comes before the work that would rest on it.
+ * pipeline's policy after each stage, so that a stop comes before the work that would rest on it. `steps` may hand back
+ * the kept result of an earlier run in place of a stage whose ingredients have not changed.
  */
 export async function runStages(
   loaded: Loaded,
   effects: Effects,
   through: Stage = "compare",
+  steps: Steps = withoutReuse(),
 ): Promise<RunResult> {
   const { spec } = loaded;
   const goes = (stage: Stage) => STAGES.indexOf(stage) <= STAGES.indexOf(through);
@@ -43,30 +47,63 @@ export async function runStages(
     return result;
   };
 
-  const ingested = judged(await ingest(spec, effects));
-  const set = judged(buildCovariates(loaded, ingested));
+  const ingested = judged(await ingest(spec, effects, true, steps));
+  const set = judged(await buildCovariates(loaded, ingested, steps));
   const { matrix } = set;
-  const diagnosis = goes("diagnose") ? judged(diagnoseStage(spec, ingested, matrix)).diagnosis : undefined;
-  const components = goes("reduce") ? reduceStage(spec, ingested, matrix) : undefined;
-  const goodness = goes("screen") ? judged(goodnessStage(ingested)).goodness : undefined;
-  const posed = goes("screen") ? poseScreen(spec, ingested, matrix) : undefined;
+  const from = stageIngredients(spec, ingested, matrix);
+  const diagnosis = goes("diagnose")
+    ? judged(await steps.once("diagnose", from.diagnose, () => diagnoseStage(spec, ingested, matrix)))
+        .diagnosis
+    : undefined;
+  const components = goes("reduce")
+    ? await steps.once("reduce", from.reduce, () => reduceStage(spec, ingested, matrix))
+    : undefined;
+  const goodness = goes("screen")
+    ? judged(await steps.once("goodness of fit", from.goodness, () => goodnessStage(ingested))).goodness
+    : undefined;
+  const posed = goes("screen")
+    ? await steps.once("recapture", from.recapture, () => poseScreen(spec, ingested, matrix))
+    : undefined;
   const animals = ingested.captures?.animals ?? Number.NaN;
   const criterion = { ...spec.screen, ...inflationOf(spec, goodness) };
+  const screenNow = ({ problem, recapture }: Posed) =>
+    screen(problem, recapture, criterion, animals, spec.seed, effects);
   const screened =
     posed &&
-    judged(await screen(posed.problem, posed.recapture, criterion, animals, spec.seed, effects)).result;
+    judged(
+      await steps.once(
+        "screen",
+        () => from.screen(posed, criterion),
+        () => screenNow(posed),
+      ),
+    ).result;
   const resampling =
-    posed && screened && (await resample(posed.problem, screened, criterion, spec.seed, effects));
+    posed &&
+    screened &&
+    (await steps.once(
+      "resampling",
+      () => from.resampling(posed, screened, criterion),
+      () => resample(posed.problem, screened, criterion, spec.seed, effects),
+    ));
   const compared =
     posed && screened && goes("compare")
-      ? await compareStage(spec, posed, screened, components, diagnosis, matrix, effects)
+      ? await steps.once(
+          "compare",
+          () => from.compare(posed, screened, components, diagnosis),
+          () => compareStage(spec, posed, screened, components, diagnosis, matrix, effects),
+        )
       : undefined;
 
+  const asked = { ...loaded, spec: { ...spec, screen: criterion } };
   const comparison =
     compared &&
     withSensitivity(
       compared,
-      await sensitivityStage({ ...loaded, spec: { ...spec, screen: criterion } }, ingested, set, effects),
+      await steps.once(
+        "sensitivity",
+        () => from.sensitivity(criterion, set),
+        () => sensitivityStage(asked, ingested, set, effects),
+      ),
     );
 
   const study: StudyResult = {

@@ -13,6 +13,7 @@ import { ownDirections, type ResidualEstimate, residualEstimate } from "../simul
 import { detectionSentences } from "../simulate/says.ts";
 import { type StudyDesign, studyDesign } from "../simulate/study-design.ts";
 import { detectionTable, simulatedDesignTable } from "../tables/detection-tables.ts";
+import { stampAt } from "./effects/files.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
 import { recording } from "./inputs.ts";
 import type { Loaded } from "./load.ts";
@@ -71,7 +72,7 @@ export async function simulate(
   if (loaded.spec.captures === undefined) throw noCaptures(loaded);
   if (disk.resolve(folder) === disk.resolve(loaded.outputFolder)) throw sameFolder(folder);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
-  const inputs = recording(world.files);
+  const inputs = recording(world.files, stampAt);
   const effects = { ...world, files: inputs.files };
   const began = world.clock.now();
   const output = openOutput(disk, folder);

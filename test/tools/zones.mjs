@@ -7,10 +7,11 @@ import { tmpdir } from "node:os";
 import { join } from "node:path";
 
 const ZONES = ["UTC", "America/Edmonton", "Pacific/Chatham"];
-/** Tests of processes, signals and the browser: slow, and the zone reaches them through the same code as the rest. */
+/** Tests of whole runs, processes, signals and the browser: slow, and the zone reaches them through the same code as the rest. */
 const ONCE = [
   "test/commands/command-line.test.ts",
   "test/pipeline/kills.test.ts",
+  "test/pipeline/reuse.test.ts",
   "test/report/page.browser.test.ts",
   "test/readme.test.ts",
 ];

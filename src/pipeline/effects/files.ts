@@ -84,7 +84,7 @@ function outside(path: string, found: string): InputError {
 }
 
 /** The file's real absolute path. */
-function locateIn(root: string, path: string, seen: ReadonlySet<string>): string {
+function locateIn(root: string, path: string, seen: Set<string>): string {
   requireBelow(path);
   let real: string;
   try {
@@ -95,6 +95,8 @@ function locateIn(root: string, path: string, seen: ReadonlySet<string>): string
     throw machineError(error, "find", path);
   }
   if (!isInside(root, real)) throw outside(path, "a link that leads out of it");
+  // A file that was there once and is gone later vanished while covey ran, which is not a slip in the pipeline file.
+  seen.add(path);
   return real;
 }
 
@@ -175,7 +177,14 @@ function stamp(file: number): string {
   return `${size} ${mtimeNs} ${ino}`;
 }
 
-function changedWhileRead(path: string): MachineError {
+/** What shows that the file at an absolute path was written to. */
+export function stampAt(absolute: string): string {
+  const stats = onDisk("look at", absolute, () => fs.statSync(absolute, { bigint: true }));
+  return `${stats.size} ${stats.mtimeNs} ${stats.ino}`;
+}
+
+/** The error of a file that another program writes to while it is used. */
+export function changedWhileRead(path: string): MachineError {
   return new MachineError({
     name: "files.changed",
     expected: "the file to stay as it is while it is read",
