@@ -64,6 +64,16 @@ export class InterruptedError extends CoveyError {
   }
 }
 
+/** Does something; an InputError that does not say where is given this place. */
+export function placed<Result>(where: Place, work: () => Result): Result {
+  try {
+    return work();
+  } catch (error) {
+    if (!(error instanceof InputError) || error.facts.where !== undefined) throw error;
+    throw new InputError({ ...error.facts, where }, error);
+  }
+}
+
 /** `file:line:column (cell)`, as far as it is known. */
 export function placeText(where: Place | undefined): string {
   if (where === undefined) return "";

@@ -32,6 +32,7 @@ export async function lookCommand(
   terminal: Terminal,
 ): Promise<Lines> {
   const path = resolve(file);
+  if (nodeDisk().kind(path) === undefined) throw notFound(file);
   const files = filesBelow(dirname(path));
   const name = basename(path);
   if (/\.(tiff?|gtiff)$/i.test(name)) {
@@ -66,6 +67,16 @@ async function drawPicture(name: string, files: Files, options: LookCommandOptio
     });
   const how = exact ? "where they are" : `as squares of some ${COARSEN_KM} km`;
   return ["", `wrote ${plain(picture)}${places === undefined ? "" : `, with the places ${how}`}`];
+}
+
+function notFound(file: string): InputError {
+  return new InputError({
+    name: "look.not-found",
+    expected: "a table or a layer",
+    found: "nothing there",
+    where: { file },
+    remedy: "give the path of a file, e.g. sample-data/stations/upland.csv",
+  });
 }
 
 function json(look: unknown): string {

@@ -20,6 +20,7 @@ export async function startCommand(
 ): Promise<Lines> {
   // Before the work, not only after it; `create` below holds whatever happens in between.
   if (nodeDisk().kind(resolve(to)) !== undefined) throw exists(to);
+  if (nodeDisk().kind(resolve(folder)) === undefined) throw noFolder(folder);
   const base = dirname(resolve(to));
   const below = relative(base, resolve(folder)).replaceAll("\\", "/");
   const title = basename(resolve(folder));
@@ -45,6 +46,16 @@ function stateLines(text: string, to: string): Lines {
     if (!(error instanceof InputError)) throw error;
     return [`to be completed first: ${plain(error.message)}`];
   }
+}
+
+function noFolder(folder: string): InputError {
+  return new InputError({
+    name: "start.not-found",
+    expected: "a folder of data files",
+    found: "nothing there",
+    where: { file: folder },
+    remedy: "give the path of a folder, e.g. sample-data",
+  });
 }
 
 function exists(to: string): InputError {

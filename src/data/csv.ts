@@ -40,13 +40,21 @@ export function readCsv(text: string, file: string): TextTable {
       },
     });
   } catch (error) {
-    const told = (error as CsvError).lines;
-    const at = typeof told === "number" ? told : line + 1;
+    const { code, lines: told, record, message } = error as CsvError;
+    // The library finds an open quote at the file's end; it stands in the record after the last good one.
+    const at = code === "CSV_QUOTE_NOT_CLOSED" || typeof told !== "number" ? line + 1 : told;
+    const cells = (count: number) => (count === 1 ? "1 cell" : `${count} cells`);
+    const found =
+      code === "CSV_QUOTE_NOT_CLOSED"
+        ? "a quotation mark that is never closed, here or below"
+        : code === "CSV_RECORD_INCONSISTENT_FIELDS_LENGTH" && Array.isArray(record)
+          ? `${cells(record.length)} where the header has ${rows[0].cells.length}`
+          : `a slip: ${message}`;
     throw new InputError(
       {
         name: "table.malformed",
         expected: `rows of equal length, separated by ${JSON.stringify(delimiter)}`,
-        found: (error as Error).message,
+        found,
         where: { file, line: at },
         remedy: "mend the row, or quote cells that hold the separator",
       },

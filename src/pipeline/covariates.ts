@@ -6,7 +6,7 @@ import { prepareCovariates } from "../covariates/prepare.ts";
 import type { Prepared } from "../covariates/result.ts";
 import type { RawFinding } from "../data/finding.ts";
 import type { Series } from "../data/series.ts";
-import { InputError } from "../errors.ts";
+import { InputError, placed } from "../errors.ts";
 import { nearestName } from "../math/nearest-name.ts";
 import type {
   CovariateSpec,
@@ -94,8 +94,8 @@ function recipeFor(one: CovariateSpec, index: number, loaded: Loaded, found: Ing
     statistic: one.statistic,
     complete: one.complete,
     join: one.source === "stations" ? one.join : "mean of windows",
-    series: series.map((each) => seriesInUnit(each, unit)),
-    ...(second === undefined ? {} : { second: second.map((each) => seriesInUnit(each, unit)) }),
+    series: series.map((each) => inUnit(each, unit, one.name)),
+    ...(second === undefined ? {} : { second: second.map((each) => inUnit(each, unit, one.name)) }),
     ...(one.source === "stations" ? infilling(one, unit, found) : {}),
     ...(one.source === "stations" ? weighting(one, index, series, loaded, found) : {}),
     ...(one.anomaly === undefined ? {} : { anomaly: one.anomaly }),
@@ -108,7 +108,9 @@ function recipeFor(one: CovariateSpec, index: number, loaded: Loaded, found: Ing
 function infilling(one: StationCovariate, unit: string, found: Ingested): Partial<CovariateDefinition> {
   if (one.infill === undefined) return {};
   const having = (variable: string) =>
-    found.stationSeries.filter((each) => each.variable === variable).map((each) => seriesInUnit(each, unit));
+    found.stationSeries
+      .filter((each) => each.variable === variable)
+      .map((each) => inUnit(each, unit, one.name));
   return {
     infill: one.infill,
     neighbours: having(one.variable),
@@ -142,6 +144,10 @@ function weighting(
   const names = [...new Set(series.map((each) => each.site))];
   const bySite = inverseDistance(names, found.sites, place.position, power, one.name);
   return { weights: { bySite, words: `weighted by 1/distance^${power} to ${near}` } };
+}
+
+function inUnit(series: Series, unit: string, covariate: string): Series {
+  return placed({ cell: `covariates > ${covariate} > unit` }, () => seriesInUnit(series, unit));
 }
 
 function layerSeries(one: LayerCovariate, found: Ingested): readonly Series[] {

@@ -1,5 +1,6 @@
 import { readFileSync } from "node:fs";
 import { dirname, resolve } from "node:path";
+import { utf8Text } from "../data/utf8.ts";
 import { InputError } from "../errors.ts";
 import { type ReadPipeline, readPipeline } from "../spec/parse.ts";
 import { codeOf, machineError } from "./effects/machine.ts";
@@ -15,9 +16,9 @@ export interface Loaded extends ReadPipeline {
 
 /** Reads and checks a pipeline file. `data:` and `output:` are relative to the folder the file stands in. */
 export function loadPipeline(file: string): Loaded {
-  let text: string;
+  let bytes: Uint8Array;
   try {
-    text = readFileSync(file, "utf8");
+    bytes = readFileSync(file);
   } catch (error) {
     if (codeOf(error) === "ENOENT" || codeOf(error) === "EISDIR")
       throw new InputError({
@@ -29,6 +30,7 @@ export function loadPipeline(file: string): Loaded {
       });
     throw machineError(error, "reading the pipeline file", file);
   }
+  const text = utf8Text(bytes, file);
   const read = readPipeline(text, file);
   const base = dirname(resolve(file));
   return {

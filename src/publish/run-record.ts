@@ -77,11 +77,18 @@ function isRecord(value: unknown): value is RunRecord {
     typeof value.seed === "number" &&
     typeof value.pipeline === "string" &&
     isIdentities(value.inputs) &&
-    isIdentities(value.outputs)
+    isIdentities(value.outputs) &&
+    // A record that was tampered with must not lead `verify` to files elsewhere.
+    value.outputs.every(({ path }) => isBelow(path))
   );
 }
 
-function isIdentities(value: unknown): boolean {
+/** A plain path downwards. */
+function isBelow(path: string): boolean {
+  return !/^[\\/]|\\|\0|^[a-z]:/i.test(path) && !path.split("/").some((part) => part === ".." || part === "");
+}
+
+function isIdentities(value: unknown): value is readonly FileIdentity[] {
   if (!Array.isArray(value)) return false;
   return value.every(
     (one) =>

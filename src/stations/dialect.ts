@@ -78,7 +78,7 @@ export function splitLine(line: string, delimiter: string): string[] {
  * Tells the dialect from a file's head. The header is the first line that holds all `wanted` columns; without any, the
  * first line with as many cells as most lines have. `dateColumn` serves to know a row of units (no digit in its date).
  * Everything that `table` says stands instead of the guess.
- * Throws `stations.empty-file`, `stations.column-missing` and `stations.repeated-column`.
+ * Throws `stations.empty-file`, `stations.not-text`, `stations.column-missing` and `stations.repeated-column`.
  */
 export function sniffDialect(
   head: Uint8Array,
@@ -91,6 +91,7 @@ export function sniffDialect(
   const { encoding, bom } = encodingOf(head, cut);
   const used = table.encoding ?? encoding;
   const text = decodeText(head, used).replace(/^\uFEFF/, "");
+  if (text.includes("\0")) throw notText(file);
   const lines = text.split(/\r\n|\n|\r/);
   if (cut && lines.length > 1) lines.pop();
   if (lines.every((line) => line.trim() === "")) throw emptyFile(file);
@@ -254,6 +255,16 @@ export function checkColumn(header: readonly string[], name: string, file: strin
       where: { file, line, column: second + 1 },
       remedy: "rename one of the two in the file",
     });
+}
+
+function notText(file: string): InputError {
+  return new InputError({
+    name: "stations.not-text",
+    expected: "a table of text",
+    found: "bytes that no text has",
+    where: { file },
+    remedy: "name tables only; `look` tells what a file holds",
+  });
 }
 
 function emptyFile(file: string): InputError {

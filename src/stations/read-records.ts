@@ -1,7 +1,7 @@
 import type { RawFinding } from "../data/finding.ts";
 import type { Series, Site } from "../data/series.ts";
 import type { Effects } from "../effects/effects.ts";
-import { InputError } from "../errors.ts";
+import { InputError, placed } from "../errors.ts";
 import { assembleVariable } from "./assemble.ts";
 import { type Block, type DraftFinding, placeFindings, type Source } from "./block.ts";
 import { crossedFindings } from "./crossed.ts";
@@ -85,10 +85,13 @@ export async function readRecords(
 
 /** Units and date patterns are looked at before any file is opened. */
 function checkOptions(records: readonly RecordOptions[]): void {
-  for (const options of records) {
-    compileDateFormat(options.date.format);
-    if (options.layout !== "long") checkUnit(options.unit);
-    else for (const column of Object.values(options.series)) checkUnit(column.unit);
+  for (const [entry, options] of records.entries()) {
+    const at = (key: string) => ({ cell: `records[${entry}].${key}` });
+    placed(at("date.format"), () => compileDateFormat(options.date.format));
+    if (options.layout !== "long") placed(at("unit"), () => checkUnit(options.unit));
+    else
+      for (const [variable, { unit }] of Object.entries(options.series))
+        placed(at(`series.${variable}.unit`), () => checkUnit(unit));
   }
 }
 

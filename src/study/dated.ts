@@ -59,7 +59,8 @@ export function readDated(
     throw new InputError({
       name: "study.no-capture-within",
       expected: `captures within the ${occasions.length} occasions`,
-      found: `${captures.length} captures, all outside them`,
+      found:
+        captures.length === 1 ? "1 capture, outside them" : `${captures.length} captures, all outside them`,
       where: { file: options.file },
       remedy: "check the dates of the occasions and how dates are written (captures.format)",
     });

@@ -67,7 +67,9 @@ function pick(
     expected: `one feature with ${asked}`,
     found:
       matching.length === 0
-        ? `${features.length} features: ${there.slice(0, 10).join(", ")}${there.length > 10 ? ", …" : ""}`
+        ? features.length === 0
+          ? "no feature at all"
+          : `${features.length} features: ${there.slice(0, 10).join(", ")}${there.length > 10 ? ", …" : ""}`
         : `${matching.length} of them (${matching.map((one) => one.path).join(", ")})`,
     where: { file, cell: `places.${name}.where` },
     remedy:

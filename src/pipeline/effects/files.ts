@@ -2,6 +2,7 @@ import { createHash } from "node:crypto";
 import * as fs from "node:fs";
 import { isAbsolute, join, relative, sep } from "node:path";
 import { globSync } from "tinyglobby";
+import { utf8Text } from "../../data/utf8.ts";
 import type { FileIdentity, Files, RandomAccess } from "../../effects/effects.ts";
 import { InputError, MachineError } from "../../errors.ts";
 import { codeOf, machineError, onDisk } from "./machine.ts";
@@ -29,7 +30,7 @@ export function filesBelow(dataFolder: string): Files {
       return paths;
     },
     readBytes: async (path) => readWhole(locate(path), path),
-    readText: async (path) => new TextDecoder().decode(readWhole(locate(path), path)),
+    readText: async (path) => utf8Text(readWhole(locate(path), path), path),
     open: (path) => openAt(locate(path), path),
     absolute: locate,
     identity: async (path) => identify(locate(path), path),
@@ -37,9 +38,11 @@ export function filesBelow(dataFolder: string): Files {
 }
 
 function rootOf(dataFolder: string): string {
+  let found = "no such folder";
   try {
     const root = fs.realpathSync(dataFolder);
     if (fs.statSync(root).isDirectory()) return root;
+    found = "a file";
   } catch (error) {
     if (codeOf(error) !== "ENOENT" && codeOf(error) !== "ENOTDIR")
       throw machineError(error, "open the data folder", dataFolder);
@@ -47,7 +50,7 @@ function rootOf(dataFolder: string): string {
   throw new InputError({
     name: "files.data-folder",
     expected: "`data:` to name a folder",
-    found: "no such folder",
+    found,
     where: { file: dataFolder },
     remedy: "write the folder that holds the input files, relative to the pipeline file",
   });
@@ -91,6 +94,7 @@ function locateIn(root: string, path: string, seen: Set<string>): string {
     real = fs.realpathSync(join(root, path));
   } catch (error) {
     const code = codeOf(error);
+    if (code === "ELOOP") throw outside(path, "a link that leads back to itself");
     if ((code === "ENOENT" || code === "ENOTDIR") && !seen.has(path)) throw missing(path);
     throw machineError(error, "find", path);
   }

@@ -90,10 +90,10 @@ async function onThreads(
 }
 
 /** Worker threads run compiled JavaScript; from the sources (under a test runner) the build's is taken. */
-function workerFile(): string {
-  const fromSource = import.meta.url.endsWith(".ts");
+export function workerFile(from = import.meta.url): string {
+  const fromSource = from.endsWith(".ts");
   const file = fileURLToPath(
-    new URL(fromSource ? "../../../dist/workers/entry.js" : "../../workers/entry.js", import.meta.url),
+    new URL(fromSource ? "../../../dist/workers/entry.js" : "../../workers/entry.js", from),
   );
   if (existsSync(file)) return file;
   throw new MachineError({
@@ -105,7 +105,8 @@ function workerFile(): string {
   });
 }
 
-function lostWorker(error: unknown): unknown {
+/** A MachineError where a thread ended early (memory, a signal); any other error as it is. */
+export function lostWorker(error: unknown): unknown {
   if (!(error instanceof Error) || !/terminat|exit|memory/i.test(error.message)) return error;
   return new MachineError(
     {
