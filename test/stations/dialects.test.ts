@@ -301,14 +301,14 @@ const CASES: readonly Case[] = [
     files: { "a.csv": PLAIN },
     options: long({ series: { rain: { ...MM, unit: "buckets" } } }),
     error:
-      'expected a unit of measurement, found "buckets"; write a unit such as degC, degF, K, mm, cm, in, m/s, km/h, hPa, Pa, W/m2, MJ/m2, percent, 1, days, mm/day, degC days',
+      'records[0].series.rain.unit: expected a unit of measurement, found "buckets"; write a unit such as degC, degF, K, mm, cm, in, m/s, km/h, hPa, Pa, W/m2, MJ/m2, percent, 1, days, mm/day, degC days',
   },
   {
     name: "the week-year slip in a date pattern",
     files: { "a.csv": PLAIN },
     options: long({ date: { column: "day", format: "YYYY-MM-DD", covers: "day" } }),
     error:
-      'expected a date pattern of yyyy, MM, dd, D (day of the year), HH, mm, ss and separators, found "YYYY-MM-DD" (YYYY); write it like yyyy-MM-dd, dd.MM.yyyy, yyyyMMdd, yyyy-MM or yyyy D; letters are case-sensitive',
+      'records[0].date.format: expected a date pattern of yyyy, MM, dd, D (day of the year), HH, mm, ss and separators, found "YYYY-MM-DD" (YYYY); write it like yyyy-MM-dd, dd.MM.yyyy, yyyyMMdd, yyyy-MM or yyyy D; letters are case-sensitive',
   },
 ];
 

@@ -74,7 +74,7 @@ const CASES: readonly Case[] = [
     occasions: 3,
     rows: ["ring,date,sex", "a,1901-07-20,f"],
     message:
-      "c.csv: expected captures within the 3 occasions, found 1 captures, all outside them; check the dates of the occasions and how dates are written (captures.format)",
+      "c.csv: expected captures within the 3 occasions, found 1 capture, outside them; check the dates of the occasions and how dates are written (captures.format)",
   },
   {
     name: "study.not-zero-one",
