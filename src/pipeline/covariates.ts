@@ -48,6 +48,11 @@ export async function buildCovariates(loaded: Loaded, found: Ingested, steps: St
         : { ...(await steps.once(`covariate ${one.name}`, from, make)), definition },
     );
   }
+  return prepareMade(loaded, found, made);
+}
+
+/** Covariates that were made, prepared to the matrix. */
+export function prepareMade({ spec }: Loaded, found: Ingested, made: readonly Made[]): CovariateSet {
   const covariates = made.map((one) => one.covariate);
   const base = baseOf(spec, made);
   const prepared = prepareCovariates(covariates, found.intervals, spec.prepare, base);

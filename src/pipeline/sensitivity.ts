@@ -15,7 +15,7 @@ import { InputError } from "../errors.ts";
 import type { PermutationChunk, PermutationOutcome } from "../screen/permutation.ts";
 import { PERMUTATION_TASK } from "../screen/screen.ts";
 import type { Alternative, CovariateSpec, Spec } from "../spec/spec.ts";
-import { buildCovariates, type CovariateSet, makeCovariates } from "./covariates.ts";
+import { type CovariateSet, makeCovariates, prepareMade } from "./covariates.ts";
 import type { Ingested } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { poseScreen } from "./survival-problem.ts";
@@ -142,7 +142,12 @@ function changedSet(
 ): Pick<CovariateSet, "matrix" | "leftOut"> {
   const { spec } = loaded;
   // a base period needs the base years of every covariate
-  if (spec.prepare.standardise.type === "base") return buildCovariates(loaded, found);
+  if (spec.prepare.standardise.type === "base")
+    return prepareMade(
+      loaded,
+      found,
+      makeCovariates(loaded, found, () => true),
+    );
   const made = makeCovariates(loaded, found, (one) => one.name === of);
   const covariates = set.covariates.map(
     (one) => made.find(({ covariate }) => covariate.name === one.name)?.covariate ?? one,
