@@ -7,7 +7,6 @@ import type { Files } from "../effects/effects.ts";
 import type { ScreenOptions } from "../screen/options.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Spec } from "../spec/spec.ts";
-import type { CovariateSet } from "./covariates.ts";
 import type { Ingested } from "./ingest.ts";
 import type { Ingredients } from "./reuse/steps.ts";
 import type { Posed } from "./survival-problem.ts";
@@ -92,7 +91,7 @@ export function stageIngredients(spec: Spec, found: Ingested, matrix: CovariateM
       "the number of animals": captures?.animals,
     }),
     // Makes covariates in other ways and goes through the stages again, so whatever was read and asked for matters.
-    sensitivity: (criterion: ScreenOptions, set: CovariateSet) => {
+    sensitivity: (criterion: ScreenOptions, set: object) => {
       const { study, data, output, findings, ...said } = spec;
       return {
         "the pipeline": { ...said, screen: criterion },
