@@ -17,8 +17,8 @@ import type {
 } from "../spec/spec.ts";
 import { seriesInUnit } from "../stations/series-unit.ts";
 import { type Ingested, layerKey } from "./ingest.ts";
-import { ofDefinition } from "./ingredients.ts";
 import type { Loaded } from "./load.ts";
+import { ofDefinition } from "./reuse/inputs.ts";
 import type { Steps } from "./reuse/steps.ts";
 
 /** A covariate that was aggregated, with the definition it came from where there is one. */

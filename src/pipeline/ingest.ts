@@ -17,7 +17,7 @@ import { readOccasions } from "../study/occasions.ts";
 import { readPlaces } from "../study/places.ts";
 import { type ReadyMadeColumn, readReadyMade } from "../study/ready-made.ts";
 import { splitIntervals } from "../study/split-years.ts";
-import { ofRecords } from "./ingredients.ts";
+import { ofRecords } from "./reuse/inputs.ts";
 import { type StepNote, type Steps, withoutReuse } from "./reuse/steps.ts";
 
 /** All that was read, before anything is made of it. */
