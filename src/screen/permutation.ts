@@ -2,7 +2,12 @@ import { quantile7 } from "../math/quantile.ts";
 import { randomStream } from "../math/random.ts";
 import type { ScreenOptions } from "./options.ts";
 import type { ScreenProblem } from "./problem.ts";
-import { type ProcedureSetting, runProcedure } from "./procedure.ts";
+import {
+  type ProcedureSetting,
+  runProcedure,
+  type WithoutCovariates,
+  withoutCovariates,
+} from "./procedure.ts";
 
 /** A run of replicates, small enough to send to a worker. */
 export interface PermutationChunk {
@@ -48,9 +53,10 @@ export interface PermutationResult {
  * not depend on how replicates are cut into chunks.
  */
 export function permuteYears(chunk: PermutationChunk): PermutationOutcome[] {
+  const known = withoutCovariates(chunk.problem);
   return Array.from({ length: chunk.to - chunk.from }, (_, i) => {
     const random = randomStream(chunk.seed, "permutation of years", chunk.from + i);
-    return outcomeInOrder(chunk, random.permutation(chunk.problem.frame.intervals));
+    return outcomeInOrder(chunk, random.permutation(chunk.problem.frame.intervals), known);
   });
 }
 
@@ -58,6 +64,7 @@ export function permuteYears(chunk: PermutationChunk): PermutationOutcome[] {
 export function outcomeInOrder(
   { problem, setting, options }: Pick<PermutationChunk, "problem" | "setting" | "options">,
   order: ArrayLike<number>,
+  known?: WithoutCovariates,
 ): PermutationOutcome {
   const n = problem.frame.intervals;
   // values by stratum × interval move together, each within its stratum
@@ -65,7 +72,7 @@ export function outcomeInOrder(
     name: one.name,
     values: one.values.map((_, r) => one.values[r - (r % n) + order[r % n]]),
   }));
-  const result = runProcedure({ ...problem, covariates }, setting, options);
+  const result = runProcedure({ ...problem, covariates }, setting, options, known);
   const share = (set: readonly number[]) =>
     (result.refit([]) - result.refit(set)) / (result.refit([]) - setting.interval.minus2LogL);
   return {
@@ -86,10 +93,11 @@ export function shiftYears(
   gain: number,
 ): number {
   const n = study.problem.frame.intervals;
+  const known = withoutCovariates(study.problem);
   let reached = 1;
   for (let shift = 1; shift < n; shift++) {
     const order = Int32Array.from({ length: n }, (_, t) => (t + shift) % n);
-    if (outcomeInOrder(study, order).gain >= gain) reached++;
+    if (outcomeInOrder(study, order, known).gain >= gain) reached++;
   }
   return reached / n;
 }

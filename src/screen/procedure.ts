@@ -2,6 +2,7 @@ import { mean } from "../math/quantile.ts";
 import { fixedSurvivalColumns, survivalContrasts } from "../survival/design.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { maximiseRandomInterval } from "../survival/random-interval.ts";
+import { type TwoStep, twoStep } from "../survival/two-step.ts";
 import { chooseOnPath, type PathChoice } from "./choice.ts";
 import { memoryOf } from "./memory.ts";
 import type { ScreenOptions } from "./options.ts";
@@ -21,6 +22,21 @@ import { chooseByYears, largestSet, type YearsSetting } from "./years.ts";
 /** What does not change when years are permuted. */
 export interface ProcedureSetting extends YearsSetting {
   readonly sampleSize: number;
+}
+
+/** What can be worked out once for all orders of years: no covariate speaks in it. */
+export interface WithoutCovariates {
+  readonly two: TwoStep;
+  /** D of the empty set by random intervals. */
+  readonly evidence: number;
+}
+
+/** Undefined where no random effect of the interval is to be had. */
+export function withoutCovariates(problem: ScreenProblem): WithoutCovariates | undefined {
+  if (!oneValuePerInterval(problem) || problem.covariates.length < 2) return undefined;
+  const fit = maximiseRandomInterval(problem, [], PRECISION);
+  // one that missed its optimum is to be counted as such every time
+  return fit.stopped === "optimum" ? { two: twoStep(problem), evidence: fit.minus2LogL } : undefined;
 }
 
 /**
@@ -54,6 +70,7 @@ export function runProcedure(
   problem: ScreenProblem,
   setting: ProcedureSetting,
   options: ScreenOptions,
+  known?: WithoutCovariates,
 ): ProcedureResult {
   const nothing = solveNull(problem, cjsLikelihood(problem.data, designWith(problem)));
   const weights = adaptiveWeights(problem, options.gamma, nothing.x);
@@ -63,10 +80,10 @@ export function runProcedure(
     options.fit === "refit" ? refit(active) : Number.NaN,
   );
   // those that ask only what counts animals are spared the other paths and fits
-  let known: ChoiceByYears | undefined;
+  let made: ChoiceByYears | undefined;
   const years = () => {
-    known ??= choiceByYears(problem, setting, options, { weights, path, refit, nothing: nothing.x });
-    return known;
+    made ??= choiceByYears(problem, setting, options, { weights, path, refit, nothing: nothing.x }, known);
+    return made;
   };
   return {
     weights,
@@ -115,6 +132,7 @@ function choiceByYears(
   setting: ProcedureSetting,
   options: ScreenOptions,
   first: Pick<ProcedureResult, "weights" | "path" | "refit"> & { readonly nothing: Float64Array },
+  known: WithoutCovariates | undefined,
 ): ChoiceByYears {
   const { weights, path, refit, nothing } = first;
   // With nearly as many covariates as intervals maximum-likelihood weights are noise; ridge weights then lead to better
@@ -129,13 +147,13 @@ function choiceByYears(
           downTo: options.downTo,
           most,
         });
-  const quick = oneValuePerInterval(problem) ? twoStepProblem(problem) : undefined;
+  const quick = oneValuePerInterval(problem) ? twoStepProblem(problem, known?.two) : undefined;
   const third = quick === undefined ? [] : twoStepCandidates(quick, options).map((active) => ({ active }));
   const candidates = distinctSets([...path.steps, ...second.steps, ...third]);
   const chosen =
     quick === undefined || problem.covariates.length < 2
       ? byDeviance(problem, candidates, refit, setting)
-      : byRandomIntervals(problem, candidates, quick);
+      : byRandomIntervals(problem, candidates, quick, known?.evidence);
   return { ...chosen, candidates };
 }
 
@@ -154,11 +172,13 @@ function byRandomIntervals(
   problem: ScreenProblem,
   candidates: readonly (readonly number[])[],
   quick: TwoStepProblem,
+  nothing?: number,
 ): Chosen {
   let unsettled = 0;
   const byYears = chooseByRandomIntervals(
     candidates,
     (set) => {
+      if (set.length === 0 && nothing !== undefined) return nothing;
       const fit = maximiseRandomInterval(problem, set, PRECISION);
       if (fit.stopped !== "optimum") unsettled++;
       return fit.minus2LogL;

@@ -11,6 +11,7 @@ export interface MaximumOptions {
 }
 
 export interface LaplaceMaximum {
+  /** Without information if any step was taken. */
   readonly point: LaplacePoint;
   /** The largest derivative that is not held back by σ² ≥ 0: the certificate. */
   readonly violation: number;
@@ -40,7 +41,7 @@ export function maximiseLaplace(
       stopped: "start outside the domain",
       iterations: 0,
     };
-  let hessian = firstHessian(point, d);
+  let hessian = firstHessian(laplace, point);
   let refreshed = true;
   for (let iteration = 0; iteration < options.iterations; iteration++) {
     const violation = projected(point, fixed);
@@ -50,7 +51,7 @@ export function maximiseLaplace(
     const next = step === undefined ? undefined : search(laplace, point, step, violation, fixed);
     if (next === undefined) {
       if (refreshed) return { point, violation, stopped: "no lower point", iterations: iteration };
-      hessian = firstHessian(point, d);
+      hessian = firstHessian(laplace, point);
       refreshed = true;
       continue;
     }
@@ -75,8 +76,10 @@ function projected(point: LaplacePoint, fixed: boolean): number {
   return held ? worst : Math.max(worst, Math.abs(slope));
 }
 
-function firstHessian(point: LaplacePoint, d: number): Float64Array {
+function firstHessian(laplace: Laplace, at: LaplacePoint): Float64Array {
+  const d = laplace.dimension;
   const m = d + 1;
+  const point = at.information.length > 0 ? at : laplace.at(at.theta, at.variance, at.effects);
   const out = new Float64Array(m * m);
   for (let i = 0; i < d; i++) for (let j = 0; j < d; j++) out[i * m + j] = point.information[i * d + j];
   out[m * m - 1] = Math.max(point.varianceInformation, 1e-8);
@@ -130,7 +133,7 @@ function search(
       effects[t] += (variance - from.variance) * from.tangents[d * n + t];
       for (let k = 0; k < d; k++) effects[t] += scale * step[k] * from.tangents[k * n + t];
     }
-    const next = laplace.at(theta, variance, effects);
+    const next = laplace.at(theta, variance, effects, false);
     if (next.value <= from.value + 1e-4 * Math.min(0, predicted) && next.value < from.value - noise)
       return next;
     // below the noise of the value the derivatives decide

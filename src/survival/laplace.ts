@@ -14,7 +14,7 @@ export interface EffectsMode {
   readonly joint: number;
   /** Its derivative in θ with ε̂ following: f_θ, d. */
   readonly jointGradient: Float64Array;
-  /** Its second derivatives in θ with ε̂ following: f_θθ − f_θε G f_εθ, d × d. */
+  /** Its second derivatives in θ with ε̂ following: f_θθ − f_θε G f_εθ, d × d; empty where not asked for. */
   readonly information: Float64Array;
   /** ½ log det(I + σ² D^½ W D^½). */
   readonly halfLogDet: number;
@@ -28,16 +28,16 @@ export interface LaplacePoint extends EffectsMode {
   readonly value: number;
   /** ∂/∂θ, then ∂/∂σ²: d + 1. */
   readonly gradient: Float64Array;
-  /** Expected information on σ² of a Gaussian model with the same W: ½ tr[(D^½ V⁻¹ D^½)²]. */
+  /** Expected information on σ² of a Gaussian model with the same W: ½ tr[(D^½ V⁻¹ D^½)²]; NaN where not asked for. */
   readonly varianceInformation: number;
 }
 
 export interface Laplace {
   readonly dimension: number;
-  /** The mode, found by Newton's method from `effects`. */
-  mode(theta: Float64Array, variance: number, effects: Float64Array): EffectsMode;
+  /** The mode, found by Newton's method from `effects`; without the information unless `informed`, the default. */
+  mode(theta: Float64Array, variance: number, effects: Float64Array, informed?: boolean): EffectsMode;
   /** The mode and the derivatives of the approximation. */
-  at(theta: Float64Array, variance: number, effects: Float64Array): LaplacePoint;
+  at(theta: Float64Array, variance: number, effects: Float64Array, informed?: boolean): LaplacePoint;
 }
 
 /** Largest derivative in z = ε√Δ/σ at a mode. */
@@ -48,6 +48,8 @@ const MODE_TOLERANCE = 1e-9;
  * not the likelihood, would run to infinity.
  */
 const LEAST_PIVOT = 0.1;
+/** Below this σ² a trace over it loses too many digits to be taken from the difference of two others. */
+const SMALL_VARIANCE = 1e-3;
 
 /**
  * Marginal likelihood of the random interval effects ε_t ~ N(0, σ²/Δ_t) by Laplace's approximation (Tierney & Kadane
@@ -75,6 +77,10 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
   const w = new Float64Array(n * n);
   const factor = new Float64Array(n * n);
   const column = new Float64Array(n);
+  // room for what no point keeps, taken once
+  const [trial, mixed] = [new Float64Array(n), new Float64Array(d * n)];
+  const [survival, recapture, thirdSurvival, thirdRecapture] = [0, 1, 2, 3].map(() => new Float64Array(rows));
+  const [inverse, scaled] = [new Float64Array(n * n), new Float64Array(n * n)];
 
   /** −log joint at z with sd. */
   function joint(z: Float64Array, sd: number): number {
@@ -103,7 +109,6 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
   /** Newton's method on z with halving; the joint value at the mode, Infinity where it fails. */
   function findMode(z: Float64Array, sd: number): number {
     let value = joint(z, sd);
-    const trial = new Float64Array(n);
     for (let iteration = 0; iteration < 100; iteration++) {
       let worst = 0;
       for (let t = 0; t < n; t++) {
@@ -140,25 +145,30 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     return sum;
   }
 
-  /** Derivatives of the row gradients along θ_j: of survival rows into `survival`, of recapture rows into `recapture`. */
-  function crossed(j: number, survival: Float64Array, recapture: Float64Array): void {
+  /**
+   * Derivatives of the row gradients along θ_j: of survival rows into `survival`, and if `whole` those of recapture rows into
+   * `recapture`.
+   */
+  function crossed(j: number, whole: boolean): void {
     const { survivalSurvival: ss, survivalRecapture: sp, recaptureRecapture: pp } = rowsOf;
+    const values = columns[j];
     survival.fill(0);
-    recapture.fill(0);
+    if (whole) recapture.fill(0);
     for (let r = 0; r < rows; r++) {
-      const c = columns[j][r];
+      const c = values[r];
       if (c === 0) continue;
-      const block = (r - (r % n)) * n;
       const i = r % n;
       const from = r - i;
-      for (let t = 0; t < n; t++) {
-        survival[from + t] += c * (j < b ? ss[block + i * n + t] : sp[block + t * n + i]);
-        if (a > 0) recapture[from + t] += c * (j < b ? sp[block + i * n + t] : pp[block + i * n + t]);
-      }
+      const row = r * n; // of the block of the stratum, (r − i)n + in
+      if (j < b) for (let t = 0; t < n; t++) survival[from + t] += c * ss[row + t];
+      else for (let t = 0; t < n; t++) survival[from + t] += c * sp[(from + t) * n + i];
+      if (!whole || a === 0) continue;
+      const block = j < b ? sp : pp;
+      for (let t = 0; t < n; t++) recapture[from + t] += c * block[row + t];
     }
   }
 
-  function mode(theta: Float64Array, variance: number, effects: Float64Array): EffectsMode {
+  function mode(theta: Float64Array, variance: number, effects: Float64Array, informed = true): EffectsMode {
     const sd = Math.sqrt(variance);
     fixedSurvival.fill(0);
     logitRecapture.fill(0);
@@ -170,7 +180,7 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     const value = findMode(z, sd);
     const jointGradient = new Float64Array(d);
     const tangents = new Float64Array((d + 1) * n);
-    const information = new Float64Array(d * d);
+    const information = new Float64Array(informed ? d * d : 0);
     const found = {
       theta,
       variance,
@@ -189,19 +199,18 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
       halfLogDet += Math.log(factor[t * n + t]);
     }
 
-    const [survival, recapture] = [new Float64Array(rows), new Float64Array(rows)];
-    const mixed = new Float64Array(d * n); // f_θε
+    mixed.fill(0); // f_θε
     for (let j = 0; j < d; j++) {
       jointGradient[j] = along(j, rowsOf.bySurvival, rowsOf.byRecapture);
-      crossed(j, survival, recapture);
-      for (let i = 0; i <= j; i++) information[i * d + j] = along(i, survival, recapture);
+      crossed(j, informed);
+      if (informed) for (let i = 0; i <= j; i++) information[i * d + j] = along(i, survival, recapture);
       for (let r = 0; r < rows; r++) mixed[j * n + (r % n)] += survival[r];
       // dε̂/dθ_j = −G f_εθj
       for (let t = 0; t < n; t++) column[t] = root[t] * mixed[j * n + t];
       choleskySolve(factor, n, column);
       for (let t = 0; t < n; t++) tangents[j * n + t] = -variance * root[t] * column[t];
     }
-    for (let i = 0; i < d; i++)
+    for (let i = 0; i < d && informed; i++)
       for (let j = i; j < d; j++) {
         for (let t = 0; t < n; t++) information[i * d + j] += mixed[i * n + t] * tangents[j * n + t];
         information[j * d + i] = information[i * d + j];
@@ -213,29 +222,40 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     return { ...found, joint: value, halfLogDet };
   }
 
-  function at(theta: Float64Array, variance: number, effects: Float64Array): LaplacePoint {
-    const found = mode(theta, variance, effects);
+  function at(theta: Float64Array, variance: number, effects: Float64Array, informed = true): LaplacePoint {
+    const found = mode(theta, variance, effects, informed);
     const total = new Float64Array(d + 1);
     if (found.joint === Number.POSITIVE_INFINITY)
       return { ...found, value: Number.POSITIVE_INFINITY, gradient: total, varianceInformation: 0 };
     const { tangents } = found;
     const sd = Math.sqrt(variance);
     // Φ_row = Σ_k ½ D³f[u_k, u_k, ·], u_k the columns of σ D^½ L⁻ᵀ, since G = Σ u_k u_kᵀ
-    const [bySurvival, byRecapture] = [new Float64Array(rows), new Float64Array(rows)];
+    thirdSurvival.fill(0);
+    thirdRecapture.fill(0);
     if (variance > 0) {
-      const inverse = inverseLower(factor, n);
+      inverseLower(factor, n, inverse);
       for (let k = 0; k < n; k++) {
         for (let t = 0; t < n; t++) column[t] = sd * root[t] * inverse[k * n + t];
-        rowsOf.addThird(column, bySurvival, byRecapture);
+        rowsOf.addThird(column, thirdSurvival, thirdRecapture);
       }
     }
-    for (let j = 0; j < d; j++) total[j] = found.jointGradient[j] + along(j, bySurvival, byRecapture);
+    for (let j = 0; j < d; j++) total[j] = found.jointGradient[j] + along(j, thirdSurvival, thirdRecapture);
     for (let j = 0; j <= d; j++)
-      for (let r = 0; r < rows; r++) total[j] += tangents[j * n + (r % n)] * bySurvival[r];
-    // explicit derivatives in σ²: −½ Σ a²/Δ + ½ tr P, P = B D^½ W D^½ taken column by column
-    const scaled = new Float64Array(n * n);
+      for (let r = 0; r < rows; r++) total[j] += tangents[j * n + (r % n)] * thirdSurvival[r];
+    // explicit derivatives in σ²: −½ Σ a²/Δ + ½ tr P, P = B D^½ W D^½ = (I − B)/σ²
+    for (let t = 0; t < n; t++) total[d] -= 0.5 * (root[t] * gradient[t]) ** 2;
+    if (!informed && variance > SMALL_VARIANCE) {
+      let traceB = 0;
+      for (let i = 0; i < n * n; i++) traceB += inverse[i] * inverse[i];
+      total[d] += (0.5 * (n - traceB)) / variance;
+      return {
+        ...found,
+        value: found.joint + found.halfLogDet,
+        gradient: total,
+        varianceInformation: Number.NaN,
+      };
+    }
     for (let j = 0; j < n; j++) {
-      total[d] -= 0.5 * (root[j] * gradient[j]) ** 2;
       for (let t = 0; t < n; t++) column[t] = root[t] * root[j] * w[t * n + j];
       choleskySolve(factor, n, column);
       scaled.set(column, j * n);

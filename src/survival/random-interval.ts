@@ -113,7 +113,8 @@ export function fitRandomInterval(
     fixedVariance: true,
   });
   const d = laplace.dimension;
-  const covariance = inverse(held.point.information, d);
+  const { theta, effects } = held.point;
+  const covariance = inverse(laplace.mode(theta, variance, effects).information, d);
   const df = model.intervals - model.spent;
   const t = df > 0 ? tQuantile(0.975, df) : Number.NaN;
   return {

@@ -48,8 +48,13 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
   const byRecapture = new Float64Array(rows);
   const [ss, sp, pp] = [0, 1, 2].map(() => new Float64Array(rows * n));
   const [chi1, chi2] = [new Float64Array(n + 1), new Float64Array(n + 1)];
+  const [slope0, slope1, slope2, phi1, phi2, a0, unseen] = [0, 1, 2, 3, 4, 5, 6].map(
+    () => new Float64Array(rows),
+  );
+  let prepared = false;
 
   function at(logitSurvival: Float64Array, logitRecapture: Float64Array): number {
+    prepared = false;
     let logLikelihood = 0;
     for (let g = 0; g < design.strata; g++) {
       const { alive, seen, passed, lastSeen } = data[g];
@@ -139,40 +144,51 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
     }
   }
 
+  /** What all directions share at a point: derivatives of φ_t and of the slope σ_t along logit s_t, and 1/χ_t. */
+  function prepareThird(): void {
+    for (let r = 0; r < rows; r++) {
+      const t = r % n;
+      const g = (r - t) / n;
+      const slope = design.lengths[t] * s1[r];
+      slope0[r] = slope;
+      slope1[r] = -slope * s[r];
+      slope2[r] = 0.5 * slope * s[r] * (s[r] - s1[r]);
+      phi1[r] = phi[r] * slope;
+      phi2[r] = 0.5 * phi1[r] * (slope - s[r]);
+      a0[r] = 1 - q[r] * chi[g * (n + 1) + t + 1];
+      unseen[r] = data[g].lastSeen[t] > 0 ? 1 / chi[g * (n + 1) + t] : 0;
+    }
+    prepared = true;
+  }
+
   function addThird(u: Float64Array, thirdSurvival: Float64Array, thirdRecapture: Float64Array): void {
+    if (!prepared) prepareThird();
     for (let g = 0; g < design.strata; g++) {
       const { alive, lastSeen } = data[g];
-      const from = g * (n + 1);
       chi1[n] = 0;
       chi2[n] = 0;
       // χ_t = 1 − φ_t a_t with a_t = 1 − q_t χ_{t+1}; only φ and what follows from it move along u
       for (let t = n - 1; t >= 0; t--) {
         const r = g * n + t;
-        const a0 = 1 - q[r] * chi[from + t + 1];
         const a1 = -q[r] * chi1[t + 1];
         const a2 = -q[r] * chi2[t + 1];
-        const slope = design.lengths[t] * s1[r];
-        const phi1 = phi[r] * slope * u[t];
-        const phi2 = 0.5 * phi1 * u[t] * (slope - s[r]);
-        chi1[t] = -(phi1 * a0 + phi[r] * a1);
-        chi2[t] = -(phi2 * a0 + phi1 * a1 + phi[r] * a2);
+        const [f1, f2] = [phi1[r] * u[t], phi2[r] * u[t] * u[t]];
+        chi1[t] = -(f1 * a0[r] + phi[r] * a1);
+        chi2[t] = -(f2 * a0[r] + f1 * a1 + phi[r] * a2);
       }
       let [carried0, carried1, carried2] = [0, 0, 0];
       for (let t = 0; t < n; t++) {
         const r = g * n + t;
-        const next = chi[from + t + 1];
-        const a0 = 1 - q[r] * next;
         const a1 = -q[r] * chi1[t + 1];
         const a2 = -q[r] * chi2[t + 1];
-        const slope0 = design.lengths[t] * s1[r];
-        const slope1 = -slope0 * s[r] * u[t];
-        const slope2 = -0.5 * slope1 * u[t] * (s[r] - s1[r]);
-        const phi1 = phi[r] * slope0 * u[t];
-        const phi2 = 0.5 * phi1 * u[t] * (slope0 - s[r]);
+        const d1 = slope1[r] * u[t];
+        const d2 = slope2[r] * u[t] * u[t];
+        const f1 = phi1[r] * u[t];
+        const f2 = phi2[r] * u[t] * u[t];
         // v = U/χ + what comes from earlier intervals
         let [v0, v1, v2] = [carried0, carried1, carried2];
         if (lastSeen[t] > 0) {
-          const r0 = 1 / chi[from + t];
+          const r0 = unseen[r];
           const r1 = -chi1[t] * r0 * r0;
           const r2 = -(chi1[t] * r1 + chi2[t] * r0) * r0;
           v0 += lastSeen[t] * r0;
@@ -180,17 +196,19 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
           v2 += lastSeen[t] * r2;
         }
         const y0 = v0 * phi[r];
-        const y1 = v0 * phi1 + v1 * phi[r];
-        const y2 = v0 * phi2 + v1 * phi1 + v2 * phi[r];
+        const y1 = v0 * f1 + v1 * phi[r];
+        const y2 = v0 * f2 + v1 * f1 + v2 * phi[r];
         carried0 = y0 * q[r];
         carried1 = y1 * q[r];
         carried2 = y2 * q[r];
-        const m0 = slope0 * a0;
-        const m1 = slope0 * a1 + slope1 * a0;
-        const m2 = slope0 * a2 + slope1 * a1 + slope2 * a0;
+        const m0 = slope0[r] * a0[r];
+        const m1 = slope0[r] * a1 + d1 * a0[r];
+        const m2 = slope0[r] * a2 + d1 * a1 + d2 * a0[r];
         // signs: ∂log L/∂η = A·slope − v φ slope a, ∂log L/∂ζ = … − v φ χ p q, and f = −log L
-        thirdSurvival[r] += y0 * m2 + y1 * m1 + y2 * m0 - alive[t] * slope2;
-        thirdRecapture[r] += (y0 * chi2[t + 1] + y1 * chi1[t + 1] + y2 * next) * p[r] * q[r];
+        thirdSurvival[r] += y0 * m2 + y1 * m1 + y2 * m0 - alive[t] * d2;
+        if (known === undefined)
+          thirdRecapture[r] +=
+            (y0 * chi2[t + 1] + y1 * chi1[t + 1] + y2 * chi[g * (n + 1) + t + 1]) * p[r] * q[r];
       }
     }
   }

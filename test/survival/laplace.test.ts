@@ -145,6 +145,13 @@ describe("Laplace's approximation", () => {
           const theta = normals(laplace.dimension, seed + 50).map((z) => 0.4 * z);
           const none = new Float64Array(n);
           const here = laplace.at(theta, variance, none);
+          // what a search asks for is the same point without the information
+          const lean = laplace.at(theta, variance, none, false);
+          expect(lean.value).toBe(here.value);
+          for (let k = 0; k <= theta.length; k++)
+            expect(Math.abs(lean.gradient[k] - here.gradient[k])).toBeLessThan(
+              1e-9 * (1 + Math.abs(here.gradient[k])),
+            );
           const value = (k: number, step: number) => {
             const moved = Float64Array.from(theta);
             if (k < theta.length) moved[k] += step;
