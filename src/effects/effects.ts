@@ -12,6 +12,8 @@ export interface FileIdentity {
   readonly path: string;
   readonly bytes: number;
   readonly sha256: string;
+  /** Of a file at an address, of which only parts were read: what the server marks its version by. */
+  readonly version?: string;
 }
 
 /** Input files, all below the pipeline's data folder; paths are relative to it and use `/`. */

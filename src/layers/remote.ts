@@ -40,6 +40,15 @@ export async function layerPaths(options: LayerOptions, files: Files): Promise<r
       found: `the address ${JSON.stringify(addresses[0])}`,
       remedy: "write network: allow under the layer, or download the file first",
     });
+  const { quality } = options;
+  const graded = quality === undefined ? undefined : [...addresses, ...(quality.files ?? [])].find(isAddress);
+  if (graded !== undefined)
+    throw new InputError({
+      name: "layers.quality-address",
+      expected: "a layer with quality numbers to lie below the data folder",
+      found: `the address ${JSON.stringify(graded)}`,
+      remedy: "download values and quality first; their pixels are read one beside the other",
+    });
   const local = options.files.filter((one) => !isAddress(one));
   return [...(local.length === 0 ? [] : await files.list(local)), ...addresses.sort()];
 }

@@ -1,5 +1,6 @@
-import type { FileIdentity, Files } from "../effects/effects.ts";
+import type { FileIdentity, Files, Remote } from "../effects/effects.ts";
 import { changedWhileRead } from "./effects/files.ts";
+import { changedAtAddress } from "./effects/remote.ts";
 
 /** Files as they are, remembering which ones were used. */
 export interface RecordingFiles {
@@ -8,13 +9,18 @@ export interface RecordingFiles {
   identities(): Promise<readonly FileIdentity[]>;
 }
 
+/** Stands for the hash of a file at an address: only the parts that places need are fetched. */
+const IN_PARTS = "not known: read in parts";
+
 /**
  * Every file whose content, path or identity was handed out counts as an input of the run. `stampOf` tells cheaply whether
  * a file was written to (size, time of change): a file that is not at the end what it was when it was first used would
- * make the record untrue. Throws `files.changed` (MachineError) then.
+ * make the record untrue. Throws `files.changed` (MachineError) then. Files at addresses are recorded by size and by the
+ * version their server names; `network.changed` (MachineError) where that changes within the run.
  */
 export function recording(files: Files, stampOf: (absolute: string) => string): RecordingFiles {
   const used = new Map<string, string>();
+  const fetched = new Map<string, FileIdentity>();
   // What stands on a server has no stamp.
   const stamp = (path: string) =>
     /^[a-z][a-z0-9+.-]+:\/\//i.test(path) ? "" : stampOf(files.absolute(path));
@@ -30,16 +36,30 @@ export function recording(files: Files, stampOf: (absolute: string) => string): 
       open: (path) => files.open(note(path)),
       absolute: (path) => files.absolute(note(path)),
       identity: (path) => files.identity(note(path)),
-      ...(files.remote === undefined ? {} : { remote: files.remote }),
+      ...(files.remote === undefined ? {} : { remote: watched(files.remote, fetched) }),
     },
     identities: async () => {
       const sorted = [...used].sort(([a], [b]) => (a < b ? -1 : 1));
-      const out: FileIdentity[] = [];
+      const out: FileIdentity[] = [...fetched.values()];
       for (const [path, first] of sorted) {
         out.push(await files.identity(path));
         if (stamp(path) !== first) throw changedWhileRead(path);
       }
-      return out;
+      return out.sort((a, b) => (a.path < b.path ? -1 : 1));
+    },
+  };
+}
+
+/** Addresses, remembering which were read and in which version. */
+function watched(remote: Remote, fetched: Map<string, FileIdentity>): Remote {
+  return {
+    range: async (address, from, length) => {
+      const got = await remote.range(address, from, length);
+      const { size, version } = got;
+      const known = fetched.get(address);
+      if (known !== undefined && known.version !== version) throw changedAtAddress(address);
+      fetched.set(address, { path: address, bytes: size, sha256: IN_PARTS, version });
+      return got;
     },
   };
 }

@@ -42,13 +42,17 @@ export function runRecord(facts: RecordFacts): Uint8Array {
     node: facts.nodeMajor,
     seed: facts.seed,
     pipeline: facts.pipeline,
-    inputs: [...facts.inputs].sort(byPath).map(({ path, bytes, sha256 }) => ({ path, bytes, sha256 })),
+    inputs: [...facts.inputs].sort(byPath).map(identityOf),
     outputs: [...facts.outputs]
       .filter(([path]) => path !== RECORD_FILE)
       .map(([path, bytes]) => ({ path, bytes: bytes.length, sha256: sha256(bytes) }))
       .sort(byPath),
   };
   return jsonBytes(record);
+}
+
+function identityOf({ path, bytes, sha256, version }: FileIdentity): FileIdentity {
+  return { path, bytes, sha256, ...(version === undefined ? {} : { version }) };
 }
 
 /** The files with their record added. */

@@ -6,6 +6,7 @@ import { extractLayers } from "../../src/layers/extract.ts";
 import type { LayerOptions } from "../../src/layers/options.ts";
 import { planLayers } from "../../src/layers/plan.ts";
 import { nodeRemote } from "../../src/pipeline/effects/remote.ts";
+import { recording } from "../../src/pipeline/inputs.ts";
 import { effectsOf, madeTiff } from "./effects.ts";
 
 const TILE = 64 * 64 * 4;
@@ -140,6 +141,39 @@ describe("a GeoTIFF at an address, read from a server of our own", () => {
       response.end(part);
     });
     expect(await nameOf(read(address))).toBe("network.changed");
+  });
+  test("NetCDF files and quality numbers at addresses are refused by name", async () => {
+    const sent = { bytes: 0, requests: 0 };
+    const address = await serve(ranges(new TextEncoder().encode(`CDF\x01${"-".repeat(60)}`), sent));
+    await expect(read(address)).rejects.toMatchObject({ facts: { name: "layers.netcdf-address" } });
+    const files = { ...effectsOf({}).files, remote: nodeRemote };
+    await expect(planLayers("green", optionsOf(address), files)).rejects.toMatchObject({
+      facts: { name: "layers.netcdf-address" },
+    });
+    const asked = sent.requests;
+    const refused = { facts: { name: "layers.quality-address", found: `the address "${address}"` } };
+    await expect(read(address, { quality: { pass: [{ values: [0] }] } })).rejects.toMatchObject(refused);
+    const own = { files: ["green_2001_05.tif"], quality: { files: [address], pass: [{ values: [0] }] } };
+    await expect(read(address, own)).rejects.toMatchObject(refused);
+    expect(sent.requests).toBe(asked);
+  });
+  test("a run remembers address, size and version, and refuses a second version", async () => {
+    const versions = ['"a"', '"a"', '"b"'];
+    const address = await serve((request, response) => {
+      const [, from, to] = /bytes=(\d+)-(\d+)/.exec(request.headers.range ?? "") ?? [];
+      const part = TIF.subarray(Number(from), Number(to) + 1);
+      const range = `bytes ${from}-${to}/${TIF.length}`;
+      response.writeHead(206, { "content-range": range, etag: versions.shift() }).end(part);
+    });
+    const { files, identities } = recording({ ...effectsOf({}).files, remote: nodeRemote }, () => "");
+    await files.remote?.range(address, 0, 100);
+    await files.remote?.range(address, 100, 100);
+    expect(await identities()).toEqual([
+      { path: address, bytes: TIF.length, sha256: "not known: read in parts", version: `${TIF.length} "a"` },
+    ]);
+    await expect(files.remote?.range(address, 0, 100)).rejects.toMatchObject({
+      facts: { name: "network.changed" },
+    });
   });
   test("a file that is cut off is an error", async () => {
     const cut = TIF.subarray(0, TIF.length - 15 * TILE);

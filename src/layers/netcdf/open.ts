@@ -1,5 +1,6 @@
 import type { RandomAccess } from "../../effects/effects.ts";
 import { InputError } from "../../errors.ts";
+import { isRemote } from "../remote.ts";
 import { openClassic } from "./classic.ts";
 import type { Dataset } from "./dataset.ts";
 import { openHdf5 } from "./hdf5.ts";
@@ -13,8 +14,16 @@ export function isNetcdf(file: RandomAccess): boolean {
   return head.startsWith("CDF") || head === HDF5;
 }
 
-/** Opens a NetCDF file of either format. Throws `layers.not-netcdf` and `layers.broken-file`. */
+/** Opens a NetCDF file of either format. Throws `layers.not-netcdf`, `layers.netcdf-address` and `layers.broken-file`. */
 export async function openNetcdf(file: RandomAccess): Promise<Dataset> {
+  if (isRemote(file))
+    throw new InputError({
+      name: "layers.netcdf-address",
+      expected: "a NetCDF file below the data folder; of files at addresses, GeoTIFF is read",
+      found: "a NetCDF file at an address",
+      where: { file: file.path },
+      remedy: "download it into the data folder, or use a cloud-optimised GeoTIFF",
+    });
   if (!isNetcdf(file))
     throw new InputError({
       name: "layers.not-netcdf",

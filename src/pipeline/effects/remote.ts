@@ -43,6 +43,17 @@ export const nodeRemote: Remote = {
   },
 };
 
+/** The error of a file that is another one in the middle of a run. */
+export function changedAtAddress(address: string): MachineError {
+  return new MachineError({
+    name: "network.changed",
+    expected: "the file at the address to stay as it is while it is read",
+    found: "another version of it",
+    where: { file: address },
+    remedy: "run the same command again",
+  });
+}
+
 function pause(milliseconds: number): Promise<void> {
   return new Promise((resolve) => setTimeout(resolve, milliseconds));
 }
