@@ -65,6 +65,8 @@ interface FrameBlock {
 export interface Frame {
   /** The frame says neither how long its content is nor has it a checksum, so it can be cut after any block. */
   readonly cuttable: boolean;
+  /** Place of the byte that says how far back matches may reach; undefined where the frame is one segment. */
+  readonly window: number | undefined;
   readonly blocks: readonly FrameBlock[];
   readonly end: number;
 }
@@ -100,7 +102,7 @@ export function walkFrame(packed: Uint8Array, path: string): Frame {
   }
   if (checksum) at += 4;
   if (at > packed.length) throw broken();
-  return { cuttable: sizeBytes === 0 && !checksum, blocks, end: at };
+  return { cuttable: sizeBytes === 0 && !checksum, window: single ? undefined : 5, blocks, end: at };
 }
 
 /**
@@ -119,13 +121,26 @@ export function unpackZstandard(packed: Uint8Array, need: number, most: number, 
     });
     if (enough >= 0 && enough < frame.blocks.length - 1) {
       const { at, end } = frame.blocks[enough];
-      const cut = packed.slice(0, end);
+      const cut = narrowed(packed.slice(0, end), frame, most);
       cut[at] |= 1; // now the last block
       const bytes = run(decode, cut, frame.blocks.slice(0, enough + 1), most, path);
       if (bytes.length >= need) return bytes;
     }
   }
-  return run(decode, packed.subarray(0, frame.end), frame.blocks, most, path);
+  return run(decode, narrowed(packed.slice(0, frame.end), frame, most), frame.blocks, most, path);
+}
+
+/**
+ * Writers that stream announce a window of megabytes, which decoders allocate for every frame; no match can reach
+ * further back than the content is long. Window_Size = 2^(10 + (byte >> 3)) for a mantissa of 0 (RFC 8878 §3.1.1.1.2).
+ */
+function narrowed(frame: Uint8Array, { window }: Frame, most: number): Uint8Array {
+  if (window === undefined) return frame;
+  // Blocks may be as long as the window at most, and ours may be of the full length.
+  const exponent = Math.max(17, Math.ceil(Math.log2(most)));
+  const own = (exponent - 10) << 3;
+  if (own < frame[window]) frame[window] = own;
+  return frame;
 }
 
 function run(best: Decode, frame: Uint8Array, blocks: readonly FrameBlock[], most: number, path: string) {
