@@ -38,12 +38,11 @@ export const HOST_LITTLE = new Uint8Array(Uint16Array.of(1).buffer)[0] === 1;
 
 /** Turns the byte order of every value of `size` bytes, in place. */
 export function swapBytes(bytes: Uint8Array, size: number): void {
-  for (let at = 0; at + size <= bytes.length; at += size)
-    for (let i = 0, j = size - 1; i < j; i++, j--) {
-      const held = bytes[at + i];
-      bytes[at + i] = bytes[at + j];
-      bytes[at + j] = held;
-    }
+  const whole = bytes.length - (bytes.length % size);
+  const view = Buffer.from(bytes.buffer, bytes.byteOffset, whole);
+  if (size === 2) view.swap16();
+  else if (size === 4) view.swap32();
+  else if (size === 8) view.swap64();
 }
 
 /** Bytes in the host's order as samples; copies only where the bytes do not lie on a boundary. */

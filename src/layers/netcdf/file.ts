@@ -9,7 +9,7 @@ import { type CellMethods, kindFinding } from "./cell-methods.ts";
 import { type Dataset, textOf } from "./dataset.ts";
 import { type ActiveImages, gatherNetcdf } from "./gather.ts";
 import { describeNetcdf, type NetcdfLayer, netcdfSystem } from "./layer.ts";
-import { unpacker } from "./packing.ts";
+import { tabled, unpacker } from "./packing.ts";
 import { timePeriods } from "./periods.ts";
 import type { Box } from "./walk.ts";
 
@@ -84,5 +84,7 @@ export function readStack(
   quality: ((image: number) => PixelTest) | undefined,
 ) {
   const bands = periods.map((one) => one.band);
-  return gatherNetcdf(layer, unpacker(layer.variable, options), bands, boxes, footprints, active, quality);
+  const cells = footprints.reduce((sum, one) => sum + one.columns.length, 0);
+  const unpack = tabled(unpacker(layer.variable, options), layer.variable.type, cells * bands.length);
+  return gatherNetcdf(layer, unpack, bands, boxes, footprints, active, quality);
 }

@@ -1,7 +1,14 @@
 import type { RandomAccess } from "../../effects/effects.ts";
 import { InputError } from "../../errors.ts";
 import { fromHalf, type Samples } from "../samples.ts";
-import { type Attribute, brokenNetcdf, type Dataset, type NcType, type NcVariable } from "./dataset.ts";
+import { brokenNetcdf, type Dataset, type NcType, type NcVariable } from "./dataset.ts";
+import {
+  type AttributeValues,
+  attributesOf,
+  attributeValues,
+  type Hdf5Entity,
+  numeric,
+} from "./hdf5-attributes.ts";
 
 /** What is used of the library; its own types leave out what the file system needs. */
 interface Library {
@@ -32,17 +39,6 @@ interface Hdf5Module {
   get_attached_scales(file: bigint, path: string, index: number): string[];
 }
 
-interface Hdf5Attribute {
-  readonly dtype: unknown;
-  readonly value: unknown;
-}
-
-interface Hdf5Entity {
-  readonly file_id: bigint;
-  readonly path: string;
-  readonly attrs: Readonly<Record<string, Hdf5Attribute>>;
-}
-
 interface Hdf5Group extends Hdf5Entity {
   keys(): string[];
   get(name: string): Hdf5Entity | null;
@@ -63,9 +59,6 @@ interface Hdf5Dataset extends Hdf5Entity {
   slice(ranges: readonly (readonly [number, number])[]): unknown;
 }
 
-/** Housekeeping of NetCDF-4 within HDF5, of no meaning to a reader. */
-const HIDDEN =
-  /^(CLASS|NAME|DIMENSION_LIST|REFERENCE_LIST|_Netcdf4Dimid|_Netcdf4Coordinates|_NCProperties|_nc3_strict)$/;
 const NO_VARIABLE = "This is a netCDF dimension but not a netCDF variable";
 /** Filters that the library has built in: deflate, shuffle, Fletcher-32, szip, nbit, scale-offset. */
 const KNOWN_FILTERS = new Set([1, 2, 3, 5, 6]);
@@ -118,14 +111,15 @@ export async function openHdf5(file: RandomAccess): Promise<Dataset> {
   const attributes = guarded(() => {
     const found = datasetsIn(root, "");
     const scales = dimensionNames(found);
-    for (const [path, dataset] of found) {
-      if (isBareDimension(dataset)) continue;
-      const variable = describe(path, dataset, scales, module);
+    for (const { path, dataset, values } of found) {
+      if (isBareDimension(values)) continue;
+      const variable = describe(path, dataset, values, scales, module);
       variables.set(variable.name, variable);
       datasets.set(variable, dataset);
     }
-    return attributesOf(root);
+    return attributesOf(attributeValues(root));
   });
+  const checked = new Set<Hdf5Dataset>();
   const datasetOf = (variable: NcVariable) => {
     const dataset = datasets.get(variable);
     if (dataset === undefined) throw new Error(`${variable.name} is of another file`);
@@ -138,7 +132,8 @@ export async function openHdf5(file: RandomAccess): Promise<Dataset> {
     attributes,
     read: (variable, start, count) => {
       const dataset = datasetOf(variable);
-      refuseUnknown(dataset, variable.name, file.path);
+      if (!checked.has(dataset)) refuseUnknown(dataset, variable.name, file.path);
+      checked.add(dataset);
       if (count.some((one) => one === 0)) return new Float64Array(0);
       const read = () =>
         count.length === 0
@@ -220,26 +215,32 @@ function isDataset(entity: Hdf5Entity | null): entity is Hdf5Dataset {
   return entity !== null && "metadata" in entity && "slice" in entity;
 }
 
+interface Found {
+  readonly path: string;
+  readonly dataset: Hdf5Dataset;
+  readonly values: AttributeValues;
+}
+
 /** All datasets by path, groups gone through; links to other files are left alone. */
-function datasetsIn(group: Hdf5Group, prefix: string): [string, Hdf5Dataset][] {
-  return group.keys().flatMap((key): [string, Hdf5Dataset][] => {
+function datasetsIn(group: Hdf5Group, prefix: string): readonly Found[] {
+  return group.keys().flatMap((key): readonly Found[] => {
     const entity = group.get(key);
-    if (isDataset(entity)) return [[prefix + key, entity]];
+    if (isDataset(entity)) return [{ path: prefix + key, dataset: entity, values: attributeValues(entity) }];
     return entity !== null && "keys" in entity ? datasetsIn(entity as Hdf5Group, `${prefix}${key}/`) : [];
   });
 }
 
-function isBareDimension(dataset: Hdf5Dataset): boolean {
-  const name = dataset.attrs.NAME?.value;
+function isBareDimension(values: AttributeValues): boolean {
+  const name = values.get("NAME");
   return typeof name === "string" && name.startsWith(NO_VARIABLE);
 }
 
 /** Paths of dimension scales by the number NetCDF-4 gives them. */
-function dimensionNames(found: readonly (readonly [string, Hdf5Dataset])[]): ReadonlyMap<number, string> {
+function dimensionNames(found: readonly Found[]): ReadonlyMap<number, string> {
   return new Map(
-    found.flatMap(([path, { attrs }]) => {
-      const id = numeric(attrs._Netcdf4Dimid?.value)?.[0];
-      return id === undefined || attrs.CLASS === undefined ? [] : [[id, plainName(path)] as const];
+    found.flatMap(({ path, values }) => {
+      const id = numeric(values.get("_Netcdf4Dimid"))?.[0];
+      return id === undefined || !values.names.includes("CLASS") ? [] : [[id, plainName(path)] as const];
     }),
   );
 }
@@ -252,16 +253,17 @@ function plainName(path: string): string {
 function describe(
   path: string,
   dataset: Hdf5Dataset,
+  values: AttributeValues,
   scales: ReadonlyMap<number, string>,
   module: Hdf5Module,
 ): NcVariable {
-  const { metadata, attrs } = dataset;
+  const { metadata } = dataset;
   const shape = metadata.shape ?? [];
-  const ids = numeric(attrs._Netcdf4Coordinates?.value);
+  const ids = numeric(values.get("_Netcdf4Coordinates"));
   const dimension = (d: number): string => {
     const known = ids === undefined ? undefined : scales.get(ids[d]);
     if (known !== undefined) return known;
-    if (shape.length === 1 && attrs.CLASS?.value === "DIMENSION_SCALE") return plainName(path);
+    if (shape.length === 1 && values.get("CLASS") === "DIMENSION_SCALE") return plainName(path);
     const [scale] = module.get_attached_scales(dataset.file_id, dataset.path, d);
     return scale === undefined ? `unnamed ${d + 1} of ${path}` : plainName(scale);
   };
@@ -270,7 +272,7 @@ function describe(
     dimensions: shape.map((_, d) => dimension(d)),
     shape,
     type: typeOf(metadata),
-    attributes: attributesOf(dataset),
+    attributes: attributesOf(values),
     chunks: metadata.chunks ?? undefined,
     compression: dataset.filters.map((one) => one.name).join(" + ") || "none",
   };
@@ -295,45 +297,6 @@ function typeOf({ type, size, signed }: Hdf5Dataset["metadata"]): NcType {
     default:
       return "other";
   }
-}
-
-function attributesOf({ attrs }: Hdf5Entity): ReadonlyMap<string, Attribute> {
-  const out = new Map<string, Attribute>();
-  for (const [name, attribute] of Object.entries(attrs)) {
-    if (HIDDEN.test(name)) continue;
-    const { value } = attribute;
-    const numbers = numeric(value);
-    if (numbers !== undefined) out.set(name, { type: arrayType(value), numbers });
-    else if (typeof value === "string") out.set(name, value);
-    else if (Array.isArray(value) && value.every((one) => typeof one === "string"))
-      out.set(name, value.join(" "));
-  }
-  return out;
-}
-
-const ARRAY_TYPES: readonly (readonly [new (length: number) => object, NcType])[] = [
-  [Int8Array, "int8"],
-  [Uint8Array, "uint8"],
-  [Int16Array, "int16"],
-  [Uint16Array, "uint16"],
-  [Int32Array, "int32"],
-  [Uint32Array, "uint32"],
-  [BigInt64Array, "int64"],
-  [BigUint64Array, "uint64"],
-  [Float32Array, "float32"],
-  [Float64Array, "float64"],
-];
-
-function arrayType(value: unknown): NcType {
-  const known = ARRAY_TYPES.find(([Type]) => value instanceof Type)?.[1];
-  return known ?? (typeof value === "bigint" ? "int64" : "float64");
-}
-
-/** Numbers of an attribute: the library gives a number, a bigint or a typed array (of bigints for 64-bit integers). */
-function numeric(value: unknown): readonly number[] | undefined {
-  if (typeof value === "number" || typeof value === "bigint") return [Number(value)];
-  if (!ArrayBuffer.isView(value) || value instanceof DataView) return undefined;
-  return Array.from(value as unknown as ArrayLike<number | bigint>, Number);
 }
 
 function refuseUnknown({ filters }: Hdf5Dataset, name: string, path: string): void {

@@ -108,14 +108,30 @@ export function unpacker(
   const missing = [...packing.missing, ...fill];
   const [a = Number.NaN, b = Number.NaN] = missing;
   const more = missing.slice(2);
+  const longer = more.length > 0;
   const [rawLeast, rawGreatest] = packing.raw;
   const least = Math.max(packing.unpacked[0], options.valid?.[0] ?? Number.NEGATIVE_INFINITY);
   const greatest = Math.min(packing.unpacked[1], options.valid?.[1] ?? Number.POSITIVE_INFINITY);
   return (sample) => {
     const raw = sample < 0 && wrap > 0 ? sample + wrap : sample;
-    if (raw === a || raw === b || raw < rawLeast || raw > rawGreatest || more.includes(raw))
+    if (raw === a || raw === b || raw < rawLeast || raw > rawGreatest || (longer && more.includes(raw)))
       return Number.NaN;
     const value = raw * scale + offset;
     return value >= least && value <= greatest && Number.isFinite(value) ? value : Number.NaN;
   };
+}
+
+/** Numbers of samples from which on a table pays. */
+const MANY = 2 ** 20;
+
+/** The same rule for many samples of 8 or 16 bits: the value of each possible sample is worked out once. */
+export function tabled(unpack: Unpack, type: NcType, samples: number): Unpack {
+  const bits = type === "int8" || type === "uint8" ? 8 : type === "int16" || type === "uint16" ? 16 : 0;
+  if (bits === 0 || samples < MANY) return unpack;
+  const mask = 2 ** bits - 1;
+  const signed = type === "int8" || type === "int16";
+  const values = Float64Array.from({ length: mask + 1 }, (_, i) =>
+    unpack(signed && i > mask >> 1 ? i - mask - 1 : i),
+  );
+  return (sample) => values[sample & mask];
 }
