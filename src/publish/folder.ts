@@ -103,11 +103,11 @@ function publish(disk: Disk, names: Names, lock: Lock, files: FileSet, check: ()
     disk.syncFolder(names.next);
     check();
     lock.check();
+    writeJournal(disk, names, "swapping");
   } catch (error) {
     undoQuietly(disk, names);
     throw error;
   }
-  writeJournal(disk, names, "swapping");
   finish(disk, names);
 }
 

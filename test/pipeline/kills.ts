@@ -6,7 +6,21 @@ import { randomStream } from "../../src/math/random.ts";
 import { nodeDisk } from "../../src/pipeline/effects.ts";
 import { openOutput, recoverOutput } from "../../src/publish/folder.ts";
 import { verifyOutput } from "../../src/publish/verify.ts";
-import { bytesBelow, covey, pipelineIn, temporaryFolder } from "./covey.ts";
+import { bytesBelow, covey, type Edit, pipelineIn, temporaryFolder } from "./covey.ts";
+
+/** A pipeline to be killed, and what of it is made cheaper first. */
+export interface Victim {
+  readonly pipeline: string;
+  readonly edits: readonly Edit[];
+}
+
+/** The dipper study without permutations: whole runs, but short ones. */
+export const DIPPER: Victim = {
+  pipeline: "test/cases/dipper/pipeline.yaml",
+  edits: [[/permutations: \d+/, "permutations: 0"]],
+};
+/** The demo as it is shipped. */
+export const DEMO: Victim = { pipeline: "pipelines/roost.yaml", edits: [] };
 
 /** What killing a run again and again came to. */
 export interface Killed {
@@ -20,20 +34,17 @@ export interface Killed {
 }
 
 /**
- * Runs the dipper case once with each of two titles, then kills runs of one over the output of the other with SIGKILL,
+ * Runs the victim once with each of two titles, then kills runs of one over the output of the other with SIGKILL,
  * at a moment drawn from the time a whole run takes or, every other time, from the last part of it, in which files are
  * written. After each kill the next command's recovery must leave exactly one of the two outputs, in agreement with its
  * record and with nothing beside it.
  */
-export async function killRuns(times: number, seed: number): Promise<Killed> {
+export async function killRuns(times: number, seed: number, victim: Victim): Promise<Killed> {
   const folder = temporaryFolder();
   const out = join(folder.path, "out");
   const texts = ["before", "after"].map((title) => {
-    const edits = [
-      [/permutations: \d+/, "permutations: 0"],
-      [/title: "[^"]*"/, `title: "Dippers ${title}"`],
-    ] as const;
-    return pipelineIn(folder.path, "test/cases/dipper/pipeline.yaml", edits, `${title}.yaml`);
+    const titled: Edit = [/title: ("[^"]*"|[^,}\n]*)/, `title: "The one ${title}"`];
+    return pipelineIn(folder.path, victim.pipeline, [...victim.edits, titled], `${title}.yaml`);
   });
   const random = randomStream(seed, "kills", 0);
   const tally = { hit: 0, old: 0, fresh: 0, leftovers: 0 };
