@@ -3,11 +3,13 @@ import { InputError } from "../errors.ts";
 import { compileStamp } from "./dates.ts";
 import { checkColumn, type Dialect, joinedHeader } from "./dialect.ts";
 import type { TableOptions } from "./options.ts";
+import { checkZipSize } from "./unpacked-size.ts";
 
 /**
  * The cells of one sheet of an Excel file as texts, every row as wide as the widest. A formula stands for the result saved with
  * it. Real dates are written in the form `format` (ISO without one), so that they are read whatever it says; a merged cell
- * holds its text in its first column only. Throws `stations.broken-sheet` and `stations.no-sheet`.
+ * holds its text in its first column only. Throws `stations.broken-sheet`,
+ * `stations.no-sheet` and `stations.unpacks-too-large`.
  */
 export async function readSheet(
   files: Files,
@@ -18,6 +20,7 @@ export async function readSheet(
   // The package is loaded here: most runs read no sheet.
   const { default: readAll } = await import("read-excel-file/node");
   const bytes = Buffer.from(await files.readBytes(file));
+  checkZipSize(bytes, file);
   const sheets = await readAll(bytes, { trim: true }).catch((error: unknown) => {
     throw new InputError(
       {

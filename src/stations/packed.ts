@@ -3,6 +3,7 @@ import { pipeline } from "node:stream/promises";
 import { createGunzip, gunzipSync, constants as zlib } from "node:zlib";
 import type { Files } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
+import { isTooLarge, mostUnpacked, unpacksTooLarge } from "./unpacked-size.ts";
 
 const HEAD_BYTES = 1 << 18;
 const PART_BYTES = 1 << 20;
@@ -16,7 +17,7 @@ export function readHead(files: Files, path: string): { readonly bytes: Uint8Arr
     const cut = size < access.size;
     // Sync flush: give what can be unpacked of a stream that ends early.
     return {
-      bytes: path.endsWith(".gz") ? gunzipSync(bytes, { finishFlush: zlib.Z_SYNC_FLUSH }) : bytes,
+      bytes: path.endsWith(".gz") ? unpack(bytes, path, { finishFlush: zlib.Z_SYNC_FLUSH }) : bytes,
       cut,
     };
   } finally {
@@ -27,12 +28,21 @@ export function readHead(files: Files, path: string): { readonly bytes: Uint8Arr
 /** All bytes, unpacked if the name ends in .gz. */
 export async function readWhole(files: Files, path: string): Promise<Uint8Array> {
   const bytes = await files.readBytes(path);
-  return path.endsWith(".gz") ? gunzipSync(bytes) : bytes;
+  return path.endsWith(".gz") ? unpack(bytes, path, {}) : bytes;
+}
+
+function unpack(bytes: Uint8Array, path: string, options: { readonly finishFlush?: number }): Uint8Array {
+  try {
+    return gunzipSync(bytes, { ...options, maxOutputLength: mostUnpacked(bytes.length) });
+  } catch (error) {
+    throw isTooLarge(error) ? unpacksTooLarge(path, bytes.length) : error;
+  }
 }
 
 /**
  * Unpacks a .gz file once and throws the bytes away, so that its length and check sum are verified: the table reader takes a
- * file that was cut off for one that ends there, and rows would be lost in silence. Throws `stations.broken-gzip`.
+ * file that was cut off for one that ends there, and rows would be lost in silence. Throws `stations.broken-gzip` and
+ * `stations.unpacks-too-large`.
  */
 export async function checkPacked(files: Files, path: string): Promise<void> {
   if (!path.endsWith(".gz")) return;
@@ -74,8 +84,11 @@ async function throughBytes(files: Files, path: string, use: (bytes: Buffer) => 
     for (let at = 0; at < access.size; at += PART_BYTES)
       yield asBuffer(access.read(at, Math.min(PART_BYTES, access.size - at)));
   }
+  let unpacked = 0;
   const sink = new Writable({
     write: (chunk: Buffer, _encoding, done) => {
+      unpacked += chunk.length;
+      if (unpacked > mostUnpacked(access.size)) return done(unpacksTooLarge(path, access.size));
       use(chunk);
       done();
     },

@@ -30,6 +30,8 @@ export interface Change {
   readonly bytes?: string;
   /** Lines put at the end. */
   readonly add?: string;
+  /** How many times `add` is put there; once if not given. */
+  readonly times?: number;
   /** How the text, changed or not, is saved: latin1, utf16le, gzip, cut (first half of the bytes). */
   readonly save?: "latin1" | "utf16le" | "gzip" | "cut";
   readonly remove?: boolean;
@@ -79,7 +81,7 @@ function changed(file: string, change: Change): Uint8Array {
     text = text.replace(inFile(change.replace), () => inFile(change.with ?? ""));
     if (text === before) throw new Error(`${change.in} of the good study does not hold ${change.replace}`);
   }
-  if (change.add !== undefined) text += inFile(change.add);
+  if (change.add !== undefined) text += inFile(change.add).repeat(change.times ?? 1);
   const bytes = Buffer.from(text, "latin1");
   if (change.save === "cut") return bytes.subarray(0, bytes.length >> 1);
   if (change.save === "gzip") return gzipSync(bytes);

@@ -10,6 +10,7 @@ const ZONES = ["UTC", "America/Edmonton", "Pacific/Chatham"];
 /** Tests of whole runs, processes, signals and the browser: slow, and the zone reaches them through the same code as the rest. */
 const ONCE = [
   "test/commands/command-line.test.ts",
+  "test/bad-input/hostile-values.test.ts",
   "test/pipeline/faults.test.ts",
   "test/pipeline/kills.test.ts",
   "test/pipeline/reuse.test.ts",
