@@ -248,6 +248,16 @@ function modelProblems(spec: Spec): Problem[] {
   collinearity.priority?.forEach((name, i) => {
     know(["collinearity", "priority", i], name);
   });
+  const { keep } = spec.components;
+  const all = spec.covariates.length + spec.prepare.derive.length - dropped.size;
+  if (keep.type === "number" && all > 1 && keep.number > all)
+    problems.push({
+      name: "spec.out-of-range",
+      path: ["components", "keep", "number"],
+      expected: `at most ${all}, as many components as there are covariates that stay`,
+      found: String(keep.number),
+      remedy: "keep fewer components than covariates, or nothing is reduced",
+    });
   if (typeof spec.components.within === "object") {
     const grouped = new Map<string, string>();
     for (const [group, members] of Object.entries(spec.components.within))

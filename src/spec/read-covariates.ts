@@ -116,7 +116,16 @@ function readUse(raw: RawLayerCovariate, path: KeyPath, problems: Problem[]): Pl
         found: "no such key",
         remedy: "add it, e.g. radius: 2 km",
       });
-    return { by, metres: readMetres(radius ?? "0 m"), validArea };
+    const metres = readMetres(radius ?? "1 m");
+    if (metres === 0)
+      problems.push({
+        name: "spec.out-of-range",
+        path: [...path, "radius"],
+        expected: "a radius above 0",
+        found: JSON.stringify(radius),
+        remedy: "write how far round the place counts, e.g. radius: 2 km, or by: nearest",
+      });
+    return { by, metres, validArea };
   }
   if (radius !== undefined)
     conflict(

@@ -1,3 +1,4 @@
+import { readFileSync } from "node:fs";
 import { Ajv } from "ajv";
 import { expect, test } from "vitest";
 import { csvBytes } from "../../src/publish/csv.ts";
@@ -130,6 +131,24 @@ test("what is written has all that Data Package v2 requires, and nothing it does
     ['"path":"tables/places.csv"', '"path":"../places.csv"'],
   ])
     expect(validate(JSON.parse(JSON.stringify(made).replace(from, to)))).toBe(false);
+});
+
+test("what is written is valid by the profile its makers publish (of v1, which v2 extends)", () => {
+  // lib/profiles/data-package.json of the npm package datapackage 1.1.10 (MIT), Open Knowledge; no package had v2's. Its
+  // draft-04 dialect has no keyword that this profile uses otherwise than today's.
+  const { $schema, ...published } = JSON.parse(
+    readFileSync(new URL("../reference/data-package-profile.json", import.meta.url), "utf8"),
+  ) as Record<string, object>;
+  expect($schema).toBe("http://json-schema.org/draft-04/schema#");
+  const validate = new Ajv({ allErrors: true, strict: false, validateFormats: false }).compile(published);
+  validate(made);
+  expect(validate.errors ?? []).toEqual([]);
+  for (const [from, to] of [
+    ['"name":"platze-orte"', '"name":"Places!"'],
+    ['"path":"tables/covariates-raw.csv"', '"path":7'],
+    ['"resources"', '"sources"'],
+  ])
+    expect(validate(JSON.parse(JSON.stringify(made).replace(from, to))), to).toBe(false);
 });
 
 test("resources by path, with size, hash, types, units and the missing value", () => {

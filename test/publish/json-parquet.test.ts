@@ -2,7 +2,10 @@ import { mkdtempSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { DuckDBInstance } from "@duckdb/node-api";
+import { parse } from "csv-parse/sync";
 import fc from "fast-check";
+import { parquetRead } from "hyparquet";
+import { compressors } from "hyparquet-compressors";
 import { afterAll, expect, test } from "vitest";
 import { nodeDisk } from "../../src/pipeline/effects.ts";
 import { csvBytes } from "../../src/publish/csv.ts";
@@ -62,6 +65,32 @@ test("Parquet reads back with types and values, units under the key `units`", as
     ["n", "1"],
     ["2001", "degC"],
   ]);
+});
+
+test("another reader of Parquet (hyparquet) finds in any table what the CSV beside it says", async () => {
+  await fc.assert(
+    fc.asyncProperty(anyTable, async (table) => {
+      if (table.rows.length === 0) return;
+      const bytes = await parquetBytes(table, nodeDisk());
+      const rows: unknown[][] = [];
+      const file = new Uint8Array(bytes).buffer;
+      await parquetRead({ file, compressors, onComplete: (all) => void rows.push(...all) });
+      const cells = parse(Buffer.from(csvBytes(table).bytes), { columns: false, from: 2 }) as string[][];
+      expect(rows.length).toBe(cells.length);
+      rows.forEach((row, i) => {
+        table.columns.forEach((one, j) => {
+          const [value, cell] = [row[j], cells[i][j]];
+          const where = `${one.name}, row ${i}`;
+          if (value === null || value === undefined || value === "") expect(cell, where).toBe("");
+          else if (one.type === "text") expect([String(value), `'${value}`], where).toContain(cell);
+          else if (one.type === "number")
+            expect(Number(cell.replace("INF", "Infinity")), where).toBe(Number(value));
+          else expect(cell, where).toBe(String(value));
+        });
+      });
+    }),
+    { numRuns: 60 },
+  );
 });
 
 test("Parquet of the same table is the same bytes, and of another one not", async () => {
