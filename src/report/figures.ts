@@ -1,5 +1,6 @@
 import { castOf } from "./cast.ts";
 import type { Draw, Figure } from "./figure.ts";
+import { chance } from "./figures/chance.ts";
 import { completeness } from "./figures/completeness.ts";
 import { correlationMap, detrendedMap } from "./figures/correlation.ts";
 import { criterion } from "./figures/criterion.ts";
@@ -34,6 +35,7 @@ const ALL: readonly Draw[] = [
   criterion,
   paths,
   evidence,
+  chance,
   survival("years"),
   drivers("years"),
   survival("animals"),

@@ -37,13 +37,17 @@ export interface PermutationResult {
    * one) / (1 + permutations); 1 where nothing stood.
    */
   readonly p: number;
+  /** Gain of the study's own choice by years, and of that of each permutation (its null), in their order; 0 if nothing stood. */
+  readonly gain: number;
+  readonly gains: Float64Array;
   /** Shares of permutations in which something was chosen, though nothing was there to be found. */
   readonly falseByYears: number;
   readonly falseByAnimals: number;
   /** Medians of R²_dev over permutations of what was chosen. */
   readonly medianShareByYears: number;
   readonly medianShareByAnimals: number;
-  /** Largest R²_dev that 95 % of permutations stay below, by animals. */
+  /** Largest R²_dev that 95 % of permutations stay below. */
+  readonly shareByYears95: number;
   readonly shareByAnimals95: number;
 }
 
@@ -113,10 +117,16 @@ export function summarisePermutations(
   return {
     replicates: n,
     p: (1 + outcomes.filter((one) => one.gain >= gain).length) / (1 + n),
+    gain,
+    gains: Float64Array.from(outcomes, (one) => one.gain),
     falseByYears: chosen("chosenByYears"),
     falseByAnimals: chosen("chosenByAnimals"),
     medianShareByYears: median(outcomes.map((one) => one.shareByYears)),
     medianShareByAnimals: median(outcomes.map((one) => one.shareByAnimals)),
+    shareByYears95: quantile7(
+      outcomes.map((one) => one.shareByYears),
+      0.95,
+    ),
     shareByAnimals95: quantile7(
       outcomes.map((one) => one.shareByAnimals),
       0.95,

@@ -195,6 +195,7 @@ export function evidenceTable(screened: ScreenResult): Table {
       ["share choosing something, by animals", permutation.falseByAnimals, "with years permuted"],
       ["deviance explained, median by years", permutation.medianShareByYears, "with years permuted"],
       ["deviance explained, median by animals", permutation.medianShareByAnimals, "with years permuted"],
+      ["deviance explained, 95 % by years", permutation.shareByYears95, "with years permuted"],
       ["deviance explained, 95 % by animals", permutation.shareByAnimals95, "with years permuted"],
     );
   if (shifts !== undefined)

@@ -116,6 +116,7 @@ describe("the page", () => {
       "criterion",
       "coefficient-paths",
       "evidence",
+      "chance",
       "survival",
       "survival-drivers",
       "effects",

@@ -23,15 +23,13 @@ export async function evidence(
       row: "counting years",
       observed: share(screened.byYears.names.length === 0 ? 0 : screened.byYears.deviance.share),
       median: share(permutation.medianShareByYears),
-      high: null,
-      top: null,
+      high: share(permutation.shareByYears95),
     },
     {
       row: "counting animals",
       observed: share(screened.byAnimals.names.length === 0 ? 0 : screened.byAnimals.deviance.share),
       median: share(permutation.medianShareByAnimals),
       high: share(permutation.shareByAnimals95),
-      top: "95 % of permutations below",
     },
   ];
   const title = "The selection against its own chance";
@@ -56,7 +54,7 @@ export async function evidence(
   const svg = await chart(
     "evidence",
     title,
-    `Counting years the selection accounts for ${percent(rows[0].observed / 100)}, with years permuted the median is ${percent(permutation.medianShareByYears)}; counting animals ${percent(rows[1].observed / 100)}, permuted ${percent(permutation.medianShareByAnimals)}, 95 % of permutations below ${percent(permutation.shareByAnimals95)}; family-wise p ${pText(permutation.p)} over ${permutation.replicates} permutations`,
+    `Counting years the selection accounts for ${percent(rows[0].observed / 100)}, with years permuted the median is ${percent(permutation.medianShareByYears)}, 95 % of permutations below ${percent(permutation.shareByYears95)}; counting animals ${percent(rows[1].observed / 100)}, permuted ${percent(permutation.medianShareByAnimals)}, 95 % of permutations below ${percent(permutation.shareByAnimals95)}; family-wise p ${pText(permutation.p)} over ${permutation.replicates} permutations`,
     {
       width: Math.min(560, size.width - 140),
       height: { step: 62 },
@@ -82,7 +80,7 @@ export async function evidence(
   return {
     name: "evidence",
     title,
-    caption: `Dot: what the chosen covariates account for of the deviance between years. Tick: the median of the same procedure over ${permutation.replicates} permutations of years, where there is nothing to be found. Grey bar: 95 % of permutations stay below its end (known for the choice that counts animals).`,
+    caption: `Dot: what the chosen covariates account for of the deviance between years. Tick: the median of the same procedure over ${permutation.replicates} permutations of years, where there is nothing to be found. Grey bar: 95 % of permutations stay below its end.`,
     svg,
   };
 }

@@ -1,8 +1,9 @@
+import { listWords } from "../../data/words.ts";
 import type { InfluenceRow } from "../../screen/influence.ts";
 import type { Cast } from "../cast.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
-import { counted } from "../numbers.ts";
+import { counted, show } from "../numbers.ts";
 import { covariateList, grid, type Row } from "../parts.ts";
 
 /** How far the choices hang on single intervals: the sets chosen with one left out, and which ones bring them about. */
@@ -26,7 +27,7 @@ export function influenceBlock(input: ReportInput, cast: Cast): Html | undefined
         ],
       }));
   return html`<h3>One interval left out at a time</h3>
-<p>Leaving out each of the ${counted(rows.length, "interval")} in turn, the choice that counts years stays the same ${same} times. An interval that changes it deserves a look at what happened in it.</p>
+<p>Leaving out each of the ${counted(rows.length, "interval")} in turn, the choice that counts years stays the same ${same} times. An interval that changes it deserves a look at what happened in it.${carrying(input, rows)}</p>
 ${grid(
   cast,
   "What is chosen with one interval left out",
@@ -38,6 +39,27 @@ ${grid(
   ],
   [...table("years", years, "byYears"), ...table("animals", animals, "byAnimals")],
 )}`;
+}
+
+/**
+ * The intervals that carry the choice by years: those without which some of it goes, else the one without which its gain is
+ * least.
+ */
+function carrying({ screened, intervals }: ReportInput, rows: readonly InfluenceRow[]): string {
+  const chosen = screened?.byYears.names ?? [];
+  if (chosen.length === 0) return "";
+  const named = (found: readonly InfluenceRow[]) =>
+    listWords(found.map((one) => intervals[one.interval].name));
+  // a rival in the place of a chosen covariate tells the same story
+  const kept = (name: string, one: InfluenceRow) =>
+    [name, ...(screened?.rivals.find((rival) => rival.chosen === name)?.others ?? [])].some((other) =>
+      one.byYears.includes(other),
+    );
+  const losing = rows.filter((one) => !chosen.every((name) => kept(name, one)));
+  if (losing.length > 0)
+    return ` ${named(losing)} ${losing.length === 1 ? "carries" : "carry"} it: without ${losing.length === 1 ? "that interval" : "any one of them"} some of what was chosen no longer stands.`;
+  const least = rows.reduce((low, one) => (one.gain < low.gain ? one : low));
+  return ` No single interval carries it; most of its gain hangs on ${named([least])}, without which the gain is ${show(least.gain)}${screened?.permutation === undefined ? "" : ` instead of ${show(screened.permutation.gain)}`}.`;
 }
 
 type Counted = "byYears" | "byAnimals";

@@ -7,8 +7,8 @@ import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, pText, show } from "../numbers.ts";
 import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
 import { randomIntervalsBlock } from "./random-intervals.ts";
-import { switchBlock } from "./switch.ts";
 import { resamplingBlock } from "./resampling.ts";
+import { switchBlock } from "./switch.ts";
 import { walkBlock } from "./walk.ts";
 
 export function screenSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
@@ -28,7 +28,7 @@ ${apart(screened, cast)}
 <h3>Evidence: by years beside by animals</h3>
 ${evidenceTable(screened, cast)}
 ${permutationWords(screened)}
-${figureBlock(figures, "evidence")}
+${figureBlock(figures, "evidence")}${figureBlock(figures, "chance")}
 ${
   byAnimals.names.join("\n") === byYears.names.join("\n")
     ? effectsTable(input, cast, byYears, "What both choices say, refitted without penalty")
