@@ -48,11 +48,12 @@ export async function chance(
       layer: [
         {
           data: { values: bars },
-          mark: { type: "bar", color: ink("less"), binSpacing: 1 },
+          mark: { type: "rect", color: ink("less") },
           encoding: {
             x: x("from"),
             x2: { field: "to" },
-            y: { field: "count", type: "quantitative", title: "permutations" },
+            y: { field: "count", type: "quantitative", title: "permutations", scale: { zero: true } },
+            y2: { datum: 0 },
           },
         },
         {

@@ -59,7 +59,7 @@ function carrying({ screened, intervals }: ReportInput, rows: readonly Influence
   if (losing.length > 0)
     return ` ${named(losing)} ${losing.length === 1 ? "carries" : "carry"} it: without ${losing.length === 1 ? "that interval" : "any one of them"} some of what was chosen no longer stands.`;
   const least = rows.reduce((low, one) => (one.gain < low.gain ? one : low));
-  return ` No single interval carries it; most of its gain hangs on ${named([least])}, without which the gain is ${show(least.gain)}${screened?.permutation === undefined ? "" : ` instead of ${show(screened.permutation.gain)}`}.`;
+  return ` No single interval carries it; it leans most on ${named([least])}, without which the gain is ${show(least.gain)}${screened?.permutation === undefined ? "" : ` instead of ${show(screened.permutation.gain)}`}.`;
 }
 
 type Counted = "byYears" | "byAnimals";
