@@ -7,6 +7,7 @@ import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
 import type { ReportInput } from "../report/input.ts";
+import type { FigureOptions } from "../spec/spec.ts";
 import { allTables } from "../tables/all-tables.ts";
 import { nodeDisk } from "./effects.ts";
 import type { Loaded } from "./load.ts";
@@ -83,8 +84,8 @@ export async function buildOutput(
     record: JSON.stringify({ ...facts, outputs: undefined }, null, 2),
   };
   const files = new Map(written.files);
-  const draw = () => drawPage(input, effects.progress);
-  const from = () => ({ "what it shows": input });
+  const draw = () => drawPage(input, spec.figures, effects.progress);
+  const from = () => ({ "what it shows": input, "kinds of files": spec.figures });
   const { page, figures } = await effects.steps.once("page and figures", from, draw);
   files.set(PAGE_FILE, new TextEncoder().encode(page));
   for (const { path, bytes } of figures) files.set(`figures/${path}`, bytes);
@@ -95,13 +96,13 @@ export async function buildOutput(
 }
 
 /** The page and its figures draw with heavy libraries, which are loaded only where something is drawn. */
-async function drawPage(input: ReportInput, progress: Progress) {
+async function drawPage(input: ReportInput, kinds: FigureOptions, progress: Progress) {
   const { renderPage } = await import("../report/page.ts");
   const { figureFiles } = await import("../report/export.ts");
   const step = progress.start("drawing the page", 2);
   const page = await renderPage(input);
   step.tick();
-  const figures = await figureFiles(input);
+  const figures = await figureFiles(input, kinds);
   step.tick();
   step.done();
   return { page, figures };

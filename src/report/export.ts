@@ -18,23 +18,39 @@ export interface FigureFile {
   readonly bytes: Uint8Array;
 }
 
+/** What is written of a figure. */
+export interface FigureKinds {
+  readonly svg: boolean;
+  readonly png: boolean;
+}
+
+export const BOTH_KINDS: FigureKinds = { svg: true, png: true };
+
 /** Every figure at both journal widths, as SVG and as PNG, with the captions as text beside them. */
-export async function figureFiles(input: ReportInput): Promise<readonly FigureFile[]> {
+export async function figureFiles(
+  input: ReportInput,
+  kinds: FigureKinds = BOTH_KINDS,
+): Promise<readonly FigureFile[]> {
+  if (!kinds.svg && !kinds.png) return [];
   const out: Promise<readonly FigureFile[]>[] = [];
   // drawn one after the other, painted side by side by the library's own threads
-  for (const { mm, size } of JOURNAL_WIDTHS) out.push(filesAt(await figures(input, size), mm));
+  for (const { mm, size } of JOURNAL_WIDTHS) out.push(filesAt(await figures(input, size), mm, kinds));
   return (await Promise.all(out)).flat();
 }
 
 /** SVG, PNG and captions of figures at one width. */
-export async function filesAt(drawn: readonly Figure[], mm: number): Promise<readonly FigureFile[]> {
+export async function filesAt(
+  drawn: readonly Figure[],
+  mm: number,
+  kinds: FigureKinds = BOTH_KINDS,
+): Promise<readonly FigureFile[]> {
   const text = new TextEncoder();
   const files = drawn.map(async (one): Promise<FigureFile[]> => {
     const svg = atWidth(one.svg, mm);
-    return [
-      { path: `${mm}mm/${one.name}.svg`, bytes: text.encode(svg) },
-      { path: `${mm}mm/${one.name}.png`, bytes: await png(svg, mm) },
-    ];
+    const out: FigureFile[] = [];
+    if (kinds.svg) out.push({ path: `${mm}mm/${one.name}.svg`, bytes: text.encode(svg) });
+    if (kinds.png) out.push({ path: `${mm}mm/${one.name}.png`, bytes: await png(svg, mm) });
+    return out;
   });
   const captions = { path: `${mm}mm/captions.txt`, bytes: text.encode(captionsText(drawn)) };
   return [...(await Promise.all(files)).flat(), captions];

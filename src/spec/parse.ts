@@ -76,6 +76,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     ...readRecapture(raw.recapture),
     screen: readScreen(raw.screen),
     sensitivity: readSensitivity(raw.sensitivity, problems),
+    figures: raw.figures,
     findings: readFindings(raw.findings),
     duplicates: readDuplicates(raw.findings),
   });

@@ -29,6 +29,11 @@ export const study = keys("the study's title and how far its places are hidden",
   ),
 });
 
+export const figures = allStated("the figures beside the page, drawn for columns of 85 and 170 mm", {
+  svg: stated(flag("whether there are SVG files, true or false"), true),
+  png: stated(flag("whether there are PNG files of 300 dots per inch, true or false"), true),
+});
+
 const dateFormat = () =>
   stated(
     text("the pattern of dates, with yyyy, MM, dd, or D for the day of the year", "dd.MM.yyyy"),

@@ -3,7 +3,7 @@ import { covariates, derive } from "./schema-covariates.ts";
 import { collinearity, components, findings, prepare, screen } from "./schema-model.ts";
 import { layer, readyMade, records, stationList } from "./schema-records.ts";
 import { sensitivity } from "./schema-sensitivity.ts";
-import { captures, occasions, place, recapture, study, survival } from "./schema-study.ts";
+import { captures, figures, occasions, place, recapture, study, survival } from "./schema-study.ts";
 import { keys, list, named, number, stated, text } from "./words.ts";
 
 /** The number of the schema that this version of covey reads and writes. */
@@ -35,6 +35,7 @@ export const pipelineSchema = keys("a pipeline file", {
   recapture,
   screen,
   sensitivity,
+  figures,
   findings,
 });
 

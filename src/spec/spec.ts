@@ -17,6 +17,12 @@ export interface StudyOptions {
   readonly coarsenKm: number;
 }
 
+/** Which kinds of files the figures are written as, beside the page. */
+export interface FigureOptions {
+  readonly svg: boolean;
+  readonly png: boolean;
+}
+
 interface CovariateName {
   readonly name: string;
   readonly theme: string;
@@ -133,6 +139,7 @@ export interface Spec {
   readonly screen: ScreenOptions;
   /** Absent: only the study as it stands is run. */
   readonly sensitivity?: SensitivityOptions;
+  readonly figures: FigureOptions;
   readonly findings: Readonly<Record<FindingKind, FindingPolicy>>;
   readonly duplicates: DuplicateRule;
 }

@@ -20,8 +20,8 @@ import { infilledTables } from "./infilled-table.ts";
 import { penalisedTable } from "./penalised-table.ts";
 import { qualityTable } from "./quality-table.ts";
 import { predictedSurvivalTable, refitEffectsTable } from "./refit-tables.ts";
-import { sensitivityTables } from "./sensitivity-tables.ts";
 import { resamplingTable, togetherTable } from "./resampling-tables.ts";
+import { sensitivityTables } from "./sensitivity-tables.ts";
 import type { StudyResult } from "./study-result.ts";
 import { findingsTable, intervalsTable, occasionsTable } from "./study-tables.ts";
 import {

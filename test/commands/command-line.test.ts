@@ -94,7 +94,7 @@ describe("mistakes on the command line end with 2", () => {
 
   test("no data file to look at", async () => {
     const { code, stderr } = await type("look", "sample-data/capture.csv");
-    expect([code, stderr.split("\n")[0]]).toEqual([2, "input  files.missing"]);
+    expect([code, stderr.split("\n")[0]]).toEqual([2, "input  look.not-found"]);
   });
 });
 

@@ -186,9 +186,9 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     expect(
       await page.locator("#figure-criterion [stroke-dasharray='3 3']").getAttribute("transform"),
     ).toMatch(/^translate\(700,/);
-    await page.getByLabel("Show").selectOption("duplicate");
+    await page.getByLabel("Show", { exact: false }).and(page.locator("select")).selectOption("duplicate");
     expect(await page.locator(".findings > details:visible").count()).toBe(1);
-    await page.getByLabel("Show").selectOption("");
+    await page.getByLabel("Show", { exact: false }).and(page.locator("select")).selectOption("");
     await page.getByLabel("Severity").selectOption("accept");
     expect(await page.locator(".findings .severity.warn:visible").count()).toBe(0);
     expect(await page.locator("#findings output").textContent()).toBe(

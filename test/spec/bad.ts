@@ -101,7 +101,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "ocasions:",
     name: "spec.unknown-key",
     message:
-      'p.yaml:6:1 (ocasions): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "findings", found "ocasions"; did you mean "occasions"?',
+      'p.yaml:6:1 (ocasions): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "figures", "findings", found "ocasions"; did you mean "occasions"?',
   },
   {
     title: "keys: misspelt key inside",
@@ -117,7 +117,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "ready_made:",
     name: "spec.unknown-key",
     message:
-      'p.yaml:33:1 (ready_made): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "findings", found "ready_made"; did you mean "ready-made"?',
+      'p.yaml:33:1 (ready_made): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "figures", "findings", found "ready_made"; did you mean "ready-made"?',
   },
   {
     title: "keys: key that is like nothing",
@@ -125,7 +125,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "weather: fine",
     name: "spec.unknown-key",
     message:
-      'p.yaml:5:1 (weather): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "findings", found "weather"; remove it, or use one of those keys',
+      'p.yaml:5:1 (weather): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "figures", "findings", found "weather"; remove it, or use one of those keys',
   },
   {
     title: "keys: misspelt optional key",
@@ -197,7 +197,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "<<: { seed: 7 }",
     name: "spec.unknown-key",
     message:
-      'p.yaml:5:1 (<<): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "findings", found "<<"; remove it, or use one of those keys',
+      'p.yaml:5:1 (<<): expected one of the keys "covey", "study", "data", "output", "seed", "occasions", "captures", "places", "stations", "records", "layers", "ready-made", "covariates", "derive", "prepare", "collinearity", "components", "survival", "recapture", "screen", "sensitivity", "figures", "findings", found "<<"; remove it, or use one of those keys',
   },
   {
     title: "types: text for a number",
