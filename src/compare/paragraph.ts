@@ -42,8 +42,8 @@ export function paragraph(
 }
 
 function askedWords({ names, releases, constantFit }: ScreenResult): string {
-  const many = names.length === 1 ? "1 candidate covariate" : `${names.length} candidate covariates`;
-  return `Apparent annual survival (${releases} releases; recapture ${constantFit.recaptureWords}) was set against ${many}.`;
+  const many = names.length === 1 ? "1 candidate covariate was" : `${names.length} candidate covariates were`;
+  return `${many} set against apparent annual survival (${releases} releases; recapture ${constantFit.recaptureWords}).`;
 }
 
 /** What the numbers that follow must not be taken for. */
@@ -66,22 +66,20 @@ function accountedWords({ permutation }: ScreenResult, candidates: readonly Cand
     const chance =
       permutation === undefined
         ? ""
-        : `; with years permuted the same procedure chooses something in ${percentWords(permutation.falseByYears)} of runs`;
+        : ` (something is chosen in ${percentWords(permutation.falseByYears)} of runs with years permuted)`;
     parts.push(
-      `the selection accounts for ${percentWords(years.deviance.share)}, which choosing on the same data flatters${chance}`,
+      `the selection accounts for ${percentWords(years.deviance.share)}, flattered by choosing on the same data${chance}`,
     );
   }
   if (kept !== undefined) {
     const many = kept.deviance.df1 === 1 ? "the component kept" : `the ${kept.deviance.df1} components kept`;
     const verb = kept.deviance.df1 === 1 ? "accounts" : "account";
     parts.push(
-      `${many}, fixed without a look at survival, ${verb} for ${percentWords(kept.deviance.share)} (${testWords(kept)})`,
+      `${many}, made without a look at survival, ${verb} for ${percentWords(kept.deviance.share)} (${testWords(kept)})`,
     );
   }
   if (first !== undefined && kept !== undefined && kept.deviance.df1 > 1)
-    parts.push(
-      `the first component alone accounts for ${percentWords(first.deviance.share)} (${testWords(first)})`,
-    );
+    parts.push(`the first alone for ${percentWords(first.deviance.share)} (${testWords(first)})`);
   return parts.length === 0 ? "" : `Of the deviance between years on the same captures, ${parts.join("; ")}.`;
 }
 
@@ -93,7 +91,7 @@ function testWords({ deviance: { f, df1, df2, p } }: Candidate): string {
 /** Names of the ways that are set against each other, as a sentence has them. */
 const SAID: Readonly<Partial<Record<CandidateKey, string>>> = {
   "chosen by years": "selection counting years",
-  "components kept": "the set of components kept",
+  "components kept": "the components kept",
   ridge: "ridge on all covariates",
 };
 
@@ -103,26 +101,35 @@ function predictionWords(prediction: Prediction | undefined): string {
   const told = (["chosen by years", "components kept", "ridge"] as const).flatMap((key) => of(key) ?? []);
   if (told.length === 0) return "";
   const shares = told.map((one) => `${SAID[one.key]} ${shareWords(one)}`);
+  const positive = told.filter((one) => one.share > 0);
+  const clear = positive.filter((one) => one.gain > CLEAR * one.gainError);
+  const gains =
+    positive.length === 0
+      ? ""
+      : clear.length === 0
+        ? "; none of it is clearly more than nothing"
+        : clear.length === positive.length
+          ? "; all of it is clearly more than nothing"
+          : `; clearly more than nothing: ${listWords(clear.map((one) => SAID[one.key] ?? one.key))} alone`;
   const [years, kept] = [of("chosen by years"), of("components kept")];
   const against =
     years === undefined || kept === undefined || Math.max(years.share, kept.share) <= 0
       ? ""
       : ` ${againstWords(years, kept, prediction.intervals)}`;
-  return `Each interval was also left out in turn and everything done again without it; of what one common survival misses in the intervals left out, ${listWords(shares)}.${against}`;
+  return `With each interval left out in turn and everything done again, of what one common survival misses there ${listWords(shares)}${gains}.${against}`;
 }
 
-/** What a candidate foretells, and whether that is more than a constant survival does. */
+/** What a candidate foretells beyond a constant survival; whether that is clearly more is said once for all. */
 function shareWords({ share, gain, gainError }: CandidatePrediction): string {
   if (share <= 0) return "foretells nothing";
-  const clear = gain > CLEAR * gainError ? "clearly more than none" : "not clearly more than none";
-  return `foretells ${percentWords(share)} (log score ${gain < 0 ? "−" : "+"}${Math.abs(gain).toFixed(1)}, standard error ${gainError.toFixed(1)}: ${clear})`;
+  return `foretells ${percentWords(share)} (log score ${gain < 0 ? "−" : "+"}${Math.abs(gain).toFixed(1)}, s.e. ${gainError.toFixed(1)})`;
 }
 
 function againstWords(years: CandidatePrediction, kept: CandidatePrediction, n: number): string {
   const { difference, error } = scoreDifference(years, kept);
-  const numbers = `difference in log score ${Math.abs(difference).toFixed(1)}, standard error ${error.toFixed(1)}, ${n} intervals`;
+  const numbers = `log scores ${Math.abs(difference).toFixed(1)} apart, s.e. ${error.toFixed(1)}, ${n} intervals`;
   if (!(Math.abs(difference) > CLEAR * error))
-    return `Neither clearly foretells better than the other (${numbers}).`;
+    return `Neither selection nor components clearly foretell better (${numbers}).`;
   return difference > 0
     ? `Selection foretells better than components (${numbers}).`
     : `Components foretell better than selection (${numbers}).`;

@@ -153,7 +153,7 @@ function sentenceOf(
   const counts = most.length === 0 ? "" : `; of ${run.length} analyses chosen: ${listWords(most)}`;
   const tested =
     search === undefined
-      ? `. Having tried ${run.length} analyses is multiplicity that no p of a single one counts`
+      ? `. No p of a single analysis allows for ${run.length} having been tried`
       : `. Over the whole search the family-wise p is ${pWords(search.p)} (${search.replicates} permutations of years through all ${run.length} analyses)`;
   return `${start}${counts}${tested}.`;
 }

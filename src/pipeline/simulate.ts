@@ -153,7 +153,9 @@ async function filesOf(
     nodeDisk(),
   );
   const { detectionFigure } = await import("../report/figures/detection.ts");
+  const { drawnAtWidths } = await import("../report/export.ts");
   const figure = detectionFigure(detection);
+  const printed = await drawnAtWidths((size) => [detectionFigure(detection, size)], spec.figures);
   const asked = {
     covariates: detection.covariates.map((name, i) => ({
       name,
@@ -168,6 +170,7 @@ async function filesOf(
   const files = new Map(written.files);
   files.set("simulation.json", jsonBytes(asked));
   files.set(`figures/${figure.name}.svg`, new TextEncoder().encode(figure.svg));
+  for (const { path, bytes } of printed) files.set(`figures/${path}`, bytes);
   const pipeline = spec.study.sensitive ? redactPipeline(text, positionRule(spec.study)) : text;
   const { version, nodeMajor } = maker;
   return withRecord({

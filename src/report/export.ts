@@ -6,7 +6,7 @@ import { figures } from "./figures.ts";
 import type { ReportInput } from "./input.ts";
 import { px } from "./numbers.ts";
 import { ink } from "./palette.ts";
-import { JOURNAL_WIDTHS, MM_PER_PX } from "./size.ts";
+import { JOURNAL_WIDTHS, MM_PER_PX, type Size } from "./size.ts";
 
 /** Dots per inch of the PNG files. */
 const DPI = 300;
@@ -24,17 +24,25 @@ export interface FigureKinds {
   readonly png: boolean;
 }
 
-export const BOTH_KINDS: FigureKinds = { svg: true, png: true };
+const BOTH_KINDS: FigureKinds = { svg: true, png: true };
 
 /** Every figure at both journal widths, as SVG and as PNG, with the captions as text beside them. */
 export async function figureFiles(
   input: ReportInput,
   kinds: FigureKinds = BOTH_KINDS,
 ): Promise<readonly FigureFile[]> {
+  return drawnAtWidths((size) => figures(input, size), kinds);
+}
+
+/** Whatever is drawn, at both journal widths. */
+export async function drawnAtWidths(
+  draw: (size: Size) => readonly Figure[] | Promise<readonly Figure[]>,
+  kinds: FigureKinds = BOTH_KINDS,
+): Promise<readonly FigureFile[]> {
   if (!kinds.svg && !kinds.png) return [];
   const out: Promise<readonly FigureFile[]>[] = [];
   // drawn one after the other, painted side by side by the library's own threads
-  for (const { mm, size } of JOURNAL_WIDTHS) out.push(filesAt(await figures(input, size), mm, kinds));
+  for (const { mm, size } of JOURNAL_WIDTHS) out.push(filesAt(await draw(size), mm, kinds));
   return (await Promise.all(out)).flat();
 }
 

@@ -1,6 +1,7 @@
 import type { Cast, Member } from "./cast.ts";
 import type { Figure } from "./figure.ts";
 import { type Html, html, markup, type Piece } from "./html.ts";
+import { counted } from "./numbers.ts";
 import { withVariables } from "./palette.ts";
 
 /** What a section is made from. */
@@ -74,6 +75,11 @@ export function grid(cast: Cast, caption: string, heads: readonly Head[], rows: 
       return html`<tr${row.best === true && html` class="best"`}${index !== undefined && html` data-covariate="${index}"`}>${row.cells.map((cell, i) => html`<td${look(heads[i])}>${cell}</td>`)}</tr>`;
     },
   )}</tbody></table></div></div>`;
+}
+
+/** A table of detail, closed until it is asked for. */
+export function foldedGrid(cast: Cast, caption: string, heads: readonly Head[], rows: readonly Row[]): Html {
+  return html`<details class="fold"><summary>${caption}<small>${counted(rows.length, "row")}</small></summary><div class="in">${grid(cast, caption, heads, rows)}</div></details>`;
 }
 
 function headCell(head: Head): Html {

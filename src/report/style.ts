@@ -75,7 +75,7 @@ tr.best td{background:var(--wash)}
 details{border:1px solid var(--rule);border-radius:3px;background:var(--panel);margin:.7rem 0;max-width:100%}
 summary{cursor:pointer;padding:.6rem 1rem;font-weight:600}
 summary small{font-weight:400;color:var(--muted);margin-left:.5rem}
-details>.in{padding:0 1rem 1rem}
+details>.in{padding:0 1rem 1rem}.fold caption{display:none}.fold .grid{margin:0}
 pre{overflow-x:auto;margin:0;font:13px/1.5 ui-monospace,"SF Mono",Menlo,Consolas,"Liberation Mono",monospace;white-space:pre-wrap;overflow-wrap:anywhere}
 code{font:.9em ui-monospace,"SF Mono",Menlo,Consolas,"Liberation Mono",monospace;overflow-wrap:anywhere}
 .found{list-style:none;padding:0;max-width:none;margin:0}.found li{display:grid;grid-template-columns:minmax(0,15rem) minmax(0,1fr);gap:0 1.6rem;border-top:1px solid var(--rule);padding:.6rem 0}.found p{margin:0}.found .do{color:var(--muted)}
@@ -102,5 +102,6 @@ button.copy{font-size:.82rem;margin:.5rem 0 0;border-color:var(--rule);color:var
 caption{background:none}figure,details,table{break-inside:avoid}table{break-inside:auto}tr{break-inside:avoid}
 figure{border:0;padding:.4rem 0;background:none}figure .scroll,figcaption{padding-left:0;padding-right:0}.scroll{overflow:visible}
 figure svg{min-width:0!important;max-width:100%!important;max-height:23cm}table{font-size:8pt;width:100%}th,td{padding:.2rem .35rem;white-space:normal!important}td.w,th.w,th.n{min-width:0}
-h2,h3{break-after:avoid}}
+h2,h3,caption,thead{break-after:avoid}tbody tr:first-child{break-before:avoid}
+#record details{border:0;margin:0}#record summary{padding:.1rem 0;font-size:8pt}details.fold{border:0}.fold summary{padding:.2rem 0}}
 `.trim();

@@ -7,7 +7,7 @@ export function sensitivityTables(sensitivity: Sensitivity): readonly Table[] {
   const { analyses, tried, search } = sensitivity;
   const whole =
     search === undefined
-      ? `${tried} analyses were run, which is multiplicity that no p of a single one counts.`
+      ? `${tried} analyses were run; no p of a single one allows for that.`
       : `${tried} analyses were run; family-wise p of the whole search ${search.p} over ${search.replicates} permutations of years.`;
   return [
     {

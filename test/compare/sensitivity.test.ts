@@ -62,7 +62,7 @@ describe("sensitivity", () => {
     );
     expect(tried).toBe(3);
     expect(sentence).toBe(
-      "Of 2 stated alternatives 1 chooses the same covariates counting years, or ones that the data cannot tell from them; of 3 analyses chosen: a in 1, b in 1 and c in 1. Having tried 3 analyses is multiplicity that no p of a single one counts.",
+      "Of 2 stated alternatives 1 chooses the same covariates counting years, or ones that the data cannot tell from them; of 3 analyses chosen: a in 1, b in 1 and c in 1. No p of a single analysis allows for 3 having been tried.",
     );
     expect(stands).toEqual([
       { name: "a", chosen: 1, rival: 0 },
@@ -92,7 +92,9 @@ describe("sensitivity", () => {
     expect(withSensitivity(comparison, undefined)).toBe(comparison);
     const sensitivity = summariseSensitivity([analysis("base", [], 0), analysis("x", [], 0)], []);
     const told = withSensitivity(comparison, sensitivity).paragraph;
-    expect(told).toMatch(/^Words\. In 2 analyses .* nothing stands counting years in 2\. Having tried 2/);
+    expect(told).toMatch(
+      /^Words\. In 2 analyses .* nothing stands counting years in 2\. No p of a single analysis allows for 2/,
+    );
     expect(told.endsWith(CAUTION)).toBe(true);
   });
 });

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { drawnAtWidths } from "../../src/report/export.ts";
 import { detectionFigure } from "../../src/report/figures/detection.ts";
 import type { Detection } from "../../src/simulate/detect.ts";
 import { shareOf } from "../../src/simulate/tally.ts";
@@ -66,5 +67,32 @@ describe("what this study can detect, drawn", () => {
       expect(svg).toContain("…");
       expect(caption).toContain(long);
     }
+  });
+});
+
+describe("in a journal's columns", () => {
+  test("the two panels stand side by side or one below the other, the same points in both", async () => {
+    const told = detection(
+      ["winter rain"],
+      [
+        [0, 0],
+        [0.5, 7],
+      ],
+    );
+    const files = await drawnAtWidths((size) => [detectionFigure(told, size)], { svg: true, png: false });
+    expect(files.map((one) => one.path)).toEqual([
+      "85mm/detection.svg",
+      "85mm/captions.txt",
+      "170mm/detection.svg",
+      "170mm/captions.txt",
+    ]);
+    const [narrow, wide] = [0, 2].map((i) => new TextDecoder().decode(files[i].bytes));
+    const box = (svg: string) =>
+      /viewBox="([-\d.]+) 0 ([\d.]+) ([\d.]+)"/.exec(svg)?.slice(2).map(Number) ?? [];
+    expect(box(narrow)[0]).toBeLessThanOrEqual(414);
+    expect(box(narrow)[1]).toBeGreaterThan(1.5 * box(wide)[1]);
+    const points = (svg: string) => [...svg.matchAll(/<circle /g)].length;
+    expect(points(narrow)).toBe(points(wide));
+    expect(points(wide)).toBeGreaterThan(0);
   });
 });

@@ -4,6 +4,7 @@ import { castOf } from "../../src/report/cast.ts";
 import { sensitivityFigure } from "../../src/report/figures/sensitivity.ts";
 import { html } from "../../src/report/html.ts";
 import { sensitivitySection } from "../../src/report/sections/sensitivity.ts";
+import { JOURNAL_WIDTHS, SCREEN } from "../../src/report/size.ts";
 import { sensitivityTables } from "../../src/tables/sensitivity-tables.ts";
 import { reportInput } from "./fixture.ts";
 
@@ -34,7 +35,7 @@ test("what is selected where: one mark for each choice, failures told, all analy
   if (input.comparison === undefined) throw new Error("the fixture compares");
   const shown = { ...input, comparison: { ...input.comparison, sensitivity } };
   const cast = castOf(shown);
-  const figure = sensitivityFigure(shown, cast);
+  const figure = sensitivityFigure(shown, cast, SCREEN);
   const count = (pattern: RegExp) => [...(figure?.svg ?? "").matchAll(pattern)].length;
   // two filled squares, one hollow one, one dot, one ×
   expect(count(/height="13" fill="#/g)).toBe(2);
@@ -42,14 +43,19 @@ test("what is selected where: one mark for each choice, failures told, all analy
   expect(count(/<circle /g)).toBe(1);
   expect(count(/>×</g)).toBe(1);
   const page = html`${sensitivitySection(shown, cast, figure === undefined ? [] : [figure]).body}`.text;
-  expect(page).toContain("2 analyses of the same captures were run");
+  expect(page).toContain("Each of the 2 analyses, the study itself counted in");
   expect(page).toContain("not run: expected values that differ");
   expect(page).toContain("second &lt;b&gt;");
   const [table, long] = sensitivityTables(sensitivity);
   expect(table.rows.map((row) => row[0])).toEqual(["base", "second", "third"]);
   expect(long.rows).toHaveLength(7);
   expect(long.rows.filter((row) => row[2] === true).map((row) => row[1])).toEqual([names[0], names[0]]);
+  for (const { size } of JOURNAL_WIDTHS) {
+    const svg = sensitivityFigure(shown, cast, size)?.svg ?? "";
+    expect(Number(/ width="([\d.]+)"/.exec(svg)?.[1])).toBeLessThanOrEqual(size.width);
+    expect([...svg.matchAll(/<circle /g)]).toHaveLength(1);
+  }
   // a study without alternatives has neither figure nor words of any
-  expect(sensitivityFigure(input, castOf(input))).toBeUndefined();
+  expect(sensitivityFigure(input, castOf(input), SCREEN)).toBeUndefined();
   expect(html`${sensitivitySection(input, cast, []).body}`.text).toContain("states no other way");
 });

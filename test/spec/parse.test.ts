@@ -115,6 +115,7 @@ describe("good pipelines", () => {
     const { findings, ...rest } = spec;
     expect(rest).toEqual({
       schema: 1,
+      figures: { svg: true, png: true },
       study: { title: "T", sensitive: false, coarsenKm: 10 },
       data: ".",
       output: "covey-output",

@@ -1,19 +1,32 @@
 import { listWords } from "../../data/words.ts";
 import type { Detection, DetectionRow, Rule } from "../../simulate/detect.ts";
 import type { Share } from "../../simulate/tally.ts";
-import { drawing, type Figure, label, rect, segment } from "../figure.ts";
+import { drawing, type Figure, fitted, label, rect, segment } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import { brief, counted, percent, px } from "../numbers.ts";
 import { ink, type Token } from "../palette.ts";
 import { line, ticks, tickText } from "../scale.ts";
+import { SCREEN, type Size } from "../size.ts";
 
-const [WIDTH, HEIGHT] = [760, 380];
-/** Of the area between the axes. */
-const [TOP, BOTTOM] = [92, 326];
-const PANELS = [
-  { left: 58, right: 366, title: "Found" },
-  { left: 438, right: 746, title: "Something unrelated chosen" },
-] as const;
+interface Panel {
+  readonly left: number;
+  readonly right: number;
+  readonly top: number;
+  readonly bottom: number;
+}
+
+/** Height between the axes, px. */
+const HIGH = 234;
+
+/** Side by side, in a single column one below the other. */
+function panelsOf({ narrow, width }: Size): readonly [Panel, Panel] {
+  const first = { left: 58, right: narrow ? width - 12 : 366, top: 92, bottom: 92 + HIGH };
+  return narrow
+    ? [first, { ...first, top: first.bottom + 92, bottom: first.bottom + 92 + HIGH }]
+    : [first, { ...first, left: 438, right: 746 }];
+}
+
+const TITLES = ["Found", "Something unrelated chosen"] as const;
 
 const LOOKS: Readonly<
   Record<Rule, { readonly token: Token; readonly dash?: string; readonly shift: number }>
@@ -23,18 +36,22 @@ const LOOKS: Readonly<
 };
 
 /** Power by size of the effect, and beside it what is chosen wrongly, for both rules with Monte Carlo bars. */
-export function detectionFigure(detection: Detection): Figure {
+export function detectionFigure(detection: Detection, size: Size = SCREEN): Figure {
   const { rows, covariates, replicates, residual } = detection;
   const rules = Object.keys(LOOKS) as Rule[]; // the keys of the record above
   const effects = [...new Set(rows.map((one) => one.effect))];
   const title = "What this study can detect";
   const shares: readonly ((row: DetectionRow) => Share)[] = [(row) => row.found, (row) => row.unrelated];
   const of = (rule: Rule) => rows.filter((one) => one.rule === rule);
-  const panels = PANELS.map(({ left, right, title: name }, i) => {
+  const places = panelsOf(size);
+  const width = size.narrow ? size.width : 760;
+  const height = places[1].bottom + 54;
+  const panels = places.map((panel, i) => {
+    const { left, right, top, bottom } = panel;
     const low = Math.min(0, ...effects);
     const x = line([low, Math.max(...effects, low + 0.1)], [left + 10, right - 10]);
-    const y = line([0, 1], [BOTTOM, TOP]);
-    return html`${label(left, TOP - 18, name, { weight: 700, size: 13 })}${axes(x, y, left, right, effects)}${rules.map(
+    const y = line([0, 1], [bottom, top]);
+    return html`${label(left, top - 18, TITLES[i], { weight: 700, size: 13 })}${axes(x, y, panel, effects)}${rules.map(
       (rule) => curve(of(rule), shares[i], x, y, LOOKS[rule]),
     )}`;
   });
@@ -51,26 +68,20 @@ export function detectionFigure(detection: Detection): Figure {
   return {
     name: "detection",
     title,
-    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listWords(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (left), and in which something is chosen whose |r| with the truth is below 0.5 (right), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${brief(Number(residual.toFixed(3)))} on the logit.`,
+    caption: `Share of ${counted(replicates, "drawn study", "drawn studies")} in which ${listWords(covariates)} ${covariates.length === 1 ? "is" : "are all"} chosen (found), and in which something is chosen whose |r| with the truth is below 0.5 (unrelated), by size of the effect. At 0 nothing acts, so whatever is chosen is wrong. Bars: 95 % Monte Carlo intervals. Residual sd between years ${brief(Number(residual.toFixed(3)))} on the logit.`,
     svg: drawing(
-      WIDTH,
-      HEIGHT,
+      width,
+      height,
       title,
       says,
-      html`${rect(0, 0, WIDTH, HEIGHT, "panel")}${label(PANELS[0].left, 22, shortened(heading), { size: 14 })}${legend(rules)}${panels}`,
+      html`${rect(0, 0, width, height, "panel")}${label(58, 22, fitted(heading, width - 66, 14), { size: 14 })}${legend(rules)}${panels}`,
     ),
   };
 }
 
-/** A long list of names must not run out of the drawing; the whole of it stands in the caption. */
-function shortened(text: string): string {
-  const most = 92;
-  return text.length <= most ? text : `${text.slice(0, most - 1)}…`;
-}
-
 function legend(rules: readonly Rule[]): Html[] {
   return rules.map((rule, i) => {
-    const x = PANELS[0].left + i * 160;
+    const x = 58 + i * 160;
     const { token, dash } = LOOKS[rule];
     return html`${segment(x, 44, x + 34, 44, token, 2, dash)}${dot(rule, x + 17, 44)}${label(x + 42, 48, rule)}`;
   });
@@ -79,8 +90,7 @@ function legend(rules: readonly Rule[]): Html[] {
 function axes(
   x: (value: number) => number,
   y: (value: number) => number,
-  left: number,
-  right: number,
+  { left, right, bottom }: Panel,
   effects: readonly number[],
 ): Html {
   const across = [0, 0.25, 0.5, 0.75, 1].map(
@@ -89,9 +99,9 @@ function axes(
   );
   const along = ticks(Math.min(0, ...effects), Math.max(...effects, 0.1), 5).map(
     (value) =>
-      html`${segment(x(value), BOTTOM, x(value), BOTTOM + 5, "rule")}${label(x(value), BOTTOM + 20, tickText(value), { fill: "muted", anchor: "middle" })}`,
+      html`${segment(x(value), bottom, x(value), bottom + 5, "rule")}${label(x(value), bottom + 20, tickText(value), { fill: "muted", anchor: "middle" })}`,
   );
-  return html`${across}${along}${label((left + right) / 2, BOTTOM + 42, "size of the effect (logit per sd)", { anchor: "middle" })}`;
+  return html`${across}${along}${label((left + right) / 2, bottom + 42, "size of the effect (logit per sd)", { anchor: "middle" })}`;
 }
 
 function curve(

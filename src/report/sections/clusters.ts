@@ -2,7 +2,7 @@ import type { Cast } from "../cast.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, show } from "../numbers.ts";
-import { covariateList, covariateName, grid } from "../parts.ts";
+import { covariateList, covariateName, foldedGrid, grid } from "../parts.ts";
 
 /** Why the tree is cut where it is, and what keeping each member would keep of the others. */
 export function clustersBlock({ diagnosis, cut }: ReportInput, cast: Cast): Html | undefined {
@@ -18,7 +18,7 @@ export function clustersBlock({ diagnosis, cut }: ReportInput, cast: Cast): Html
   ].filter((words) => words !== "");
   const why = html`<p>Clusters come from average linkage: two groups are as close as the mean |r| between their members. The tree is cut at ${brief(limit)}, a convention that the pipeline file can change; ${edge.join(", and ")}.</p>`;
   if (groups.length === 0) return why;
-  return html`${why}${grid(
+  return html`${why}${foldedGrid(
     cast,
     "What keeping one member of a cluster would keep of the others",
     [

@@ -4,7 +4,7 @@ import type { Figure } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, sentence, show } from "../numbers.ts";
-import { caution, covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { caution, covariateList, covariateName, figureBlock, foldedGrid, type Section } from "../parts.ts";
 import { clustersBlock, trendBlock } from "./clusters.ts";
 import { intervalsBlock, simpleBlock } from "./loadings.ts";
 import { switchBlock } from "./switch.ts";
@@ -38,12 +38,19 @@ export function storySection(input: ReportInput, cast: Cast, figures: readonly F
 ${groups.length > 0 && html`<ul>${groups.map((one) => html`<li>${covariateList(cast, one.members)}; closest to all the others: ${covariateName(cast, one.closest)}</li>`)}</ul>`}
 ${diagnosis.allDepend ? html`<p class="note">There are as many covariates as intervals, or more, so every covariate is an exact sum of the others and all inflation is infinite.</p>` : diagnosis.dependencies.length > 0 && html`<p class="note">Exact dependencies:</p><ul>${diagnosis.dependencies.map((one) => html`<li>${one.relation ?? covariateList(cast, one.names)}</li>`)}</ul>`}
 ${correlations(figures)}${trendBlock(input, cast)}${clustersBlock(input, cast)}${figureBlock(figures, "inflation")}
-${grid(cast, "Condition indices", [{ text: "dimension", look: "n" }, { text: "condition index", look: "n" }, { text: "more than half the variance of", look: "w" }, { text: "warning" }], rows)}
+<p>${warningWords(rows.filter((one) => one.best).length, rows.length)}</p>
+${foldedGrid(cast, "Condition indices", [{ text: "dimension", look: "n" }, { text: "condition index", look: "n" }, { text: "more than half the variance of", look: "w" }, { text: "warning" }], rows)}
 <p>Condition indices are those of the columns scaled to unit length, with the intercept; above ${brief(warn.condition)} with two or more proportions above 0.5 is the usual warning. The condition number of the correlation matrix, which is another thing, is ${largeWords(diagnosis.correlationCondition)}.</p>
 ${diagnosis.pruning.length === 0 && html`<p>Nothing was pruned: no inflation is above ${brief(warn.inflation)} and no decision drops a covariate.</p>`}
 ${caution("Association is not cause", "A covariate that goes with survival over these years may stand for any covariate of its cluster, and for another that was never measured.")}
-${diagnosis.pruning.length > 0 && html`<h3>Pruning</h3><ol>${diagnosis.pruning.map((one) => html`<li>${covariateName(cast, one.dropped)} (inflation ${largeWords(one.inflation)}): ${one.reason}</li>`)}</ol><p>Left after pruning: ${covariateList(cast, diagnosis.kept)}.</p>`}`,
+${diagnosis.pruning.length > 0 && html`<h3>Pruning</h3><ol>${diagnosis.pruning.map((one) => html`<li>${covariateName(cast, one.dropped)} (inflation ${largeWords(one.inflation)}): ${one.reason.replace(/= -/g, "= −")}</li>`)}</ol><p>Left after pruning: ${covariateList(cast, diagnosis.kept)}.</p>`}`,
   };
+}
+
+function warningWords(warned: number, shown: number): string {
+  return warned === 0
+    ? "No dimension of the table below ties two or more covariates together so closely that a warning is due."
+    : `${counted(warned, "dimension")} of the ${shown} below ${warned === 1 ? "ties" : "tie"} covariates together closely enough for a warning.`;
 }
 
 /** As the covariates are, and with shared trends taken out. */

@@ -3,7 +3,7 @@ import type { Cast } from "../cast.ts";
 import { shortR } from "../figures/signed.ts";
 import { type Html, html } from "../html.ts";
 import { counted, percent, show } from "../numbers.ts";
-import { covariateName, grid } from "../parts.ts";
+import { covariateName, foldedGrid, grid } from "../parts.ts";
 
 /** Loadings of the components kept with their resampled intervals. */
 export function intervalsBlock(components: Components, cast: Cast): Html | undefined {
@@ -12,7 +12,7 @@ export function intervalsBlock(components: Components, cast: Cast): Html | undef
   const k = Math.min(intervals.congruence.length, 8);
   const m = labels.length;
   const wide = intervals.congruence.length;
-  return html`${grid(
+  return html`${foldedGrid(
     cast,
     "Loadings with resampled intervals",
     [{ text: "covariate" }, ...labels.slice(0, k).map((text) => ({ text, look: "n" as const }))],

@@ -5,7 +5,7 @@ import type { Figure } from "../figure.ts";
 import { type Html, html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, pText, show } from "../numbers.ts";
-import { covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import { covariateList, covariateName, figureBlock, foldedGrid, grid, type Section } from "../parts.ts";
 import { randomIntervalsBlock } from "./random-intervals.ts";
 import { resamplingBlock } from "./resampling.ts";
 import { switchBlock } from "./switch.ts";
@@ -171,7 +171,7 @@ function perUnit(input: ReportInput, name: string, value: number): string {
 function weighedTable(screened: ScreenResult, cast: Cast): Html | undefined {
   const rows = screened.weighed.filter((one) => one.names.length > 0).slice(0, 12);
   if (rows.length === 0) return undefined;
-  return grid(
+  return foldedGrid(
     cast,
     "Sets weighed by years, after pruning",
     [

@@ -3,7 +3,7 @@ import type { Figure } from "../figure.ts";
 import { html } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { counted, percent, pText, show } from "../numbers.ts";
-import { covariateList, figureBlock, grid, type Section } from "../parts.ts";
+import { covariateList, figureBlock, foldedGrid, type Section } from "../parts.ts";
 import { influenceBlock } from "./influence.ts";
 
 /** Other ways to do the study, and what each of them selects. */
@@ -18,11 +18,11 @@ export function sensitivitySection(input: ReportInput, cast: Cast, figures: read
   const { analyses, tried, search, sentence } = sensitivity;
   const counts =
     search === undefined
-      ? html`<p>${counted(tried, "analysis", "analyses")} of the same captures were run, the study itself counted in. Each is a chance to find something that is not there; no p of a single analysis counts that. The pipeline file can have the permutation of years wrapped around all of them (<code>sensitivity: permutations</code>).</p>`
+      ? html`<p>Each of the ${counted(tried, "analysis", "analyses")}, the study itself counted in, is a chance to find something that is not there. The pipeline file can have the permutation of years wrapped around all of them (<code>sensitivity: permutations</code>).</p>`
       : html`<p>${counted(tried, "analysis", "analyses")} of the same captures were run, the study itself counted in. The permutation of years was wrapped around all of them: with the years in another order, the best of all analyses found as much in a share that gives the family-wise p of the whole search, ${pText(search.p)} (${counted(search.replicates, "permutation")}); in ${percent(search.falseByYears)} of permutations some analysis chose something.</p>`;
   return {
     ...head,
-    body: html`<p>${sentence}</p>${counts}${figureBlock(figures, "sensitivity")}${grid(
+    body: html`<p>${sentence}</p>${counts}${figureBlock(figures, "sensitivity")}${foldedGrid(
       cast,
       "Analyses and what they select",
       [

@@ -5,7 +5,15 @@ import type { Figure } from "../figure.ts";
 import { type Html, html, type Piece } from "../html.ts";
 import type { ReportInput } from "../input.ts";
 import { brief, percent, pText, show } from "../numbers.ts";
-import { caution, covariateList, covariateName, figureBlock, grid, type Section } from "../parts.ts";
+import {
+  caution,
+  covariateList,
+  covariateName,
+  figureBlock,
+  foldedGrid,
+  grid,
+  type Section,
+} from "../parts.ts";
 import { extent } from "../scale.ts";
 import { predictionBlock } from "./prediction.ts";
 import { refitsBlock } from "./refits.ts";
@@ -132,7 +140,7 @@ function agreementBlock(input: ReportInput, cast: Cast, figures: readonly Figure
 <h3>In one paragraph</h3><p>Made from the numbers of this page; to be pasted and defended, and no stronger than they are.</p><blockquote id="paragraph"><p>${input.comparison.paragraph}</p></blockquote>
 ${
   agreement.survival.length > 0 &&
-  grid(
+  foldedGrid(
     cast,
     "Do the fitted survivals agree?",
     [
@@ -146,7 +154,7 @@ ${
   )
 }
 ${figureBlock(figures, "effects")}
-${grid(
+${foldedGrid(
   cast,
   "Effects by selection, by components and by ridge",
   [
