@@ -51,7 +51,8 @@ function testOf({ names, byYears, permutation }: ScreenResult): Test | undefined
 
 /**
  * Bounds of the grades, a convention of this project: p ≤ .01 firm, ≤ .05 fair, ≤ .1 faint; one less where the other
- * rule that counts years does not confirm every covariate chosen, or a fit missed its optimum.
+ * rule that counts years does not confirm every covariate chosen, or a fit missed its optimum. Permutation takes years for
+ * exchangeable; where what runs on from year to year does as well by chance (`runsOn`), the grade is faint at most.
  */
 function gradeOf(screened: ScreenResult): Grade {
   const test = testOf(screened);
@@ -59,7 +60,17 @@ function gradeOf(screened: ScreenResult): Grade {
   if (screened.byYears.names.length === 0 || test.p > 0.1) return "none";
   const grade = test.p <= 0.01 ? 3 : test.p <= 0.05 ? 2 : 1;
   const doubted = unconfirmed(screened).length > 0 || unsettled(screened);
-  return GRADES[doubted ? grade - 1 : grade];
+  return GRADES[Math.min(doubted ? grade - 1 : grade, runsOn(screened) ? 1 : 3)];
+}
+
+/**
+ * Whether more circular shifts of the years do as well than one of twenty (of n where there are fewer intervals): shifts keep
+ * the memory of covariates and survival, so a choice that memory alone brings about is reached by others of them.
+ */
+function runsOn({ names, byYears, intervalFit, shifts }: ScreenResult): boolean {
+  if (shifts === undefined || (names.length === 1 && byYears.names.length === 1)) return false;
+  const intervals = new Set(intervalFit.survival.map((one) => one.interval)).size;
+  return shifts > Math.max(0.05, 1 / intervals) + 1e-9;
 }
 
 function unsettled({ randomIntervals }: ScreenResult): boolean {
@@ -105,6 +116,9 @@ function headline(screened: ScreenResult, grade: Grade): string {
     doubtful.length === 0
       ? ""
       : ` ${screened.secondOpinion?.by === "random intervals" ? "A model with a random effect of each interval" : "An analysis of deviance"} does not confirm ${listWords(doubtful)}.`,
+    runsOn(screened)
+      ? ` With the years shifted, so that what runs on from year to year stays, ${percentWords(screened.shifts ?? 0)} of shifts do as well; permutation alone would say too much.`
+      : "",
     unsettled(screened) ? " A fit behind this choice did not reach its optimum." : "",
   ].join("");
   if (grade === "none" && test.p <= 0.1)

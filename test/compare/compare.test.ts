@@ -80,7 +80,7 @@ describe("the verdict", () => {
     expect(animals).toMatch(/^A criterion that counts animals \(BIC, n = \d+ releases\) chooses x1 and x2/);
   });
 
-  test("a covariate that analysis of deviance does not confirm costs a grade and is named", async () => {
+  test("a covariate that analysis of deviance does not confirm costs a grade and is named; so do shifts that do as well", async () => {
     const { result, comparison } = await compared(1, [-0.9, 0.8], 0.05);
     expect([...(result.secondOpinion?.names ?? [])].sort()).toEqual(["x1", "x2"]);
     expect(comparison.verdict.grade).toBe("fair");
@@ -93,6 +93,11 @@ describe("the verdict", () => {
     expect(verdictNow.headline).toMatch(/x1 and x2 may go with .* does not confirm x2\.$/);
     const rival = { ...doubted, rivals: [{ chosen: "x2", others: ["x1"] }] };
     expect(verdict(rival, comparison.agreement).grade).toBe("fair");
+    // one of 18 is the study itself; another shift that does as well says that memory alone could bring it about
+    expect(verdict({ ...result, shifts: 1 / 18 }, comparison.agreement).grade).toBe("fair");
+    const shifted = verdict({ ...result, shifts: 2 / 18 }, comparison.agreement);
+    expect(shifted.grade).toBe("faint");
+    expect(shifted.headline).toMatch(/11 % of shifts do as well; permutation alone would say too much\.$/);
     const { randomIntervals } = result;
     if (randomIntervals === undefined) throw new Error("the choice is by random intervals");
     const unsettled = { ...result, randomIntervals: { ...randomIntervals, settled: false } };
