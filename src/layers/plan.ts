@@ -4,6 +4,7 @@ import { settleDates } from "./date-table.ts";
 import { periodsOf } from "./dates.ts";
 import { noFiles } from "./extract.ts";
 import { describeLayer, type Layer } from "./layer.ts";
+import type { CellMethods } from "./netcdf/cell-methods.ts";
 import { netcdfStack } from "./netcdf/file.ts";
 import { isNetcdf, openNetcdf } from "./netcdf/open.ts";
 import type { LayerOptions } from "./options.ts";
@@ -35,6 +36,8 @@ export interface LayerPlan {
   /** The systems that occur; more than one is unusual. */
   readonly systems: readonly string[];
   readonly findings: readonly RawFinding[];
+  /** What the files say their values are, where they do (NetCDF). */
+  readonly methods: CellMethods | undefined;
 }
 
 /**
@@ -54,6 +57,7 @@ export async function planLayers(name: string, given: LayerOptions, files: Files
   const dated: { path: string; periods: ReturnType<typeof periodsOf> }[] = [];
   const systems = new Set<string>();
   const found: RawFinding[] = [];
+  let methods: CellMethods | undefined;
   const settled = new Map<string, string>();
   for (const path of paths) {
     const file = await openFile(path, files);
@@ -64,6 +68,7 @@ export async function planLayers(name: string, given: LayerOptions, files: Files
         dated.push({ path, periods: one.stack.periods });
         found.push(...one.stack.findings);
         systems.add(one.stack.system.label);
+        methods ??= one.stack.methods;
         continue;
       }
       const layer = await fetching(file, () => describeLayer(file, files, sides(path)));
@@ -87,7 +92,7 @@ export async function planLayers(name: string, given: LayerOptions, files: Files
     found.push(...withoutQuality(name, dated, index));
   }
   const { images, findings } = orderImages(name, dated);
-  return { name, files: planned, images, findings: [...found, ...findings], systems: [...systems] };
+  return { name, files: planned, images, findings: [...found, ...findings], systems: [...systems], methods };
 }
 
 async function planNetcdf(file: RandomAccess, options: LayerOptions, name: string) {

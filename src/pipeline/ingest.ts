@@ -131,7 +131,11 @@ export async function ingest(
 }
 
 /** Statistics that contradict what a layer's file says its values are. */
-function methodFindings(spec: Spec, layer: string, { methods }: LayerExtraction): RawFinding[] {
+export function methodFindings(
+  spec: Spec,
+  layer: string,
+  { methods }: Pick<LayerExtraction, "methods">,
+): RawFinding[] {
   if (methods === undefined) return [];
   return spec.covariates.flatMap((one) => {
     if (one.source !== "layer" || one.layer !== layer) return [];

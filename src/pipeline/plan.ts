@@ -5,7 +5,7 @@ import { silentProgress } from "../effects/effects.ts";
 import { type LayerPlan, planLayers } from "../layers/plan.ts";
 import { makeCovariates } from "./covariates.ts";
 import { nodeEffects } from "./effects.ts";
-import { type Ingested, ingest } from "./ingest.ts";
+import { type Ingested, ingest, methodFindings } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { judge } from "./policy.ts";
 
@@ -61,7 +61,12 @@ export async function planRun(loaded: Loaded, signal: AbortSignal): Promise<Plan
     layers,
     ingested,
     findings: judge(
-      [...ingested.findings, ...layers.flatMap((one) => one.findings), ...found, ...leaks],
+      [
+        ...ingested.findings,
+        ...layers.flatMap((one) => [...one.findings, ...methodFindings(spec, one.name, one)]),
+        ...found,
+        ...leaks,
+      ],
       spec.findings,
     ),
     sites: ingested.sites,

@@ -1,5 +1,8 @@
-import { readFileSync } from "node:fs";
+import { execFileSync } from "node:child_process";
+import { mkdtempSync, readFileSync, rmSync, writeFileSync } from "node:fs";
+import { tmpdir } from "node:os";
 import { join } from "node:path";
+import { pathToFileURL } from "node:url";
 import { deflateSync, gzipSync } from "node:zlib";
 import { describe, expect, test } from "vitest";
 import type { Where } from "../../src/data/place.ts";
@@ -8,6 +11,7 @@ import { extractLayers } from "../../src/layers/extract.ts";
 import type { LayerOptions } from "../../src/layers/options.ts";
 import { planLayers } from "../../src/layers/plan.ts";
 import { randomStream } from "../../src/math/random.ts";
+import { builtFile, ensureBuilt } from "../pipeline/built.ts";
 import { DATA, effectsOf, madeTiff } from "./effects.ts";
 
 const OPTIONS: LayerOptions = {
@@ -172,6 +176,46 @@ describe("truncated, corrupt and lying files end in an InputError that names the
     const before = process.memoryUsage().rss;
     expect(await errorName(bytes)).toBe(name);
     expect(process.memoryUsage().rss - before).toBeLessThan(300e6);
+  });
+
+  test("all of them together take less than 500 MB of a process of their own", { timeout: 60_000 }, () => {
+    const folder = mkdtempSync(join(tmpdir(), "covey-broken-"));
+    try {
+      cases.forEach(([, bytes], i) => {
+        writeFileSync(join(folder, `${i}.tif`), bytes);
+      });
+      const places = [{ place: EVERYWHERE, use: { by: "area", validArea: 0 } }];
+      ensureBuilt("layers/extract.ts", "pipeline/effects/files.ts");
+      const url = (source: string) => JSON.stringify(pathToFileURL(builtFile(source)).href);
+      const script = `
+        import { extractLayers } from ${url("layers/extract.ts")};
+        import { filesBelow } from ${url("pipeline/effects/files.ts")};
+        const effects = {
+          files: filesBelow(${JSON.stringify(folder)}),
+          progress: { start: () => ({ tick() {}, done() {} }) },
+          reuse: { get: async () => undefined, put: async () => {} },
+          checkInterrupted() {},
+        };
+        const names = [];
+        for (let i = 0; i < ${cases.length}; i++) {
+          const options = { ...${JSON.stringify(OPTIONS)}, files: [i + ".tif"] };
+          await extractLayers("x", options, ${JSON.stringify(places)}, effects).then(
+            () => names.push("none"),
+            (error) => names.push(error.facts?.name ?? String(error)),
+          );
+        }
+        console.log(JSON.stringify({ names, kilobytes: process.resourceUsage().maxRSS }));`;
+      const said = execFileSync(process.execPath, ["--input-type=module", "-e", script], {
+        encoding: "utf8",
+      });
+      const { names, kilobytes } = JSON.parse(said) as { names: string[]; kilobytes: number };
+      expect(names).toEqual(cases.map(([, , name]) => name));
+      expect(kilobytes).toBeLessThan(500_000);
+      // A process that reads nothing takes some: else the number would not be one of memory.
+      expect(kilobytes).toBeGreaterThan(30_000);
+    } finally {
+      rmSync(folder, { recursive: true });
+    }
   });
 
   function cut(name: string): Uint8Array {

@@ -134,6 +134,8 @@ export async function openHdf5(file: RandomAccess): Promise<Dataset> {
       const dataset = datasetOf(variable);
       if (!checked.has(dataset)) refuseUnknown(dataset, variable.name, file.path);
       checked.add(dataset);
+      const short = count.findIndex((one, d) => start[d] + one > variable.shape[d]);
+      if (short >= 0) throw unfinished(variable, short, start[short] + count[short], file.path);
       if (count.some((one) => one === 0)) return new Float64Array(0);
       const read = () =>
         count.length === 0
@@ -297,6 +299,11 @@ function typeOf({ type, size, signed }: Hdf5Dataset["metadata"]): NcType {
     default:
       return "other";
   }
+}
+
+/** Along a dimension without a limit each variable has a length of its own; one that is still being written lags. */
+function unfinished({ name, shape, dimensions }: NcVariable, d: number, wanted: number, path: string) {
+  return brokenNetcdf(path, `a variable ${name} of ${shape[d]} steps along ${dimensions[d]}, not ${wanted}`);
 }
 
 function refuseUnknown({ filters }: Hdf5Dataset, name: string, path: string): void {

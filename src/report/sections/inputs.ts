@@ -8,6 +8,7 @@ import type { ReportInput } from "../input.ts";
 import { brief, counted, percent, show } from "../numbers.ts";
 import { caution, covariateName, figureBlock, grid, type Section, themeMark } from "../parts.ts";
 import { extent } from "../scale.ts";
+import { qualityBlock } from "./quality.ts";
 
 export function timeSection(input: ReportInput, figures: readonly Figure[]): Section {
   const lengths = input.intervals.map((one) => one.length);
@@ -78,6 +79,6 @@ export function inputsSection(input: ReportInput, cast: Cast, figures: readonly 
     body: html`<p>${counted(cast.members.length, "candidate covariate")} in ${counted(cast.themes.length, "theme")}; ${counted(entered.size, "one", "of them")} ${entered.size === 1 ? "stands" : "stand"} in the matrix, ${counted(input.leftOut.length, "was", "were")} left out.${windows.length > 0 && ` Of ${windows.length} windows ${full} (${percent(full / windows.length)}) were observed in full.`}</p>
 <ul class="themes">${cast.themes.map((theme) => html`<li><span class="cov">${themeMark(theme)}${theme.name}</span></li>`)}</ul>
 ${grid(cast, "The candidates", [{ text: "covariate" }, { text: "theme" }, { text: "definition", look: "w" }, { text: "unit" }, { text: "intervals with a value", look: "n" }, { text: "mean", look: "n" }, { text: "range", look: "n" }, { text: "in the matrix", look: "w" }], rows)}
-${figureBlock(figures, "covariate-values")}${figureBlock(figures, "observed-series")}${figureBlock(figures, "completeness")}`,
+${figureBlock(figures, "covariate-values")}${figureBlock(figures, "observed-series")}${figureBlock(figures, "completeness")}${qualityBlock(input, cast)}`,
   };
 }

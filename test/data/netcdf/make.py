@@ -367,5 +367,16 @@ EXPECTED["h5py.nc"] = {
     "values": [float(one) for one in field("f4", (T, NY, NX)).astype("f8").reshape(-1)],
 }
 
+# Along a dimension without a limit each variable of a NetCDF-4 file has a length of its own: values lag behind times.
+with netCDF4.Dataset("lagging.nc", "w") as d:
+    d.createDimension("time", None)
+    d.createDimension("lat", 2)
+    d.createDimension("lon", 2)
+    for k, unit, at in (("time", "days since 2001-01-01", range(5)), ("lat", "degrees_north", (51, 50)), ("lon", "degrees_east", (7, 8))):
+        c = d.createVariable(k, "f8", (k,))
+        c.units = unit
+        c[:] = list(at)
+    d.createVariable("x", "f4", ("time", "lat", "lon"))[0:3] = np.ones((3, 2, 2))
+
 with open("expected.json", "w") as out:
     json.dump(EXPECTED, out)

@@ -119,6 +119,16 @@ describe("what the library and the format leave to the reader", () => {
   });
 });
 
+test("a variable that holds fewer steps than the times beside it is named with both numbers", async () => {
+  const dataset = await openNetcdf(inMemory(bytesOf("lagging.nc"), "lagging.nc"));
+  const x = dataset.variables.get("x");
+  if (x === undefined) throw new Error("no x");
+  expect(x.shape).toEqual([3, 2, 2]);
+  expect(Array.from(dataset.read(x, [0, 0, 0], [3, 1, 1]))).toEqual([1, 1, 1]);
+  expect(() => dataset.read(x, [0, 0, 0], [5, 1, 1])).toThrow(/lagging\.nc.*x of 3 steps along time, not 5/);
+  dataset.close();
+});
+
 // The general-purpose package netcdfjs reads CDF-1 and 2 (whole variables only, and no CDF-5).
 describe("the header as another reader has it", () => {
   test.each(["cdf1.nc", "cdf2.nc", "one-record.nc"])("%s", async (name) => {
