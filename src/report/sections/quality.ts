@@ -5,7 +5,7 @@ import { percent } from "../numbers.ts";
 import { grid } from "../parts.ts";
 
 /** How much of the layers their quality numbers refused, from the table that is written beside the page. */
-export function qualityBlock({ tables }: ReportInput, cast: Cast): Html | undefined {
+export function qualityBlock({ tables }: Pick<ReportInput, "tables">, cast: Cast): Html | undefined {
   const table = tables.find((one) => one.name === "layer-quality");
   if (table === undefined) return undefined;
   const column = (name: string) => table.columns.findIndex((one) => one.name === name);

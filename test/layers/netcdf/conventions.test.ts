@@ -181,6 +181,10 @@ describe("cell methods (CF 1.11 §7.3)", () => {
     });
     expect(findings.map((one) => one.kind)).toEqual(["layer-methods"]);
     expect(methods?.text).toBe("time: mean");
+    const { files } = effectsOf({
+      "x.nc": madeClassic(gridOf([0, 31], days, {}, { cell_methods: "time: mean" })),
+    });
+    expect((await planLayers("x", { ...OPTIONS, files: ["x.nc"] }, files)).methods?.text).toBe("time: mean");
     expect(kindFinding("x", "f", "time: maximum within days time: mean over days", "time", "maximum")).toBe(
       undefined,
     );
