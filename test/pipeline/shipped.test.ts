@@ -11,7 +11,7 @@ import { bytesBelow, type Edit, pipelineIn, ROOT, runHere, temporaryFolder } fro
 // The pipelines that ship, over the sample study, with few permutations; written to a temporary folder.
 const NAMES = ["roost", "stations-only", "layers-only", "covariates-only"];
 /** Two chunks of work, so that two workers have one each. */
-const FEW: Edit = [/fit: shrunken \}/, "fit: shrunken, permutations: 19, resamples: 5 }"];
+const FEW: Edit = [/fit: shrunken \}/, "fit: shrunken, permutations: 19, resamples: 2 }"];
 
 interface Run {
   readonly done: Executed;
