@@ -7,6 +7,7 @@ import { gradientTolerance, inverseLogit, totalReleases } from "../survival/fit.
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { refuseSolution, solveNull } from "./path.ts";
 import { covariatePositions, designWith, type ScreenProblem } from "./problem.ts";
+import { inRowSpace } from "./row-space.ts";
 import { withRidge } from "./weights.ts";
 
 /** One ridge solution: −log L + κ Σ β² at its least. */
@@ -44,14 +45,16 @@ const STEPS = 40;
  * 10 to 10⁻⁵ times the number of releases in 40 log-equal steps, κ by AICc with the effective parameters
  * tr[(H + 2κD)⁻¹ H], H the information at the solution and D marking the penalised coefficients (Gray 1992, JASA 87:942;
  * Hastie, Tibshirani & Friedman 2009, eq. 3.50 for the linear case). Nothing is selected: every effect stays in,
- * shrunken, and correlated covariates share what they explain. Throws `screen.no-optimum` where a fit does not converge.
+ * shrunken, and correlated covariates share what they explain. With more covariates than rows it is solved in their row space
+ * (`inRowSpace`), where the trace is the same: each direction left out has H = 0 and counts nothing. Throws `screen.no-optimum` where a fit does not converge.
  */
 export function ridgePath(problem: ScreenProblem, sampleSize: number): RidgePath {
-  const smooth = cjsLikelihood(problem.data, designWith(problem));
-  const positions = covariatePositions(problem);
+  const space = inRowSpace(problem);
+  const smooth = cjsLikelihood(problem.data, designWith(space.problem));
+  const positions = covariatePositions(space.problem);
   const releases = totalReleases(problem.data);
   const tolerance = gradientTolerance(problem.data);
-  let x = solveNull(problem, smooth).x;
+  let x = solveNull(space.problem, smooth).x;
   const steps = Array.from({ length: STEPS }, (_, i): RidgeStep => {
     const strength = releases * STRONGEST * (WEAKEST / STRONGEST) ** (i / (STEPS - 1));
     const solution = proximalNewton(withRidge(smooth, positions, strength), noPenalty, x, {
@@ -63,10 +66,11 @@ export function ridgePath(problem: ScreenProblem, sampleSize: number): RidgePath
     x = solution.x;
     const minus2LogL = 2 * smooth.evaluate(x, new Float64Array(smooth.dimension));
     const effective = effectiveParameters(smooth, positions, strength);
+    const estimates = space.lengthen(x);
     return {
       strength,
-      estimates: x,
-      coefficients: Float64Array.from(positions, (k) => x[k]),
+      estimates,
+      coefficients: Float64Array.from(covariatePositions(problem), (k) => estimates[k]),
       minus2LogL,
       effective,
       aicc: aicc(minus2LogL, effective, sampleSize),

@@ -57,15 +57,13 @@ export function twoStepCandidates(
     Array.from({ length: fixed }, (_, k) => k),
     "REML",
   );
-  const { normal, right, half } = normalEquations(rotated, sigma);
-  const ridge = Float64Array.from(normal);
-  for (let k = fixed; k < d; k++) ridge[k * d + k] += 2 * RIDGE * problem.releases;
-  const first = Float64Array.from(right);
-  if (!choleskyInPlace(ridge, d)) return [];
-  choleskySolve(ridge, d, first);
+  const { columns, y } = weighted(rotated, sigma);
+  const half = 0.5 * dot(y, y);
+  const first = ridgeCoefficients(columns, fixed, y, 2 * RIDGE * problem.releases);
+  if (first === undefined) return [];
   const weights = new Float64Array(d);
-  weights.set(weightsFrom(first.subarray(fixed), options.gamma), fixed);
-  const smooth = quadratic(normal, right, half, d);
+  weights.set(weightsFrom(first, options.gamma), fixed);
+  const smooth = leastSquares(columns, y);
   const held = weights.map((w, k) => (k < fixed ? w : Number.POSITIVE_INFINITY));
   const solve = (lambda: number, by: Float64Array, from: Float64Array) =>
     proximalNewton(smooth, weightedL1(lambda, by), from, { tolerance: 1e-9 * half, iterations: 50 });
@@ -82,43 +80,79 @@ export function twoStepCandidates(
   return [...sets.values()];
 }
 
-/** XᵀWX, XᵀWy and ½ yᵀWy in the rotated coordinates, w_i = λ_i/(1 + σ²λ_i). */
-function normalEquations({ two, columns }: RotatedColumns, sigma: number) {
-  const d = columns.length;
-  const normal = new Float64Array(d * d);
-  const right = new Float64Array(d);
-  let half = 0;
-  for (let i = 0; i < two.eigenvalues.length; i++) {
-    const w = two.eigenvalues[i] / (1 + sigma * sigma * two.eigenvalues[i]);
-    half += 0.5 * w * two.rotated[i] ** 2;
-    for (let a = 0; a < d; a++) {
-      right[a] += w * columns[a][i] * two.rotated[i];
-      for (let b = 0; b < d; b++) normal[a * d + b] += w * columns[a][i] * columns[b][i];
-    }
-  }
-  return { normal, right, half };
+/** Columns and interval logits in the rotated coordinates times √w, w_i = λ_i/(1 + σ²λ_i). */
+function weighted({ two, columns }: RotatedColumns, sigma: number) {
+  const root = two.eigenvalues.map((value) => Math.sqrt(value / (1 + sigma * sigma * value)));
+  const scaled = (column: Float64Array) => column.map((value, i) => root[i] * value);
+  return { columns: columns.map(scaled), y: scaled(two.rotated) };
 }
 
-/** ½ βᵀNβ − rᵀβ + ½ yᵀWy. */
-function quadratic(normal: Float64Array, right: Float64Array, half: number, d: number): Smooth {
+/**
+ * Ridge coefficients of the columns from `fixed` on, those before unpenalised: the least of ½|y − Fα − Zβ|² + ½κ Σβ². By the dual
+ * (Hastie, Tibshirani & Friedman 2009, §18.3.5), n × n whatever the number of columns: with V = ZZᵀ + κI
+ *
+ *     α = (FᵀV⁻¹F)⁻¹ FᵀV⁻¹y,   β = ZᵀV⁻¹(y − Fα).
+ *
+ * Undefined where the columns F cannot be told apart.
+ */
+function ridgeCoefficients(
+  columns: readonly Float64Array[],
+  fixed: number,
+  y: Float64Array,
+  kappa: number,
+): Float64Array | undefined {
+  const n = y.length;
+  const v = new Float64Array(n * n);
+  for (let k = fixed; k < columns.length; k++) {
+    const z = columns[k];
+    for (let i = 0; i < n; i++) for (let j = 0; j <= i; j++) v[i * n + j] += z[i] * z[j];
+  }
+  for (let i = 0; i < n; i++) v[i * n + i] += kappa;
+  if (!choleskyInPlace(v, n)) return undefined;
+  const solved = (column: Float64Array) => {
+    const out = Float64Array.from(column);
+    choleskySolve(v, n, out);
+    return out;
+  };
+  const f = columns.slice(0, fixed);
+  const vf = f.map(solved);
+  const normal = new Float64Array(fixed * fixed);
+  const alpha = Float64Array.from(vf, (one) => dot(one, y));
+  for (let a = 0; a < fixed; a++) for (let b = 0; b < fixed; b++) normal[a * fixed + b] = dot(f[a], vf[b]);
+  if (!choleskyInPlace(normal, fixed)) return undefined;
+  choleskySolve(normal, fixed, alpha);
+  const rest = y.map((value, i) => value - f.reduce((sum, one, a) => sum + one[i] * alpha[a], 0));
+  const by = solved(rest);
+  return Float64Array.from({ length: columns.length - fixed }, (_, k) => dot(columns[fixed + k], by));
+}
+
+/** ½|y − Xβ|². */
+function leastSquares(columns: readonly Float64Array[], y: Float64Array): Smooth {
+  const residual = new Float64Array(y.length);
   return {
-    dimension: d,
+    dimension: columns.length,
     evaluate: (x, gradient) => {
-      let value = half;
-      for (let a = 0; a < d; a++) {
-        let row = 0;
-        for (let b = 0; b < d; b++) row += normal[a * d + b] * x[b];
-        gradient[a] = row - right[a];
-        value += x[a] * (0.5 * row - right[a]);
+      residual.set(y);
+      for (let k = 0; k < x.length; k++) {
+        const column = columns[k];
+        if (x[k] !== 0) for (let i = 0; i < residual.length; i++) residual[i] -= x[k] * column[i];
       }
-      return value;
+      for (let k = 0; k < x.length; k++) gradient[k] = -dot(columns[k], residual);
+      return 0.5 * dot(residual, residual);
     },
     curvature: (which, out) => {
-      which.forEach((a, i) => {
-        which.forEach((b, j) => {
-          out[i * which.length + j] = normal[a * d + b];
-        });
-      });
+      const m = which.length;
+      for (let i = 0; i < m; i++)
+        for (let j = i; j < m; j++) {
+          out[i * m + j] = dot(columns[which[i]], columns[which[j]]);
+          out[j * m + i] = out[i * m + j];
+        }
     },
   };
+}
+
+function dot(a: Float64Array, b: Float64Array): number {
+  let sum = 0;
+  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
+  return sum;
 }

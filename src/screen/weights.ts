@@ -6,6 +6,7 @@ import { fixedSurvivalColumns } from "../survival/design.ts";
 import { gradientTolerance, totalReleases } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { covariatePositions, designWith, type ScreenProblem } from "./problem.ts";
+import { inRowSpace } from "./row-space.ts";
 
 export interface AdaptiveWeights {
   /** w_k = 1/|β̃_k|^γ, K. */
@@ -57,16 +58,21 @@ export function weightsFrom(first: Float64Array, gamma: number): Float64Array {
   return first.map((value) => 1 / Math.abs(value) ** gamma);
 }
 
-/** The K covariate coefficients that minimise −log L / n_releases + 0.005 Σβ². */
+/**
+ * The K covariate coefficients that minimise −log L / n_releases + 0.005 Σβ². Start: all d coefficients, of which those of
+ * covariates are not used where there are more of them than rows (`inRowSpace`).
+ */
 export function ridgeEstimates(problem: ScreenProblem, start: Float64Array): Float64Array {
-  const smooth = cjsLikelihood(problem.data, designWith(problem));
-  const positions = covariatePositions(problem);
+  const space = inRowSpace(problem);
+  const smooth = cjsLikelihood(space.problem.data, designWith(space.problem));
+  const positions = covariatePositions(space.problem);
   const strength = RIDGE * totalReleases(problem.data);
-  const solved = proximalNewton(withRidge(smooth, positions, strength), noPenalty, start, {
+  const solved = proximalNewton(withRidge(smooth, positions, strength), noPenalty, space.shorten(start), {
     tolerance: gradientTolerance(problem.data),
     iterations: 500,
   });
-  return Float64Array.from(positions, (k) => solved.x[k]);
+  const x = space.lengthen(solved.x);
+  return Float64Array.from(covariatePositions(problem), (k) => x[k]);
 }
 
 /** f(x) + strength · Σ x_k² over the coordinates given. */

@@ -74,11 +74,28 @@ export function largestViolation(penalty: Penalty, x: Float64Array, gradient: Fl
   return worst;
 }
 
+/** At most this many coordinates more than those off zero enter a step: of many that violate their condition, few stay. */
+const ENTRANTS = 10;
+
+/**
+ * Unpenalised coordinates, those off zero, and the zero ones that violate their condition most; the others get their turn
+ * in the next step, since only the conditions of all d coordinates end the iteration.
+ */
 function workingSet(penalty: Penalty, x: Float64Array, gradient: Float64Array): Int32Array {
   const which: number[] = [];
-  for (let k = 0; k < x.length; k++)
-    if (x[k] !== 0 || !penalty.penalised(k) || penalty.distance(k, x[k], gradient[k]) > 0) which.push(k);
-  return Int32Array.from(which);
+  let entrants: { readonly k: number; readonly distance: number }[] = [];
+  for (let k = 0; k < x.length; k++) {
+    if (x[k] !== 0 || !penalty.penalised(k)) {
+      which.push(k);
+      continue;
+    }
+    const distance = penalty.distance(k, 0, gradient[k]);
+    if (distance > 0) entrants.push({ k, distance });
+  }
+  if (entrants.length > ENTRANTS)
+    entrants = entrants.sort((a, b) => b.distance - a.distance || a.k - b.k).slice(0, ENTRANTS);
+  for (const { k } of entrants) which.push(k);
+  return Int32Array.from(which).sort();
 }
 
 /**

@@ -34,6 +34,8 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   for (let g = 0; g < strata; g++)
     for (let t = 0; t < n; t++) to[g * n + t] = design.closed?.[t] === 1 ? g : (data[g].becomes ?? g);
 
+  const etas = new Float64Array(rows); // logit s
+  const zetas = new Float64Array(rows); // logit p
   const s1 = new Float64Array(rows); // 1 − s
   const phi = new Float64Array(rows);
   const die = new Float64Array(rows); // 1 − φ
@@ -45,13 +47,14 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const byRecapture = new Float64Array(rows); // ∂log L/∂ logit p
 
   function predictors(x: Float64Array): number {
+    combine(survivalColumns, x, 0, etas);
+    combine(recaptureColumns, x, b, zetas);
     let logLikelihood = 0;
     for (let g = 0; g < strata; g++) {
       const { alive, seen, passed } = data[g];
       for (let t = 0; t < n; t++) {
         const r = g * n + t;
-        let eta = 0;
-        for (let k = 0; k < b; k++) eta += survivalColumns[k][r] * x[k];
+        const eta = etas[r];
         // log s = −log(1 + e^−η) without overflow or cancellation on either side
         const small = Math.exp(-Math.abs(eta));
         const logS = eta >= 0 ? -Math.log1p(small) : eta - Math.log1p(small);
@@ -72,8 +75,7 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
           if (passed[t] > 0) logLikelihood += passed[t] * Math.log(1 - known);
           continue;
         }
-        let zeta = 0;
-        for (let k = 0; k < recaptureColumns.length; k++) zeta += recaptureColumns[k][r] * x[b + k];
+        const zeta = zetas[r];
         const tiny = Math.exp(-Math.abs(zeta));
         const log1 = Math.log1p(tiny);
         p[r] = (zeta >= 0 ? 1 : tiny) / (1 + tiny);
@@ -198,6 +200,16 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   }
 
   return { dimension, evaluate, curvature };
+}
+
+/** Σ_k x_{from+k} · column_k into `out`; coefficients of 0, the most on a path of many covariates, cost nothing. */
+function combine(columns: readonly Float64Array[], x: Float64Array, from: number, out: Float64Array): void {
+  out.fill(0);
+  for (let k = 0; k < columns.length; k++) {
+    const column = columns[k];
+    const by = x[from + k];
+    if (by !== 0) for (let r = 0; r < out.length; r++) out[r] += column[r] * by;
+  }
 }
 
 function dot(a: Float64Array, b: Float64Array): number {
