@@ -31,6 +31,19 @@ export interface CovariateMatrix {
   readonly raw: Matrix;
   /** After transform, detrend and standardise, T−1 × K. */
   readonly standard: Matrix;
+  /** Covariates by stratum, which have no column here; none if not said. */
+  readonly byStratum?: readonly StratumColumn[];
+}
+
+/** A covariate whose values differ between strata, put together from columns of the matrix. */
+export interface StratumColumn {
+  /** Centre and scale over all G·n rows. */
+  readonly recipe: ColumnRecipe;
+  readonly strata: readonly string[];
+  /** The column of the matrix that each stratum takes its values from. */
+  readonly parts: readonly string[];
+  /** Standardised over all rows, G·n, stratum after stratum. */
+  readonly values: Float64Array;
 }
 
 /** A covariate that did not enter the matrix. */

@@ -20,6 +20,7 @@ import { type Ingested, layerKey } from "./ingest.ts";
 import type { Loaded } from "./load.ts";
 import { ofDefinition } from "./reuse/inputs.ts";
 import type { Steps } from "./reuse/steps.ts";
+import { withStrata } from "./strata.ts";
 
 /** A covariate that was aggregated, with the definition it came from where there is one. */
 export interface Made {
@@ -58,6 +59,7 @@ export function prepareMade({ spec }: Loaded, found: Ingested, made: readonly Ma
   const prepared = prepareCovariates(covariates, found.intervals, spec.prepare, base);
   return {
     ...prepared,
+    matrix: withStrata(spec, found, prepared.matrix),
     covariates,
     sources: new Map(made.map((one) => [one.covariate.name, one.definition?.series ?? []])),
     findings: [...made.flatMap((one) => one.findings), ...prepared.findings],

@@ -12,6 +12,7 @@ import { type Detection, detect } from "../simulate/detect.ts";
 import { ownDirections, type ResidualEstimate, residualEstimate } from "../simulate/residual.ts";
 import { detectionSentences } from "../simulate/says.ts";
 import { type StudyDesign, studyDesign } from "../simulate/study-design.ts";
+import type { SurvivalOptions } from "../survival/options.ts";
 import { detectionTable, simulatedDesignTable } from "../tables/detection-tables.ts";
 import { stampAt } from "./effects/files.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
@@ -58,7 +59,7 @@ export interface Simulated {
 
 /**
  * What a study can detect: reads and prepares it as a run does, up to the screen as posed, then draws studies from its
- * design and publishes what the procedure made of them. Throws `simulate.no-captures`,
+ * design and publishes what the procedure made of them. Throws `simulate.no-captures`, `simulate.no-drawing`,
  * `simulate.unknown-covariate`, `simulate.same-folder` and what the stages throw.
  */
 export async function simulate(
@@ -71,6 +72,8 @@ export async function simulate(
   const folder = options.folder ?? `${loaded.outputFolder}-simulated`;
   if (loaded.spec.captures === undefined) throw noCaptures(loaded);
   if (disk.resolve(folder) === disk.resolve(loaded.outputFolder)) throw sameFolder(folder);
+  const undrawn = undrawable(loaded.spec.survival);
+  if (undrawn !== undefined) throw noDrawing(loaded, undrawn);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
   const inputs = recording(world.files, stampAt);
   const effects = { ...world, files: inputs.files };
@@ -121,6 +124,13 @@ export async function simulate(
   } finally {
     output.close();
   }
+}
+
+/** What in a survival part no studies can be drawn with yet, by its key. */
+function undrawable({ sinceMarking, split, byStratum }: SurvivalOptions): string | undefined {
+  if (sinceMarking === "first interval apart") return "time since marking";
+  if (split === "years") return "split";
+  return byStratum === undefined ? undefined : "covariates by stratum";
 }
 
 function positionsOf(names: readonly string[], { problem }: Posed): readonly number[] {
@@ -190,6 +200,16 @@ function noCaptures({ file }: Loaded): InputError {
     found: "no captures in the pipeline",
     where: { file, cell: "captures" },
     remedy: "name the captures in the pipeline file",
+  });
+}
+
+function noDrawing({ file, positions }: Loaded, key: string): InputError {
+  return new InputError({
+    name: "simulate.no-drawing",
+    expected: "a survival part with one value per interval, the same from an animal's first interval on",
+    found: key,
+    where: { file, ...(positions(["survival", key]) ?? {}), cell: `survival > ${key}` },
+    remedy: `simulate a copy of the pipeline without ${key}; what it finds then holds for that simpler model`,
   });
 }
 

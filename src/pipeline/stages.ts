@@ -102,7 +102,8 @@ export async function compareStage(
 ): Promise<Comparison> {
   const names = posed.problem.covariates.map((one) => one.name);
   const kept = diagnosis?.kept ?? names;
-  const pruned = names.filter((name) => kept.includes(name));
+  const apart = new Set(matrix.byStratum?.map((one) => one.recipe.name));
+  const pruned = names.filter((name) => apart.has(name) || kept.includes(name));
   const chunks = foldChunks(posed.problem, screened, screened.options, {
     collinearity: spec.collinearity,
     components:

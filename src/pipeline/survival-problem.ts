@@ -1,4 +1,4 @@
-import type { CovariateMatrix } from "../covariates/result.ts";
+import type { CovariateMatrix, StratumColumn } from "../covariates/result.ts";
 import { yearIndex } from "../covariates/time.ts";
 import { column } from "../data/matrix.ts";
 import { InputError } from "../errors.ts";
@@ -14,6 +14,7 @@ import { sinceMarking } from "../survival/since-marking.ts";
 import { splitStatistics } from "../survival/split-statistics.ts";
 import { type SufficientStatistics, sufficientStatistics } from "../survival/statistics.ts";
 import type { Ingested } from "./ingest.ts";
+import { survivalStrata } from "./strata.ts";
 
 export interface Posed {
   readonly problem: ScreenProblem;
@@ -22,7 +23,11 @@ export interface Posed {
 
 /** The columns that may be chosen: those the user did not drop and does not force in. */
 export function candidateColumns(spec: Spec, matrix: CovariateMatrix): readonly number[] {
-  const dropped = new Set(spec.collinearity.decisions.map((one) => one.drop));
+  const dropped = new Set([
+    ...spec.collinearity.decisions.map((one) => one.drop),
+    // what a covariate by stratum is made of has no part of its own
+    ...(matrix.byStratum ?? []).flatMap((one) => one.parts),
+  ]);
   return matrix.names.flatMap((name, k) =>
     dropped.has(name) || spec.survival.forced.includes(name) ? [] : [k],
   );
@@ -32,9 +37,11 @@ export function candidateColumns(spec: Spec, matrix: CovariateMatrix): readonly 
 export function poseScreen(spec: Spec, found: Ingested, matrix: CovariateMatrix): Posed | undefined {
   if (found.captures === undefined) return undefined;
   const marking = spec.survival.sinceMarking === "first interval apart";
+  const strata = found.captures.counts.map((one) => one.stratum);
   const bare: Frame = {
-    strata: found.captures.counts.map((one) => one.stratum),
+    strata,
     intervals: found.intervals.length,
+    ...survivalStrata(spec, strata, found.intervals.length),
     lengths: Float64Array.from(found.intervals, (one) => one.length),
     forced: [],
     effort: standardEffort(found),
@@ -46,15 +53,25 @@ export function poseScreen(spec: Spec, found: Ingested, matrix: CovariateMatrix)
     name,
     values: marking ? overMarking(bare, values) : values,
   });
-  const named = (k: number) => rows({ name: matrix.names[k], values: column(matrix.standard, k) });
+  const byStratum = matrix.byStratum ?? [];
+  // beside a covariate by stratum every covariate has a value per row
+  const shape = (one: Float64Array) =>
+    byStratum.length === 0 ? one : Float64Array.from(strata.flatMap(() => Array.from(one)));
+  const named = (k: number) => rows({ name: matrix.names[k], values: shape(column(matrix.standard, k)) });
+  const own = ({ recipe, values }: StratumColumn) => rows({ name: recipe.name, values });
   const needed = (where: string) => (name: string) => {
+    const apart = byStratum.find((one) => one.recipe.name === name);
+    if (apart !== undefined) return own(apart);
     const k = matrix.names.indexOf(name);
     if (k < 0) throw leftOut(name, where);
     return named(k);
   };
   const acting = (one: NamedColumn) =>
     spec.survival.covariatesActOn === "later intervals" ? onLaterIntervals(whole, one) : one;
-  const candidates = candidateColumns(spec, matrix).map(named);
+  const candidates = [
+    ...candidateColumns(spec, matrix).map(named),
+    ...byStratum.filter((one) => !spec.survival.forced.includes(one.recipe.name)).map(own),
+  ];
   const frame: Frame = {
     ...whole,
     forced: [

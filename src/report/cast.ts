@@ -50,7 +50,8 @@ export function castOf(input: ReportInput): Cast {
   const known = new Map<string, { theme: string; unit: string; definition: string }>();
   for (const { name, theme, unit, definition } of input.covariates)
     known.set(name, { theme, unit, definition });
-  for (const { name, theme, unit, definition } of input.matrix.recipes)
+  const apart = input.matrix.byStratum?.map((one) => one.recipe) ?? [];
+  for (const { name, theme, unit, definition } of [...input.matrix.recipes, ...apart])
     if (!known.has(name)) known.set(name, { theme, unit, definition });
   const themes = [...new Set([...known.values()].map((one) => one.theme))].map(lookOf);
   const members = [...known].map(([name, { theme, unit, definition }], index) => ({

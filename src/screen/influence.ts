@@ -1,5 +1,5 @@
 import { mean, sampleSd } from "../math/quantile.ts";
-import type { NamedColumn } from "../survival/design.ts";
+import { inGroup, type NamedColumn, survivalGroups } from "../survival/design.ts";
 import type { ScreenOptions } from "./options.ts";
 import type { ScreenProblem } from "./problem.ts";
 import { type ProcedureSetting, runProcedure } from "./procedure.ts";
@@ -27,7 +27,11 @@ export function leaveOneIntervalOut(
   const names = problem.covariates.map((one) => one.name);
   const named = (set: readonly number[]) => set.map((k) => names[k]);
   return Array.from({ length: setting.intervals }, (_, t) => {
-    const found = runProcedure(withoutInterval(problem, t), lessOne(setting), options);
+    const found = runProcedure(
+      withoutInterval(problem, t),
+      lessOne(setting, survivalGroups(problem.frame)),
+      options,
+    );
     return {
       interval: t,
       byYears: named(found.byYears.chosen),
@@ -37,9 +41,13 @@ export function leaveOneIntervalOut(
   });
 }
 
-/** One interval fewer speaks, and one parameter more is spent on it. */
-function lessOne(setting: ProcedureSetting): ProcedureSetting {
-  return { ...setting, intervals: setting.intervals - 1, constantParameters: setting.constantParameters + 1 };
+/** One interval fewer speaks, and its own survivals are spent on it. */
+function lessOne(setting: ProcedureSetting, spent: number): ProcedureSetting {
+  return {
+    ...setting,
+    intervals: setting.intervals - 1,
+    constantParameters: setting.constantParameters + spent,
+  };
 }
 
 /** The problem with interval t on its own: an indicator forced in, the covariates 0 there and at sd 1 elsewhere. */
@@ -47,11 +55,20 @@ export function withoutInterval(problem: ScreenProblem, t: number): ScreenProble
   const { intervals: n, yearsOf } = problem.frame;
   const out = (row: number) => (yearsOf === undefined ? row % n : yearsOf[row % n]) === t;
   const indicator = Float64Array.from({ length: n }, (_, row) => (out(row) ? 1 : 0));
+  const name = `interval ${t + 1} alone`;
+  const { groups } = problem.frame;
+  const alone =
+    groups === undefined
+      ? [{ name, values: indicator }]
+      : Array.from({ length: survivalGroups(problem.frame) }, (_, group) => ({
+          name: `${name}, ${problem.frame.strata[groups.indexOf(group)]}`,
+          values: inGroup(problem.frame, group, indicator),
+        }));
   return {
     ...problem,
     frame: {
       ...problem.frame,
-      forced: [...problem.frame.forced, { name: `interval ${t + 1} alone`, values: indicator }],
+      forced: [...problem.frame.forced, ...alone],
     },
     covariates: problem.covariates.map((one) => standardWithout(one, out)),
   };

@@ -1,6 +1,6 @@
 import { designWith, type ScreenProblem } from "../screen/problem.ts";
 import type { Deviance } from "../survival/analysis-of-deviance.ts";
-import { intervalSurvival } from "../survival/design.ts";
+import { intervalSurvival, survivalContrasts } from "../survival/design.ts";
 import { fitModel } from "../survival/fit.ts";
 import { cjsLikelihood } from "../survival/likelihood.ts";
 import { designOf } from "../survival/recapture-choice.ts";
@@ -41,7 +41,7 @@ export function residualEstimate(
   const logit = (rate: number) => Math.log(rate / (1 - rate));
   for (let t = 0; t < n; t++) at[t] = logit(fit.survival[t].value);
   // contrasts between strata come after the first column in the one design, after the n intervals in the other
-  const contrasts = frame.strata.length - 1;
+  const contrasts = survivalContrasts(frame);
   at.set(fit.estimates.subarray(1, 1 + contrasts), n);
   const recaptureFrom = fit.estimates.length - (likelihood.dimension - n - contrasts);
   at.set(fit.estimates.subarray(recaptureFrom), n + contrasts);

@@ -1,4 +1,5 @@
 import type { CaptureOptions } from "../study/options.ts";
+import { byStratumProblems } from "./by-stratum-checks.ts";
 import { layerProblems } from "./layer-checks.ts";
 import type { KeyPath } from "./path.ts";
 import type { Problem } from "./problems.ts";
@@ -199,9 +200,10 @@ function markingProblems({ survival }: Spec, captures: CaptureOptions): Problem[
 function modelProblems(spec: Spec): Problem[] {
   const { prepare, collinearity, survival } = spec;
   const names = [...spec.covariates, ...prepare.derive].map(({ name }) => name);
+  const inModels = [...names, ...(survival.byStratum ?? []).map(({ name }) => name)];
   const problems: Problem[] = [];
-  const know = (path: KeyPath, name: string, atKey = false) => {
-    if (names.includes(name)) return;
+  const know = (path: KeyPath, name: string, atKey = false, among = names) => {
+    if (among.includes(name)) return;
     problems.push({
       ...unknownName(path, "a covariate", name, names, "name a covariate of this file"),
       atKey,
@@ -278,11 +280,11 @@ function modelProblems(spec: Spec): Problem[] {
       });
   }
   spec.recaptureCovariates?.forEach((name, i) => {
-    know(["recapture", "covariates", i], name);
+    know(["recapture", "covariates", i], name, false, inModels);
   });
   survival.forced.forEach((name, i) => {
     const path = ["survival", "forced", i];
-    know(path, name);
+    know(path, name, false, inModels);
     if (dropped.has(name))
       problems.push(
         conflict(
@@ -375,6 +377,7 @@ export function crossProblems(spec: Spec): Problem[] {
     infillProblems,
     needProblems,
     modelProblems,
+    byStratumProblems,
     rangeProblems,
     layerProblems,
     sensitivityProblems,

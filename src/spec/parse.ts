@@ -72,7 +72,7 @@ function toSpec(raw: RawPipeline, yaml: YamlText, problems: Problem[]): Spec {
     },
     collinearity: readCollinearity(raw.collinearity),
     components: { ...raw.components, keep: readKeep(raw.components.keep) },
-    survival: readSurvival(raw.survival),
+    survival: readSurvival(raw.survival, raw.captures?.strata ?? []),
     ...readRecapture(raw.recapture),
     screen: readScreen(raw.screen),
     sensitivity: readSensitivity(raw.sensitivity, problems),

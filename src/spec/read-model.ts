@@ -27,9 +27,16 @@ export function readKeep(raw: RawPipeline["components"]["keep"]): KeepRule {
   return { type: "number", number: raw.number };
 }
 
-export function readSurvival(raw: RawPipeline["survival"]): SurvivalOptions {
+/** Strata that are left out are all those of the captures. */
+export function readSurvival(raw: RawPipeline["survival"], ofCaptures: readonly string[]): SurvivalOptions {
+  const byStratum = Object.entries(raw["covariates by stratum"]).map(([name, { by, values }]) => ({
+    name,
+    by,
+    values: new Map(Object.entries(values)),
+  }));
   return {
-    strata: raw.strata,
+    strata: raw.strata ?? ofCaptures,
+    ...(byStratum.length === 0 ? {} : { byStratum }),
     forced: raw.forced,
     yearTrend: raw["year trend"],
     sinceMarking: raw["time since marking"],

@@ -144,7 +144,26 @@ export const place = oneOf("a feature of a GeoJSON file, a point, or a table of 
 ]);
 
 export const survival = allStated("the part of the model that speaks of survival", {
-  strata: stated(list("strata that shift survival", text("the name of a stratum", "sex"), ["sex"]), []),
+  strata: list(
+    "columns of the captures' strata that shift survival (if left out: all of them)",
+    text("the name of a stratum", "sex"),
+    ["sex"],
+  ).optional(),
+  "covariates by stratum": stated(
+    named(
+      "covariates whose values differ between strata, by name",
+      "the name of the covariate",
+      keys("the covariates that give a covariate its values, stratum by stratum", {
+        by: text("the column of the captures' strata that tells them apart", "site"),
+        values: named(
+          "a covariate of this file for each value of that column",
+          "a value of the column",
+          text("the name of a covariate", "winter rain north"),
+        ),
+      }),
+    ),
+    {},
+  ),
   forced: stated(
     list("covariates that are always in the model, unpenalised", text("the name of a covariate"), [
       "winter rain",

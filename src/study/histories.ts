@@ -62,6 +62,19 @@ export function stratumLabel(columns: readonly string[], values: readonly string
   return columns.map((column, i) => `${column.replaceAll("_", " ")}: ${values[i]}`).join(", ");
 }
 
+/** The value of each column in a label of `stratumLabel`; none for `all animals`. */
+export function stratumValues(columns: readonly string[], label: string): readonly string[] {
+  let rest = label;
+  return columns.map((column, i) => {
+    rest = rest.slice(column.length + ": ".length);
+    const next = columns[i + 1];
+    const end = next === undefined ? -1 : rest.indexOf(`, ${next.replaceAll("_", " ")}: `);
+    const value = end < 0 ? rest : rest.slice(0, end);
+    rest = end < 0 ? "" : rest.slice(end + ", ".length);
+    return value;
+  });
+}
+
 /**
  * Of `countsFrom`, the part that the newly marked make up: each animal's first release and its next capture. An animal
  * lost when it was first caught is not released and is in none.

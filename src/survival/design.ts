@@ -35,6 +35,11 @@ export interface Frame {
     readonly survival: readonly NamedColumn[];
     readonly recapture: readonly NamedColumn[];
   };
+  /**
+   * Where covariates have values by stratum: the group of each stratum, from 0. Strata of a group share all covariates, and one
+   * survival per interval is one per group × interval, since nothing less contains every model with such covariates.
+   */
+  readonly groups?: Int32Array;
   /** Where intervals are split into years: the interval each of the n years is of, ascending from 0. */
   readonly yearsOf?: Int32Array;
   /** Covariates of a recapture part by covariates, of the interval that the occasion closes. */
@@ -120,11 +125,42 @@ function intervalColumn(frame: Frame, t: number): Float64Array {
   return overStrata(frame, values);
 }
 
+/** Groups of strata with a survival per interval of their own; one where covariates are the same in all strata. */
+export function survivalGroups({ groups }: Frame): number {
+  return groups === undefined ? 1 : Math.max(...groups) + 1;
+}
+
+/** 1 in the rows of the strata of a group at the intervals where `values` (n) is. */
+export function inGroup({ strata, intervals, groups }: Frame, group: number, values: Float64Array) {
+  return Float64Array.from({ length: strata.length * intervals }, (_, r) =>
+    groups?.[Math.floor(r / intervals)] === group ? values[r % intervals] : 0,
+  );
+}
+
+/** Differences between strata that a survival per group × interval leaves: those that are not the same all over a group. */
+function contrastsWithin(frame: Frame, groups: Int32Array): readonly NamedColumn[] {
+  const n = frame.intervals;
+  return stratumColumns(frame, "survival").filter(({ values }) =>
+    groups.some((group, g) => values[g * n] !== values[groups.indexOf(group) * n]),
+  );
+}
+
 /**
- * logit s_t = β_t + stratum effects: a survival of its own for every interval. The years of a split interval share
- * it: captures tell their product alone.
+ * logit s_t = β_t + stratum effects: a survival of its own for every interval, and for every group of strata where covariates
+ * have values by stratum. The years of a split interval share it: captures tell their product alone.
  */
 export function intervalSurvival(frame: Frame): Part {
+  const { groups } = frame;
+  if (groups !== undefined) {
+    const indicators = Array.from({ length: survivalGroups(frame) * occasionIntervals(frame) }, (_, i) => {
+      const [group, t] = [i % survivalGroups(frame), Math.floor(i / survivalGroups(frame))];
+      return {
+        name: `survival of interval ${t + 1}, ${frame.strata[groups.indexOf(group)]}`,
+        values: inGroup(frame, group, intervalColumn(frame, t).subarray(0, frame.intervals)),
+      };
+    });
+    return assemble("each stratum and interval its own", [...indicators, ...contrastsWithin(frame, groups)]);
+  }
   const indicators = Array.from({ length: occasionIntervals(frame) }, (_, t) => ({
     name: `survival of interval ${t + 1}`,
     values: intervalColumn(frame, t),

@@ -18,15 +18,20 @@ export function markingFrame(frame: Frame): Frame {
       return where(Math.floor(place / 2), place % 2 === 1) ? 1 : 0;
     }),
   });
-  const between = strata
+  const all = strata
     .slice(1)
     .map((name, g) => column(`${name} against ${strata[0]}`, (stratum) => stratum === g + 1));
+  const doubled = (columns: readonly NamedColumn[] | undefined) =>
+    columns?.map(({ name, values }) => ({ name, values: overMarking(frame, values) })) ?? all;
   return {
     ...frame,
     strata: strata.flatMap((name) => [`${name}, later intervals`, `${name}, first interval`]),
+    ...(frame.groups === undefined
+      ? {}
+      : { groups: Int32Array.from({ length: 2 * strata.length }, (_, g) => frame.groups?.[g >> 1] ?? 0) }),
     contrasts: {
-      survival: [...between, column(FIRST_INTERVAL, (_, first) => first)],
-      recapture: between,
+      survival: [...doubled(frame.contrasts?.survival), column(FIRST_INTERVAL, (_, first) => first)],
+      recapture: doubled(frame.contrasts?.recapture),
     },
   };
 }

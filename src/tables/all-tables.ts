@@ -1,3 +1,4 @@
+import { byStratumTable } from "./by-stratum-table.ts";
 import { clustersTable, mergesTable } from "./cluster-tables.ts";
 import {
   componentsTable,
@@ -38,9 +39,11 @@ import type { Table } from "./table.ts";
 /** Every table of a study, in the order in which a person would read them. */
 export function allTables(study: StudyResult): readonly Table[] {
   const { diagnosis, components, goodness, screened, comparison } = study;
+  const byStratum = byStratumTable(study);
   return [
     rawMatrixTable(study),
     standardMatrixTable(study),
+    ...(byStratum === undefined ? [] : [byStratum]),
     dictionaryTable(study),
     intervalValuesTable(study),
     ...infilledTables(study.covariates),

@@ -1,6 +1,7 @@
 import type { ColumnRecipe } from "../covariates/result.ts";
 import type { RefittedSet, ScreenResult } from "../screen/screen.ts";
 import { number, text, truth } from "./columns.ts";
+import { recipeNamed } from "./recipe-named.ts";
 import type { StudyResult } from "./study-result.ts";
 import type { Table } from "./table.ts";
 
@@ -10,7 +11,7 @@ const SETS = [
 ] as const;
 
 function recipeOf(study: StudyResult, name: string): ColumnRecipe | undefined {
-  return study.matrix.recipes.find((one) => one.name === name);
+  return recipeNamed(study.matrix, name);
 }
 
 /** What a coefficient per sd is per unit of the covariate: only where the column was not transformed. */

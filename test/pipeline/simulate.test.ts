@@ -133,6 +133,20 @@ describe("simulate", () => {
     });
     other.remove();
   });
+
+  test.each([
+    ["since-marking", "time since marking"],
+    ["split-years", "split"],
+    ["own-covariates", "covariates by stratum"],
+  ])("no studies are drawn in the design of %s: refused before any work", async (name, key) => {
+    const other = temporaryFolder();
+    const design = pipelineIn(other.path, `test/cases/${name}/pipeline.yaml`);
+    await expect(simulateCommand(design, asked, terminal)).rejects.toMatchObject({
+      facts: { name: "simulate.no-drawing", found: key, where: { line: expect.any(Number) } },
+    });
+    expect(readdirSync(other.path)).toEqual([expect.any(String)]);
+    other.remove();
+  });
 });
 
 describe("what is typed", () => {

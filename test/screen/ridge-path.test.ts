@@ -1,3 +1,4 @@
+import { Matrix, solve } from "ml-matrix";
 import { describe, expect, test } from "vitest";
 import { lassoPath, solveNull } from "../../src/screen/path.ts";
 import { plainLasso } from "../../src/screen/plain-lasso.ts";
@@ -19,6 +20,41 @@ const problem: ScreenProblem = {
   covariates: [0, 1, 2].map((k) => ({ name: `x${k}`, values: normals(12, 30 + k) })),
 };
 const n = totalReleases(problem.data);
+
+describe("ridge with more covariates than rows", () => {
+  const wide: ScreenProblem = {
+    ...problem,
+    covariates: Array.from({ length: 30 }, (_, k) => ({ name: `x${k}`, values: normals(12, 60 + k) })),
+  };
+
+  test("the gradient of −log L is −2κβ on all 30, as without the row space", () => {
+    const smooth = cjsLikelihood(wide.data, designWith(wide));
+    for (const step of ridgePath(wide, n).steps) {
+      const gradient = new Float64Array(smooth.dimension);
+      smooth.evaluate(step.estimates, gradient);
+      for (let k = 0; k < 30; k++)
+        expect(gradient[1 + k] + 2 * step.strength * step.coefficients[k]).toBeCloseTo(0, 6);
+      expect(gradient[0]).toBeCloseTo(0, 6);
+      expect(gradient[31]).toBeCloseTo(0, 6);
+    }
+  });
+
+  test("effective parameters are tr[(H + 2κD)⁻¹H] over all coefficients", () => {
+    const smooth = cjsLikelihood(wide.data, designWith(wide));
+    const d = smooth.dimension;
+    const step = ridgePath(wide, n).steps[20];
+    smooth.evaluate(step.estimates, new Float64Array(d));
+    const h = new Float64Array(d * d);
+    smooth.curvature(
+      Int32Array.from({ length: d }, (_, k) => k),
+      h,
+    );
+    const plain = Matrix.from1DArray(d, d, Array.from(h));
+    const shrunken = plain.clone();
+    for (let k = 1; k <= 30; k++) shrunken.set(k, k, shrunken.get(k, k) + 2 * step.strength);
+    expect(solve(shrunken, plain).trace()).toBeCloseTo(step.effective, 8);
+  });
+});
 
 describe("ridge beside the lasso", () => {
   const ridge = ridgePath(problem, n);

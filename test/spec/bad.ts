@@ -486,6 +486,62 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
       "p.yaml:51:64 (survival > time since marking): expected whether survival differs in the interval after marking: ignored, first interval apart (if left out: ignored), found true; write one of them",
   },
   {
+    title: "survival: covariates by a stratum that is none",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { cover: { by: site, values: { f: snow, m: disturbance } } } }",
+    name: "spec.unknown-name",
+    message:
+      'p.yaml:51:66 (survival > covariates by stratum > cover > by): expected a stratum of the captures ("sex"), found "site"; add it to the strata of the captures',
+  },
+  {
+    title: "survival: a covariate by stratum made of one that is none",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { cover: { by: sex, values: { f: snow, m: hail } } } }",
+    name: "spec.unknown-name",
+    message:
+      'p.yaml:51:93 (survival > covariates by stratum > cover > values > m): expected a covariate ("winter rain", "cold nights", "snow", "disturbance", "contrast"), found "hail"; name a covariate of this file',
+  },
+  {
+    title: "survival: a covariate by stratum with a name that is taken",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { snow: { by: sex, values: { f: snow, m: disturbance } } } }",
+    name: "spec.repeated-name",
+    message:
+      'p.yaml:51:53 (survival > covariates by stratum > snow): expected each covariate name once, found "snow" again; give one of the two another name',
+  },
+  {
+    title: "survival: a covariate by stratum of unlike transforms",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { cover: { by: sex, values: { f: snow, m: winter rain } } } }",
+    name: "spec.conflict",
+    message:
+      "p.yaml:51:79 (survival > covariates by stratum > cover > values): expected one transform for all of them, found none, square root; write the same transform for each under prepare > transform",
+  },
+  {
+    title: "survival: a covariate by stratum made of one that is forced in",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], forced: [snow], covariates by stratum: { cover: { by: sex, values: { f: snow, m: disturbance } } } }",
+    name: "spec.conflict",
+    message:
+      'p.yaml:51:100 (survival > covariates by stratum > cover > values > f): expected a covariate that is not forced in by itself, found "snow"; force "cover" in instead',
+  },
+  {
+    title: "survival: a covariate by stratum made of one that is dropped",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { cover: { by: sex, values: { f: snow, m: contrast } } } }",
+    name: "spec.conflict",
+    message:
+      'p.yaml:51:93 (survival > covariates by stratum > cover > values > m): expected a covariate that no decision drops, found "contrast"; remove the decision',
+  },
+  {
+    title: "survival: a covariate by stratum without a column",
+    from: "survival: { strata: [sex], forced: [snow] }",
+    to: "survival: { strata: [sex], covariates by stratum: { cover: { values: { f: snow } } } }",
+    name: "spec.missing-key",
+    message:
+      'p.yaml:51:53 (survival > covariates by stratum > cover > by): expected the key "by": the column of the captures\' strata that tells them apart, found no such key; add it, e.g. by: site',
+  },
+  {
     title: "survival: split by something else",
     from: "survival: { strata: [sex], forced: [snow] }",
     to: "survival: { strata: [sex], forced: [snow], split: months }",

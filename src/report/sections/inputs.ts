@@ -53,7 +53,12 @@ export function whereSection(input: ReportInput, figures: readonly Figure[]): Se
 export function inputsSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
   const entered = new Set(input.matrix.names);
   const rows = cast.members.map((member) => {
-    const values = valuesOf(input, member.name);
+    const apart = input.matrix.byStratum?.find((one) => one.recipe.name === member.name);
+    const partOf = input.matrix.byStratum?.find((one) => one.parts.includes(member.name));
+    const values =
+      apart === undefined
+        ? valuesOf(input, member.name)
+        : Array.from(apart.values, (z) => apart.recipe.centre + apart.recipe.scale * z);
     const known = values.filter(Number.isFinite);
     const [low, high] = extent(known);
     const reason = input.leftOut.find((one) => one.name === member.name)?.reason;
@@ -67,7 +72,15 @@ export function inputsSection(input: ReportInput, cast: Cast, figures: readonly 
         `${known.length} of ${values.length}`,
         known.length === 0 ? "–" : show(known.reduce((sum, one) => sum + one, 0) / known.length),
         known.length === 0 ? "–" : `${show(low)} to ${show(high)}`,
-        reason !== undefined ? `left out: ${reason}` : entered.has(member.name) ? "yes" : "no",
+        reason !== undefined
+          ? `left out: ${reason}`
+          : apart !== undefined
+            ? "by stratum and interval"
+            : partOf !== undefined
+              ? `yes, as the values of a stratum in ${partOf.recipe.name}`
+              : entered.has(member.name)
+                ? "yes"
+                : "no",
       ],
     };
   });

@@ -1,4 +1,5 @@
 import type { RefittedSet, ScreenResult } from "../../screen/screen.ts";
+import { recipeNamed } from "../../tables/recipe-named.ts";
 import type { Cast } from "../cast.ts";
 import { unitText } from "../cast.ts";
 import type { Figure } from "../figure.ts";
@@ -160,7 +161,7 @@ function effectsTable(input: ReportInput, cast: Cast, set: RefittedSet, caption:
 }
 
 function perUnit(input: ReportInput, name: string, value: number): string {
-  const recipe = input.matrix.recipes.find((one) => one.name === name);
+  const recipe = recipeNamed(input.matrix, name);
   if (recipe === undefined) return "–";
   const unit = unitText(recipe.unit) || "1";
   if (recipe.transform === undefined) return `${show(value / recipe.scale)} per ${unit}`;

@@ -1,5 +1,6 @@
 import type { Candidate, CandidateKey } from "../../compare/candidates.ts";
 import { listWords } from "../../data/words.ts";
+import { recipeNamed } from "../../tables/recipe-named.ts";
 import { type Cast, unitText } from "../cast.ts";
 import type { Figure } from "../figure.ts";
 import { type Html, html, type Piece } from "../html.ts";
@@ -14,7 +15,6 @@ import {
   grid,
   type Section,
 } from "../parts.ts";
-import { extent } from "../scale.ts";
 import { predictionBlock } from "./prediction.ts";
 import { refitsBlock } from "./refits.ts";
 import { switchBlock } from "./switch.ts";
@@ -57,14 +57,10 @@ export function survivalSection(input: ReportInput, cast: Cast, figures: readonl
 function rangeWords({ screened, matrix }: ReportInput): string {
   const names = screened?.byYears.names ?? [];
   const ranges = names.flatMap((name) => {
-    const k = matrix.names.indexOf(name);
-    if (k < 0) return [];
-    const values = Array.from(
-      { length: matrix.raw.rows },
-      (_, t) => matrix.raw.data[t * matrix.raw.columns + k],
-    );
-    const [low, high] = extent(values);
-    const unit = unitText(matrix.recipes.find((one) => one.name === name)?.unit ?? "");
+    const range = recipeNamed(matrix, name)?.range;
+    if (range === undefined) return [];
+    const [low, high] = range;
+    const unit = unitText(recipeNamed(matrix, name)?.unit ?? "");
     return [`${name} ${show(low)} to ${show(high)}${unit === "" ? "" : ` ${unit}`}`];
   });
   const seen = ranges.length === 0 ? "" : ` (${listWords(ranges)})`;
