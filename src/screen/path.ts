@@ -70,18 +70,53 @@ export function lassoPath(problem: ScreenProblem, weights: Float64Array, options
     return { lambdaMax, weights, steps: lambdas.map(step) };
   }
   const steps: PathStep[] = [];
-  let x = nothing.x;
+  let behind: readonly Point[] = [{ lambda: lambdaMax, x: nothing.x }];
   for (const lambda of lambdas) {
-    const solution = proximalNewton(smooth, weightedL1(lambda, all), x, {
+    const solution = proximalNewton(smooth, weightedL1(lambda, all), startAt(lambda, behind, all), {
       tolerance: 0.05 * RESIDUAL_LIMIT * lambdaMax,
       iterations: 200,
     });
-    x = solution.x;
+    behind = [{ lambda, x: solution.x }, ...behind.filter((one) => one.lambda !== lambda).slice(0, 2)];
     const step = pathStep(lambda, lambdaMax, solution, positions, noise);
     if (options.most !== undefined && step.active.length > options.most) break;
     steps.push(step);
   }
   return { lambdaMax, weights, steps };
+}
+
+interface Point {
+  readonly lambda: number;
+  readonly x: Float64Array;
+}
+
+/**
+ * Where the path will be at λ: each coefficient by the polynomial in λ through up to three solutions, the last first (between
+ * coefficients that enter or leave the path is smooth, for a quadratic likelihood straight). Only as many are used as a
+ * penalised coefficient has kept its sign in; one that was 0, or would cross 0, stays where it was last.
+ */
+function startAt(lambda: number, behind: readonly Point[], weights: Float64Array): Float64Array {
+  const last = behind[0].x;
+  const shares = [1, 2, 3].map((count) => lagrange(lambda, behind.slice(0, count)));
+  return last.map((value, k) => {
+    const penalised = weights[k] !== 0;
+    let count = 1;
+    while (count < behind.length && (!penalised || value * behind[count].x[k] > 0)) count++;
+    const by = shares[count - 1];
+    let to = 0;
+    for (let i = 0; i < count; i++) to += by[i] * behind[i].x[k];
+    return penalised && value * to <= 0 ? value : to;
+  });
+}
+
+/** The share of each point in the polynomial through all of them, at λ. */
+function lagrange(lambda: number, points: readonly Point[]): readonly number[] {
+  return points.map((one, i) =>
+    points.reduce(
+      (product, other, j) =>
+        i === j ? product : (product * (lambda - other.lambda)) / (one.lambda - other.lambda),
+      1,
+    ),
+  );
 }
 
 /** log-equal from λ_max to `downTo`·λ_max, both included. */
@@ -116,14 +151,19 @@ function pathStep(
   // a λ_max near 0 (huge weights) asks for less than rounding can give: what counts as a converged fit counts here too
   if (solution.violation > Math.max(RESIDUAL_LIMIT * lambdaMax, noise))
     refuseSolution(`λ = ${lambda}`, solution);
-  const coefficients = Float64Array.from(positions, (k) => solution.x[k]);
+  const coefficients = new Float64Array(positions.length);
+  const active: number[] = [];
+  for (let k = 0; k < positions.length; k++) {
+    coefficients[k] = solution.x[positions[k]];
+    if (coefficients[k] !== 0) active.push(k);
+  }
   return {
     lambda,
     estimates: solution.x,
     coefficients,
     minus2LogL: 2 * solution.smooth,
     objective: solution.objective,
-    active: Array.from(coefficients, (_, k) => k).filter((k) => coefficients[k] !== 0),
+    active,
     residual,
     stopped: solution.stopped,
   };

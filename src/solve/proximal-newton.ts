@@ -34,7 +34,7 @@ export function proximalNewton(
   options: SolveOptions,
 ): Solution {
   const d = smooth.dimension;
-  let x = Float64Array.from(start);
+  let x = start.slice();
   let gradient = new Float64Array(d);
   let value = smooth.evaluate(x, gradient);
   let objective = value + penalty.value(x);
@@ -82,6 +82,7 @@ const ENTRANTS = 10;
  * in the next step, since only the conditions of all d coordinates end the iteration.
  */
 function workingSet(penalty: Penalty, x: Float64Array, gradient: Float64Array): Int32Array {
+  // loops, not Array.from with a function, here and below: these run some 10⁵ times a screen
   const which: number[] = [];
   let entrants: { readonly k: number; readonly distance: number }[] = [];
   for (let k = 0; k < x.length; k++) {
@@ -94,6 +95,7 @@ function workingSet(penalty: Penalty, x: Float64Array, gradient: Float64Array): 
   }
   if (entrants.length > ENTRANTS)
     entrants = entrants.sort((a, b) => b.distance - a.distance || a.k - b.k).slice(0, ENTRANTS);
+  if (entrants.length === 0) return Int32Array.from(which);
   for (const { k } of entrants) which.push(k);
   return Int32Array.from(which).sort();
 }
@@ -132,16 +134,15 @@ interface Point {
 
 /** The first of the steps 1, ½, ¼ … that lowers the objective enough (Armijo) or, at rounding level, the violation. */
 function lineSearch(smooth: Smooth, penalty: Penalty, from: Point, which: Int32Array, target: Float64Array) {
-  const moved = Float64Array.from(from.x);
+  const moved = from.x.slice();
   for (let a = 0; a < which.length; a++) moved[which[a]] = target[a];
   let predicted = penalty.value(moved) - penalty.value(from.x);
   for (let k = 0; k < moved.length; k++) predicted += from.gradient[k] * (moved[k] - from.x[k]);
   // below this, differences of the objective are rounding noise and the optimality conditions decide
   const noise = 1e-13 * (1 + Math.abs(from.objective));
   for (let step = 1; step > 1e-12; step /= 2) {
-    const x = new Float64Array(moved.length);
-    for (let k = 0; k < x.length; k++)
-      x[k] = step === 1 ? moved[k] : from.x[k] + step * (moved[k] - from.x[k]);
+    const x = moved.slice();
+    if (step < 1) for (let k = 0; k < x.length; k++) x[k] = from.x[k] + step * (moved[k] - from.x[k]);
     const gradient = new Float64Array(x.length);
     const value = smooth.evaluate(x, gradient);
     const objective = value + penalty.value(x);

@@ -31,9 +31,13 @@ export function minimiseQuadratic(model: QuadraticModel, penalty: Penalty): Floa
     ...(model.factor === undefined ? {} : { factor: model.factor }),
     penalty,
     c: new Float64Array(m),
-    z: Float64Array.from(which, (k) => x[k]),
-    sign: Float64Array.from(which, (k) => Math.sign(x[k])),
+    z: new Float64Array(m),
+    sign: new Float64Array(m),
   };
+  for (let a = 0; a < m; a++) {
+    search.z[a] = x[which[a]];
+    search.sign[a] = Math.sign(search.z[a]);
+  }
   for (let a = 0; a < m; a++) {
     search.c[a] = gradient[which[a]];
     for (let b = 0; b < m; b++) search.c[a] -= curvature[a * m + b] * search.z[b];
@@ -69,15 +73,17 @@ function solveOnSupport(search: Search): boolean {
   choleskySolve(factor, s, target);
 
   // Where on the way from z to the target each penalised coordinate would change sides; 2 where it does not.
-  const crossings = Float64Array.from(support, (a, i) => {
-    if (!penalty.penalised(which[a]) || target[i] * sign[a] >= 0) return 2;
-    return z[a] === 0 ? 0 : z[a] / (z[a] - target[i]);
-  });
-  const step = bestStep(search, support, target, crossings);
+  const crossings = new Float64Array(s).fill(2);
   let crossed = false;
   for (let i = 0; i < s; i++) {
     const a = support[i];
-    crossed ||= crossings[i] < 2;
+    if (!penalty.penalised(which[a]) || target[i] * sign[a] >= 0) continue;
+    crossings[i] = z[a] === 0 ? 0 : z[a] / (z[a] - target[i]);
+    crossed = true;
+  }
+  const step = crossed ? bestStep(search, support, target, crossings) : 1;
+  for (let i = 0; i < s; i++) {
+    const a = support[i];
     // exactly zero where it is let go, exactly the target after a whole step
     z[a] = crossings[i] === step ? 0 : step === 1 ? target[i] : z[a] + step * (target[i] - z[a]);
     if (penalty.penalised(which[a])) sign[a] = Math.sign(z[a]);
@@ -109,7 +115,6 @@ function bestStep(
   const { which, c, curvature, z, penalty } = search;
   const m = which.length;
   const steps = [1, ...crossings.filter((step) => step < 2)];
-  if (steps.length === 1) return 1;
   const objective = (step: number) => {
     const at = support.map((a, i) => z[a] + step * (target[i] - z[a]));
     let value = 0;

@@ -185,11 +185,19 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
       }
   }
 
+  /** With everybody seen (p known to be 1) χ = 1 − φ has no successor in it: intervals are binomials apart, D diagonal in XᵀDX. */
+  function alongBinomial(k: number): void {
+    const column = survivalColumns[k];
+    for (let r = 0; r < rows; r++) dSurvival[r] = (ownSurvival[r] - bend[r] * e[r] * e[r]) * column[r];
+  }
+
   function curvature(which: Int32Array, out: Float64Array): void {
     const m = which.length;
     prepare();
+    const binomial = recapture === undefined && known === 1 && design.closed === undefined;
     for (let i = 0; i < m; i++) {
-      along(which[i]);
+      if (binomial) alongBinomial(which[i]);
+      else along(which[i]);
       for (let j = i; j < m; j++) {
         const k = which[j];
         const value = k < b ? -dot(survivalColumns[k], dSurvival) : -dot(recaptureColumns[k - b], dRecapture);
