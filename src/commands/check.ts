@@ -42,7 +42,7 @@ export async function checkCommand(
     `${plan.ingested.occasions.length} occasions, ${plan.ingested.intervals.length} intervals` +
       (captures === undefined
         ? ", no captures: only the covariate set is built"
-        : `, ${captures.counts.length} strata`),
+        : `, ${captures.counts.length === 1 ? "1 stratum" : `${captures.counts.length} strata`}`),
     `${plan.ingested.stationSeries.length} station series from ${new Set(plan.ingested.stationSeries.map((one) => one.site)).size} stations`,
     ...plan.layers.map(
       (one) =>
