@@ -116,7 +116,7 @@ function predictionWords(prediction: Prediction | undefined): string {
     years === undefined || kept === undefined || Math.max(years.share, kept.share) <= 0
       ? ""
       : ` ${againstWords(years, kept, prediction.intervals)}`;
-  return `With each interval left out in turn and everything done again, of what one common survival misses there ${listWords(shares)}${gains}.${against}`;
+  return `With each interval left out in turn and everything done again, of what one common survival misses there, ${listWords(shares)}${gains}.${against}`;
 }
 
 /** What a candidate foretells beyond a constant survival; whether that is clearly more is said once for all. */
