@@ -103,7 +103,7 @@ const CHANGES: readonly Change[] = [
     from: "permutations: 20",
     to: "permutations: 10",
     redone: BEHIND_SCREEN,
-    why: ["screen", "screen: changed"],
+    why: ["screen", "screen: and ĉ between animals changed"],
   },
   {
     what: "the seed",
