@@ -5,8 +5,8 @@ export default defineConfig({
   // most of the time.
   test: {
     include: ["test/**/*.test.ts"],
-    testTimeout: 60_000,
-    hookTimeout: 60_000,
+    testTimeout: 300_000,
+    hookTimeout: 300_000,
     pool: "forks",
     maxWorkers: 2,
     isolate: false,

@@ -82,7 +82,7 @@ beforeAll(async () => {
   const extra =
     "  - { name: spring, theme: cold, from: tmin, window: { season: Mar to May }, statistic: mean }\n";
   done = await apply("out-first", pipeline("later", 2009, 2013, extra));
-}, 60_000);
+}, 300_000);
 
 afterAll(() => rmSync(folder, { recursive: true, force: true }));
 

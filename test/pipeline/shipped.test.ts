@@ -31,7 +31,7 @@ beforeAll(async () => {
     const done = await runHere(pipelineIn(folders[i].path, `pipelines/${name}.yaml`, edits));
     runs.set(name, { done, files: bytesBelow(done.folder) });
   }
-}, 120_000);
+}, 300_000);
 
 function runOf(name: string): Run {
   const run = runs.get(name);
@@ -162,4 +162,4 @@ test("one worker or two: the same bytes of every file", async () => {
   expect([...second.keys()]).toEqual([...first.keys()]);
   const different = [...first].filter(([path, bytes]) => !second.get(path)?.equals(bytes));
   expect(different.map(([path]) => path)).toEqual([]);
-}, 60_000);
+}, 300_000);

@@ -195,5 +195,5 @@ describe("degenerate data through the screen", () => {
     expect(result.starts.agree).toBeGreaterThan(0);
     // minutes before the starts were kept sparse; no measure of speed, only that it ends
     expect(performance.now() - before).toBeLessThan(60_000);
-  }, 90_000);
+  }, 300_000);
 });
