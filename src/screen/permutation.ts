@@ -90,7 +90,7 @@ export function outcomeInOrder(
 
 /**
  * The n − 1 circular shifts of the years: they keep the autocorrelation of the covariates, which permutation destroys, but are
- * so few that their share, (1 + shifts whose gain is at least the observed one) / n, is a description and not a test.
+ * so few that their share, (1 + shifts whose gain is at least the observed one) / n, is no test of its own.
  */
 export function shiftYears(
   study: Pick<PermutationChunk, "problem" | "setting" | "options">,

@@ -202,7 +202,7 @@ export function evidenceTable(screened: ScreenResult): Table {
     rows.push([
       "share of circular shifts that do as well",
       shifts,
-      "keeps autocorrelation; a description, not a test",
+      "keeps autocorrelation; the study counted in",
     ]);
   const { randomIntervals } = screened;
   if (randomIntervals !== undefined) {

@@ -123,7 +123,7 @@ function evidenceTable(screened: ScreenResult, cast: Cast): Html {
 function permutationWords({ permutation, shifts }: ScreenResult): Html {
   if (permutation === undefined)
     return html`<p class="note">No permutation of years was run, so nothing above is tested.</p>`;
-  return html`<p>Each of ${counted(permutation.replicates, "permutation")} gave the intervals each other's covariates and repeated everything: weights, path, both choices. The family-wise p is the share of permutations that found at least as much, the study itself counted in. ĉ between years above 1 says that survival varies between years beyond what the chosen covariates explain.${shifts !== undefined && ` Of the circular shifts of the years, which keep whatever runs on from year to year, ${percent(shifts)} do as well; that is a description and no test.`}</p>`;
+  return html`<p>Each of ${counted(permutation.replicates, "permutation")} gave the intervals each other's covariates and repeated everything: weights, path, both choices. The family-wise p is the share of permutations that found at least as much, the study itself counted in. ĉ between years above 1 says that survival varies between years beyond what the chosen covariates explain.${shifts !== undefined && ` Of the circular shifts of the years, which keep whatever runs on from year to year, ${percent(shifts)} do as well, the study itself counted in; they are too few for a test, but where another one does as well the verdict is faint at most.`}</p>`;
 }
 
 /** Effects per sd and, where the recipe allows, per unit of the covariate as it was recorded. */
