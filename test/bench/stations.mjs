@@ -121,7 +121,11 @@ async function covariates(file) {
       for (const { value } of covariate.values) if (!Number.isNaN(value)) total += value;
     }
   const { user, system } = process.cpuUsage(before);
-  return { values: made, check: Number(total.toFixed(3)), "aggregation CPU s": Number(((user + system) / 1e6).toFixed(2)) };
+  return {
+    values: made,
+    check: Number(total.toFixed(3)),
+    "aggregation CPU s": Number(((user + system) / 1e6).toFixed(2)),
+  };
 }
 
 const [what, file] = process.argv.slice(2);

@@ -27,7 +27,7 @@ export function errorNames() {
       if (isCell) continue;
       const next = after.slice(10).search(/\bname:/);
       const own = next < 0 ? after : after.slice(0, next + 10);
-      const expected = /^[^]*?expected:\s*(?:"((?:[^"\\]|\\.)*)"|`((?:[^`\\]|\\.)*)`)/.exec(own);
+      const expected = /^[\s\S]*?expected:\s*(?:"((?:[^"\\]|\\.)*)"|`((?:[^`\\]|\\.)*)`)/.exec(own);
       const words = (expected?.[1] ?? expected?.[2] ?? "")
         .replaceAll(/\$\{[^}]*\}/g, "…")
         .replaceAll('\\"', '"')

@@ -3,7 +3,7 @@ import type { Grid } from "../grid.ts";
 import type { LayerOptions } from "../options.ts";
 import { resolveSystem, type System, systemOf } from "../system.ts";
 import { type Axis, axesOf, regularAxis } from "./axes.ts";
-import { type Dataset, type NcVariable, numbersOf, textOf } from "./dataset.ts";
+import { type Dataset, type NcVariable, textOf } from "./dataset.ts";
 import { type Mapping, mappingOf, metresIn } from "./grid-mapping.ts";
 import { rotatedSystem } from "./rotated.ts";
 import { fixedIndices } from "./select.ts";
@@ -199,17 +199,4 @@ function agree(a: System, b: System, { grid }: NetcdfLayer): boolean {
   const at = [x0 + (step * grid.width) / 2, y0 + (e * grid.height) / 2] as const;
   const [p, q] = [a.toLonLat(...at), b.toLonLat(...at)];
   return Math.abs(p[0] - q[0]) * Math.cos((p[1] * Math.PI) / 180) < 0.01 && Math.abs(p[1] - q[1]) < 0.01;
-}
-
-/** What a variable's values are, in the file's own words. */
-export function unitOf({ variable }: NetcdfLayer): string {
-  return textOf(variable.attributes, "units")?.trim() ?? "";
-}
-
-/** True if the variable's values are packed by scale or offset. */
-export function isPacked({ variable }: NetcdfLayer): boolean {
-  return (
-    numbersOf(variable.attributes, "scale_factor") !== undefined ||
-    numbersOf(variable.attributes, "add_offset") !== undefined
-  );
 }
