@@ -11,8 +11,10 @@ export function predictionBlock(
   cast: Cast,
   names: Readonly<Record<CandidateKey, string>>,
 ): Html | undefined {
-  const prediction = comparison?.prediction;
-  if (prediction === undefined) return undefined;
+  if (comparison === undefined) return undefined;
+  const { prediction } = comparison;
+  if (prediction === undefined)
+    return html`<p>No interval was left out and foretold: that needs at least one candidate, enough intervals, and one survival for each of them, which models with time since marking, split years or covariates by stratum do not have.</p>`;
   const best = Math.max(...prediction.candidates.map((one) => one.gain));
   const unscored = prediction.unscored.map((t) => intervals[t]?.name ?? String(t + 1));
   return html`<h3>Foretelling an interval that was left out</h3><p>Each of ${counted(prediction.intervals, "interval")} was left out in turn and everything was done again without it: standardising, pruning, components, weights, paths, choices and refits. What was foretold is set against the logit of survival by that interval's own captures, with its sampling variance and the variation between years that the candidate leaves unexplained. This counts years and not animals.${unscored.length > 0 && ` Not scored, since the data do not determine their survival: ${unscored.join(", ")}.`}</p>${grid(
