@@ -67,4 +67,5 @@ ${rows.join("\n")}
 `;
 }
 
-if (process.argv[1] === fileURLToPath(import.meta.url)) writeFileSync(`${root}ERRORS.md`, errorTable());
+if (process.argv[1] === fileURLToPath(import.meta.url))
+  writeFileSync(`${root}test/bad-input/ERRORS.md`, errorTable());
