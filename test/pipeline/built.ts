@@ -22,7 +22,7 @@ export function ensureBuilt(...sources: string[]): void {
       typeRoots: [join(ROOT, "node_modules/@types")],
     },
     files: sources.map((one) => join(ROOT, "src", one)),
-    include: [],
+    include: [join(ROOT, "src/**/*.d.ts")],
   };
   writeFileSync(join(folder, "tsconfig.json"), JSON.stringify(config));
   try {
