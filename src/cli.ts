@@ -87,11 +87,13 @@ program
   .argument("<pipeline>", "pipeline file (YAML)")
   .description("read a pipeline and its tables, lay out the windows, list the findings; fit nothing")
   .option("--windows", "every window with its first and last day")
+  .option("--findings", "every finding whole, with what to do about it")
   .option("--json", "print the plan as JSON")
   .addHelpText("after", "\nExample:\n  covey check pipelines/roost.yaml --windows")
-  .action(async (file: string, options: Common & { windows?: boolean }) => {
+  .action(async (file: string, options: Common & { windows?: boolean; findings?: boolean }) => {
     const { checkCommand } = await import("./commands/check.ts");
-    const asked = { windows: options.windows ?? false, json: options.json ?? false };
+    const { windows = false, findings = false, json = false } = options;
+    const asked = { windows, findings, json };
     print(await checkCommand(file, asked, await terminalFor(options)), options);
   });
 

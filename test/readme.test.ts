@@ -42,7 +42,7 @@ describe("the README", () => {
   test("its example shows what the demo prints", () => {
     const block = /```text\n([\s\S]*?)```/.exec(readme)?.[1] ?? "";
     const [, printed] = [...said].find(([line]) => line.includes("run pipelines/roost.yaml")) ?? ["", ""];
-    const steady = (text: string) => text.replace(/read in [\d.]+ s/, "read in N s").trim();
+    const steady = (text: string) => text.replace(/done in [\d.]+ s/, "done in N s").trim();
     expect(steady(printed)).toContain(steady(block));
   });
 });

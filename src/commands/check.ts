@@ -1,6 +1,6 @@
 import { loadPipeline } from "../pipeline/load.ts";
 import { type Plan, planRun } from "../pipeline/plan.ts";
-import { findingLines } from "../terminal/findings.ts";
+import { findingLines, wholeFindingLines } from "../terminal/findings.ts";
 import { timelineLines } from "../terminal/timeline.ts";
 import { windowPlanLines } from "../terminal/window-plan.ts";
 import type { Lines, Terminal } from "./io.ts";
@@ -8,6 +8,8 @@ import type { Lines, Terminal } from "./io.ts";
 export interface CheckCommandOptions {
   /** Every window with its days, not only the summary by covariate. */
   readonly windows: boolean;
+  /** Every finding whole, not a line for each kind. */
+  readonly findings: boolean;
   readonly json: boolean;
 }
 
@@ -52,7 +54,13 @@ export async function checkCommand(
     ...calendar(plan, terminal),
     ...windowPlanLines(plan.windows, plan.covered, { style, width, every: options.windows }),
     "",
-    ...findingLines(plan.findings, { style, lines: 40, width }),
+    ...findingLines(plan.findings, {
+      style,
+      lines: 40,
+      width,
+      ...(options.findings ? {} : { whole: "check --findings" }),
+    }),
+    ...(options.findings ? ["", ...wholeFindingLines(plan.findings, style, width)] : []),
   ];
 }
 

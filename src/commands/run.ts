@@ -46,6 +46,7 @@ export async function runCommand(
     style: terminal.style,
     lines: 6,
     width: terminal.width,
+    whole: "tables/findings.csv",
   });
   const room = 24 - findings.length;
   return [
@@ -98,7 +99,7 @@ function sections(done: Executed): SummarySection[] {
   const reused = done.steps.filter((one) => one.outcome === "reused").length;
   if (reused > 0)
     read.push(["reused", `${reused} of ${done.steps.length} steps; --explain says which and why`]);
-  const out: SummarySection[] = [{ title: `read in ${done.seconds.toFixed(1)} s`, rows: read }];
+  const out: SummarySection[] = [{ title: `done in ${done.seconds.toFixed(1)} s`, rows: read }];
   const clusters = study.diagnosis?.clusters.filter((one) => one.members.length > 1) ?? [];
   if (clusters.length > 0)
     out.push({

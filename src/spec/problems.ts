@@ -38,6 +38,6 @@ export function refuseProblems(yaml: YamlText, problems: readonly Problem[]): vo
   const facts = orderedFacts(yaml, problems);
   if (facts.length === 0) return;
   const others = facts.length - 1;
-  const more = others === 0 ? "" : ` (and ${others} more problem${others === 1 ? "" : "s"} below)`;
+  const more = others === 0 ? "" : ` (and ${others} more problem${others === 1 ? "" : "s"} further down)`;
   throw new InputError({ ...facts[0], remedy: `${facts[0].remedy}${more}` });
 }

@@ -1,6 +1,6 @@
 import type { Finding, Severity } from "../data/finding.ts";
 import { placeText } from "../errors.ts";
-import { cut, pad, plain, type Style } from "./style.ts";
+import { cut, fill, pad, plain, type Style } from "./style.ts";
 
 const ORDER: readonly Severity[] = ["stop", "warn", "accept"];
 
@@ -9,6 +9,8 @@ export interface FindingLinesOptions {
   /** Lines at most, the head included. */
   readonly lines?: number;
   readonly width?: number;
+  /** Where every finding stands whole: the end of the head, e.g. `tables/findings.csv`. */
+  readonly whole?: string;
 }
 
 interface Group {
@@ -23,11 +25,12 @@ interface Group {
  * counted in the head.
  */
 export function findingLines(findings: readonly Finding[], options: FindingLinesOptions): string[] {
-  const { style, lines = 12, width = 80 } = options;
+  const { style, lines = 12, width = 80, whole } = options;
   if (findings.length === 0) return ["findings: none"];
   const count = (severity: Severity) => findings.filter((one) => one.severity === severity).length;
   const counts = ORDER.map((severity) => [severity, count(severity)] as const).filter(([, n]) => n > 0);
-  const head = `findings: ${counts.map(([severity, n]) => `${n} ${WORDS[severity]}`).join(", ")}`;
+  const tallies = counts.map(([severity, n]) => `${n} ${WORDS[severity]}`).join(", ");
+  const head = `findings: ${tallies}${whole === undefined ? "" : `; all of them: ${whole}`}`;
   const groups = groupsOf(findings.filter((one) => one.severity !== "accept"));
   const room = Math.max(0, lines - 1);
   const shown = groups.length <= room ? groups : groups.slice(0, Math.max(0, room - 1));
@@ -75,12 +78,36 @@ interface Layout {
 }
 
 function groupLine(group: Group, { style, width, kindWidth, numberWidth }: Layout): string {
-  const [first] = group.findings;
-  const where = placeText(first.where);
-  const example = plain(`${where === "" ? "" : `${where}: `}${first.message}`);
+  const example = oneLine(group.findings[0]);
   const lead = `${pad(group.kind, kindWidth)}  ${tally(group).padStart(numberWidth)}  `;
-  const more = group.findings.length > 1 ? " …" : "";
-  const space = width - 6 - lead.length - more.length;
-  const mark = group.severity === "stop" ? style.alarm("stop") : style.caution("warn");
-  return `${mark}  ${lead}${cut(example, space)}${more}`;
+  return `${mark(group.severity, style)}  ${lead}${cut(example, width - 6 - lead.length)}`;
+}
+
+function mark(severity: Severity, style: Style): string {
+  if (severity === "accept") return style.good("fine");
+  return severity === "stop" ? style.alarm("stop") : style.caution("warn");
+}
+
+/**
+ * Every finding whole, broken into lines of at most `width` columns: by severity (stops first, accepted ones last) and
+ * kind, each with its place and its message; what to do follows, once where it is the same for several in a row.
+ */
+export function wholeFindingLines(findings: readonly Finding[], style: Style, width = 80): string[] {
+  const filled = (text: string) =>
+    fill(text, width - 8).map((line, i) => `${i === 0 ? "      " : "        "}${line}`);
+  return groupsOf(findings).flatMap((group) => [
+    `${mark(group.severity, style)}  ${style.strong(group.kind)}  ${tally(group)}`,
+    ...group.findings.flatMap((one, i) => [
+      ...filled(oneLine(one)),
+      // the same advice for a whole kind is said once
+      ...(one.remedy === "" || one.remedy === group.findings[i + 1]?.remedy
+        ? []
+        : filled(plain(`what to do: ${one.remedy}`)).map((line) => style.faint(line))),
+    ]),
+  ]);
+}
+
+function oneLine({ where, message }: Finding): string {
+  const place = placeText(where);
+  return plain(`${place === "" ? "" : `${place}: `}${message}`);
 }

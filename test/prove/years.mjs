@@ -27,7 +27,7 @@ const SEED = 40_000;
  */
 const [PERMUTATIONS, TENTH, TWENTIETH] = [39, 3, 1];
 /** In rows where nothing acts, so many replicates are also tested as the verdict is. */
-const TESTED = 1000;
+const TESTED = 2000;
 const options = {
   steps: 40,
   downTo: 0.001,

@@ -213,7 +213,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "down to: 0,01",
     name: "spec.out-of-range",
     message:
-      "p.yaml:53:31 (screen > down to): expected the least penalty as a share of the greatest (if left out: 0.001), more than 0, found 0; write it like 0.001 (and 1 more problem below)",
+      "p.yaml:53:31 (screen > down to): expected the least penalty as a share of the greatest (if left out: 0.001), more than 0, found 0; write it like 0.001 (and 1 more problem further down)",
   },
   {
     title: "types: quoted number",
@@ -803,7 +803,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "prepare:\n  standardise: { base: 2001 to 2010 }",
     name: "spec.conflict",
     message:
-      "p.yaml:42:59 (covariates > #2 > window): expected a season or calendar year, which every year of a base period has, found a window counted from occasions; give it a season, or write standardise: sample (and 1 more problem below)",
+      "p.yaml:42:59 (covariates > #2 > window): expected a season or calendar year, which every year of a base period has, found a window counted from occasions; give it a season, or write standardise: sample (and 1 more problem further down)",
   },
   {
     title: "ranges: base years backwards",
@@ -1152,7 +1152,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "name: snow",
     name: "spec.repeated-name",
     message:
-      'p.yaml:46:13 (derive > #1 > name): expected each covariate name once, found "snow" again; give one of the two another name (and 1 more problem below)',
+      'p.yaml:46:13 (derive > #1 > name): expected each covariate name once, found "snow" again; give one of the two another name (and 1 more problem further down)',
   },
   {
     title: "names: transform of an unknown covariate",
@@ -1200,7 +1200,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "note: same weeks }, { drop: snow, note: why not }]",
     name: "spec.conflict",
     message:
-      'p.yaml:50:39 (collinearity > decisions > #1 > keep): expected a covariate that no decision drops, found "snow"; keep another one, or remove the decision that drops it (and 1 more problem below)',
+      'p.yaml:50:39 (collinearity > decisions > #1 > keep): expected a covariate that no decision drops, found "snow"; keep another one, or remove the decision that drops it (and 1 more problem further down)',
   },
   {
     title: "names: forced unknown",
@@ -1232,7 +1232,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "      snow: {",
     name: "spec.conflict",
     message:
-      'p.yaml:23:7 (records > #1 > series > snow): expected a name that no layer has, found "snow"; rename the variable or the layer (and 1 more problem below)',
+      'p.yaml:23:7 (records > #1 > series > snow): expected a name that no layer has, found "snow"; rename the variable or the layer (and 1 more problem further down)',
   },
   {
     title: "needs: effort without effort",
@@ -1248,7 +1248,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "",
     name: "spec.needs",
     message:
-      "p.yaml:45:21 (survival > strata): expected captures, which hold the strata, found no captures; add the section captures, or remove this (and 2 more problems below)",
+      "p.yaml:45:21 (survival > strata): expected captures, which hold the strata, found no captures; add the section captures, or remove this (and 2 more problems further down)",
   },
   {
     title: "needs: dated captures without occasions",
@@ -1256,7 +1256,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "",
     name: "spec.needs",
     message:
-      "p.yaml:6:1 (captures): expected occasions, which sort dated captures, found no occasions; add the section occasions (and 2 more problems below)",
+      "p.yaml:6:1 (captures): expected occasions, which sort dated captures, found no occasions; add the section occasions (and 2 more problems further down)",
   },
   {
     title: "needs: base period with a window from occasions",
@@ -1344,7 +1344,7 @@ export const BAD_PIPELINES: readonly BadPipeline[] = [
     to: "    layout: long\n    variable: rain\n",
     name: "spec.missing-key",
     message:
-      'p.yaml:18:5 (records > #1 > station): expected the key "station": where the station\'s identifier stands: { column: … }, { always: … } or { name: … } with {id}, found no such key; add it, e.g. station: { column: site } (and 1 more problem below)',
+      'p.yaml:18:5 (records > #1 > station): expected the key "station": where the station\'s identifier stands: { column: … }, { always: … } or { name: … } with {id}, found no such key; add it, e.g. station: { column: site } (and 1 more problem further down)',
   },
   {
     title: "keys: record of neither layout",

@@ -321,7 +321,7 @@ describe("bad pipelines", () => {
       ["spec.not-a-choice", 23],
       ["spec.out-of-range", 53],
     ]);
-    expect(refusal(text).message).toMatch(/\(and 2 more problems below\)$/);
+    expect(refusal(text).message).toMatch(/\(and 2 more problems further down\)$/);
     expect(pipelineProblems(GOOD, "p.yaml")).toEqual([]);
     expect(pipelineProblems("a: [", "p.yaml").map(({ name }) => name)).toEqual(["spec.yaml"]);
   });

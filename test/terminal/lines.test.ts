@@ -3,7 +3,7 @@ import { describe, expect, test } from "vitest";
 import { FINDING_KINDS, type Finding } from "../../src/data/finding.ts";
 import { InputError, InterruptedError, MachineError } from "../../src/errors.ts";
 import { errorLines } from "../../src/terminal/error.ts";
-import { findingLines } from "../../src/terminal/findings.ts";
+import { findingLines, wholeFindingLines } from "../../src/terminal/findings.ts";
 import { styleOf, widthOf } from "../../src/terminal/style.ts";
 import { summaryLines } from "../../src/terminal/summary.ts";
 
@@ -68,9 +68,40 @@ describe("findings", () => {
     expect(lines).toEqual([
       "findings: 1 that stop the run, 2 to look at, 1 accepted",
       "stop  duplicate       1  2001-03-04 twice: 3.1 and 4.0",
-      "warn  gap        2 (33)  stations/lowland_1.csv:12: 31 days without a value …",
+      "warn  gap        2 (33)  stations/lowland_1.csv:12: 31 days without a value",
     ]);
     expect(findingLines([], { style })).toEqual(["findings: none"]);
+  });
+
+  test("the head says where each of them stands whole", () => {
+    expect(findingLines([finding("gap", "warn")], { style, whole: "tables/findings.csv" })[0]).toBe(
+      "findings: 1 to look at; all of them: tables/findings.csv",
+    );
+  });
+
+  test("whole: each with its place and words, stops first, advice once where it is the same", () => {
+    const where = { file: "a.csv", line: 3 };
+    const long = "word ".repeat(30).trim();
+    const lines = wholeFindingLines(
+      [
+        finding("gap", "warn", { message: "1 day", where, remedy: "fill it" }),
+        finding("gap", "warn", { message: long, remedy: "fill it" }),
+        finding("gap", "accept", { message: "2 days", remedy: "" }),
+        finding("duplicate", "stop", { message: "twice", remedy: "drop one" }),
+      ],
+      style,
+    );
+    expect(lines.slice(0, 4)).toEqual([
+      "stop  duplicate  1",
+      "      twice",
+      "      what to do: drop one",
+      "warn  gap  2",
+    ]);
+    expect(lines[4]).toBe("      a.csv:3: 1 day");
+    expect(lines.filter((line) => line.includes("what to do: fill it"))).toHaveLength(1);
+    expect(lines.join(" ").replace(/ +/g, " ")).toContain(long);
+    expect(lines.slice(-2)).toEqual(["fine  gap  1", "      2 days"]);
+    for (const line of lines) expect(widthOf(line)).toBeLessThanOrEqual(80);
   });
 
   test("never more lines or columns than given, and every finding is counted", () => {
