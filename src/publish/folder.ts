@@ -60,7 +60,8 @@ export function openOutput(disk: Disk, path: string): OutputFolder {
 /** Only the bringing to an end of an interrupted swap, for commands that read an output folder. */
 export function recoverOutput(disk: Disk, path: string): Recovery {
   const names = namesOf(disk, path);
-  if (disk.kind(names.journal) === undefined) return "nothing";
+  const begun = [names.journal, `${names.journal}.part`];
+  if (begun.every((path) => disk.kind(path) === undefined)) return "nothing";
   const lock = takeLock(disk, names.lock);
   try {
     return recover(disk, names);

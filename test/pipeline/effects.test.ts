@@ -1,5 +1,7 @@
+import { spawnSync } from "node:child_process";
+import { createHash } from "node:crypto";
 import { mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
-import { tmpdir } from "node:os";
+import { hostname, tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, expect, test, vi } from "vitest";
 import { silentProgress } from "../../src/effects/effects.ts";
@@ -31,6 +33,21 @@ test("earlier results come back by key; other keys, torn and damaged files do no
   for (const key of ["a", "../a", "empty"]) expect(await reuse.get(key)).toBeUndefined();
   const again = Buffer.from((await reuse.put("a", bytes("four")).then(() => reuse.get("a"))) ?? []);
   expect(again.toString()).toBe("four");
+});
+
+test("halves that a dead run of this machine left are removed; those of living runs and other machines stay", async () => {
+  const kept = join(folder, "halves");
+  await reuseIn(kept).put("a", bytes("one"));
+  const [name] = readdirSync(kept);
+  const gone = spawnSync(process.execPath, ["--version"]).pid;
+  const here = createHash("sha256").update(hostname()).digest("hex").slice(0, 8);
+  const stay = [`${name}.00000000-${gone}-1.part`, `${name}.${here}-${process.pid}-1.part`, "notes.part"];
+  for (const half of [`${name}.${here}-${gone}-1.part`, ...stay]) writeFileSync(join(kept, half), "ha");
+  const reuse = reuseIn(kept);
+  await reuse.get("a");
+  expect(readdirSync(kept)).toHaveLength(5);
+  await reuse.put("a", bytes("two"));
+  expect(readdirSync(kept).sort()).toEqual([name, ...stay].sort());
 });
 
 test("a place where nothing can be kept is the machine's error", async () => {

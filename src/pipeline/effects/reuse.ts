@@ -1,5 +1,6 @@
 import { createHash } from "node:crypto";
-import { mkdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
+import { mkdirSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
+import { hostname } from "node:os";
 import { join } from "node:path";
 import type { Reuse } from "../../effects/effects.ts";
 import { codeOf, machineError, onDisk } from "./machine.ts";
@@ -9,10 +10,12 @@ export const noReuse: Reuse = { get: async () => undefined, put: async () => {} 
 
 /**
  * Earlier results as files named by the SHA-256 of their key. A file begins with the SHA-256 of its value, so that a
- * torn or damaged one is passed over; it comes into being by a rename, so that no reader meets a half of it.
+ * torn or damaged one is passed over; it comes into being by a rename, so that no reader meets a half of it. Halves that a
+ * killed run of this machine left are removed before the first result is kept.
  */
 export function reuseIn(folder: string): Reuse {
   let count = 0;
+  const machine = digest(new TextEncoder().encode(hostname())).toString("hex").slice(0, 8);
   const fileOf = (key: string) => join(folder, digest(new TextEncoder().encode(key)).toString("hex"));
   return {
     get: async (key) => {
@@ -28,9 +31,10 @@ export function reuseIn(folder: string): Reuse {
     },
     put: async (key, value) => {
       const file = fileOf(key);
-      const part = `${file}.${process.pid}.${count++}.part`;
+      const part = `${file}.${machine}-${process.pid}-${count}.part`;
       onDisk("keep a result for later runs", file, () => {
         mkdirSync(folder, { recursive: true });
+        if (count++ === 0) removeHalves(folder, machine);
         try {
           writeFileSync(part, Buffer.concat([digest(value), value]));
           renameSync(part, file);
@@ -41,6 +45,23 @@ export function reuseIn(folder: string): Reuse {
       });
     },
   };
+}
+
+/** A half-written result names its machine and process; it goes once that process is known to be gone. */
+function removeHalves(folder: string, machine: string): void {
+  for (const name of readdirSync(folder)) {
+    const [, host, pid] = /\.([0-9a-f]{8})-(\d+)-\d+\.part$/.exec(name) ?? [];
+    if (host === machine && isGone(Number(pid))) rmSync(join(folder, name), { force: true });
+  }
+}
+
+function isGone(pid: number): boolean {
+  try {
+    process.kill(pid, 0);
+    return false;
+  } catch (error) {
+    return codeOf(error) === "ESRCH";
+  }
 }
 
 function digest(bytes: Uint8Array): Buffer {
