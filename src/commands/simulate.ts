@@ -47,7 +47,7 @@ export async function simulateCommand(
   );
 }
 
-const whole = (share: number) => `${Math.round(100 * share)} %`.padStart(5);
+const whole = (share: number) => `${Math.round(100 * share)} %`;
 
 function sectionsOf(done: Simulated): SummarySection[] {
   const { detection, estimated, design, seconds } = done;
@@ -74,12 +74,14 @@ function sectionsOf(done: Simulated): SummarySection[] {
       ],
     },
     {
-      title: `effect: found counting years, animals; unrelated chosen (s.e. at most ${Math.ceil(100 * error)} %)`,
+      title: `effect per sd, and how often (s.e. at most ${Math.ceil(100 * error)} %)`,
       rows: effects.map((effect): [string, string] => {
         const own = rows.filter((one) => one.effect === effect);
-        const found = own.map((one) => whole(one.found.share)).join(", ");
-        const wrong = own.map((one) => whole(one.unrelated.share)).join(", ");
-        return [String(effect), `${found};  ${wrong}`];
+        const found = own.map(
+          (one) => `${whole(one.found.share)} ${one.rule === "counting years" ? "by years" : "by animals"}`,
+        );
+        const wrong = own.map((one) => whole(one.unrelated.share));
+        return [String(effect), `found ${found.join(", ")}; others chosen ${wrong.join(", ")}`];
       }),
     },
   ];
