@@ -6,7 +6,12 @@ function pastText(
   side: string,
   statistic: { readonly threshold: number; readonly orEqual: boolean },
 ) {
-  return `${what} ${statistic.orEqual ? "at or " : ""}${side} ${statistic.threshold}`;
+  return `${what} ${statistic.orEqual ? "at or " : ""}${side} ${signed(statistic.threshold)}`;
+}
+
+/** A number with a true minus, as words are printed. */
+function signed(value: number): string {
+  return String(value).replace("-", "\u2212");
 }
 
 /** A statistic in words, to be followed by `of` and the variable. */
@@ -33,14 +38,14 @@ export function statisticText(statistic: Statistic, unit: string): string {
       return `${pastText(what === "share" ? "share of days" : what, side, statistic)} ${unit}`;
     }
     case "degree-days": {
-      const cap = Number.isFinite(statistic.cap) ? `, capped at ${statistic.cap} ${unit},` : "";
-      return `degree-days above ${statistic.base} ${unit}${cap}`;
+      const cap = Number.isFinite(statistic.cap) ? `, capped at ${signed(statistic.cap)} ${unit},` : "";
+      return `degree-days above ${signed(statistic.base)} ${unit}${cap}`;
     }
     case "degree-days below":
-      return `degree-days below ${statistic.base} ${unit}`;
+      return `degree-days below ${signed(statistic.base)} ${unit}`;
     case "degree-days of extremes": {
-      const cap = Number.isFinite(statistic.cap) ? `, capped at ${statistic.cap} ${unit}` : "";
-      return `degree-days above ${statistic.base} ${unit}${cap} (method ${statistic.method})`;
+      const cap = Number.isFinite(statistic.cap) ? `, capped at ${signed(statistic.cap)} ${unit}` : "";
+      return `degree-days above ${signed(statistic.base)} ${unit}${cap} (method ${statistic.method})`;
     }
     case "trend":
       return "linear trend per day";

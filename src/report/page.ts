@@ -77,8 +77,11 @@ ${one.body}</section>
 <script>${markup(SCRIPT)}</script>
 </body>
 </html>
-`.text;
+`.text.replace(TEXT_RUN, (run) => run.replace(/(\d) %/g, "$1\u00a0%"));
 }
+
+/** Text between tags: there a number and its per cent sign are kept on one line. */
+const TEXT_RUN = />[^<]+</g;
 
 /** The run of intervals across the top of the page, each as long as it is. */
 function strip(input: ReportInput): Html {

@@ -52,7 +52,7 @@ document.addEventListener("keydown", (event) => { if (event.key === "Escape") ho
 
 const field = (text) => /[",\\n\\r]/.test(text) ? '"' + text.replace(/"/g, '""') + '"' : text;
 const csv = (table) => all("tr", table).map((row) => all("th,td", row).map((cell) =>
-  field((cell.dataset.v !== undefined ? cell.dataset.v : cell.textContent.replace(/\\u2212/g, "-")).trim())).join(",")).join("\\r\\n") + "\\r\\n";
+  field((cell.dataset.v !== undefined ? cell.dataset.v : cell.textContent.replace(/\\u2212/g, "-").replace(/\\u00a0/g, " ")).trim())).join(",")).join("\\r\\n") + "\\r\\n";
 for (const table of all("main table")) {
   const button = make("button", "Copy as CSV", { type: "button", className: "copy" });
   button.addEventListener("click", async () => {
@@ -138,13 +138,15 @@ for (const walk of all(".walk")) {
     svg.append(node);
     return node;
   };
-  const x = (at) => 40 + 650 * at;
+  const x = (at) => 60 + 630 * at;
   const y = (rate) => 140 - 130 * rate;
   const lines = all("svg[role=img]", walk).map((svg, g) => {
     for (const rate of [0, 0.5, 1]) {
-      put(svg, "path", { d: "M40," + y(rate) + "H690", stroke: "var(--rule)" });
-      put(svg, "text", { x: 32, y: y(rate) + 4, "text-anchor": "end", fill: "var(--muted)", "font-size": 12 }).textContent = String(rate);
+      put(svg, "path", { d: "M60," + y(rate) + "H690", stroke: "var(--rule)" });
+      put(svg, "text", { x: 52, y: y(rate) + 4, "text-anchor": "end", fill: "var(--muted)", "font-size": 12 }).textContent = String(rate);
     }
+    put(svg, "text", { transform: "translate(14,75) rotate(-90)", "text-anchor": "middle", fill: "var(--muted)", "font-size": 12 }).textContent = "apparent annual survival";
+    for (const [at, text] of data.ticks) put(svg, "text", { x: x(at), y: 160, "text-anchor": "middle", fill: "var(--muted)", "font-size": 12 }).textContent = text;
     for (let t = 0; t < n; t++) put(svg, "circle", { cx: x(data.at[t]), cy: y(data.own[g * n + t]), r: 3, fill: "var(--ink)" });
     const line = put(svg, "path", { fill: "none", stroke: "var(--mark)", "stroke-width": 2.2 });
     return (rates) => {

@@ -97,11 +97,12 @@ button.copy{font-size:.82rem;margin:.5rem 0 0;border-color:var(--rule);color:var
 @media screen{.off{display:none}}
 .caution{border-left:3px solid var(--rule);padding:.05rem 0 .05rem 1rem;color:var(--muted)}.caution b{color:var(--ink);font-weight:600}
 @media (prefers-reduced-motion:reduce){*{transition:none!important}}
+@page{size:A4;margin:15mm 14mm 16mm}
 @media print{:root{color-scheme:light}body{background:#fff;font-size:10.5pt}nav,.skip,button,.tools,.walk,.pin{display:none!important}
 .sheet{padding:0;max-width:none}header{padding-top:1rem}section{padding:1rem 0}
 caption{background:none}figure,details,table{break-inside:avoid}table{break-inside:auto}tr{break-inside:avoid}
 figure{border:0;padding:.4rem 0;background:none}figure .scroll,figcaption{padding-left:0;padding-right:0}.scroll{overflow:visible}
-figure svg{min-width:0!important;max-width:100%!important;max-height:23cm}table{font-size:8pt;width:100%}th,td{padding:.2rem .35rem;white-space:normal!important}td.w,th.w,th.n{min-width:0}
+figure svg{min-width:0!important;max-width:100%!important;max-height:18cm}figure.narrow svg{max-height:10.5cm;max-width:78%!important}figure{margin:.6rem 0}.findings details{break-inside:auto}.found{font-size:8.5pt;line-height:1.35}.found li{break-inside:avoid}.found li{padding:.3rem 0}#methods{font-size:9.5pt}table{font-size:8pt;width:100%}th,td{padding:.2rem .35rem;white-space:normal!important}td.w,th.w,th.n{min-width:0}
 h2,h3,caption,thead{break-after:avoid}tbody tr:first-child{break-before:avoid}
 #record details{border:0;margin:0}#record summary{padding:.1rem 0;font-size:8pt}details.fold{border:0}.fold summary{padding:.2rem 0}}
 `.trim();

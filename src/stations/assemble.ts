@@ -363,14 +363,16 @@ function duplicateFinding(
       kind: "excepted",
       ...shared,
       message: `${times}; the exception for this file applies (${sort.slice(10)}).`,
-      remedy: "none needed while the exception in `findings.duplicate.except` holds",
+      remedy:
+        "none needed while the exception holds that stands in the pipeline file under findings, duplicate",
     };
   if (sort === "same")
     return {
       kind: "duplicate",
       ...shared,
       message: `${times}, with the same value or with one value missing; each counts once.`,
-      remedy: "remove the repeated rows, or except the file in `findings.duplicate.except` with a note",
+      remedy:
+        "remove the repeated rows, or say in the pipeline file, findings: { duplicate: { do: stop, except: [{ file: …, keep: first, note: … }] } }",
     };
   const outcome = sort.endsWith("none")
     ? "none of the values is used"

@@ -51,7 +51,10 @@ describe("the page", () => {
 
   test("says the verdict's four sentences at the top, as they were made", () => {
     const verdict = input.comparison?.verdict;
-    const top = sectionOf(page, "verdict").replaceAll("&#39;", "'").replaceAll("&quot;", '"');
+    const top = sectionOf(page, "verdict")
+      .replaceAll("&#39;", "'")
+      .replaceAll("&quot;", '"')
+      .replaceAll("\u00a0", " ");
     for (const sentence of [verdict?.headline, verdict?.animals, verdict?.agreement, verdict?.caution])
       expect(top).toContain(sentence);
     expect(top).toContain(`<b>${verdict?.grade}</b>`);

@@ -36,5 +36,5 @@ ${grid(
     },
   ],
 )}
-<p>ĉ between animals: ${Number.isNaN(overall.betweenAnimals) ? "not to be had from these data" : show(overall.betweenAnimals)}. It is shown for judgement and not yet used in the criteria.${missing.map((one) => ` ${one.component}: ${one.reason}.`)}</p>`;
+<p>ĉ between animals: ${Number.isNaN(overall.betweenAnimals) ? "not to be had from these data" : show(overall.betweenAnimals)}. QAICc and QBIC divide by it, where the pipeline file asks for one of them; AICc and BIC do not.${missing.map((one) => ` ${one.component}: ${one.reason}.`)}</p>`;
 }

@@ -35,5 +35,5 @@ export function predictionBlock(
         one.key === "constant" ? "–" : show(one.gainError),
       ],
     })),
-  )}<p>Below 0: worse than foretelling the same survival every time. A gain that is less than about twice its standard error is not clearly one.</p>`;
+  )}<p>Below 0: worse than foretelling the same survival every time. A gain that is less than about twice its standard error is not clearly one.${best > 0 && " The row with the greatest gain is shaded."}</p>`;
 }

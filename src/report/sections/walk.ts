@@ -1,5 +1,5 @@
 import type { Cast } from "../cast.ts";
-import { isDated } from "../figures/axis-time.ts";
+import { isDated, yearTicks } from "../figures/axis-time.ts";
 import { pathWidth } from "../figures/lambda.ts";
 import { type Html, html, markup } from "../html.ts";
 import type { ReportInput } from "../input.ts";
@@ -19,6 +19,8 @@ export interface Walk {
   readonly own: readonly number[];
   /** Where the intervals stand in the small drawing, 0 … 1. */
   readonly at: readonly number[];
+  /** Years, or numbers of intervals, and where they stand, 0 … 1. */
+  readonly ticks: readonly (readonly [at: number, text: string])[];
   /** Of the two figures along the path, px, so that the slider moves a line in them. */
   readonly width: number;
 }
@@ -44,8 +46,23 @@ export function walkOf(input: ReportInput): Walk | undefined {
     width: pathWidth(SCREEN),
     survival: survivalAlong.map((one) => Array.from(one, thousandths)),
     own: rows.map((one) => thousandths(one.value)),
-    at: at.map((one) => Math.round(10_000 * ((one - low) / (high - low || 1))) / 10_000),
+    at: at.map((one) => place(one, low, high)),
+    ticks: dated
+      ? yearTicks({ from: low, to: high, left: 0, right: DRAWN }).map(
+          ({ day, text }) => [place(day, low, high), text] as const,
+        )
+      : at
+          .filter((_, t) => t % Math.ceil(n / 20) === 0)
+          .map((one) => [place(one, low, high), String(one + 1)] as const),
   };
+}
+
+/** Width of the small drawing's field, px. */
+const DRAWN = 630;
+
+/** Share of the way from `low` to `high`, to four places. */
+function place(at: number, low: number, high: number): number {
+  return Math.round(10_000 * ((at - low) / (high - low || 1))) / 10_000;
 }
 
 function thousandths(value: number): number {
@@ -61,7 +78,7 @@ export function walkBlock(input: ReportInput, cast: Cast): Html | undefined {
   const json = JSON.stringify(data).replace(/</g, "\\u003c");
   const lines = data.strata.map(
     (name) =>
-      html`<div class="pane"><h4>${data.strata.length > 1 && name}</h4><svg viewBox="0 0 700 150" role="img" aria-label="Apparent annual survival at the penalty chosen with the slider${data.strata.length > 1 && `, ${name}`}"></svg></div>`,
+      html`<div class="pane"><h4>${data.strata.length > 1 && name}</h4><svg viewBox="0 0 700 172" role="img" aria-label="Apparent annual survival at the penalty chosen with the slider${data.strata.length > 1 && `, ${name}`}"></svg></div>`,
   );
-  return html`<div class="walk" hidden data-start="${choice.index}"><h3>Walk the path</h3><label>Penalty λ, weaker to the right <input type="range" min="0" max="${path.steps.length - 1}" value="${choice.index}"></label><output></output><ul class="standing" aria-label="Covariates that stand at this penalty">${data.names.map((name, k) => html`<li data-k="${k}">${covariateName(cast, name)}</li>`)}</ul>${lines}<p>Line: apparent annual survival at this penalty, from 0 to 1; dots: one survival per interval. For looking only: the choice stands above.</p><script type="application/json">${markup(json)}</script></div>`;
+  return html`<div class="walk" hidden data-start="${choice.index}"><h3>Walk the path</h3><label>Penalty λ, weaker to the right <input type="range" min="0" max="${path.steps.length - 1}" value="${choice.index}"></label><output></output><ul class="standing" aria-label="Covariates that stand at this penalty">${data.names.map((name, k) => html`<li data-k="${k}">${covariateName(cast, name)}</li>`)}</ul>${lines}<p>Line: apparent annual survival at this penalty; dots: one survival per interval, set at its middle. For looking only: the choice stands above.</p><script type="application/json">${markup(json)}</script></div>`;
 }
