@@ -32,6 +32,8 @@ export interface Made {
   /** Names to put in place of the first covariate, theme and station. */
   readonly hostile?: string;
   readonly survival?: boolean;
+  /** A linear trend over the years in every model. */
+  readonly trend?: boolean;
   /** As from a counts table: no places, stations, map, tables or findings, values that came ready-made. */
   readonly bare?: boolean;
 }
@@ -277,7 +279,7 @@ export async function reportInput(made: Made = {}): Promise<ReportInput> {
     strata,
     intervals: n,
     lengths: Float64Array.from(intervals, (one) => one.length),
-    forced: [],
+    forced: made.trend === true ? [trend(n)] : [],
     effort: undefined,
   };
   const recapture = compareRecapture(data, frame, "choose");
@@ -313,6 +315,10 @@ export async function reportInput(made: Made = {}): Promise<ReportInput> {
     screened: result,
     comparison: compare(problem, result, components, diagnosis.kept, options),
   };
+}
+
+function trend(n: number) {
+  return { name: "year trend", values: Float64Array.from({ length: n }, (_, t) => (t - (n - 1) / 2) / n) };
 }
 
 function time(n: number, dated: boolean, random: Random) {

@@ -1,4 +1,5 @@
 import { beforeAll, describe, expect, test } from "vitest";
+import { failedAnalysis, summariseSensitivity } from "../../src/compare/sensitivity.ts";
 import type { Figure } from "../../src/report/figure.ts";
 import { figures } from "../../src/report/figures.ts";
 import type { ReportInput } from "../../src/report/input.ts";
@@ -152,6 +153,48 @@ describe("other studies", () => {
     for (const { name, svg } of shown) expect(svg, name).not.toContain("<img");
     const walk = /<script type="application\/json">([\s\S]*?)<\/script>/.exec(text);
     expect(JSON.parse(walk?.[1] ?? "{}").names).toContain(HOSTILE);
+  });
+
+  test("names and changes of other ways to do the study that look like markup stay text", async () => {
+    const plain = await reportInput({ covariates: 4, permutations: 0 });
+    const analysis = (name: string) => ({
+      ...failedAnalysis(name, HOSTILE, HOSTILE),
+      failed: name === "third" ? HOSTILE : undefined,
+      candidates: plain.matrix.names,
+      byYears: [plain.matrix.names[0]],
+    });
+    if (plain.comparison === undefined) throw new Error("the fixture compares");
+    const sensitivity = summariseSensitivity([analysis("base"), analysis(HOSTILE), analysis("third")], []);
+    const hostile = { ...plain, comparison: { ...plain.comparison, sensitivity } };
+    const shown = await figures(hostile);
+    const text = await renderPage(hostile, shown);
+    expect(text).not.toContain("<img src=x");
+    expect(text.split("</script>").length - 1).toBe(2);
+    expect(sectionOf(text, "sensitivity").split("&lt;img src=x").length - 1).toBeGreaterThan(3);
+    const figure = shown.find((one) => one.name === "sensitivity");
+    expect(figure?.svg).toContain("&lt;img");
+    expect(figure?.svg).not.toContain("<img");
+  });
+
+  test("a forced covariate moves the slider's curve where no candidate stands, and is named there", async () => {
+    const walkOf = async (made: object) => {
+      const text = await renderPage(
+        await reportInput({ covariates: 4, strata: ["all"], permutations: 0, ...made }),
+      );
+      const from = text.indexOf('<div class="walk"');
+      const data = /<script type="application\/json">([\s\S]*?)<\/script>/.exec(text.slice(from));
+      return { text: text.slice(from, from + 20_000), data: JSON.parse(data?.[1] ?? "{}") };
+    };
+    const [free, forced] = [await walkOf({}), await walkOf({ trend: true })];
+    expect(free.data.active[0]).toEqual([]);
+    expect(new Set(free.data.survival[0]).size).toBe(1);
+    expect(free.text).not.toContain("In the model at every penalty");
+    expect(forced.data.active[0]).toEqual([]);
+    expect(new Set(forced.data.survival[0]).size).toBeGreaterThan(5);
+    // a linear trend on the logit scale: the survivals keep one order
+    const ordered = [...forced.data.survival[0]].sort((a, b) => a - b);
+    expect([ordered, ordered.toReversed()]).toContainEqual(forced.data.survival[0]);
+    expect(forced.text).toContain('In the model at every penalty: <span class="cov">year trend</span>.');
   });
 
   test("a covariate set alone: a sentence where nothing was modelled", async () => {

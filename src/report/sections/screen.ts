@@ -163,7 +163,7 @@ function effectsTable(input: ReportInput, cast: Cast, set: RefittedSet, caption:
 function perUnit(input: ReportInput, name: string, value: number): string {
   const recipe = recipeNamed(input.matrix, name);
   if (recipe === undefined) return "–";
-  const unit = unitText(recipe.unit) || "1";
+  const unit = unitText(recipe.unit) || "unit";
   if (recipe.transform === undefined) return `${show(value / recipe.scale)} per ${unit}`;
   if (recipe.transform === "log") return `${show((value / recipe.scale) * Math.LN2)} per doubling`;
   return `– (after ${recipe.transform})`;

@@ -3,7 +3,7 @@ import { isDated, yearTicks } from "../figures/axis-time.ts";
 import { pathWidth } from "../figures/lambda.ts";
 import { type Html, html, markup } from "../html.ts";
 import type { ReportInput } from "../input.ts";
-import { covariateName } from "../parts.ts";
+import { covariateList, covariateName } from "../parts.ts";
 import { extent } from "../scale.ts";
 import { SCREEN } from "../size.ts";
 
@@ -73,12 +73,13 @@ function thousandths(value: number): number {
 export function walkBlock(input: ReportInput, cast: Cast): Html | undefined {
   const data = walkOf(input);
   if (data === undefined || input.screened === undefined) return undefined;
-  const { choice, path } = input.screened;
+  const { byAnimals, choice, path } = input.screened;
+  const forced = byAnimals.profiles.map((one) => one.name).filter((name) => !byAnimals.names.includes(name));
   // "<" must not end the script element early
   const json = JSON.stringify(data).replace(/</g, "\\u003c");
   const lines = data.strata.map(
     (name) =>
       html`<div class="pane"><h4>${data.strata.length > 1 && name}</h4><svg viewBox="0 0 700 172" role="img" aria-label="Apparent annual survival at the penalty chosen with the slider${data.strata.length > 1 && `, ${name}`}"></svg></div>`,
   );
-  return html`<div class="walk" hidden data-start="${choice.index}"><h3>Walk the path</h3><label>Penalty λ, weaker to the right <input type="range" min="0" max="${path.steps.length - 1}" value="${choice.index}"></label><output></output><ul class="standing" aria-label="Covariates that stand at this penalty">${data.names.map((name, k) => html`<li data-k="${k}">${covariateName(cast, name)}</li>`)}</ul>${lines}<p>Line: apparent annual survival at this penalty; dots: one survival per interval, set at its middle. For looking only: the choice stands above.</p><script type="application/json">${markup(json)}</script></div>`;
+  return html`<div class="walk" hidden data-start="${choice.index}"><h3>Walk the path</h3><label>Penalty λ, weaker to the right <input type="range" min="0" max="${path.steps.length - 1}" value="${choice.index}"></label><output></output><ul class="standing" aria-label="Covariates that stand at this penalty">${data.names.map((name, k) => html`<li data-k="${k}">${covariateName(cast, name)}</li>`)}</ul>${forced.length > 0 && html`<p>In the model at every penalty: ${covariateList(cast, forced)}.</p>`}${lines}<p>Line: apparent annual survival at this penalty; dots: one survival per interval, set at its middle. For looking only: the choice stands above.</p><script type="application/json">${markup(json)}</script></div>`;
 }
