@@ -28,12 +28,13 @@ export function verifyCommand(
 }
 
 function verificationLines(
-  { ok, recorded, departures }: Verification,
+  { ok, recorded, record, departures }: Verification,
   good: (text: string) => string,
   bad: (text: string) => string,
 ): Lines {
   const files = `${recorded} recorded file${recorded === 1 ? "" : "s"}`;
-  if (ok) return [good(`${files}, all as the run left them`)];
+  // Whoever noted it elsewhere can tell whether the record itself was changed.
+  if (ok) return [good(`${files}, all as the run left them`), `the record itself: sha256 ${record}`];
   const count = (what: Departure["what"]) => departures.filter((one) => one.what === what).length;
   const parts = (["changed", "missing", "not in the record"] as const)
     .filter((what) => count(what) > 0)

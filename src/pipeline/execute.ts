@@ -2,6 +2,7 @@ import type { Progress } from "../effects/effects.ts";
 import { openOutput } from "../publish/folder.ts";
 import { stampAt } from "./effects/files.ts";
 import { programDigest } from "./effects/program.ts";
+import { requireReuseFolder } from "./effects/reuse.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
 import { recording } from "./inputs.ts";
 import type { Loaded } from "./load.ts";
@@ -29,6 +30,7 @@ export interface Executed extends RunResult {
 
 /** A whole run: take the output folder, go through the stages, publish everything or nothing. */
 export async function execute(loaded: Loaded, maker: Maker, options: ExecuteOptions): Promise<Executed> {
+  if (options.reuseFolder !== undefined) requireReuseFolder(options.reuseFolder, loaded.outputFolder);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
   const inputs = recording(world.files, stampAt);
   const effects = { ...world, files: inputs.files };

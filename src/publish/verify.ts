@@ -17,6 +17,8 @@ export interface Verification {
   readonly ok: boolean;
   /** Files the record names. */
   readonly recorded: number;
+  /** SHA-256 of the record itself, which nothing in the folder vouches for; empty where there is none. */
+  readonly record: string;
   readonly departures: readonly Departure[];
 }
 
@@ -40,8 +42,10 @@ export function verifyOutput(disk: Disk, path: string): Verification {
 /** As `verifyOutput`, but an absent or torn record is an answer (`ok` false), not an error. */
 export function verifyFolder(disk: Disk, folder: string): Verification {
   const recordPath = join(folder, RECORD_FILE);
-  if (disk.kind(recordPath) !== "file") return { ok: false, recorded: 0, departures: [missing(RECORD_FILE)] };
-  const { outputs } = recordOf(disk.read(recordPath), recordPath);
+  if (disk.kind(recordPath) !== "file")
+    return { ok: false, recorded: 0, record: "", departures: [missing(RECORD_FILE)] };
+  const recordBytes = disk.read(recordPath);
+  const { outputs } = recordOf(recordBytes, recordPath);
   const departures: Departure[] = outputs.flatMap((one) => {
     const file = join(folder, one.path);
     const kind = disk.kind(file);
@@ -55,7 +59,12 @@ export function verifyFolder(disk: Disk, folder: string): Verification {
   for (const path of disk.listFiles(folder))
     if (!known.has(path)) departures.push({ path, what: "not in the record", expected: "", found: "a file" });
   departures.sort((a, b) => (a.path < b.path ? -1 : 1));
-  return { ok: departures.length === 0, recorded: outputs.length, departures };
+  return {
+    ok: departures.length === 0,
+    recorded: outputs.length,
+    record: sha256(recordBytes),
+    departures,
+  };
 }
 
 interface Digest {

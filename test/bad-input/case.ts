@@ -12,6 +12,7 @@ import { startCommand } from "../../src/commands/start.ts";
 import { verifyCommand } from "../../src/commands/verify.ts";
 import { silentProgress } from "../../src/effects/effects.ts";
 import { CoveyError, placeText } from "../../src/errors.ts";
+import { requireReuseFolder } from "../../src/pipeline/effects/reuse.ts";
 import { nodeDisk, nodeEffects } from "../../src/pipeline/effects.ts";
 import { loadPipeline } from "../../src/pipeline/load.ts";
 import { planRun } from "../../src/pipeline/plan.ts";
@@ -143,6 +144,8 @@ async function command(line: string, folder: string): Promise<Told> {
     case "run": {
       const through = stageNamed(option("--through") ?? "compare");
       const loaded = loadPipeline(path(words[0]));
+      const kept = option("--reuse");
+      if (kept !== undefined) requireReuseFolder(path(kept), loaded.outputFolder);
       const output = openOutput(nodeDisk(), loaded.outputFolder);
       try {
         const effects = nodeEffects({ ...terminal, workers: 1, dataFolder: loaded.dataFolder });

@@ -1,3 +1,4 @@
+import { createHash } from "node:crypto";
 import { appendFileSync, mkdtempSync, readFileSync, rmSync, unlinkSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
@@ -34,7 +35,12 @@ const verify = (json = false) => verifyCommand(folder, { json }, terminal);
 
 describe("verify", () => {
   test("a folder as the run left it", () => {
-    expect(verify()).toEqual({ ok: true, lines: ["2 recorded files, all as the run left them"] });
+    const record = createHash("sha256")
+      .update(readFileSync(join(folder, "run-record.json")))
+      .digest("hex");
+    const lines = ["2 recorded files, all as the run left them", `the record itself: sha256 ${record}`];
+    expect(verify()).toEqual({ ok: true, lines });
+    expect(JSON.parse(verify(true).lines[0])).toMatchObject({ ok: true, record });
   });
 
   test("a changed number, a lost file and a stranger are named", () => {

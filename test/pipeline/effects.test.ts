@@ -5,7 +5,8 @@ import { hostname, tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, expect, test, vi } from "vitest";
 import { silentProgress } from "../../src/effects/effects.ts";
-import { reuseIn } from "../../src/pipeline/effects/reuse.ts";
+import { InputError } from "../../src/errors.ts";
+import { requireReuseFolder, reuseIn } from "../../src/pipeline/effects/reuse.ts";
 import { nodeEffects, surroundings } from "../../src/pipeline/effects.ts";
 
 const folder = mkdtempSync(join(tmpdir(), "covey-test-"));
@@ -48,6 +49,29 @@ test("halves that a dead run of this machine left are removed; those of living r
   expect(readdirSync(kept)).toHaveLength(5);
   await reuse.put("a", bytes("two"));
   expect(readdirSync(kept).sort()).toEqual([name, ...stay].sort());
+});
+
+test("kept results go into a folder of their own", async () => {
+  const base = join(folder, "own");
+  const refused = (kept: string) => {
+    try {
+      requireReuseFolder(kept, join(base, "out"));
+      return "taken";
+    } catch (error) {
+      if (error instanceof InputError) return `${error.facts.name}: ${error.facts.found}`;
+      throw error;
+    }
+  };
+  await reuseIn(join(base, "kept")).put("a", bytes("one"));
+  writeFileSync(join(base, "kept", ".DS_Store"), "");
+  for (const good of ["kept", "absent", "absent/below", "out-kept", "..kept"])
+    expect(refused(join(base, good)), good).toBe("taken");
+  for (const within of ["out", "out/kept", "kept/../out/..kept"])
+    expect(refused(join(base, within)), within).toBe("run.reuse-folder: the output folder or one within it");
+  expect(refused("")).toBe("run.reuse-folder: no name");
+  for (const name of ["a.csv", "b", "c", "d"]) writeFileSync(join(base, "kept", name), "");
+  expect(refused(join(base, "kept"))).toBe("run.reuse-folder: 4 other (a.csv, b, c, …)");
+  expect(refused(base)).toBe("run.reuse-folder: 1 other (kept)");
 });
 
 test("a place where nothing can be kept is the machine's error", async () => {

@@ -52,7 +52,7 @@ test("verify says what changed, is missing, and is not in the record", () => {
   const tree = new MemoryTree();
   const disk = memoryDisk(tree, 1);
   for (const [path, bytes] of withRecord(facts)) disk.write(`/out/${path}`, bytes);
-  expect(verifyOutput(disk, "/out")).toEqual({ ok: true, recorded: 2, departures: [] });
+  expect(verifyOutput(disk, "/out")).toMatchObject({ ok: true, recorded: 2, departures: [] });
   disk.write("/out/a.csv", encode("x\n2\n"));
   disk.remove("/out/b/page.html");
   disk.write("/out/notes.txt", encode("mine"));

@@ -1,8 +1,9 @@
 import { createHash } from "node:crypto";
 import { mkdirSync, readdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
 import { hostname } from "node:os";
-import { join } from "node:path";
+import { join, relative, resolve } from "node:path";
 import type { Reuse } from "../../effects/effects.ts";
+import { InputError } from "../../errors.ts";
 import { codeOf, machineError, onDisk } from "./machine.ts";
 
 /** Keeps nothing and finds nothing. */
@@ -45,6 +46,41 @@ export function reuseIn(folder: string): Reuse {
       });
     },
   };
+}
+
+/** Kept results, their halves, and what file managers leave in folders. */
+const KEPT = /^[0-9a-f]{64}(\..*\.part)?$|^\.|^Thumbs\.db$|^desktop\.ini$/;
+
+/**
+ * Kept results need a folder of their own: those within the output would go with it when it is replaced, those among
+ * other files would bury them. Throws `run.reuse-folder`.
+ */
+export function requireReuseFolder(folder: string, output: string): void {
+  const refuse = (found: string) => {
+    throw new InputError({
+      name: "run.reuse-folder",
+      expected: "a folder for kept results alone: absent, empty, or one that held them before",
+      found,
+      where: { file: folder === "" ? "--reuse" : folder },
+      remedy: "name another folder, e.g. --reuse kept",
+    });
+  };
+  if (folder.trim() === "") refuse("no name");
+  const fromOutput = relative(resolve(output), resolve(folder));
+  if (fromOutput === "" || !/^\.\.($|[\\/])|^[a-z]:/i.test(fromOutput))
+    refuse("the output folder or one within it");
+  const others = namesIn(folder).filter((name) => !KEPT.test(name));
+  if (others.length > 0)
+    refuse(`${others.length} other (${others.slice(0, 3).join(", ")}${others.length > 3 ? ", …" : ""})`);
+}
+
+function namesIn(folder: string): readonly string[] {
+  try {
+    return readdirSync(folder).sort();
+  } catch (error) {
+    if (codeOf(error) === "ENOENT") return [];
+    throw machineError(error, "keep results for later runs in this folder", folder);
+  }
 }
 
 /** A half-written result names its machine and process; it goes once that process is known to be gone. */
