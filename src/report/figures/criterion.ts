@@ -31,7 +31,7 @@ export async function criterion(
     type: "quantitative",
     scale: lambdaScale(screened),
     title: LAMBDA_TITLE,
-    axis: lambdaAxis(screened),
+    axis: lambdaAxis(screened, size),
   } as const;
   const y = {
     field: "value",

@@ -20,12 +20,21 @@ export function lambdaScale(screened: ScreenResult) {
   return { type: "log" as const, domain, nice: false as const };
 }
 
-/** The axis both figures share: 1-2-5 labels, no grid, and the same room on the left. */
-export function lambdaAxis(screened: ScreenResult) {
+/** Room for a label, px. */
+const LABEL = 34;
+
+/**
+ * The axis both figures share: labels at 1, 2 and 5 times powers of ten, or where they would touch at the powers alone; no
+ * grid, and the same room on the left.
+ */
+export function lambdaAxis(screened: ScreenResult, size: Size) {
   const [high, low] = lambdaScale(screened).domain;
+  const decade = pathWidth(size) / Math.log10(high / low);
+  // the least gap of 1-2-5 is that of a factor 2
+  const leads = decade * Math.log10(2) >= LABEL ? [1, 2, 5] : [1];
   const values: number[] = [];
   for (let power = Math.floor(Math.log10(low)); power <= Math.log10(high); power++)
-    for (const lead of [1, 2, 5]) {
+    for (const lead of leads) {
       const value = Number((lead * 10 ** power).toPrecision(3));
       if (value >= low && value <= high) values.push(value);
     }

@@ -68,7 +68,7 @@ export async function paths({ screened }: ReportInput, cast: Cast, size: Size): 
     type: "quantitative",
     scale: lambdaScale(screened),
     title: LAMBDA_TITLE,
-    axis: lambdaAxis(screened),
+    axis: lambdaAxis(screened, size),
   } as const;
   const y = (field: string) =>
     ({
