@@ -2,8 +2,11 @@
 export interface RandomAccess {
   readonly path: string;
   readonly size: number;
-  /** Exactly `length` bytes from `offset`; throws InputError `files.short-read` if the file ends before. */
-  read(offset: number, length: number): Uint8Array;
+  /**
+   * Exactly `length` bytes from `offset`; throws InputError `files.short-read` if the file ends before. They may stand
+   * at the beginning of `into`, if that is given and long enough, and are then gone once it is used again.
+   */
+  read(offset: number, length: number, into?: Uint8Array): Uint8Array;
   close(): void;
 }
 

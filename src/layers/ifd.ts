@@ -60,7 +60,13 @@ export function brokenFile(path: string, found: string, expected = "a whole TIFF
 }
 
 /** Exactly `length` bytes, checked against the file's size before anything is asked for. */
-export function readChecked(file: RandomAccess, offset: number, length: number, what: string): Uint8Array {
+export function readChecked(
+  file: RandomAccess,
+  offset: number,
+  length: number,
+  what: string,
+  into?: Uint8Array,
+): Uint8Array {
   if (!(Number.isSafeInteger(offset) && Number.isSafeInteger(length)) || offset < 0 || length < 0)
     throw brokenFile(file.path, `an impossible place for ${what} (byte ${offset}, ${length} bytes)`);
   if (offset + length > file.size)
@@ -68,7 +74,7 @@ export function readChecked(file: RandomAccess, offset: number, length: number, 
       file.path,
       `a file of ${file.size} bytes whose ${what} should end at byte ${offset + length}`,
     );
-  return file.read(offset, length);
+  return file.read(offset, length, into);
 }
 
 /**

@@ -2,6 +2,7 @@ import type { RandomAccess } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import { brokenFile, type Directory, readChecked } from "./ifd.ts";
 import { undoDifferences, undoFloatPlanes } from "./predictor.ts";
+import { reusedMemory } from "./reused-memory.ts";
 import { HOST_LITTLE, SAMPLE_BYTES, type Samples, type SampleType, samplesOf, swapBytes } from "./samples.ts";
 import { type BlockShape, type Compression, compressionOf, unpack } from "./unpack.ts";
 
@@ -31,6 +32,11 @@ export interface Image {
 
 /** Blocks larger than this are refused: one block is unpacked at a time, and a lying header must not take the memory. */
 const MOST_BLOCK_BYTES = 2 ** 28;
+
+/** Packed blocks: no way of unpacking keeps or hands on what it is given. */
+const packedMemory = reusedMemory();
+const unpackedMemory = reusedMemory();
+const ownMemory = (length: number) => new Uint8Array(length);
 
 const FORMATS: Readonly<Record<number, string>> = {
   1: "uint",
@@ -163,7 +169,8 @@ export function readBlock(
   blockRow: number,
   band: number,
 ): Samples | undefined {
-  return readRows(file, image, blockColumn, blockRow, band, 0, blockRows(image, blockRow) - 1)?.samples;
+  const rows: Rows = [0, blockRows(image, blockRow) - 1];
+  return readRows(file, image, blockColumn, blockRow, band, rows, ownMemory)?.samples;
 }
 
 /** Pixels of a block from pixel `from` on. */
@@ -175,7 +182,7 @@ export interface Pixels {
 /**
  * The pixels `first` to `last` (both included, row-major within the block) at least. Uncompressed samples are read
  * from where they stand; of all others the block is unpacked as far as needed and the predictor undone in the rows
- * that hold them. The block must be whole in the file either way.
+ * that hold them. The block must be whole in the file either way. They are gone with the next call.
  */
 export function readPixels(
   file: RandomAccess,
@@ -187,7 +194,8 @@ export function readPixels(
 ): Pixels | undefined {
   if (image.compression !== "none" || image.predictor !== 1 || image.oneBit) {
     const rowOf = (pixel: number) => Math.floor(pixel / image.blockWidth);
-    return readRows(file, image, blockColumn, blockRow, band, rowOf(first), rowOf(last));
+    const rows: Rows = [rowOf(first), rowOf(last)];
+    return readRows(file, image, blockColumn, blockRow, band, rows, unpackedMemory);
   }
   const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
   if (count === 0) return undefined;
@@ -204,15 +212,18 @@ export function readPixels(
   return { samples: finish(image, own, own.length, samplesPerPixel(image)), from: first };
 }
 
-/** Rows `top` to `bottom` (both included) of a block. Predictors work row by row, so others need not be undone. */
+/** First and last row, both included. */
+type Rows = readonly [number, number];
+
+/** Some rows of a block. Predictors work row by row, so others need not be undone. */
 function readRows(
   file: RandomAccess,
   image: Image,
   blockColumn: number,
   blockRow: number,
   band: number,
-  top: number,
-  bottom: number,
+  [top, bottom]: Rows,
+  memory: BlockShape["memory"],
 ): Pixels | undefined {
   const { index, offset, count } = blockPlace(image, blockColumn, blockRow, band);
   if (count === 0) return undefined;
@@ -227,8 +238,11 @@ function readRows(
     samples: samplesPerPixel(image),
     type: image.type,
     lercAdded: image.lercAdded,
+    memory,
   };
-  const packed = readChecked(file, offset, count, `block ${index}`);
+  // Checked before memory is asked for: a lying count may be of gigabytes.
+  const into = offset + count <= file.size ? packedMemory(count) : undefined;
+  const packed = readChecked(file, offset, count, `block ${index}`, into);
   const bytes = unpack(packed, image.compression, shape, image.path).subarray(row * top, shape.need);
   const samples = image.oneBit
     ? spreadBits(bytes, image.blockWidth * shape.samples, bottom - top + 1)

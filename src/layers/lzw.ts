@@ -1,3 +1,5 @@
+import { reusedMemory } from "./reused-memory.ts";
+
 const CLEAR = 256;
 const END = 257;
 
@@ -5,6 +7,7 @@ const END = 257;
 // serves every call, since decoding never yields.
 const startOf = new Int32Array(4097);
 const lengthOf = new Int32Array(4097);
+const paddedMemory = reusedMemory();
 
 /**
  * TIFF's LZW (TIFF 6.0 §13): codes of 9 to 12 bits, most significant bit first, the width growing one code early.
@@ -12,8 +15,8 @@ const lengthOf = new Int32Array(4097);
  * but its start and length is kept. Returns the bytes written (at most out.length), or −1 if a code is impossible.
  */
 export function unpackLzw(packed: Uint8Array, out: Uint8Array): number {
-  // Three bytes always hold a code of up to 12 bits; the padding lets the last one be read like any other.
-  const bytes = new Uint8Array(packed.length + 3);
+  // Three bytes always hold a code of up to 12 bits; the padding, whatever it holds, lets the last one be read like any other.
+  const bytes = paddedMemory(packed.length + 3);
   bytes.set(packed);
   const bits = packed.length * 8;
   const size = out.length;

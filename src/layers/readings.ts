@@ -64,22 +64,25 @@ export function keptOf(
   { values, shares, refused }: Gathered,
   withQuality: boolean,
 ): readonly Kept[] {
-  return Array.from({ length: places }, (_, owner): Kept => {
-    const own = readings.flatMap((one, r) => (one.owner === owner ? [{ ...one, r }] : []));
+  const byOwner = Array.from({ length: places }, (): number[] => []);
+  for (const [r, { owner }] of readings.entries()) byOwner[owner].push(r);
+  return byOwner.map((own): Kept => {
     const pick = (from: Float64Array, missing: number) => {
       const out = new Array<number>(images).fill(missing);
-      for (const { only, r } of own)
+      for (const r of own) {
+        const { only } = readings[r];
         if (only !== undefined) out[only] = from[only * readings.length + r];
         else for (let i = 0; i < images; i++) out[i] = from[i * readings.length + r];
+      }
       return out;
     };
-    const outside = own.length === 0 ? 0 : Math.max(...own.map((one) => one.footprint.outside));
+    const outside = own.length === 0 ? 0 : Math.max(...own.map((r) => readings[r].footprint.outside));
     return {
       values: pick(values, Number.NaN),
       shares: pick(shares, 0),
       ...(withQuality ? { refused: pick(refused, 0) } : {}),
       outside,
-      pixels: own[0]?.footprint.pixels ?? 1,
+      pixels: own.length === 0 ? 1 : readings[own[0]].footprint.pixels,
     };
   });
 }

@@ -74,10 +74,12 @@ export interface BlockShape {
   readonly type: SampleType;
   /** LERC's second compression: 0 none, 1 deflate, 2 Zstandard. */
   readonly lercAdded: number;
+  /** Where bytes are unpacked to, by the methods that let one say so; what it holds does not matter. */
+  readonly memory: (length: number) => Uint8Array;
 }
 
 /**
- * Unpacks one block, or at least its first `need` bytes, into a buffer of its own. Throws `layers.broken-file` where the
+ * Unpacks one block, or at least its first `need` bytes, into `memory` or memory of its own, never into the packed bytes. Throws `layers.broken-file` where the
  * packed bytes are corrupt, end early or stand for more than the block can hold; nothing much larger than the block is
  * ever allocated. Deflate is always unpacked to its end, since its checksum stands there.
  */
@@ -111,17 +113,17 @@ function unpackAny(
   switch (compression) {
     case "none":
       // A copy (Buffer's own slice would be none): later steps work in place and the reader may own its bytes.
-      return new Uint8Array(packed.subarray(0, shape.most));
+      return copied(packed.subarray(0, shape.most), shape.memory);
     case "deflate":
       return inflate(packed, shape, path);
     case "Zstandard":
       return unpackZstandard(packed, shape.need, shape.most, path);
     case "PackBits": {
-      const out = new Uint8Array(shape.need);
+      const out = shape.memory(shape.need);
       return out.subarray(0, unpackPackBits(packed, out));
     }
     case "LZW": {
-      const out = new Uint8Array(shape.need);
+      const out = shape.memory(shape.need);
       // The first code is 256 in nine bits, so the first byte is 128; old files that begin with 0 and 1 have the
       // bits the other way round (TIFF 6.0 §13 does not allow it).
       if (packed.length > 1 && packed[0] === 0 && (packed[1] & 1) === 1)
@@ -141,9 +143,16 @@ function unpackAny(
   }
 }
 
+function copied(bytes: Uint8Array, memory: BlockShape["memory"]): Uint8Array {
+  const out = memory(bytes.length);
+  out.set(bytes);
+  return out;
+}
+
 function inflate(packed: Uint8Array, shape: BlockShape, path: string): Uint8Array {
   try {
-    const out = inflateSync(packed, { maxOutputLength: shape.most, chunkSize: Math.max(64, shape.most) });
+    // Room for a little more than the block: where it is filled exactly, another piece of the same size is made.
+    const out = inflateSync(packed, { maxOutputLength: shape.most, chunkSize: shape.most + 64 });
     // A plain array: Buffer's own slice would share its bytes where a copy is meant.
     return new Uint8Array(out.buffer, out.byteOffset, out.byteLength);
   } catch (error) {

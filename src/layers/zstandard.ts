@@ -1,6 +1,7 @@
 import * as zlib from "node:zlib";
 import { ZSTDDecoder } from "zstddec";
 import { brokenFile } from "./ifd.ts";
+import { reusedMemory } from "./reused-memory.ts";
 
 /** A Zstandard frame of exactly these bytes; throws on corrupt ones. `most` bounds what may come out. */
 type Decode = (frame: Uint8Array, most: number) => Uint8Array;
@@ -41,8 +42,9 @@ async function native(): Promise<Decode | undefined> {
   try {
     const { Decoder } = await import("@toondepauw/node-zstd");
     // It takes no bound; callers hand it only frames whose blocks cannot hold much more than is wanted.
+    const decoder = new Decoder();
     return (frame) => {
-      const bytes = new Decoder().decodeSync(Buffer.from(frame.buffer, frame.byteOffset, frame.byteLength));
+      const bytes = decoder.decodeSync(Buffer.from(frame.buffer, frame.byteOffset, frame.byteLength));
       return new Uint8Array(bytes.buffer, bytes.byteOffset, bytes.byteLength);
     };
   } catch {
@@ -50,6 +52,8 @@ async function native(): Promise<Decode | undefined> {
     return undefined;
   }
 }
+
+const frameMemory = reusedMemory();
 
 /** No block of a frame holds more (RFC 8878 §3.1.1.2.4). */
 const MOST_BLOCK = 2 ** 17;
@@ -121,20 +125,23 @@ export function unpackZstandard(packed: Uint8Array, need: number, most: number, 
     });
     if (enough >= 0 && enough < frame.blocks.length - 1) {
       const { at, end } = frame.blocks[enough];
-      const cut = narrowed(packed.slice(0, end), frame, most);
+      const cut = narrowed(packed.subarray(0, end), frame, most);
       cut[at] |= 1; // now the last block
       const bytes = run(decode, cut, frame.blocks.slice(0, enough + 1), most, path);
       if (bytes.length >= need) return bytes;
     }
   }
-  return run(decode, narrowed(packed.slice(0, frame.end), frame, most), frame.blocks, most, path);
+  return run(decode, narrowed(packed.subarray(0, frame.end), frame, most), frame.blocks, most, path);
 }
 
 /**
- * Writers that stream announce a window of megabytes, which decoders allocate for every frame; no match can reach
+ * A copy of the frame that asks for less memory. Writers that stream announce a window of megabytes, which decoders allocate for every frame; no match can reach
  * further back than the content is long. Window_Size = 2^(10 + (byte >> 3)) for a mantissa of 0 (RFC 8878 §3.1.1.1.2).
  */
-function narrowed(frame: Uint8Array, { window }: Frame, most: number): Uint8Array {
+function narrowed(packed: Uint8Array, { window }: Frame, most: number): Uint8Array {
+  // A copy: the bytes are the caller's.
+  const frame = frameMemory(packed.length);
+  frame.set(packed);
   if (window === undefined) return frame;
   // Blocks may be as long as the window at most, and ours may be of the full length.
   const exponent = Math.max(17, Math.ceil(Math.log2(most)));

@@ -21,6 +21,13 @@ const IN_PARTS = "not known: read in parts";
 export function recording(files: Files, stampOf: (absolute: string) => string): RecordingFiles {
   const used = new Map<string, string>();
   const fetched = new Map<string, FileIdentity>();
+  // Hashed once a run: the stamp at the end shows that a file is still what it was when that was done.
+  const hashed = new Map<string, FileIdentity>();
+  const identity = async (path: string) => {
+    const known = hashed.get(path) ?? (await files.identity(path));
+    hashed.set(path, known);
+    return known;
+  };
   // What stands on a server has no stamp.
   const stamp = (path: string) =>
     /^[a-z][a-z0-9+.-]+:\/\//i.test(path) ? "" : stampOf(files.absolute(path));
@@ -35,14 +42,14 @@ export function recording(files: Files, stampOf: (absolute: string) => string): 
       readText: (path) => files.readText(note(path)),
       open: (path) => files.open(note(path)),
       absolute: (path) => files.absolute(note(path)),
-      identity: (path) => files.identity(note(path)),
+      identity: (path) => identity(note(path)),
       ...(files.remote === undefined ? {} : { remote: watched(files.remote, fetched) }),
     },
     identities: async () => {
       const sorted = [...used].sort(([a], [b]) => (a < b ? -1 : 1));
       const out: FileIdentity[] = [...fetched.values()];
       for (const [path, first] of sorted) {
-        out.push(await files.identity(path));
+        out.push(await identity(path));
         if (stamp(path) !== first) throw changedWhileRead(path);
       }
       return out.sort((a, b) => (a.path < b.path ? -1 : 1));

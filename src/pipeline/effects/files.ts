@@ -213,8 +213,10 @@ function openAt(real: string, path: string): RandomAccess {
     return {
       path,
       size,
-      read: (offset, length) => {
-        const bytes = new Uint8Array(Math.max(0, Math.min(length, size - offset)));
+      read: (offset, length, into) => {
+        const here = Math.max(0, Math.min(length, size - offset));
+        const bytes =
+          into !== undefined && into.length >= here ? into.subarray(0, here) : new Uint8Array(here);
         let got = 0;
         while (got < bytes.length) {
           const n = onDisk("read", path, () =>
@@ -273,7 +275,9 @@ function identify(real: string, path: string): FileIdentity {
   const file = openAt(real, path);
   try {
     const hash = createHash("sha256");
-    for (let at = 0; at < file.size; at += BLOCK) hash.update(file.read(at, Math.min(BLOCK, file.size - at)));
+    const block = new Uint8Array(Math.min(BLOCK, file.size));
+    for (let at = 0; at < file.size; at += BLOCK)
+      hash.update(file.read(at, Math.min(BLOCK, file.size - at), block));
     return { path, bytes: file.size, sha256: hash.digest("hex") };
   } finally {
     file.close();
