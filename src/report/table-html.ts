@@ -7,11 +7,13 @@ import { counted, show, whole } from "./numbers.ts";
 export const MOST_ROWS = 250;
 /** Columns beyond which a table is only named, since nobody reads it on a page. */
 export const MOST_COLUMNS = 60;
+/** Cells that go onto the page of one table. */
+export const MOST_CELLS = 2500;
 
 /** One output table, closed until it is asked for. */
 export function tableDetails(table: Table): Html {
-  const rows = table.rows.slice(0, MOST_ROWS);
   const columns = table.columns.slice(0, MOST_COLUMNS);
+  const rows = table.rows.slice(0, Math.min(MOST_ROWS, Math.ceil(MOST_CELLS / columns.length)));
   const cut =
     rows.length < table.rows.length || columns.length < table.columns.length
       ? html`<p>Shown: ${counted(rows.length, "row")} of ${whole(table.rows.length)}, ${counted(columns.length, "column")} of ${whole(table.columns.length)}; the file holds the whole table.</p>`

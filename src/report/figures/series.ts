@@ -37,9 +37,25 @@ export function seriesFigure(input: ReportInput, cast: Cast, { width }: Size): F
       shown.length * HIGH + 4,
       "Observed series and their windows",
       says,
-      shown.map((one, i) => panel(input, cast, axis, one, i * HIGH)),
+      shown.map((one, i) => panel(input, cast, axis, one, i * HIGH, drawnBefore(shown, i))),
     ),
   };
+}
+
+/** The panel that draws the same series first: the line is kept once, however many covariates look at it. */
+function drawnBefore(shown: readonly ShownSeries[], i: number): number {
+  const { series } = shown[i];
+  return shown.findIndex(({ series: other }) => {
+    return (
+      other === series ||
+      (other.variable === series.variable &&
+        other.site === series.site &&
+        other.values.length === series.values.length &&
+        other.values.every(
+          (value, k) => Object.is(value, series.values[k]) && other.starts[k] === series.starts[k],
+        ))
+    );
+  });
 }
 
 function panel(
@@ -48,6 +64,7 @@ function panel(
   axis: TimeAxis,
   { covariate, series }: ShownSeries,
   top: number,
+  first: number,
 ): Html {
   const member = cast.byName.get(covariate);
   const y0 = top + 24;
@@ -66,6 +83,26 @@ function panel(
       ),
     ),
   );
+  const unit = unitText(series.unit);
+  const head = `${series.variable}${unit === "" ? "" : ` (${unit})`}${MEAN.test(series.site) ? "," : " at"} ${series.site}, for ${covariate}`;
+  return belongs(member, [
+    member !== undefined && marker(member.theme, LEFT - 10, top + 10),
+    label(LEFT, top + 14, fitted(head, axis.right - LEFT)),
+    shade,
+    ticks(low, high, 3).map(
+      (value) =>
+        html`${segment(axis.left, y(value), axis.right, y(value), "rule")}${label(LEFT - 6, y(value) + 4, tickText(value), { anchor: "end", fill: "muted", size: 11 })}`,
+    ),
+    first * HIGH === top
+      ? html`<path id="observed-${first}" d="${pathOf(axis, series, y)}" fill="none" stroke="${ink("ink")}" stroke-width="1.1" stroke-linejoin="round"/>`
+      : html`<use href="#observed-${first}" y="${top - first * HIGH}"/>`,
+    top === 0
+      ? html`<g id="observed-years">${years(axis, y0 + PLOT)}</g>`
+      : html`<use href="#observed-years" y="${top}"/>`,
+  ]);
+}
+
+function pathOf(axis: TimeAxis, series: ShownSeries["series"], y: (value: number) => number): string {
   let path = "";
   let pen = false;
   for (let i = 0; i < series.values.length; i++) {
@@ -79,20 +116,12 @@ function panel(
     path += `${pen ? "L" : "M"}${px(axis.x(middle))},${px(y(series.values[i]))}`;
     pen = true;
   }
-  const unit = unitText(series.unit);
-  const head = `${series.variable}${unit === "" ? "" : ` (${unit})`}${MEAN.test(series.site) ? "," : " at"} ${series.site}, for ${covariate}`;
-  return belongs(member, [
-    member !== undefined && marker(member.theme, LEFT - 10, top + 10),
-    label(LEFT, top + 14, fitted(head, axis.right - LEFT)),
-    shade,
-    ticks(low, high, 3).map(
-      (value) =>
-        html`${segment(axis.left, y(value), axis.right, y(value), "rule")}${label(LEFT - 6, y(value) + 4, tickText(value), { anchor: "end", fill: "muted", size: 11 })}`,
-    ),
-    html`<path d="${path}" fill="none" stroke="${ink("ink")}" stroke-width="1.1" stroke-linejoin="round"/>`,
-    yearTicks(axis).map(
-      ({ day, text }) =>
-        html`${segment(axis.x(day), y0 + PLOT, axis.x(day), y0 + PLOT + 4, "muted")}${label(axis.x(day), y0 + PLOT + 16, text, { anchor: "middle", fill: "muted", size: 11 })}`,
-    ),
-  ]);
+  return path;
+}
+
+function years(axis: TimeAxis, foot: number): Html[] {
+  return yearTicks(axis).map(
+    ({ day, text }) =>
+      html`${segment(axis.x(day), foot, axis.x(day), foot + 4, "muted")}${label(axis.x(day), foot + 16, text, { anchor: "middle", fill: "muted", size: 11 })}`,
+  );
 }
