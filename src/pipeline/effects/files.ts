@@ -7,8 +7,9 @@ import type { FileIdentity, Files, RandomAccess } from "../../effects/effects.ts
 import { InputError, MachineError } from "../../errors.ts";
 import { codeOf, machineError, onDisk } from "./machine.ts";
 
-/** Bytes read at once while hashing. */
-const BLOCK = 1 << 20;
+/** Bytes read at once while hashing, always into the same memory: new memory for each file takes as long as hashing. */
+const BLOCK = 1 << 18;
+const block = new Uint8Array(BLOCK);
 
 /**
  * The files below a data folder. Nothing outside it can be reached: not by `..`, an absolute path or an address, and
@@ -40,7 +41,7 @@ export function filesBelow(dataFolder: string): Files {
 function rootOf(dataFolder: string): string {
   let found = "no such folder";
   try {
-    const root = fs.realpathSync(dataFolder);
+    const root = fs.realpathSync.native(dataFolder);
     if (fs.statSync(root).isDirectory()) return root;
     found = "a file";
   } catch (error) {
@@ -91,7 +92,7 @@ function locateIn(root: string, path: string, seen: Set<string>): string {
   requireBelow(path);
   let real: string;
   try {
-    real = fs.realpathSync(join(root, path));
+    real = fs.realpathSync.native(join(root, path));
   } catch (error) {
     const code = codeOf(error);
     if (code === "ELOOP") throw outside(path, "a link that leads back to itself");
@@ -140,7 +141,8 @@ function match(root: string, pattern: string): string[] {
       readdirSync: ((folder: string) => {
         const shown = relative(root, folder).split(sep).join("/") || ".";
         try {
-          if (!isInside(root, fs.realpathSync(folder))) throw outside(shown, "a link that leads out of it");
+          if (!isInside(root, fs.realpathSync.native(folder)))
+            throw outside(shown, "a link that leads out of it");
           return fs.readdirSync(folder, { withFileTypes: true }).map((entry) => tamed(root, folder, entry));
         } catch (error) {
           failures.push(machineError(error, "list", shown));
@@ -163,11 +165,12 @@ function tamed(root: string, folder: string, entry: fs.Dirent): fs.Dirent {
   const link = join(folder, entry.name);
   let real: string | undefined;
   try {
-    real = fs.realpathSync(link);
+    real = fs.realpathSync.native(link);
   } catch {
     // A link to nothing: shown as a file too, so that it is missed by name.
   }
-  if (real !== undefined && isInside(root, real) && !isInside(real, fs.realpathSync(folder))) return entry;
+  if (real !== undefined && isInside(root, real) && !isInside(real, fs.realpathSync.native(folder)))
+    return entry;
   return Object.assign(Object.create(entry) as fs.Dirent, {
     isFile: () => true,
     isSymbolicLink: () => false,
@@ -275,7 +278,6 @@ function identify(real: string, path: string): FileIdentity {
   const file = openAt(real, path);
   try {
     const hash = createHash("sha256");
-    const block = new Uint8Array(Math.min(BLOCK, file.size));
     for (let at = 0; at < file.size; at += BLOCK)
       hash.update(file.read(at, Math.min(BLOCK, file.size - at), block));
     return { path, bytes: file.size, sha256: hash.digest("hex") };

@@ -27,7 +27,7 @@ export function reuseIn(folder: string): Reuse {
         if (codeOf(error) === "ENOENT") return undefined;
         throw machineError(error, "read an earlier result", fileOf(key));
       }
-      const value = Uint8Array.from(held.subarray(32));
+      const value = new Uint8Array(held.subarray(32));
       return held.length >= 32 && digest(value).equals(held.subarray(0, 32)) ? value : undefined;
     },
     put: async (key, value) => {
