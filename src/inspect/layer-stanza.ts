@@ -25,12 +25,16 @@ export function guessPattern(
   return undefined;
 }
 
-/** YAML for `layers:` in a pipeline file; what had to be guessed is said in a comment. */
+/**
+ * YAML for `layers:` in a pipeline file; what had to be guessed is said in a comment. `spacing` is what the images beside this
+ * one say of how long each counts, if they say anything.
+ */
 export function layerStanza(
   path: string,
   descriptions: readonly string[],
   unit: string,
   systemKnown: boolean,
+  spacing?: string,
 ): string {
   const stem = stemOf(path);
   const folder = path.slice(0, path.lastIndexOf("/") + 1);
@@ -44,7 +48,9 @@ export function layerStanza(
     lines.push(
       `    files: [${quote(folder + inName.glob + ending)}]`,
       `    date: { name: ${quote(inName.pattern)} }`,
-      `    covers: ${inName.covers} # guessed from the name; composites: 16 days anew each year`,
+      spacing === undefined
+        ? `    covers: ${inName.covers} # guessed from the name${inName.covers === "day" ? "; composites: 16 days anew each year" : ""}`
+        : `    covers: ${spacing} # guessed from how the files follow each other`,
     );
   } else if (inBands !== undefined) {
     lines.push(

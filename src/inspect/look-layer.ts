@@ -1,5 +1,6 @@
 import type { Files } from "../effects/effects.ts";
 import { CoveyError } from "../errors.ts";
+import { stemOf } from "../layers/dates.ts";
 import { type Grid, toSystem } from "../layers/grid.ts";
 import { describeLayer, type Layer } from "../layers/layer.ts";
 import { boundsOf } from "../layers/overview.ts";
@@ -8,7 +9,8 @@ import { findSideFiles, sideList } from "../layers/side.ts";
 import { resolveSystem, type System } from "../layers/system.ts";
 import { valueRule } from "../layers/values.ts";
 import { guessDates } from "./layer-dates.ts";
-import { layerStanza } from "./layer-stanza.ts";
+import { guessSpacing } from "./layer-spacing.ts";
+import { guessPattern, layerStanza } from "./layer-stanza.ts";
 import { Tally } from "./tally.ts";
 
 /** What one band says and holds. */
@@ -110,11 +112,20 @@ export async function lookLayer(path: string, files: Files): Promise<LayerLook> 
         layer.bands.map((band) => band.description),
         layer.bands[0].unit,
         system !== undefined,
+        guessSpacing(await files.list(likeNamed(path))),
       ),
     };
   } finally {
     file.close();
   }
+}
+
+/** Files of the folder whose names differ from this one's in their date alone. */
+function likeNamed(path: string): readonly string[] {
+  const stem = stemOf(path);
+  const glob = guessPattern(stem)?.glob;
+  const at = path.lastIndexOf("/") + 1;
+  return glob === undefined ? [] : [path.slice(0, at) + glob + path.slice(at + stem.length)];
 }
 
 /** The system, or in words why there is none. */
