@@ -99,7 +99,7 @@ program
 
 program
   .command("look")
-  .argument("<file>", "a table (CSV, TSV, gzip) or a layer (GeoTIFF)")
+  .argument("<file>", "a table (CSV, TSV, gzip) or a layer (GeoTIFF, NetCDF)")
   .description("tell what a data file holds, and the stanza to paste into a pipeline")
   .option("--json", "print what was found as JSON")
   .option("--picture <file>", "write a small picture of a layer (PNG)")

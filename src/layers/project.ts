@@ -35,7 +35,8 @@ export function projectRing(
       expected: `an area within the domain of ${system.label}`,
       found: `an edge that leaves it near ${position[0].toFixed(4)}, ${position[1].toFixed(4)}`,
       where: { cell: `place ${place}` },
-      remedy: "cut the area at the edge of the projection, or use a layer in another system",
+      remedy:
+        "cut the area into parts that end 0.000001 degrees before the projection's edge, or use a layer in another system",
     });
   const split = (p: Position, q: Position, from: Pair, to: Pair, depth: number): void => {
     const middle: Position = [(p[0] + q[0]) / 2, (p[1] + q[1]) / 2];

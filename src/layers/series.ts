@@ -115,12 +115,9 @@ export function seriesOf(
     images.forEach((_, i) => {
       if (shares[i] < least) values[i] = Number.NaN;
     });
-    // Files of one stack share their grid as a rule; where they do not, the worst is told.
-    const first = read
-      .map((one) => one.places[w])
-      .reduce((worst, one) => ((one?.outside ?? 0) > (worst?.outside ?? 0) ? one : worst), read[0].places[w]);
-    if (first !== undefined) found.push(...placeFindings(name, place.name, first, use.by));
-    if (low.length > 0 && (first?.outside ?? 0) < 1)
+    found.push(...placeFindings(name, place.name, w, read, use.by));
+    const everOutside = read.every((one) => (one.places[w]?.outside ?? 0) >= 1);
+    if (low.length > 0 && !everOutside)
       found.push(lowFinding(name, place.name, low, images.length, "validArea" in use ? use.validArea : 0));
     return {
       site: place.name,
@@ -183,26 +180,47 @@ function lowFinding(
   };
 }
 
-function placeFindings(name: string, place: string, kept: Kept, by: string): RawFinding[] {
-  const out: RawFinding[] = [];
-  if (kept.outside > 1e-9)
-    out.push({
-      kind: "place-outside",
-      subject: `${name} at ${place}`,
-      message:
-        kept.outside >= 1
-          ? `the place lies outside the layer; all its values are missing`
-          : `${(100 * kept.outside).toPrecision(3)} % of the place lies outside the layer and counts as not valid`,
-      value: String(kept.outside),
-      remedy: "check the place's coordinates (longitude first) and the layer's extent",
-    });
-  else if ((by === "area" || by === "radius") && kept.pixels < 1)
-    out.push({
+/** Files of one stack share their grid as a rule; where they do not, the worst is told, and of how many files it is one. */
+function placeFindings(
+  name: string,
+  place: string,
+  w: number,
+  read: readonly FileValues[],
+  by: string,
+): RawFinding[] {
+  const outsideIn = ({ places }: FileValues) => places[w]?.outside ?? 0;
+  const worst = read.reduce((held, one) => (outsideIn(one) > outsideIn(held) ? one : held), read[0]);
+  const kept = worst.places[w];
+  if (kept === undefined) return [];
+  if (kept.outside > 1e-9) {
+    const touched = read.filter((one) => outsideIn(one) > 1e-9).length;
+    const some = touched < read.length;
+    const share = `${(100 * kept.outside).toPrecision(3)} % of the place lies outside the layer`;
+    return [
+      {
+        kind: "place-outside",
+        subject: `${name} at ${place}`,
+        message: some
+          ? `${share} in the worst of ${touched} of its ${read.length} files, and counts as not valid there`
+          : kept.outside >= 1
+            ? "the place lies outside the layer; all its values are missing"
+            : `${share} and counts as not valid`,
+        ...(some ? { where: { file: worst.path } } : {}),
+        value: String(kept.outside),
+        remedy: some
+          ? "check that all files of the layer lie on one grid, and the place's coordinates (longitude first)"
+          : "check the place's coordinates (longitude first) and the layer's extent",
+      },
+    ];
+  }
+  if ((by !== "area" && by !== "radius") || kept.pixels >= 1) return [];
+  return [
+    {
       kind: "layer-small-place",
       subject: `${name} at ${place}`,
       message: `the place is smaller than a pixel (${kept.pixels.toPrecision(3)} of one)`,
       value: String(kept.pixels),
       remedy: "its values are those of the few pixels it touches; a point by bilinear may tell as much",
-    });
-  return out;
+    },
+  ];
 }

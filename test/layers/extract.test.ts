@@ -14,8 +14,8 @@ import { DATA, effectsBelow, effectsOf, madeTiff } from "./effects.ts";
 const FOLDER = join(DATA, "layers");
 const expected = JSON.parse(readFileSync(join(FOLDER, "expected.json"), "utf8"));
 
-/** A 4 × 3 layer of bytes in degrees, from 0 E 3 N, one strip, nodata by option. */
-function image(values: readonly number[]): Uint8Array {
+/** A 4 × 3 layer of bytes in degrees, from `west` E 3 N, one strip, nodata by option. */
+function image(values: readonly number[], west = 0): Uint8Array {
   return madeTiff(
     {
       256: [4],
@@ -27,7 +27,7 @@ function image(values: readonly number[]): Uint8Array {
       278: [3],
       279: [12],
       33550: [1, 1, 0],
-      33922: [0, 0, 0, 0, 3, 0],
+      33922: [0, 0, 0, west, 3, 0],
     },
     [Uint8Array.from(values)],
   );
@@ -246,6 +246,22 @@ describe("a stack at places", () => {
       ["layer-small-place", "green at tiny"],
     ]);
   });
+});
+
+test("a place outside one file of a layer is said of that file alone", async () => {
+  const files = {
+    "g_2001_01.tif": filled(10),
+    "g_2001_02.tif": image(new Array(12).fill(20), 40),
+    "g_2001_03.tif": filled(30),
+  };
+  const { series, findings } = await extractLayers("green", OPTIONS, [POINT, AREA], effectsOf(files));
+  expect([...series[0].values]).toEqual([10, Number.NaN, 30]);
+  const outside = findings.filter((one) => one.kind === "place-outside");
+  expect(outside.map((one) => [one.subject, one.where?.file])).toEqual([
+    ["green at roost", "g_2001_02.tif"],
+    ["green at range", "g_2001_02.tif"],
+  ]);
+  for (const { message } of outside) expect(message).toContain("in the worst of 1 of its 3 files");
 });
 
 describe("kept results", () => {
