@@ -4,7 +4,7 @@ const MOST_HELD = 2 ** 22;
 /**
  * Memory for packed bytes that are of no use once they are unpacked: every call gives the beginning of the same piece,
  * and what an earlier call gave is overwritten. New memory for every block costs more than reading it: the system clears each
- * page at its first use, and collecting what was left takes as long as unpacking does.
+ * page at its first use, which takes longer than most methods take to unpack it.
  */
 export function reusedMemory(): (length: number) => Uint8Array {
   let held = new Uint8Array(0);

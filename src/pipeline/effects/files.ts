@@ -7,7 +7,7 @@ import type { FileIdentity, Files, RandomAccess } from "../../effects/effects.ts
 import { InputError, MachineError } from "../../errors.ts";
 import { codeOf, machineError, onDisk } from "./machine.ts";
 
-/** Bytes read at once while hashing, always into the same memory: new memory for each file takes as long as hashing. */
+/** Bytes read at once while hashing, always into the same memory: new memory for each file takes nearly as long as hashing. */
 const BLOCK = 1 << 18;
 const block = new Uint8Array(BLOCK);
 
