@@ -112,6 +112,8 @@ export async function killRuns(times: number, seed: number, victim: Victim, fold
   const { cold: coldLength, writing } = JSON.parse(readFileSync(noted, "utf8")) as Record<string, number>;
   let warmLength = coldLength;
   const which = () => whole.findIndex((files) => sameFiles(files, bytesBelow(out)));
+  // What an earlier call was stopped in the middle of is brought to an end first.
+  await covey(["verify", out]);
   let held = which();
   const tally: Killed = {
     kills: 0,
@@ -128,6 +130,7 @@ export async function killRuns(times: number, seed: number, victim: Victim, fold
     const next = 1 - held;
     const cold = victim.reuse !== undefined && i % victim.reuse.coldEvery === victim.reuse.coldEvery - 1;
     const kept = cold ? join(folder, "kept-cold") : warm;
+    if (cold) rmSync(kept, { recursive: true, force: true });
     mkdirSync(kept, { recursive: true });
     if (!cold) dropSome(kept, random);
     const length = cold ? coldLength : warmLength;
