@@ -58,6 +58,22 @@ function errorName(run: () => unknown): string {
 }
 
 describe("one covariate over all intervals", () => {
+  test("stations of unequal weight: a window's mean is weighted, whether days or windows are joined", () => {
+    const at = (site: string, value: number) =>
+      daily("2001-01-01", new Array<number>(1000).fill(value), { site });
+    const weights = {
+      bySite: new Map([
+        ["Ash", 3],
+        ["Beck", 1],
+      ]),
+      words: "by distance",
+    };
+    for (const join of ["mean of windows", "mean of days"] as const) {
+      const definition = { ...winter, series: [at("Ash", 1), at("Beck", 5)], join, weights };
+      expect(numbers(definition, intervals.slice(0, 1))).toEqual([(3 * 1 + 5) / 4]);
+    }
+  });
+
   test("value, days, gap, stations, definition, unit and files", () => {
     const { covariate, findings } = aggregateCovariate(winter, intervals);
     expect(covariate).toMatchObject({

@@ -36,6 +36,16 @@ function verdict(
 const january = (missing: readonly number[], family: Family, rule: Completeness) =>
   verdict("2001-01-01", "2001-01-31", missing, family, rule);
 
+test("a share lets days be missing from a count without scaling it up; a sum it does scale", () => {
+  const share = { type: "share", share: 0.9 } as const;
+  expect(january([5], "daily", share)).toEqual({ failed: undefined, scale: 1 });
+  expect(january([5], "sum", share)).toEqual({ failed: undefined, scale: 31 / 30 });
+});
+
+test("a window of one day without a value", () => {
+  expect(verdict("2001-01-01", "2001-01-01", [1], "mean", WMO).failed).toBe("none of 1 day covered");
+});
+
 describe("WMO-No. 1203 (2017)", () => {
   test("a month's mean stands 10 days missing, not 11; 4 in a row, not 5", () => {
     expect(january(apart(10), "mean", WMO).failed).toBeUndefined();

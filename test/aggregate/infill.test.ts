@@ -2,7 +2,7 @@ import { readFileSync } from "node:fs";
 import { describe, expect, test } from "vitest";
 import { aggregateCovariate } from "../../src/aggregate/aggregate.ts";
 import { infillSeries } from "../../src/aggregate/infill.ts";
-import { ratioed } from "../../src/aggregate/neighbour.ts";
+import { commonOf, correlation, ratioed, regressed, without } from "../../src/aggregate/neighbour.ts";
 import type { CovariateDefinition } from "../../src/aggregate/options.ts";
 import { columnIndex, readCsv } from "../../src/data/csv.ts";
 import { dayOf } from "../../src/data/day.ts";
@@ -103,6 +103,64 @@ describe("infilling", () => {
     // By hand: 980/3 · (107/1120 + 89/935 + 122/1200) = (93.625 + 93.283 + 99.633)/3
     const each = [ratioed(of(1120), 107), ratioed(of(935), 89), ratioed(of(1200), 122)];
     expect(each.reduce((a, b) => a + b) / 3).toBeCloseTo(95.514, 3);
+  });
+
+  // Anscombe (1973), Graphs in statistical analysis, The American Statistician 27: data set 1 and what its page lists.
+  test("moments, correlation and line of Anscombe's first data set, and of it without one pair", () => {
+    const x = Float64Array.of(10, 8, 13, 9, 11, 14, 6, 4, 12, 7, 5);
+    const y = Float64Array.of(8.04, 6.95, 7.58, 8.81, 8.33, 9.96, 7.24, 4.26, 10.84, 4.82, 5.68);
+    const all = commonOf(x, y);
+    expect(all).toMatchObject({ count: 11, meanX: 9, sxx: 110 });
+    expect(all.meanY).toBeCloseTo(7.5, 2);
+    expect(all.syy).toBeCloseTo(27.5 + 13.75, 1); // regression and residual sums of squares
+    expect(correlation(all) ** 2).toBeCloseTo(0.667, 3);
+    expect(regressed(all, 0)).toBeCloseTo(3, 2);
+    expect(regressed(all, 10)).toBeCloseTo(8, 2);
+    const left = without(all, x[4], y[4]);
+    const again = commonOf(
+      x.map((one, k) => (k === 4 ? NaNs : one)),
+      y,
+    );
+    for (const name of ["count", "meanX", "meanY", "sxx", "sxy", "syy"] as const)
+      expect(left[name], name).toBeCloseTo(again[name], 10);
+  });
+
+  test("the second series is filled from neighbours of its own", () => {
+    const tmin = wave.map((v, k) => (k === 20 ? null : v));
+    const definition: CovariateDefinition = {
+      name: "warmth",
+      theme: "temperature",
+      unit: "degC",
+      window: { type: "season", from: { month: 1, day: 1 }, to: { month: 1, day: 0 }, lag: 0 },
+      statistic: { type: "degree-days of extremes", base: 0, cap: Number.POSITIVE_INFINITY, method: 1 },
+      complete: { type: "wmo" },
+      join: "mean of windows",
+      series: [
+        daily(
+          "2001-01-01",
+          wave.map((v) => v + 4),
+        ),
+      ],
+      second: [daily("2001-01-01", tmin)],
+      secondNeighbours: [
+        daily(
+          "2001-01-01",
+          wave.map((v) => 3 * v - 1),
+          { site: "Beck" },
+        ),
+      ],
+      infill: { method: "regression", longest: 1 },
+    };
+    const [value] = aggregateCovariate(definition, yearly("07-20", 2000, 1)).covariate.values;
+    // Above the base all month: the sum of (maximum + minimum) / 2.
+    expect(value.value).toBeCloseTo(
+      wave.slice(0, 31).reduce((sum, v) => sum + v + 2, 0),
+      9,
+    );
+    expect(value.daysInfilled).toBe(1);
+    const { secondNeighbours: _, ...alone } = definition;
+    const [gap] = aggregateCovariate(alone, yearly("07-20", 2000, 1)).covariate.values;
+    expect(gap.failed).toBe("1 of 31 days missing (none allowed)");
   });
 
   test("normal ratio is refused for temperatures", () => {

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import type { CovariateDefinition, Statistic } from "../../src/aggregate/options.ts";
-import { definitionText, statisticUnit } from "../../src/aggregate/words.ts";
+import { completenessText, definitionText, statisticUnit } from "../../src/aggregate/words.ts";
 import { daily } from "./made.ts";
 
 const base = { from: 1961, to: 1990 };
@@ -62,6 +62,16 @@ describe("a covariate in words", () => {
     ]);
     expect(text).toBe(
       "mean of departures of x from the month's mean of 1961 to 1990 over Dec to Feb, mean of 2 stations",
+    );
+  });
+
+  test("each rule of completeness has its name", () => {
+    const mean = definition({ type: "mean" });
+    expect(completenessText(mean)).toBe("WMO-No. 1203 (2017)");
+    expect(completenessText({ ...mean, complete: { type: "five-three" } })).toBe("the 5/3 rule");
+    const share = { ...mean, complete: { type: "share", share: 0.9 } } as const;
+    expect(completenessText({ ...share, allowedMissing: 2 })).toBe(
+      "a share of 0.9 of the days; 2 missing days allowed",
     );
   });
 });
