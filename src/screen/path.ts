@@ -97,15 +97,18 @@ interface Point {
 function startAt(lambda: number, behind: readonly Point[], weights: Float64Array): Float64Array {
   const last = behind[0].x;
   const shares = [1, 2, 3].map((count) => lagrange(lambda, behind.slice(0, count)));
-  return last.map((value, k) => {
+  const start = last.slice();
+  for (let k = 0; k < start.length; k++) {
     const penalised = weights[k] !== 0;
+    if (penalised && last[k] === 0) continue;
     let count = 1;
-    while (count < behind.length && (!penalised || value * behind[count].x[k] > 0)) count++;
+    while (count < behind.length && (!penalised || last[k] * behind[count].x[k] > 0)) count++;
     const by = shares[count - 1];
     let to = 0;
     for (let i = 0; i < count; i++) to += by[i] * behind[i].x[k];
-    return penalised && value * to <= 0 ? value : to;
-  });
+    if (!penalised || last[k] * to > 0) start[k] = to;
+  }
+  return start;
 }
 
 /** The share of each point in the polynomial through all of them, at λ. */

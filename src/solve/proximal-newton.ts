@@ -1,6 +1,7 @@
 import { choleskyInPlace } from "../math/cholesky.ts";
 import type { Penalty } from "./penalty.ts";
 import { minimiseQuadratic } from "./quadratic.ts";
+import { roomsFor } from "./room.ts";
 import type { Smooth, StopReason } from "./smooth.ts";
 
 export interface SolveOptions {
@@ -34,34 +35,46 @@ export function proximalNewton(
   options: SolveOptions,
 ): Solution {
   const d = smooth.dimension;
-  let x = start.slice();
-  let gradient = new Float64Array(d);
-  let value = smooth.evaluate(x, gradient);
-  let objective = value + penalty.value(x);
+  let here = pointAt(smooth, penalty, start.slice(), new Float64Array(d));
+  // the point that was left is where the next one is tried
+  let spare: Pick<Point, "x" | "gradient"> = { x: new Float64Array(d), gradient: new Float64Array(d) };
   const finish = (stopped: StopReason, iterations: number): Solution => ({
-    x,
-    smooth: value,
-    objective,
-    gradient,
-    violation: largestViolation(penalty, x, gradient),
+    x: here.x,
+    smooth: here.smooth,
+    objective: here.objective,
+    gradient: here.gradient,
+    violation: here.violation,
     stopped,
     iterations,
   });
-  if (!Number.isFinite(objective)) return finish("start outside the domain", 0);
+  if (!Number.isFinite(here.objective)) return finish("start outside the domain", 0);
 
   for (let iteration = 0; iteration < options.iterations; iteration++) {
-    const violation = largestViolation(penalty, x, gradient);
-    if (violation <= options.tolerance) return finish("optimum", iteration);
-    const which = workingSet(penalty, x, gradient);
-    const target = minimiseQuadratic({ which, x, gradient, ...positiveCurvature(smooth, which) }, penalty);
-    const stepped = lineSearch(smooth, penalty, { x, gradient, objective, violation }, which, target);
-    if (stepped === undefined) return finish("no lower point", iteration);
-    ({ x, gradient, value, objective } = stepped);
+    if (here.violation <= options.tolerance) return finish("optimum", iteration);
+    const which = workingSet(penalty, here);
+    const next = lineSearch(smooth, penalty, here, which, modelMinimum(smooth, penalty, here, which), spare);
+    if (next === undefined) return finish("no lower point", iteration);
+    spare = here;
+    here = next;
   }
-  return finish(
-    largestViolation(penalty, x, gradient) <= options.tolerance ? "optimum" : "too many iterations",
-    options.iterations,
-  );
+  return finish(here.violation <= options.tolerance ? "optimum" : "too many iterations", options.iterations);
+}
+
+interface Point {
+  readonly x: Float64Array;
+  readonly gradient: Float64Array;
+  readonly smooth: number;
+  /** The penalty at x. */
+  readonly held: number;
+  readonly objective: number;
+  readonly violation: number;
+}
+
+function pointAt(smooth: Smooth, penalty: Penalty, x: Float64Array, gradient: Float64Array): Point {
+  const value = smooth.evaluate(x, gradient);
+  const held = penalty.value(x);
+  const violation = largestViolation(penalty, x, gradient);
+  return { x, gradient, smooth: value, held, objective: value + held, violation };
 }
 
 export function largestViolation(penalty: Penalty, x: Float64Array, gradient: Float64Array): number {
@@ -79,78 +92,103 @@ const ENTRANTS = 10;
 
 /**
  * Unpenalised coordinates, those off zero, and the zero ones that violate their condition most; the others get their turn
- * in the next step, since only the conditions of all d coordinates end the iteration.
+ * in the next step, since only the conditions of all d coordinates end the iteration. Ascending.
  */
-function workingSet(penalty: Penalty, x: Float64Array, gradient: Float64Array): Int32Array {
-  // loops, not Array.from with a function, here and below: these run some 10⁵ times a screen
-  const which: number[] = [];
-  let entrants: { readonly k: number; readonly distance: number }[] = [];
-  for (let k = 0; k < x.length; k++) {
-    if (x[k] !== 0 || !penalty.penalised(k)) {
-      which.push(k);
-      continue;
-    }
-    const distance = penalty.distance(k, 0, gradient[k]);
-    if (distance > 0) entrants.push({ k, distance });
+function workingSet(penalty: Penalty, { x, gradient }: Point): Int32Array {
+  const d = x.length;
+  let size = 0;
+  let entrants = 0;
+  for (let k = 0; k < d; k++) {
+    if (x[k] !== 0 || !penalty.penalised(k)) size++;
+    else if (penalty.distance(k, 0, gradient[k]) > 0) entrants++;
   }
-  if (entrants.length > ENTRANTS)
-    entrants = entrants.sort((a, b) => b.distance - a.distance || a.k - b.k).slice(0, ENTRANTS);
-  if (entrants.length === 0) return Int32Array.from(which);
-  for (const { k } of entrants) which.push(k);
-  return Int32Array.from(which).sort();
+  const least = entrants > ENTRANTS ? entrantsByViolation(penalty, x, gradient) : undefined;
+  const { which } = roomsFor(size + Math.min(entrants, ENTRANTS));
+  let m = 0;
+  for (let k = 0; k < d; k++)
+    if (
+      x[k] !== 0 ||
+      !penalty.penalised(k) ||
+      (least === undefined ? penalty.distance(k, 0, gradient[k]) > 0 : least.has(k))
+    )
+      which[m++] = k;
+  return which.subarray(0, m);
+}
+
+/** The zero coordinates that violate their condition most. */
+function entrantsByViolation(penalty: Penalty, x: Float64Array, gradient: Float64Array): ReadonlySet<number> {
+  const all: { readonly k: number; readonly distance: number }[] = [];
+  for (let k = 0; k < x.length; k++) {
+    const distance = x[k] === 0 && penalty.penalised(k) ? penalty.distance(k, 0, gradient[k]) : 0;
+    if (distance > 0) all.push({ k, distance });
+  }
+  all.sort((a, b) => b.distance - a.distance || a.k - b.k);
+  return new Set(all.slice(0, ENTRANTS).map((one) => one.k));
 }
 
 /**
- * The curvature on the working set, with a multiple of its diagonal added until it is safely positive definite, and its
- * Cholesky factor.
+ * Where the quadratic model on the working set is least. Its curvature has a multiple of its diagonal added until it is
+ * safely positive definite.
  */
-function positiveCurvature(
+function modelMinimum(
   smooth: Smooth,
+  penalty: Penalty,
+  { x, gradient }: Point,
   which: Int32Array,
-): { readonly curvature: Float64Array; readonly factor?: Float64Array } {
+): Float64Array {
   const m = which.length;
-  const curvature = new Float64Array(m * m);
+  const rooms = roomsFor(m);
+  const { curvature, factor } = rooms;
   smooth.curvature(which, curvature);
+  for (let i = 0; i < m * m; i++) factor[i] = curvature[i];
+  if (choleskyInPlace(factor, m, 1e-11))
+    return minimiseQuadratic({ which, x, gradient, curvature, factor }, penalty, rooms);
   let scale = 0;
   for (let a = 0; a < m; a++) scale = Math.max(scale, Math.abs(curvature[a * m + a]));
-  const trial = new Float64Array(m * m);
-  for (let damping = 0; ; damping = damping === 0 ? 1e-10 : damping * 10) {
-    trial.set(curvature);
-    if (damping > 0)
-      for (let a = 0; a < m; a++)
-        trial[a * m + a] = Math.abs(curvature[a * m + a]) * (1 + damping) + damping * (scale || 1);
-    const model = damping === 0 ? curvature : trial.slice();
-    if (choleskyInPlace(trial, m, 1e-11)) return { curvature: model, factor: trial };
-    if (damping > 1e12) return { curvature: model };
+  const damped = new Float64Array(m * m);
+  for (let damping = 1e-10; damping <= 1e13; damping *= 10) {
+    for (let i = 0; i < m * m; i++) damped[i] = curvature[i];
+    for (let a = 0; a < m; a++)
+      damped[a * m + a] = Math.abs(curvature[a * m + a]) * (1 + damping) + damping * (scale || 1);
+    factor.set(damped);
+    if (choleskyInPlace(factor, m, 1e-11))
+      return minimiseQuadratic({ which, x, gradient, curvature: damped, factor }, penalty, rooms);
   }
+  return minimiseQuadratic({ which, x, gradient, curvature: damped }, penalty, rooms);
 }
 
-interface Point {
-  readonly x: Float64Array;
-  readonly gradient: Float64Array;
-  readonly objective: number;
-  readonly violation: number;
-}
-
-/** The first of the steps 1, ½, ¼ … that lowers the objective enough (Armijo) or, at rounding level, the violation. */
-function lineSearch(smooth: Smooth, penalty: Penalty, from: Point, which: Int32Array, target: Float64Array) {
-  const moved = from.x.slice();
-  for (let a = 0; a < which.length; a++) moved[which[a]] = target[a];
-  let predicted = penalty.value(moved) - penalty.value(from.x);
-  for (let k = 0; k < moved.length; k++) predicted += from.gradient[k] * (moved[k] - from.x[k]);
+/**
+ * The first of the steps 1, ½, ¼ … that lowers the objective enough (Armijo) or, at rounding level, the violation. The new
+ * point is written into `into`.
+ */
+function lineSearch(
+  smooth: Smooth,
+  penalty: Penalty,
+  from: Point,
+  which: Int32Array,
+  target: Float64Array,
+  { x, gradient }: Pick<Point, "x" | "gradient">,
+): Point | undefined {
+  const m = which.length;
+  x.set(from.x);
+  let predicted = -from.held;
+  for (let a = 0; a < m; a++) {
+    x[which[a]] = target[a];
+    predicted += from.gradient[which[a]] * (target[a] - from.x[which[a]]);
+  }
+  predicted += penalty.value(x);
   // below this, differences of the objective are rounding noise and the optimality conditions decide
   const noise = 1e-13 * (1 + Math.abs(from.objective));
   for (let step = 1; step > 1e-12; step /= 2) {
-    const x = moved.slice();
-    if (step < 1) for (let k = 0; k < x.length; k++) x[k] = from.x[k] + step * (moved[k] - from.x[k]);
-    const gradient = new Float64Array(x.length);
-    const value = smooth.evaluate(x, gradient);
-    const objective = value + penalty.value(x);
-    const enough = objective <= from.objective + 1e-4 * step * predicted;
-    const level =
-      Math.abs(objective - from.objective) <= noise &&
-      largestViolation(penalty, x, gradient) < from.violation;
-    if (Number.isFinite(objective) && (enough || level)) return { x, gradient, value, objective };
+    if (step < 1)
+      for (let a = 0; a < m; a++) {
+        const k = which[a];
+        x[k] = from.x[k] + step * (target[a] - from.x[k]);
+      }
+    const next = pointAt(smooth, penalty, x, gradient);
+    const enough = next.objective <= from.objective + 1e-4 * step * predicted;
+    const level = Math.abs(next.objective - from.objective) <= noise && next.violation < from.violation;
+    if (Number.isFinite(next.objective) && (enough || level)) return next;
   }
   return undefined;
 }

@@ -1,3 +1,4 @@
+import { dot, weightedProducts } from "../math/products.ts";
 import type { Smooth } from "../solve/smooth.ts";
 import type { Design } from "./design.ts";
 import { checkDesign } from "./design-check.ts";
@@ -29,10 +30,21 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const recaptureColumns = recapture === undefined ? [] : recapture.columns;
   const b = survivalColumns.length;
   const dimension = b + recaptureColumns.length;
+  // by row, so that the loops below have one index
+  const [alive, seen, passed, lastSeen, lengths] = [0, 1, 2, 3, 4].map(() => new Float64Array(rows));
+  /** 1 where the row's interval ends at no occasion. */
+  const closed = new Uint8Array(rows);
   /** Of each row, the stratum whose χ follows: another one after an animal's first interval, not within its years. */
   const to = new Int32Array(rows);
-  for (let g = 0; g < strata; g++)
-    for (let t = 0; t < n; t++) to[g * n + t] = design.closed?.[t] === 1 ? g : (data[g].becomes ?? g);
+  for (let g = 0; g < strata; g++) {
+    alive.set(data[g].alive, g * n);
+    seen.set(data[g].seen, g * n);
+    passed.set(data[g].passed, g * n);
+    lastSeen.set(data[g].lastSeen, g * n);
+    lengths.set(design.lengths, g * n);
+    if (design.closed !== undefined) closed.set(design.closed, g * n);
+    for (let t = 0; t < n; t++) to[g * n + t] = closed[g * n + t] === 1 ? g : (data[g].becomes ?? g);
+  }
 
   const etas = new Float64Array(rows); // logit s
   const zetas = new Float64Array(rows); // logit p
@@ -46,71 +58,84 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const bySurvival = new Float64Array(rows); // ∂log L/∂ logit s
   const byRecapture = new Float64Array(rows); // ∂log L/∂ logit p
 
-  function predictors(x: Float64Array): number {
-    combine(survivalColumns, x, 0, etas);
-    combine(recaptureColumns, x, b, zetas);
+  /** φ and 1 − φ of all rows; Σ A log φ. */
+  function survivalRates(): number {
     let logLikelihood = 0;
-    for (let g = 0; g < strata; g++) {
-      const { alive, seen, passed } = data[g];
-      for (let t = 0; t < n; t++) {
-        const r = g * n + t;
-        const eta = etas[r];
-        // log s = −log(1 + e^−η) without overflow or cancellation on either side
-        const small = Math.exp(-Math.abs(eta));
-        const logS = eta >= 0 ? -Math.log1p(small) : eta - Math.log1p(small);
-        const logPhi = design.lengths[t] * logS;
-        s1[r] = (eta >= 0 ? small : 1) / (1 + small);
-        phi[r] = Math.exp(logPhi);
-        die[r] = -Math.expm1(logPhi);
-        if (alive[t] > 0) logLikelihood += alive[t] * logPhi;
-        if (design.closed?.[t] === 1) {
-          p[r] = 0;
-          q[r] = 1;
-          continue;
-        }
-        if (recapture === undefined) {
-          p[r] = known;
-          q[r] = 1 - known;
-          if (seen[t] > 0) logLikelihood += seen[t] * Math.log(known);
-          if (passed[t] > 0) logLikelihood += passed[t] * Math.log(1 - known);
-          continue;
-        }
-        const zeta = zetas[r];
-        const tiny = Math.exp(-Math.abs(zeta));
-        const log1 = Math.log1p(tiny);
-        p[r] = (zeta >= 0 ? 1 : tiny) / (1 + tiny);
-        q[r] = (zeta >= 0 ? tiny : 1) / (1 + tiny);
-        if (seen[t] > 0) logLikelihood += seen[t] * (zeta >= 0 ? -log1 : zeta - log1);
-        if (passed[t] > 0) logLikelihood += passed[t] * (zeta >= 0 ? -zeta - log1 : -log1);
+    for (let r = 0; r < rows; r++) {
+      const eta = etas[r];
+      // log s = −log(1 + e^−η) without overflow or cancellation on either side
+      const small = Math.exp(-Math.abs(eta));
+      const logS = eta >= 0 ? -Math.log1p(small) : eta - Math.log1p(small);
+      const s = (eta >= 0 ? 1 : small) / (1 + small);
+      const rest = (eta >= 0 ? small : 1) / (1 + small);
+      s1[r] = rest;
+      if (alive[r] > 0) logLikelihood += alive[r] * lengths[r] * logS;
+      if (lengths[r] === 1) {
+        phi[r] = s;
+        die[r] = rest;
+      } else {
+        phi[r] = Math.exp(lengths[r] * logS);
+        die[r] = -Math.expm1(lengths[r] * logS);
       }
     }
     return logLikelihood;
   }
 
+  /** p and q of all rows; Σ B log p + C log q. */
+  function recaptureRates(): number {
+    let logLikelihood = 0;
+    // a constant recapture has the same logit row after row
+    let [last, logP, logQ, rate, rest] = [Number.NaN, Math.log(known), Math.log(1 - known), known, 1 - known];
+    for (let r = 0; r < rows; r++) {
+      if (closed[r] === 1) {
+        p[r] = 0;
+        q[r] = 1;
+        continue;
+      }
+      const zeta = zetas[r];
+      if (recapture !== undefined && zeta !== last) {
+        last = zeta;
+        const tiny = Math.exp(-Math.abs(zeta));
+        const log1 = Math.log1p(tiny);
+        rate = (zeta >= 0 ? 1 : tiny) / (1 + tiny);
+        rest = (zeta >= 0 ? tiny : 1) / (1 + tiny);
+        logP = zeta >= 0 ? -log1 : zeta - log1;
+        logQ = zeta >= 0 ? -zeta - log1 : -log1;
+      }
+      p[r] = rate;
+      q[r] = rest;
+      if (seen[r] > 0) logLikelihood += seen[r] * logP;
+      if (passed[r] > 0) logLikelihood += passed[r] * logQ;
+    }
+    return logLikelihood;
+  }
+
   function evaluate(x: Float64Array, gradient: Float64Array): number {
-    let logLikelihood = predictors(x);
+    combine(survivalColumns, x, 0, etas);
+    if (recapture !== undefined) combine(recaptureColumns, x, b, zetas);
+    let logLikelihood = survivalRates() + recaptureRates();
     for (let g = 0; g < strata; g++) chi[g * (n + 1) + n] = 1;
     // backwards, since χ_t needs χ_{t+1} (of all strata: hence t outside); both terms are non-negative, so nothing cancels
     for (let t = n - 1; t >= 0; t--)
       for (let g = 0; g < strata; g++) {
         const r = g * n + t;
         const here = die[r] + phi[r] * q[r] * chi[to[r] * (n + 1) + t + 1];
-        chi[g * (n + 1) + t] = here;
-        if (data[g].lastSeen[t] > 0) logLikelihood += data[g].lastSeen[t] * Math.log(here);
+        chi[r + g] = here;
+        if (lastSeen[r] > 0) logLikelihood += lastSeen[r] * Math.log(here);
       }
     v.fill(0);
     for (let t = 0; t < n; t++)
       for (let g = 0; g < strata; g++) {
-        const { alive, seen, passed, lastSeen } = data[g];
         const r = g * n + t;
         // what came from earlier intervals stands in v already
-        if (lastSeen[t] > 0) v[r] += lastSeen[t] / chi[g * (n + 1) + t];
-        if (t + 1 < n) v[to[r] * n + t + 1] += v[r] * phi[r] * q[r];
+        if (lastSeen[r] > 0) v[r] += lastSeen[r] / chi[r + g];
+        const reached = v[r] * phi[r];
+        if (t + 1 < n) v[to[r] * n + t + 1] += reached * q[r];
         const next = chi[to[r] * (n + 1) + t + 1];
-        const slope = design.lengths[t] * s1[r]; // d log φ / d logit s
+        const slope = lengths[r] * s1[r]; // d log φ / d logit s
         // 1 − qχ written as p + q(1 − χ) would be no better: q and χ are both well away from cancelling here
-        bySurvival[r] = alive[t] * slope - v[r] * phi[r] * slope * (1 - q[r] * next);
-        byRecapture[r] = seen[t] * q[r] - passed[t] * p[r] - v[r] * phi[r] * next * p[r] * q[r];
+        bySurvival[r] = (alive[r] - reached * (1 - q[r] * next)) * slope;
+        byRecapture[r] = seen[r] * q[r] - passed[r] * p[r] - reached * next * p[r] * q[r];
       }
     for (let k = 0; k < b; k++) gradient[k] = -dot(survivalColumns[k], bySurvival);
     for (let k = 0; k < recaptureColumns.length; k++)
@@ -130,29 +155,35 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const bend = new Float64Array(rows); // U/χ²: −∂v/∂χ of the own releases
   const ownSurvival = new Float64Array(rows); // second derivative in the row's own logit s, v and χ₊ held
   const ownRecapture = new Float64Array(rows);
+  const crossed = new Float64Array(rows); // second derivative in logit s and logit p of the row
+  const vc = new Float64Array(rows);
+  const vcs = new Float64Array(rows); // vcσ
   const vpq = new Float64Array(rows); // vφpq
 
   function prepare(): void {
-    for (let g = 0; g < strata; g++) {
-      const { alive, seen, passed, lastSeen } = data[g];
+    for (let g = 0; g < strata; g++)
       for (let t = 0; t < n; t++) {
         const r = g * n + t;
         const next = chi[to[r] * (n + 1) + t + 1];
         const pq = p[r] * q[r];
-        const slope = design.lengths[t] * s1[r];
+        const slope = lengths[r] * s1[r];
         const s = 1 - s1[r];
         sigma[r] = slope;
         e[r] = phi[r] * slope * (1 - q[r] * next);
         h[r] = phi[r] * next * pq;
         c[r] = phi[r] * q[r];
-        bend[r] = lastSeen[t] > 0 ? lastSeen[t] / chi[g * (n + 1) + t] ** 2 : 0;
+        bend[r] = lastSeen[r] > 0 ? lastSeen[r] / chi[r + g] ** 2 : 0;
         // dσ = −σ s, dφ = φσ
-        ownSurvival[r] = -alive[t] * slope * s - v[r] * e[r] * (slope - s);
-        ownRecapture[r] = -(seen[t] + passed[t]) * pq - v[r] * h[r] * (1 - 2 * p[r]);
+        ownSurvival[r] = -alive[r] * slope * s - v[r] * e[r] * (slope - s);
+        ownRecapture[r] = -(seen[r] + passed[r]) * pq - v[r] * h[r] * (1 - 2 * p[r]);
+        crossed[r] = -v[r] * slope * h[r];
+        vc[r] = v[r] * c[r];
+        vcs[r] = vc[r] * slope;
         vpq[r] = v[r] * phi[r] * pq;
       }
-    }
   }
+
+  const products = weightedProducts(survivalColumns, rows);
 
   /**
    * Derivatives of `bySurvival` and `byRecapture` along one coefficient's column, the two sweeps differentiated: χ′ backwards,
@@ -162,11 +193,15 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
     const survives = k < b;
     const column = survives ? survivalColumns[k] : recaptureColumns[k - b];
     const down = survives ? e : h;
+    const carried = survives ? vcs : vpq;
+    const sign = survives ? 1 : -1;
+    const ownFirst = survives ? ownSurvival : crossed;
+    const ownSecond = survives ? crossed : ownRecapture;
     for (let t = n - 1; t >= 0; t--)
       for (let g = 0; g < strata; g++) {
         const r = g * n + t;
         // after the last interval dChi is 0, as it never is written
-        dChi[g * (n + 1) + t] = c[r] * dChi[to[r] * (n + 1) + t + 1] - down[r] * column[r];
+        dChi[r + g] = c[r] * dChi[to[r] * (n + 1) + t + 1] - down[r] * column[r];
       }
     dV.fill(0);
     for (let t = 0; t < n; t++)
@@ -174,30 +209,24 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
         const r = g * n + t;
         const x = column[r];
         const after = dChi[to[r] * (n + 1) + t + 1];
-        const dv = dV[r] - bend[r] * dChi[g * (n + 1) + t];
-        const vc = v[r] * c[r];
-        if (t + 1 < n) dV[to[r] * n + t + 1] += dv * c[r] + (survives ? vc * sigma[r] : -vpq[r]) * x;
-        dSurvival[r] =
-          sigma[r] * vc * after - dv * e[r] + (survives ? ownSurvival[r] : -v[r] * sigma[r] * h[r]) * x;
-        if (recapture === undefined) continue;
-        dRecapture[r] =
-          (survives ? -v[r] * sigma[r] * h[r] : ownRecapture[r]) * x - dv * h[r] - vpq[r] * after;
+        const dv = dV[r] - bend[r] * dChi[r + g];
+        if (t + 1 < n) dV[to[r] * n + t + 1] += dv * c[r] + sign * carried[r] * x;
+        dSurvival[r] = vcs[r] * after - dv * e[r] + ownFirst[r] * x;
+        if (recapture !== undefined) dRecapture[r] = ownSecond[r] * x - dv * h[r] - vpq[r] * after;
       }
-  }
-
-  /** With everybody seen (p known to be 1) χ = 1 − φ has no successor in it: intervals are binomials apart, D diagonal in XᵀDX. */
-  function alongBinomial(k: number): void {
-    const column = survivalColumns[k];
-    for (let r = 0; r < rows; r++) dSurvival[r] = (ownSurvival[r] - bend[r] * e[r] * e[r]) * column[r];
   }
 
   function curvature(which: Int32Array, out: Float64Array): void {
     const m = which.length;
     prepare();
-    const binomial = recapture === undefined && known === 1 && design.closed === undefined;
+    // With everybody seen (p known to be 1) χ = 1 − φ has no successor in it: intervals are binomials apart, XᵀDX with D diagonal.
+    if (recapture === undefined && known === 1 && design.closed === undefined) {
+      for (let r = 0; r < rows; r++) dSurvival[r] = bend[r] * e[r] * e[r] - ownSurvival[r];
+      products(which, dSurvival, out);
+      return;
+    }
     for (let i = 0; i < m; i++) {
-      if (binomial) alongBinomial(which[i]);
-      else along(which[i]);
+      along(which[i]);
       for (let j = i; j < m; j++) {
         const k = which[j];
         const value = k < b ? -dot(survivalColumns[k], dSurvival) : -dot(recaptureColumns[k - b], dRecapture);
@@ -218,10 +247,4 @@ function combine(columns: readonly Float64Array[], x: Float64Array, from: number
     const by = x[from + k];
     if (by !== 0) for (let r = 0; r < out.length; r++) out[r] += column[r] * by;
   }
-}
-
-function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
-  return sum;
 }
