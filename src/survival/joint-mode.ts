@@ -21,8 +21,9 @@ export function jointMode(
     const noise = 1e-13 * (1 + Math.abs(here.joint));
     let next: EffectsMode | undefined;
     for (let scale = 1; scale > 1e-10 && next === undefined; scale /= 2) {
-      const theta = here.theta.map((value, k) => value + scale * step[k]);
-      const effects = Float64Array.from(here.effects);
+      const theta = here.theta.slice();
+      for (let k = 0; k < d; k++) theta[k] += scale * step[k];
+      const effects = here.effects.slice();
       for (let k = 0; k < d; k++)
         for (let t = 0; t < n; t++) effects[t] += scale * step[k] * here.tangents[k * n + t];
       const trial = laplace.mode(theta, variance, effects);

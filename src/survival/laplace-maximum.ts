@@ -123,10 +123,11 @@ function search(
   const n = from.effects.length;
   const noise = 1e-12 * (1 + Math.abs(from.value));
   for (let scale = 1; scale > 1e-9; scale /= 2) {
-    const theta = from.theta.map((value, k) => value + scale * step[k]);
+    const theta = from.theta.slice();
+    for (let k = 0; k < d; k++) theta[k] += scale * step[k];
     // one step to the bound at most: a variance that is cut to 0 can grow again from there
     const variance = fixed ? from.variance : Math.max(0, from.variance + scale * step[d]);
-    const effects = Float64Array.from(from.effects);
+    const effects = from.effects.slice();
     let predicted = (variance - from.variance) * from.gradient[d];
     for (let k = 0; k < d; k++) predicted += scale * step[k] * from.gradient[k];
     for (let t = 0; t < n; t++) {

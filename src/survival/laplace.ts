@@ -176,15 +176,17 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
       const into = j < b ? fixedSurvival : logitRecapture;
       for (let r = 0; r < rows; r++) into[r] += columns[j][r] * theta[j];
     }
-    const z = Float64Array.from(effects, (e, t) => (sd === 0 ? 0 : e / (sd * root[t])));
+    const z = new Float64Array(n);
+    if (sd > 0) for (let t = 0; t < n; t++) z[t] = effects[t] / (sd * root[t]);
     const value = findMode(z, sd);
     const jointGradient = new Float64Array(d);
     const tangents = new Float64Array((d + 1) * n);
     const information = new Float64Array(informed ? d * d : 0);
+    for (let t = 0; t < n; t++) z[t] *= sd * root[t];
     const found = {
       theta,
       variance,
-      effects: z.map((one, t) => sd * root[t] * one),
+      effects: z,
       jointGradient,
       tangents,
       information,
@@ -228,16 +230,18 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     if (found.joint === Number.POSITIVE_INFINITY)
       return { ...found, value: Number.POSITIVE_INFINITY, gradient: total, varianceInformation: 0 };
     const { tangents } = found;
-    const sd = Math.sqrt(variance);
-    // Φ_row = Σ_k ½ D³f[u_k, u_k, ·], u_k the columns of σ D^½ L⁻ᵀ, since G = Σ u_k u_kᵀ
+    // Φ_row = ½ Σ G_st ∂W_st/∂row, G = σ² D^½ L⁻ᵀ L⁻¹ D^½
     thirdSurvival.fill(0);
     thirdRecapture.fill(0);
     if (variance > 0) {
       inverseLower(factor, n, inverse);
-      for (let k = 0; k < n; k++) {
-        for (let t = 0; t < n; t++) column[t] = sd * root[t] * inverse[k * n + t];
-        rowsOf.addThird(column, thirdSurvival, thirdRecapture);
-      }
+      for (let i = 0; i < n; i++)
+        for (let j = 0; j <= i; j++) {
+          let sum = 0;
+          for (let k = i; k < n; k++) sum += inverse[k * n + i] * inverse[k * n + j];
+          scaled[i * n + j] = scaled[j * n + i] = variance * root[i] * root[j] * sum;
+        }
+      rowsOf.slopesOfTrace(scaled, thirdSurvival, thirdRecapture);
     }
     for (let j = 0; j < d; j++) total[j] = found.jointGradient[j] + along(j, thirdSurvival, thirdRecapture);
     for (let j = 0; j <= d; j++)

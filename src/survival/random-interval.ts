@@ -1,12 +1,15 @@
 import type { Matrix } from "../data/matrix.ts";
 import { choleskyInPlace, choleskySolve } from "../math/cholesky.ts";
 import { tQuantile } from "../math/distributions.ts";
+import { noPenalty } from "../solve/penalty.ts";
+import { proximalNewton } from "../solve/proximal-newton.ts";
 import type { StopReason } from "../solve/smooth.ts";
-import { effectsDesign, type RandomIntervalProblem } from "./effects-design.ts";
+import { type EffectsDesign, effectsDesign, type RandomIntervalProblem } from "./effects-design.ts";
 import { gradientTolerance, totalReleases } from "./fit.ts";
 import { jointMode } from "./joint-mode.ts";
-import { type Laplace, laplaceOf } from "./laplace.ts";
+import { type EffectsMode, type Laplace, laplaceOf } from "./laplace.ts";
 import { type LaplaceMaximum, maximiseLaplace } from "./laplace-maximum.ts";
+import { cjsLikelihood } from "./likelihood.ts";
 import { restrictedSigma } from "./random-interval-reml.ts";
 
 /** One coefficient of a random-interval fit. */
@@ -48,25 +51,20 @@ export interface RandomIntervalMaximum extends LaplaceMaximum {
 /**
  * −2 log of the Laplace marginal likelihood, σ² ≥ 0 re-estimated by maximum likelihood, nothing penalised: the
  * evidence D(S) of the set `which` (positions among the covariates). At σ² = 0 it is the ordinary −2 log L. Ends where no
- * derivative exceeds `precision` times the releases.
+ * derivative exceeds `precision` times the releases. Start: survival and recapture coefficients; none if not said.
  */
 export function maximiseRandomInterval(
   problem: RandomIntervalProblem,
   which: readonly number[],
   precision = 1e-8,
+  start?: Float64Array,
 ): RandomIntervalMaximum {
   const model = effectsDesign(problem, which);
   const laplace = laplaceOf(problem.data, model);
-  const n = model.intervals;
   const d = laplace.dimension;
   const options = { tolerance: precision * Math.max(100, totalReleases(problem.data)), iterations: 200 };
   // without random effects first: an ordinary fit, where the derivative in σ² says whether there is anything to find
-  const ordinary = jointMode(
-    laplace,
-    { theta: new Float64Array(d), effects: new Float64Array(n) },
-    0,
-    gradientTolerance(problem.data),
-  );
+  const ordinary = ordinaryFit(problem, model, laplace, start);
   const none = laplace.at(ordinary.theta, 0, ordinary.effects);
   const step = -none.gradient[d] / none.varianceInformation;
   // Scoring from 0 falls short, since the information on σ² is largest there.
@@ -78,6 +76,31 @@ export function maximiseRandomInterval(
       ? found
       : { ...maximiseLaplace(laplace, none, options), iterations: found.iterations };
   return { ...best, minus2LogL: 2 * best.point.value, laplace };
+}
+
+/** The fit at σ² = 0, by the likelihood in its coefficients; by the joint mode where that stops short. */
+function ordinaryFit(
+  { data }: RandomIntervalProblem,
+  { design, survival, intervals }: EffectsDesign,
+  laplace: Laplace,
+  start: Float64Array | undefined,
+): Pick<EffectsMode, "theta" | "effects"> {
+  const part = {
+    ...design.survival,
+    names: design.survival.names.slice(0, survival),
+    columns: design.survival.columns.slice(0, survival),
+  };
+  const nothing = { theta: new Float64Array(laplace.dimension), effects: new Float64Array(intervals) };
+  const tolerance = gradientTolerance(data);
+  const solution = proximalNewton(
+    cjsLikelihood(data, { ...design, survival: part }),
+    noPenalty,
+    start ?? nothing.theta,
+    { tolerance, iterations: 200 },
+  );
+  return solution.stopped === "optimum"
+    ? { ...nothing, theta: solution.x }
+    : jointMode(laplace, nothing, 0, tolerance);
 }
 
 /** Effects on the way from 0 along their derivative in σ², for a start. */

@@ -17,10 +17,10 @@ export interface RowLikelihood {
   readonly survivalRecapture: Float64Array;
   readonly recaptureRecapture: Float64Array;
   /**
-   * Adds ½ D³(−log L)[u, u, ·] to `bySurvival` and `byRecapture` given (derivatives in each row's logit), u being a
-   * direction over the n intervals that moves the survival logit of all strata.
+   * Writes ∂/∂ logit of ½ Σ_st G_st W_st, W the survival × survival blocks summed over strata and G (n × n, symmetric) held,
+   * into `bySurvival` and `byRecapture` (G·n each). Needs `curvature` at the point.
    */
-  addThird(u: Float64Array, bySurvival: Float64Array, byRecapture: Float64Array): void;
+  slopesOfTrace(g: Float64Array, bySurvival: Float64Array, byRecapture: Float64Array): void;
 }
 
 /**
@@ -35,8 +35,8 @@ export interface RowLikelihood {
  *     (s_s, s_t): m_s c_s⋯c_{t−1} e_t,   (s_s, p_t): m_s c_s⋯c_{t−1} h_t,
  *     (p_s, s_t): r_s c_s⋯c_{t−1} e_t,   (p_s, p_t): r_s c_s⋯c_{t−1} h_t,
  *
- * so the whole matrix costs O(n²). Third derivatives along u are the sweeps of the gradient in truncated Taylor
- * arithmetic, each quantity carried as (c0, c1, c2) in c0 + c1 h + c2 h²: O(n) a direction.
+ * so the whole matrix costs O(n²), and so do the derivatives of a weighted sum of its entries, which are carried backwards
+ * through these formulas (adjoints; Griewank & Walther 2008, chapter 3): no third derivatives along directions are needed.
  */
 export function rowLikelihood(data: readonly SufficientStatistics[], design: Design): RowLikelihood {
   const n = design.intervals;
@@ -47,14 +47,12 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
   const bySurvival = new Float64Array(rows);
   const byRecapture = new Float64Array(rows);
   const [ss, sp, pp] = [0, 1, 2].map(() => new Float64Array(rows * n));
-  const [chi1, chi2] = [new Float64Array(n + 1), new Float64Array(n + 1)];
-  const [slope0, slope1, slope2, phi1, phi2, a0, unseen] = [0, 1, 2, 3, 4, 5, 6].map(
-    () => new Float64Array(rows),
-  );
-  let prepared = false;
+  // at the point of the last `curvature`, by row
+  const [sigma, e, h, c, m] = [0, 1, 2, 3, 4].map(() => new Float64Array(rows));
+  // adjoints of one stratum
+  const [barM, barE, barC, barV, barK, barChi] = [0, 1, 2, 3, 4, 5].map(() => new Float64Array(n + 1));
 
   function at(logitSurvival: Float64Array, logitRecapture: Float64Array): number {
-    prepared = false;
     let logLikelihood = 0;
     for (let g = 0; g < design.strata; g++) {
       const { alive, seen, passed, lastSeen } = data[g];
@@ -110,105 +108,99 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
     for (let g = 0; g < design.strata; g++) {
       const { alive, seen, passed } = data[g];
       const block = g * n * n;
-      for (let i = 0; i < n; i++) {
-        const r = g * n + i;
-        const next = chi[g * (n + 1) + i + 1];
-        const slope = design.lengths[i] * s1[r];
-        const e = phi[r] * slope * (1 - q[r] * next);
-        const h = phi[r] * next * p[r] * q[r];
-        const m = e * k[r] + v[r] * slope;
-        const w = h * k[r] - v[r] * p[r];
-        ss[block + i * n + i] = alive[i] * slope * s[r] + e * e * k[r] + v[r] * e * (slope - s[r]);
-        if (whole) {
-          sp[block + i * n + i] = h * m;
-          pp[block + i * n + i] =
-            (seen[i] + passed[i]) * p[r] * q[r] + h * h * k[r] + v[r] * h * (q[r] - p[r]);
-        }
-        let product = 1;
-        for (let t = i + 1; t < n; t++) {
-          const later = g * n + t;
-          product *= phi[later - 1] * q[later - 1];
-          const away = chi[g * (n + 1) + t + 1];
-          const eT = phi[later] * design.lengths[t] * s1[later] * (1 - q[later] * away);
-          const value = m * product * eT;
-          ss[block + i * n + t] = value;
-          ss[block + t * n + i] = value;
-          if (!whole) continue;
-          const hT = phi[later] * away * p[later] * q[later];
-          sp[block + i * n + t] = m * product * hT;
-          sp[block + t * n + i] = w * product * eT;
-          pp[block + i * n + t] = w * product * hT;
-          pp[block + t * n + i] = w * product * hT;
-        }
-      }
-    }
-  }
-
-  /** What all directions share at a point: derivatives of φ_t and of the slope σ_t along logit s_t, and 1/χ_t. */
-  function prepareThird(): void {
-    for (let r = 0; r < rows; r++) {
-      const t = r % n;
-      const g = (r - t) / n;
-      const slope = design.lengths[t] * s1[r];
-      slope0[r] = slope;
-      slope1[r] = -slope * s[r];
-      slope2[r] = 0.5 * slope * s[r] * (s[r] - s1[r]);
-      phi1[r] = phi[r] * slope;
-      phi2[r] = 0.5 * phi1[r] * (slope - s[r]);
-      a0[r] = 1 - q[r] * chi[g * (n + 1) + t + 1];
-      unseen[r] = data[g].lastSeen[t] > 0 ? 1 / chi[g * (n + 1) + t] : 0;
-    }
-    prepared = true;
-  }
-
-  function addThird(u: Float64Array, thirdSurvival: Float64Array, thirdRecapture: Float64Array): void {
-    if (!prepared) prepareThird();
-    for (let g = 0; g < design.strata; g++) {
-      const { alive, lastSeen } = data[g];
-      chi1[n] = 0;
-      chi2[n] = 0;
-      // χ_t = 1 − φ_t a_t with a_t = 1 − q_t χ_{t+1}; only φ and what follows from it move along u
-      for (let t = n - 1; t >= 0; t--) {
-        const r = g * n + t;
-        const a1 = -q[r] * chi1[t + 1];
-        const a2 = -q[r] * chi2[t + 1];
-        const [f1, f2] = [phi1[r] * u[t], phi2[r] * u[t] * u[t]];
-        chi1[t] = -(f1 * a0[r] + phi[r] * a1);
-        chi2[t] = -(f2 * a0[r] + f1 * a1 + phi[r] * a2);
-      }
-      let [carried0, carried1, carried2] = [0, 0, 0];
       for (let t = 0; t < n; t++) {
         const r = g * n + t;
-        const a1 = -q[r] * chi1[t + 1];
-        const a2 = -q[r] * chi2[t + 1];
-        const d1 = slope1[r] * u[t];
-        const d2 = slope2[r] * u[t] * u[t];
-        const f1 = phi1[r] * u[t];
-        const f2 = phi2[r] * u[t] * u[t];
-        // v = U/χ + what comes from earlier intervals
-        let [v0, v1, v2] = [carried0, carried1, carried2];
-        if (lastSeen[t] > 0) {
-          const r0 = unseen[r];
-          const r1 = -chi1[t] * r0 * r0;
-          const r2 = -(chi1[t] * r1 + chi2[t] * r0) * r0;
-          v0 += lastSeen[t] * r0;
-          v1 += lastSeen[t] * r1;
-          v2 += lastSeen[t] * r2;
+        const next = chi[r + g + 1];
+        sigma[r] = design.lengths[t] * s1[r];
+        e[r] = phi[r] * sigma[r] * (1 - q[r] * next);
+        h[r] = phi[r] * next * p[r] * q[r];
+        c[r] = phi[r] * q[r];
+        m[r] = e[r] * k[r] + v[r] * sigma[r];
+      }
+      for (let i = 0; i < n; i++) {
+        const r = g * n + i;
+        ss[block + i * n + i] =
+          alive[i] * sigma[r] * s[r] + e[r] * e[r] * k[r] + v[r] * e[r] * (sigma[r] - s[r]);
+        let product = m[r];
+        for (let t = i + 1; t < n; t++) {
+          product *= c[g * n + t - 1];
+          const value = product * e[g * n + t];
+          ss[block + i * n + t] = value;
+          ss[block + t * n + i] = value;
         }
-        const y0 = v0 * phi[r];
-        const y1 = v0 * f1 + v1 * phi[r];
-        const y2 = v0 * f2 + v1 * f1 + v2 * phi[r];
-        carried0 = y0 * q[r];
-        carried1 = y1 * q[r];
-        carried2 = y2 * q[r];
-        const m0 = slope0[r] * a0[r];
-        const m1 = slope0[r] * a1 + d1 * a0[r];
-        const m2 = slope0[r] * a2 + d1 * a1 + d2 * a0[r];
-        // signs: ∂log L/∂η = A·slope − v φ slope a, ∂log L/∂ζ = … − v φ χ p q, and f = −log L
-        thirdSurvival[r] += y0 * m2 + y1 * m1 + y2 * m0 - alive[t] * d2;
-        if (known === undefined)
-          thirdRecapture[r] +=
-            (y0 * chi2[t + 1] + y1 * chi1[t + 1] + y2 * chi[g * (n + 1) + t + 1]) * p[r] * q[r];
+        if (!whole) continue;
+        sp[block + i * n + i] = h[r] * m[r];
+        pp[block + i * n + i] =
+          (seen[i] + passed[i]) * p[r] * q[r] + h[r] * h[r] * k[r] + v[r] * h[r] * (q[r] - p[r]);
+        let bySurvived = m[r];
+        let bySeen = h[r] * k[r] - v[r] * p[r];
+        for (let t = i + 1; t < n; t++) {
+          const later = g * n + t;
+          bySurvived *= c[later - 1];
+          bySeen *= c[later - 1];
+          sp[block + i * n + t] = bySurvived * h[later];
+          sp[block + t * n + i] = bySeen * e[later];
+          pp[block + i * n + t] = bySeen * h[later];
+          pp[block + t * n + i] = bySeen * h[later];
+        }
+      }
+    }
+  }
+
+  function slopesOfTrace(
+    weights: Float64Array,
+    slopeSurvival: Float64Array,
+    slopeRecapture: Float64Array,
+  ): void {
+    for (let g = 0; g < design.strata; g++) {
+      const { alive, lastSeen } = data[g];
+      const first = g * n;
+      barM.fill(0);
+      barE.fill(0);
+      // Σ_{s<t} G_st m_s (c_s⋯c_{t−1}) e_t, by m and by e
+      for (let i = 0; i < n; i++) {
+        const from = m[first + i];
+        let product = 1;
+        let sum = 0;
+        for (let t = i + 1; t < n; t++) {
+          product *= c[first + t - 1];
+          const share = weights[i * n + t] * product;
+          sum += share * e[first + t];
+          barE[t] += share * from;
+        }
+        barM[i] = sum;
+      }
+      // v and k come from earlier intervals, so their adjoints run backwards; χ from later ones, so its own run forwards
+      barV[n] = 0;
+      barK[n] = 0;
+      for (let t = n - 1; t >= 0; t--) {
+        const r = first + t;
+        const half = 0.5 * weights[t * n + t];
+        barC[t] = barV[t + 1] * v[r] + 2 * barK[t + 1] * c[r] * k[r];
+        barV[t] = half * e[r] * (sigma[r] - s[r]) + barM[t] * sigma[r] + barV[t + 1] * c[r];
+        barK[t] = half * e[r] * e[r] + barM[t] * e[r] + barK[t + 1] * c[r] * c[r];
+        const own = chi[r + g];
+        barChi[t] = lastSeen[t] > 0 ? (-lastSeen[t] / (own * own)) * (barV[t] + (2 * barK[t]) / own) : 0;
+      }
+      barChi[n] = 0;
+      let across = 0; // Σ of the terms with s ≤ t < u: those that c_t is a factor of
+      for (let t = 0; t < n; t++) {
+        const r = first + t;
+        const half = 0.5 * weights[t * n + t];
+        const next = chi[r + g + 1];
+        const a = 1 - q[r] * next;
+        across += m[r] * barM[t] - e[r] * barE[t];
+        const byE = barE[t] + half * (2 * e[r] * k[r] + v[r] * (sigma[r] - s[r])) + barM[t] * k[r];
+        const bySigma = half * (alive[t] * s[r] + v[r] * e[r]) + barM[t] * v[r] + byE * phi[r] * a;
+        const byS = half * (alive[t] * sigma[r] - v[r] * e[r]);
+        const byPhi = byE * sigma[r] * a - barChi[t] * a;
+        const byA = byE * phi[r] * sigma[r] - barChi[t] * phi[r];
+        barChi[t + 1] -= byA * q[r];
+        slopeSurvival[r] =
+          byPhi * phi[r] * sigma[r] +
+          (byS * s1[r] - bySigma * sigma[r]) * s[r] +
+          (barC[t] * c[r] + across) * sigma[r];
+        slopeRecapture[r] = (byA * next * q[r] - barC[t] * c[r] - across) * p[r];
       }
     }
   }
@@ -221,6 +213,6 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
     survivalSurvival: ss,
     survivalRecapture: sp,
     recaptureRecapture: pp,
-    addThird,
+    slopesOfTrace,
   };
 }
