@@ -46,11 +46,7 @@ export function effectsDesign(problem: RandomIntervalProblem, which: readonly nu
     frame,
     which.map((k) => problem.covariates[k]),
   );
-  const indicators = Array.from({ length: n }, (_, t) => {
-    const column = new Float64Array(frame.strata.length * n);
-    for (let g = 0; g < frame.strata.length; g++) column[g * n + t] = 1;
-    return column;
-  });
+  const indicators = indicatorsOf(frame);
   const b = part.columns.length;
   const recaptureNames = "known" in recapture ? [] : recapture.names;
   const a = recaptureNames.length;
@@ -74,4 +70,20 @@ export function effectsDesign(problem: RandomIntervalProblem, which: readonly nu
     spent: fixedSurvivalColumns(frame) - survivalContrasts(frame) + which.length,
     fixed: Int32Array.from({ length: b + a }, (_, k) => (k < b ? k : k + n)),
   };
+}
+
+const KNOWN = new WeakMap<Frame, readonly Float64Array[]>();
+
+/** 1 in the rows of an interval, one column each; made once for all models of a study. */
+function indicatorsOf(frame: Frame): readonly Float64Array[] {
+  const known = KNOWN.get(frame);
+  if (known !== undefined) return known;
+  const n = frame.intervals;
+  const indicators = Array.from({ length: n }, (_, t) => {
+    const column = new Float64Array(frame.strata.length * n);
+    for (let g = 0; g < frame.strata.length; g++) column[g * n + t] = 1;
+    return column;
+  });
+  KNOWN.set(frame, indicators);
+  return indicators;
 }

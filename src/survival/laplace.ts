@@ -71,6 +71,10 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     ...design.survival.columns.slice(0, b),
     ...("known" in design.recapture ? [] : design.recapture.columns),
   ];
+  /** The n values of survival columns that are the same in all strata; undefined for others. */
+  const common = columns.map((column, j) =>
+    j < b && column.every((value, r) => value === column[r % n]) ? column.subarray(0, n) : undefined,
+  );
   const root = Float64Array.from(design.lengths, (length) => 1 / Math.sqrt(length)); // D^½
   const [fixedSurvival, logitSurvival, logitRecapture] = [0, 1, 2].map(() => new Float64Array(rows));
   const gradient = new Float64Array(n); // f_ε
@@ -80,7 +84,7 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
   // room for what no point keeps, taken once
   const [trial, mixed] = [new Float64Array(n), new Float64Array(d * n)];
   const [survival, recapture, thirdSurvival, thirdRecapture] = [0, 1, 2, 3].map(() => new Float64Array(rows));
-  const [inverse, scaled] = [new Float64Array(n * n), new Float64Array(n * n)];
+  const [inverse, scaled, spread] = [0, 1, 2].map(() => new Float64Array(n * n));
 
   /** −log joint at z with sd. */
   function joint(z: Float64Array, sd: number): number {
@@ -135,6 +139,21 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
       z.set(trial);
     }
     return Number.POSITIVE_INFINITY;
+  }
+
+  /** G = σ² D^½ L⁻ᵀ L⁻¹ D^½ into `spread`, from the factor. */
+  function spreadOf(variance: number): void {
+    if (variance === 0) {
+      spread.fill(0);
+      return;
+    }
+    inverseLower(factor, n, inverse);
+    for (let i = 0; i < n; i++)
+      for (let j = 0; j <= i; j++) {
+        let sum = 0;
+        for (let k = i; k < n; k++) sum += inverse[k * n + i] * inverse[k * n + j];
+        spread[i * n + j] = spread[j * n + i] = variance * root[i] * root[j] * sum;
+      }
   }
 
   /** Sum of the column of θ_j times values by row: of survival where j < b, else of recapture. */
@@ -201,16 +220,17 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
       halfLogDet += Math.log(factor[t * n + t]);
     }
 
+    spreadOf(variance);
     mixed.fill(0); // f_θε
     for (let j = 0; j < d; j++) {
       jointGradient[j] = along(j, rowsOf.bySurvival, rowsOf.byRecapture);
-      crossed(j, informed);
+      const x = common[j];
+      if (informed || x === undefined) crossed(j, informed);
       if (informed) for (let i = 0; i <= j; i++) information[i * d + j] = along(i, survival, recapture);
-      for (let r = 0; r < rows; r++) mixed[j * n + (r % n)] += survival[r];
+      if (x === undefined) for (let r = 0; r < rows; r++) mixed[j * n + (r % n)] += survival[r];
+      else multiply(w, x, mixed, j * n);
       // dε̂/dθ_j = −G f_εθj
-      for (let t = 0; t < n; t++) column[t] = root[t] * mixed[j * n + t];
-      choleskySolve(factor, n, column);
-      for (let t = 0; t < n; t++) tangents[j * n + t] = -variance * root[t] * column[t];
+      if (variance > 0) multiply(spread, mixed.subarray(j * n, (j + 1) * n), tangents, j * n, -1);
     }
     for (let i = 0; i < d && informed; i++)
       for (let j = i; j < d; j++) {
@@ -230,18 +250,11 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     if (found.joint === Number.POSITIVE_INFINITY)
       return { ...found, value: Number.POSITIVE_INFINITY, gradient: total, varianceInformation: 0 };
     const { tangents } = found;
-    // Φ_row = ½ Σ G_st ∂W_st/∂row, G = σ² D^½ L⁻ᵀ L⁻¹ D^½
-    thirdSurvival.fill(0);
-    thirdRecapture.fill(0);
-    if (variance > 0) {
-      inverseLower(factor, n, inverse);
-      for (let i = 0; i < n; i++)
-        for (let j = 0; j <= i; j++) {
-          let sum = 0;
-          for (let k = i; k < n; k++) sum += inverse[k * n + i] * inverse[k * n + j];
-          scaled[i * n + j] = scaled[j * n + i] = variance * root[i] * root[j] * sum;
-        }
-      rowsOf.slopesOfTrace(scaled, thirdSurvival, thirdRecapture);
+    // Φ_row = ½ Σ G_st ∂W_st/∂row
+    if (variance > 0) rowsOf.slopesOfTrace(spread, thirdSurvival, thirdRecapture);
+    else {
+      thirdSurvival.fill(0);
+      thirdRecapture.fill(0);
     }
     for (let j = 0; j < d; j++) total[j] = found.jointGradient[j] + along(j, thirdSurvival, thirdRecapture);
     for (let j = 0; j <= d; j++)
@@ -276,4 +289,14 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
   }
 
   return { dimension: d, mode, at };
+}
+
+/** by · Mx of an n × n matrix into `out` from a place on. */
+function multiply(m: Float64Array, x: Float64Array, out: Float64Array, from: number, by = 1): void {
+  const n = x.length;
+  for (let i = 0; i < n; i++) {
+    let sum = 0;
+    for (let t = 0; t < n; t++) sum += m[i * n + t] * x[t];
+    out[from + i] = by * sum;
+  }
 }

@@ -52,8 +52,33 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
   // adjoints of one stratum
   const [barM, barE, barC, barV, barK, barChi] = [0, 1, 2, 3, 4, 5].map(() => new Float64Array(n + 1));
 
+  const heldLogits = new Float64Array(rows).fill(Number.NaN);
+  let heldRecapture = 0;
+
+  /** p and q of all rows and Σ B log p + C log q; as they are where the logits have not moved, as in search of a mode. */
+  function recaptureRates(logits: Float64Array): number {
+    let same = true;
+    for (let r = 0; r < rows && same; r++) same = logits[r] === heldLogits[r];
+    if (same) return heldRecapture;
+    heldLogits.set(logits);
+    heldRecapture = 0;
+    for (let r = 0; r < rows; r++) {
+      const zeta = logits[r];
+      const tiny = Math.exp(-Math.abs(zeta));
+      const log1 = Math.log1p(tiny);
+      p[r] = known ?? (zeta >= 0 ? 1 : tiny) / (1 + tiny);
+      q[r] = known === undefined ? (zeta >= 0 ? tiny : 1) / (1 + tiny) : 1 - known;
+      const logP = known === undefined ? Math.min(0, zeta) - log1 : Math.log(known);
+      const logQ = known === undefined ? Math.min(0, -zeta) - log1 : Math.log(1 - known);
+      const { seen, passed } = data[Math.floor(r / n)];
+      if (seen[r % n] > 0) heldRecapture += seen[r % n] * logP;
+      if (passed[r % n] > 0) heldRecapture += passed[r % n] * logQ;
+    }
+    return heldRecapture;
+  }
+
   function at(logitSurvival: Float64Array, logitRecapture: Float64Array): number {
-    let logLikelihood = 0;
+    let logLikelihood = recaptureRates(logitRecapture);
     for (let g = 0; g < design.strata; g++) {
       const { alive, seen, passed, lastSeen } = data[g];
       const from = g * (n + 1);
@@ -66,24 +91,12 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
         const small = Math.exp(-Math.abs(eta));
         s[r] = (eta >= 0 ? 1 : small) / (1 + small);
         s1[r] = (eta >= 0 ? small : 1) / (1 + small);
+        const year = design.lengths[t] === 1;
         const logPhi = design.lengths[t] * (Math.min(0, eta) - Math.log1p(small));
-        phi[r] = Math.exp(logPhi);
+        phi[r] = year ? s[r] : Math.exp(logPhi);
         if (alive[t] > 0) logLikelihood += alive[t] * logPhi;
-        if (known !== undefined) {
-          p[r] = known;
-          q[r] = 1 - known;
-          if (seen[t] > 0) logLikelihood += seen[t] * Math.log(known);
-          if (passed[t] > 0) logLikelihood += passed[t] * Math.log(1 - known);
-        } else {
-          const zeta = logitRecapture[r];
-          const tiny = Math.exp(-Math.abs(zeta));
-          const log1 = Math.log1p(tiny);
-          p[r] = (zeta >= 0 ? 1 : tiny) / (1 + tiny);
-          q[r] = (zeta >= 0 ? tiny : 1) / (1 + tiny);
-          if (seen[t] > 0) logLikelihood += seen[t] * (zeta >= 0 ? -log1 : zeta - log1);
-          if (passed[t] > 0) logLikelihood += passed[t] * (zeta >= 0 ? -zeta - log1 : -log1);
-        }
-        chi[from + t] = -Math.expm1(logPhi) + phi[r] * q[r] * chi[from + t + 1];
+        const die = year ? s1[r] : -Math.expm1(logPhi);
+        chi[from + t] = die + phi[r] * q[r] * chi[from + t + 1];
         if (lastSeen[t] > 0) logLikelihood += lastSeen[t] * Math.log(chi[from + t]);
       }
       let [carried, squared] = [0, 0];
