@@ -61,3 +61,11 @@ function fourProducts(
   out[i1 * m + j] = out[j * m + i1] = bc;
   out[i1 * m + j1] = out[j1 * m + i1] = bd;
 }
+
+/** Arrays of zeros cut from one piece of memory, since asking for it costs more than filling it. */
+export function arraysOf(count: number, length: number): Float64Array[] {
+  const all = new Float64Array(count * length);
+  const out: Float64Array[] = [];
+  for (let i = 0; i < count; i++) out.push(all.subarray(i * length, (i + 1) * length));
+  return out;
+}

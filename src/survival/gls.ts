@@ -58,11 +58,18 @@ export function glsFit(
   /** −2 log L, twice the restricted one, at this σ; leaves the factor in `normal` and the coefficients in `beta`. */
   function solve(sd: number): { readonly ml: number; readonly reml: number } {
     let ml = 0;
+    // Σ log(1 + σ²λ) as logarithms of products, taken before they could overflow
+    let product = 1;
     for (let i = 0; i < m; i++) {
       const grown = 1 + sd * sd * two.eigenvalues[i];
       weights[i] = two.eigenvalues[i] / grown;
-      ml += Math.log(grown);
+      product *= grown;
+      if (product > 1e150) {
+        ml += Math.log(product);
+        product = 1;
+      }
     }
+    ml += Math.log(product);
     for (let a = 0; a < k; a++) {
       beta[a] = 0;
       for (let i = 0; i < m; i++) beta[a] += weights[i] * used[a][i] * two.rotated[i];

@@ -1,4 +1,5 @@
 import { choleskyInPlace, choleskySolve } from "../math/cholesky.ts";
+import { arraysOf } from "../math/products.ts";
 import type { EffectsDesign } from "./effects-design.ts";
 import { rowLikelihood } from "./row-likelihood.ts";
 import type { SufficientStatistics } from "./statistics.ts";
@@ -76,15 +77,12 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
     j < b && column.every((value, r) => value === column[r % n]) ? column.subarray(0, n) : undefined,
   );
   const root = Float64Array.from(design.lengths, (length) => 1 / Math.sqrt(length)); // D^½
-  const [fixedSurvival, logitSurvival, logitRecapture] = [0, 1, 2].map(() => new Float64Array(rows));
-  const gradient = new Float64Array(n); // f_ε
-  const w = new Float64Array(n * n);
-  const factor = new Float64Array(n * n);
-  const column = new Float64Array(n);
+  const [fixedSurvival, logitSurvival, logitRecapture] = arraysOf(3, rows);
   // room for what no point keeps, taken once
-  const [trial, mixed] = [new Float64Array(n), new Float64Array(d * n)];
-  const [survival, recapture, thirdSurvival, thirdRecapture] = [0, 1, 2, 3].map(() => new Float64Array(rows));
-  const [inverse, scaled, spread] = [0, 1, 2].map(() => new Float64Array(n * n));
+  const [gradient, column, trial] = arraysOf(3, n); // gradient: f_ε
+  const mixed = new Float64Array(d * n);
+  const [survival, recapture, thirdSurvival, thirdRecapture] = arraysOf(4, rows);
+  const [w, factor, inverse, scaled, spread] = arraysOf(5, n * n);
 
   /** −log joint at z with sd. */
   function joint(z: Float64Array, sd: number): number {
@@ -195,12 +193,14 @@ export function laplaceOf(data: readonly SufficientStatistics[], model: EffectsD
       const into = j < b ? fixedSurvival : logitRecapture;
       for (let r = 0; r < rows; r++) into[r] += columns[j][r] * theta[j];
     }
-    const z = new Float64Array(n);
+    // one piece of memory for all that the point keeps
+    const kept = new Float64Array(n + d + (d + 1) * n + (informed ? d * d : 0));
+    const z = kept.subarray(0, n);
     if (sd > 0) for (let t = 0; t < n; t++) z[t] = effects[t] / (sd * root[t]);
     const value = findMode(z, sd);
-    const jointGradient = new Float64Array(d);
-    const tangents = new Float64Array((d + 1) * n);
-    const information = new Float64Array(informed ? d * d : 0);
+    const jointGradient = kept.subarray(n, n + d);
+    const tangents = kept.subarray(n + d, n + d + (d + 1) * n);
+    const information = kept.subarray(n + d + (d + 1) * n);
     for (let t = 0; t < n; t++) z[t] *= sd * root[t];
     const found = {
       theta,

@@ -1,4 +1,4 @@
-import { dot, weightedProducts } from "../math/products.ts";
+import { arraysOf, dot, weightedProducts } from "../math/products.ts";
 import type { Smooth } from "../solve/smooth.ts";
 import type { Design } from "./design.ts";
 import { checkDesign } from "./design-check.ts";
@@ -31,7 +31,7 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
   const b = survivalColumns.length;
   const dimension = b + recaptureColumns.length;
   // by row, so that the loops below have one index
-  const [alive, seen, passed, lastSeen, lengths] = [0, 1, 2, 3, 4].map(() => new Float64Array(rows));
+  const [alive, seen, passed, lastSeen, lengths] = arraysOf(5, rows);
   /** 1 where the row's interval ends at no occasion. */
   const closed = new Uint8Array(rows);
   /** Of each row, the stratum whose χ follows: another one after an animal's first interval, not within its years. */
@@ -46,17 +46,10 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
     for (let t = 0; t < n; t++) to[g * n + t] = closed[g * n + t] === 1 ? g : (data[g].becomes ?? g);
   }
 
-  const etas = new Float64Array(rows); // logit s
-  const zetas = new Float64Array(rows); // logit p
-  const s1 = new Float64Array(rows); // 1 − s
-  const phi = new Float64Array(rows);
-  const die = new Float64Array(rows); // 1 − φ
-  const p = new Float64Array(rows);
-  const q = new Float64Array(rows);
+  const [etas, zetas] = arraysOf(2, rows); // logit s, logit p
+  const [s1, phi, die, p, q, v] = arraysOf(6, rows); // s1 = 1 − s, die = 1 − φ
   const chi = new Float64Array(rows + strata); // n + 1 a stratum
-  const v = new Float64Array(rows);
-  const bySurvival = new Float64Array(rows); // ∂log L/∂ logit s
-  const byRecapture = new Float64Array(rows); // ∂log L/∂ logit p
+  const [bySurvival, byRecapture] = arraysOf(2, rows); // ∂log L/∂ logit s, ∂log L/∂ logit p
 
   /** φ and 1 − φ of all rows; Σ A log φ. */
   function survivalRates(): number {
@@ -143,22 +136,13 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
     return Number.isNaN(logLikelihood) ? Number.POSITIVE_INFINITY : -logLikelihood;
   }
 
-  const dSurvival = new Float64Array(rows);
-  const dRecapture = new Float64Array(rows);
+  const [dSurvival, dRecapture, dV] = arraysOf(3, rows);
   const dChi = new Float64Array(rows + strata);
-  const dV = new Float64Array(rows);
   // what the derivatives of all columns share, by row, with a = 1 − qχ₊ and σ = Δ(1 − s) = d log φ/d logit s:
-  const e = new Float64Array(rows); // φσa: −∂χ/∂ logit s
-  const h = new Float64Array(rows); // φχ₊pq: −∂χ/∂ logit p
-  const c = new Float64Array(rows); // φq: ∂χ/∂χ₊
-  const sigma = new Float64Array(rows);
-  const bend = new Float64Array(rows); // U/χ²: −∂v/∂χ of the own releases
-  const ownSurvival = new Float64Array(rows); // second derivative in the row's own logit s, v and χ₊ held
-  const ownRecapture = new Float64Array(rows);
-  const crossed = new Float64Array(rows); // second derivative in logit s and logit p of the row
-  const vc = new Float64Array(rows);
-  const vcs = new Float64Array(rows); // vcσ
-  const vpq = new Float64Array(rows); // vφpq
+  // e = φσa = −∂χ/∂ logit s, h = φχ₊pq = −∂χ/∂ logit p, c = φq = ∂χ/∂χ₊, bend = U/χ² = −∂v/∂χ of the own releases
+  const [e, h, c, sigma, bend] = arraysOf(5, rows);
+  // second derivatives in the row's own logits, v and χ₊ held, and vcσ, vφpq
+  const [ownSurvival, ownRecapture, crossed, vcs, vpq] = arraysOf(5, rows);
 
   function prepare(): void {
     for (let g = 0; g < strata; g++)
@@ -177,8 +161,7 @@ export function cjsLikelihood(data: readonly SufficientStatistics[], design: Des
         ownSurvival[r] = -alive[r] * slope * s - v[r] * e[r] * (slope - s);
         ownRecapture[r] = -(seen[r] + passed[r]) * pq - v[r] * h[r] * (1 - 2 * p[r]);
         crossed[r] = -v[r] * slope * h[r];
-        vc[r] = v[r] * c[r];
-        vcs[r] = vc[r] * slope;
+        vcs[r] = v[r] * c[r] * slope;
         vpq[r] = v[r] * phi[r] * pq;
       }
   }

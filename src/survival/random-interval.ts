@@ -65,7 +65,7 @@ export function maximiseRandomInterval(
   const options = { tolerance: precision * Math.max(100, totalReleases(problem.data)), iterations: 200 };
   // without random effects first: an ordinary fit, where the derivative in σ² says whether there is anything to find
   const ordinary = ordinaryFit(problem, model, laplace, start);
-  const none = laplace.at(ordinary.theta, 0, ordinary.effects);
+  const none = laplace.at(ordinary.theta, 0, ordinary.effects, false);
   const step = -none.gradient[d] / none.varianceInformation;
   // Scoring from 0 falls short, since the information on σ² is largest there.
   const variance = Math.min(4, Math.max(0, 2 * step));

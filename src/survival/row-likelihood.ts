@@ -1,3 +1,4 @@
+import { arraysOf } from "../math/products.ts";
 import type { Design } from "./design.ts";
 import type { SufficientStatistics } from "./statistics.ts";
 
@@ -42,15 +43,13 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
   const n = design.intervals;
   const rows = design.strata * n;
   const known = "known" in design.recapture ? design.recapture.known : undefined;
-  const [s, s1, phi, p, q, v, k] = [0, 1, 2, 3, 4, 5, 6].map(() => new Float64Array(rows));
+  const [s, s1, phi, p, q, v, k, bySurvival, byRecapture] = arraysOf(9, rows);
   const chi = new Float64Array(design.strata * (n + 1));
-  const bySurvival = new Float64Array(rows);
-  const byRecapture = new Float64Array(rows);
-  const [ss, sp, pp] = [0, 1, 2].map(() => new Float64Array(rows * n));
+  const [ss, sp, pp] = arraysOf(3, rows * n);
   // at the point of the last `curvature`, by row
-  const [sigma, e, h, c, m] = [0, 1, 2, 3, 4].map(() => new Float64Array(rows));
+  const [sigma, e, h, c, m] = arraysOf(5, rows);
   // adjoints of one stratum
-  const [barM, barE, barC, barV, barK, barChi] = [0, 1, 2, 3, 4, 5].map(() => new Float64Array(n + 1));
+  const [barM, barE, barC, barV, barK, barChi] = arraysOf(6, n + 1);
 
   const heldLogits = new Float64Array(rows).fill(Number.NaN);
   let heldRecapture = 0;
