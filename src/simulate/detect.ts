@@ -1,11 +1,6 @@
 import type { ScreenOptions } from "../screen/options.ts";
-import {
-  REPLICATES_TASK,
-  type Replicate,
-  type ReplicateChunk,
-  type Scenario,
-  type simulateReplicates,
-} from "./replicate.ts";
+import { REPLICATES_TASK, type Replicate, type ReplicateChunk, type Scenario } from "./replicate.ts";
+import { type Helpers, shareOut } from "./share-out.ts";
 import { perSd, type StudyDesign } from "./study-design.ts";
 import { type Tally, tally } from "./tally.ts";
 
@@ -40,21 +35,6 @@ export interface Detection {
   readonly rows: readonly DetectionRow[];
 }
 
-/** What the work is handed to; an Effects is one. */
-interface Helpers {
-  readonly parallel: {
-    map<Input, Output>(task: string, inputs: readonly Input[], step?: Step): Promise<Output[]>;
-  };
-  readonly progress: { start(label: string, total: number): Step };
-}
-interface Step {
-  tick(n?: number): void;
-  done(): void;
-}
-
-/** Replicates a worker takes at a time. */
-const CHUNK = 5;
-
 /**
  * How often each rule finds the named covariates, and what it chooses wrongly, over a grid of effect sizes. Every size
  * has random streams of its own, named after it, so its shares are independent of the others and of the grid.
@@ -64,35 +44,27 @@ export async function detect(
   request: DetectionRequest,
   options: ScreenOptions,
   seed: number,
-  { parallel, progress }: Helpers,
+  helpers: Helpers,
 ): Promise<Detection> {
   const { named, directions, residual, replicates } = request;
   const effects = [...new Set(request.effects)].sort((a, b) => a - b);
-  const chunks = effects.flatMap((effect): ReplicateChunk[] => {
+  const runs = effects.map((effect): Omit<ReplicateChunk, "from" | "to"> => {
     const acting = named.map((covariate, i) => ({ covariate, perSd: directions[i] * effect }));
     const scenario: Scenario = { effects: effect === 0 ? [] : acting, residual };
-    const stream = `what the study can detect, ${effect} per sd`;
-    return Array.from({ length: Math.ceil(replicates / CHUNK) }, (_, i) => {
-      const [from, to] = [i * CHUNK, Math.min((i + 1) * CHUNK, replicates)];
-      return { design, scenario, options, seed, stream, from, to };
-    });
+    return { design, scenario, options, seed, stream: `what the study can detect, ${effect} per sd` };
   });
-  const step = progress.start("drawing studies", chunks.length);
-  const parts = await parallel.map<ReplicateChunk, ReturnType<typeof simulateReplicates>>(
-    REPLICATES_TASK,
-    chunks,
-    step,
+  const drawn = await shareOut<(typeof runs)[number], Replicate>(
+    helpers,
+    { label: "drawing studies", task: REPLICATES_TASK, replicates },
+    runs,
   );
-  step.done();
-  const drawn = parts.flat();
   const correlation = correlationOf(design);
   const rows = effects.flatMap((effect, e): DetectionRow[] => {
-    const own = drawn.slice(e * replicates, (e + 1) * replicates);
     return RULES.map((rule) => ({
       effect,
       rule,
       ...tally(
-        own.map((one) => choiceBy(rule, one)),
+        drawn[e].map((one) => choiceBy(rule, one)),
         named,
         effect !== 0,
         correlation,

@@ -5,6 +5,7 @@ import type { ScreenResult } from "../screen/screen.ts";
 import { fitModel } from "../survival/fit.ts";
 import { drawStudy, screenedStudy } from "./replicate.ts";
 import { conditionalDesign, randomIntervalDesign } from "./resampled-worlds.ts";
+import { type Helpers, shareOut } from "./share-out.ts";
 import type { StudyDesign } from "./study-design.ts";
 
 /**
@@ -85,19 +86,6 @@ export interface Resampling {
   readonly worlds: readonly WorldSummary[];
 }
 
-interface Helpers {
-  readonly parallel: {
-    map<Input, Output>(task: string, inputs: readonly Input[], step?: Step): Promise<Output[]>;
-  };
-  readonly progress: { start(label: string, total: number): Step };
-}
-interface Step {
-  tick(n?: number): void;
-  done(): void;
-}
-
-const CHUNK = 5;
-
 /**
  * How often the procedure chooses each covariate when the study is drawn again, beside how often it would where nothing
  * acts. Undefined where none are asked for, or where no random effect of the interval is to be had.
@@ -107,7 +95,7 @@ export async function resample(
   screened: ScreenResult,
   options: ScreenOptions,
   seed: number,
-  { parallel, progress }: Helpers,
+  helpers: Helpers,
 ): Promise<Resampling | undefined> {
   const replicates = options.resamples ?? 0;
   const { randomIntervals } = screened;
@@ -120,24 +108,20 @@ export async function resample(
     ["null", randomIntervalDesign(problem, []), randomIntervals.sigmaWithout],
     ["same years", conditionalDesign(problem, screened.intervalFit), 0],
   ];
-  const chunks = drawn.flatMap(([world, design, residual]) =>
-    Array.from({ length: Math.ceil(replicates / CHUNK) }, (_, i): ResamplingChunk => {
-      const [from, to] = [i * CHUNK, Math.min((i + 1) * CHUNK, replicates)];
-      return { design, residual, options, seed, stream: `resampling, ${world}`, from, to };
-    }),
+  const runs = drawn.map(([world, design, residual]): Omit<ResamplingChunk, "from" | "to"> => {
+    return { design, residual, options, seed, stream: `resampling, ${world}` };
+  });
+  const resampled = await shareOut<(typeof runs)[number], Resample>(
+    helpers,
+    { label: "drawing the study again", task: RESAMPLING_TASK, replicates },
+    runs,
   );
-  const step = progress.start("drawing the study again", chunks.length);
-  const parts = await parallel.map<ResamplingChunk, Resample[]>(RESAMPLING_TASK, chunks, step);
-  step.done();
-  const all = parts.flat();
   const signs = screened.names.map((_, k) => studySign(problem, chosen, k));
   return {
     names: screened.names,
     replicates,
     signs,
-    worlds: drawn.map(([world], w) =>
-      summarise(world, all.slice(w * replicates, (w + 1) * replicates), chosen, signs),
-    ),
+    worlds: drawn.map(([world], w) => summarise(world, resampled[w], chosen, signs)),
   };
 }
 

@@ -78,6 +78,9 @@ export function maximiseRandomInterval(
   return { ...best, minus2LogL: 2 * best.point.value, laplace };
 }
 
+/** A coefficient this far from 0 runs to a bound. */
+const FAR = 9;
+
 /** The fit at σ² = 0, by the likelihood in its coefficients; by the joint mode where that stops short. */
 function ordinaryFit(
   { data }: RandomIntervalProblem,
@@ -98,9 +101,9 @@ function ordinaryFit(
     start ?? nothing.theta,
     { tolerance, iterations: 200 },
   );
-  return solution.stopped === "optimum"
-    ? { ...nothing, theta: solution.x }
-    : jointMode(laplace, nothing, 0, tolerance);
+  // with a rate at its bound any far-off point will do for the likelihood, but not for the search that starts there
+  const settled = solution.stopped === "optimum" && solution.x.every((value) => Math.abs(value) < FAR);
+  return settled ? { ...nothing, theta: solution.x } : jointMode(laplace, nothing, 0, tolerance);
 }
 
 /** Effects on the way from 0 along their derivative in σ², for a start. */

@@ -2,6 +2,9 @@ import { arraysOf } from "../math/products.ts";
 import type { Design } from "./design.ts";
 import type { SufficientStatistics } from "./statistics.ts";
 
+/** Below this φq is so small that what comes through its interval is summed term by term. */
+const SMALL = 1e-6;
+
 /** −log L as a function of the logits themselves, row by row (G·n survival, G·n recapture), with its derivatives. */
 export interface RowLikelihood {
   /** −log L at the point; the other members then speak of this point. +Infinity where it is not defined. */
@@ -202,6 +205,8 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
         const next = chi[r + g + 1];
         const a = 1 - q[r] * next;
         across += m[r] * barM[t] - e[r] * barE[t];
+        // c_t near 0 makes all of them small, and what is left of the sum is rounding: a logit that runs away needs better
+        const through = c[r] < SMALL ? termsThrough(weights, first, t) : across;
         const byE = barE[t] + half * (2 * e[r] * k[r] + v[r] * (sigma[r] - s[r])) + barM[t] * k[r];
         const bySigma = half * (alive[t] * s[r] + v[r] * e[r]) + barM[t] * v[r] + byE * phi[r] * a;
         const byS = half * (alive[t] * sigma[r] - v[r] * e[r]);
@@ -211,10 +216,23 @@ export function rowLikelihood(data: readonly SufficientStatistics[], design: Des
         slopeSurvival[r] =
           byPhi * phi[r] * sigma[r] +
           (byS * s1[r] - bySigma * sigma[r]) * s[r] +
-          (barC[t] * c[r] + across) * sigma[r];
-        slopeRecapture[r] = (byA * next * q[r] - barC[t] * c[r] - across) * p[r];
+          (barC[t] * c[r] + through) * sigma[r];
+        slopeRecapture[r] = (byA * next * q[r] - barC[t] * c[r] - through) * p[r];
       }
     }
+  }
+
+  /** Σ_{s≤t<u} G_su m_s (c_s⋯c_{u−1}) e_u, term by term. */
+  function termsThrough(weights: Float64Array, first: number, t: number): number {
+    let sum = 0;
+    for (let i = 0; i <= t; i++) {
+      let product = m[first + i];
+      for (let u = i + 1; u < n; u++) {
+        product *= c[first + u - 1];
+        if (u > t) sum += weights[i * n + u] * product * e[first + u];
+      }
+    }
+    return sum;
   }
 
   return {

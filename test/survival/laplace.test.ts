@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { occasionRecapture } from "../../src/survival/design.ts";
 import {
   type EffectsDesign,
   effectsDesign,
@@ -85,6 +86,30 @@ describe("the likelihood by rows", () => {
 });
 
 describe("the slopes of a weighted sum of the curvature", () => {
+  test("keep their relative precision where a recapture runs away: they fall like e^−ζ", () => {
+    const n = 6;
+    const problem = smallProblem(n, 1, 1);
+    const model = effectsDesign(problem, [0]);
+    const rows = rowLikelihood(problem.data, {
+      ...model.design,
+      recapture: occasionRecapture(problem.frame),
+    });
+    const eta = normals(n, 50);
+    const half = normals(n * n, 51);
+    const weights = half.map((value, i) => value + half[(i % n) * n + Math.floor(i / n)]);
+    const slope = (zeta: number) => {
+      const [byS, byR] = [new Float64Array(n), new Float64Array(n)];
+      rows.at(eta, new Float64Array(n).fill(zeta, 2, 3));
+      rows.curvature(false);
+      rows.slopesOfTrace(weights, byS, byR);
+      return byR[2];
+    };
+    // (1 + e^−ζ) of what is left is 1 to rounding from here on
+    const [near, far] = [slope(40), slope(300)];
+    expect(near).not.toBe(0);
+    expect(Math.abs((far / near) * Math.exp(260) - 1)).toBeLessThan(1e-9);
+  });
+
   test("agree with differences of it, strata and unequal intervals included (property)", () => {
     fc.assert(
       fc.property(

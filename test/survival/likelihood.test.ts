@@ -25,7 +25,8 @@ function frameOf(strata: number, n: number, replicate: number): Frame {
   return {
     strata: Array.from({ length: strata }, (_, g) => `stratum ${g}`),
     intervals: n,
-    lengths: Float64Array.from(normals(n, replicate + 1), (z) => Math.exp(z / 2)),
+    // some of one year exactly, which needs no powers
+    lengths: Float64Array.from(normals(n, replicate + 1), (z) => (z > 0.5 ? 1 : Math.exp(z / 2))),
     forced: [],
     effort: normals(n, replicate + 2),
   };
@@ -210,5 +211,129 @@ describe("likelihood", () => {
     );
     expect(never.minus2LogL).toBeCloseTo(0, 5);
     expect(Number.isFinite(never.estimates[0])).toBe(true);
+  });
+});
+
+describe("with everybody seen, recapture known to be 1", () => {
+  const known = { known: 1 };
+  /** Every released animal is met at the next occasion or never. */
+  const binomial = (n: number, replicate: number) => {
+    const random = randomStream(7, "binomial counts", replicate);
+    const alive = Array.from({ length: n }, () => 1 + Math.floor(random.uniform() * 20));
+    const dead = alive.map(() => 1 + Math.floor(random.uniform() * 20));
+    return {
+      alive,
+      released: alive.map((a, t) => a + dead[t]),
+      data: sufficientStatistics(
+        countsOf(
+          alive.map((a, t) => a + dead[t]),
+          alive.map((a, t) => alive.map((_, j) => (j === t ? a : 0))),
+        ),
+      ),
+    };
+  };
+
+  test("value, gradient and information are those of a binomial regression in closed form (property)", () => {
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 1, max: 7 }),
+        fc.integer({ min: 1, max: 3 }),
+        fc.nat(1000),
+        (n, g, seed) => {
+          const frame = { ...frameOf(g, n, seed), lengths: new Float64Array(n).fill(1) };
+          const covariates = [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
+          const design = designOf(frame, covariateSurvival(frame, covariates), known);
+          const drawn = frame.strata.map((_, i) => binomial(n, 10 * seed + i));
+          const f = cjsLikelihood(
+            drawn.map((one) => one.data),
+            design,
+          );
+          const d = f.dimension;
+          const x = normals(d, seed + 20);
+          const gradient = new Float64Array(d);
+          const value = f.evaluate(x, gradient);
+          const information = new Float64Array(d * d);
+          f.curvature(
+            Int32Array.from({ length: d }, (_, k) => k),
+            information,
+          );
+          // −log L = Σ N log(1 + e^η) − yη; its gradient Xᵀ(Ns − y) and XᵀDX, D = N s(1 − s) (McCullagh & Nelder 1989, §4.4)
+          const { columns } = design.survival;
+          const [slope, curve] = [new Float64Array(d), new Float64Array(d * d)];
+          let expected = 0;
+          for (let r = 0; r < g * n; r++) {
+            const { alive, released } = drawn[Math.floor(r / n)];
+            const [y, N] = [alive[r % n], released[r % n]];
+            const eta = columns.reduce((sum, column, k) => sum + column[r] * x[k], 0);
+            const s = 1 / (1 + Math.exp(-eta));
+            expected += N * Math.log1p(Math.exp(eta)) - y * eta;
+            for (let i = 0; i < d; i++) {
+              slope[i] += columns[i][r] * (N * s - y);
+              for (let j = 0; j < d; j++) curve[i * d + j] += N * s * (1 - s) * columns[i][r] * columns[j][r];
+            }
+          }
+          const scale = 1 + Math.abs(expected);
+          expect(Math.abs(value - expected)).toBeLessThan(1e-12 * scale);
+          for (let i = 0; i < d; i++) expect(Math.abs(gradient[i] - slope[i])).toBeLessThan(1e-11 * scale);
+          for (let i = 0; i < d * d; i++)
+            expect(Math.abs(information[i] - curve[i])).toBeLessThan(1e-11 * scale);
+        },
+      ),
+      { numRuns: 100 },
+    );
+  });
+
+  test("the information agrees with differences of the gradient at any lengths, on any working set (property)", () => {
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 1, max: 7 }),
+        fc.integer({ min: 1, max: 3 }),
+        fc.nat(1000),
+        (n, g, seed) => {
+          const frame = frameOf(g, n, seed);
+          const covariates = [0, 1, 2].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
+          const design = designOf(frame, covariateSurvival(frame, covariates), known);
+          const f = cjsLikelihood(
+            frame.strata.map((_, i) => binomial(n, 10 * seed + i).data),
+            design,
+          );
+          const d = f.dimension;
+          const x = normals(d, seed + 20);
+          const which = Int32Array.from({ length: d }, (_, k) => k).filter(
+            (k) => (seed >> k) % 2 === 0 || k === 0,
+          );
+          const m = which.length;
+          const out = new Float64Array(m * m);
+          f.evaluate(x, new Float64Array(d));
+          f.curvature(which, out);
+          const h = 1e-5;
+          which.forEach((k, i) => {
+            const [up, down] = [Float64Array.from(x), Float64Array.from(x)];
+            const [above, below] = [new Float64Array(d), new Float64Array(d)];
+            up[k] += h;
+            down[k] -= h;
+            f.evaluate(up, above);
+            f.evaluate(down, below);
+            which.forEach((l, j) => {
+              const difference = (above[l] - below[l]) / (2 * h);
+              expect(Math.abs(out[i * m + j] - difference)).toBeLessThan(1e-6 * (1 + Math.abs(difference)));
+            });
+          });
+        },
+      ),
+      { numRuns: 100 },
+    );
+  });
+
+  test("one survival per interval: y/N, with the binomial's standard error on the logit", () => {
+    const n = 6;
+    const frame = { ...frameOf(1, n, 3), lengths: new Float64Array(n).fill(1) };
+    const { alive, released, data } = binomial(n, 3);
+    const fit = fitModel([data], designOf(frame, intervalSurvival(frame), known));
+    alive.forEach((y, t) => {
+      const N = released[t];
+      expect(fit.survival[t].value).toBeCloseTo(y / N, 10);
+      expect(fit.se[t]).toBeCloseTo(Math.sqrt(N / (y * (N - y))), 8);
+    });
   });
 });
