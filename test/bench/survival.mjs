@@ -97,7 +97,7 @@ for (const [occasions, covariates, animals] of [
     "path of 100 λ, ms": Number(onePath.toPrecision(3)),
     "1,000 paths, s": Number((((spent.user + spent.system) / 1e6) * (big ? 10 : 1)).toPrecision(3)),
     "whole procedure, ms": Number(
-      cpu(3, big ? 2 : 10, () => runProcedure(problem, setting, options)).toPrecision(3),
+      cpu(3, big ? 2 : 10, () => runProcedure(problem, setting, options).byYears).toPrecision(3),
     ),
     "largest residual / λ_max": residual.toExponential(1),
   });
