@@ -116,4 +116,11 @@ describe("predicted survival", () => {
       -0.2, -0.1, 1.1, 1.2,
     ]);
   });
+
+  test("how far it goes beyond the observed goes by their range", () => {
+    const wide = { name: "wide", values: flood.values.map((value) => 5 * value - 1) };
+    const own = fitModel(data, designOf(frame, covariateSurvival(frame, [wide]), constantRecapture(frame)));
+    const [curve] = predictedSurvival(frame, [wide], own);
+    expect(curve.points.filter((one) => !one.observed).map((one) => one.value)).toEqual([-2, -1.5, 4.5, 5]);
+  });
 });

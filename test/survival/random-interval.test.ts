@@ -149,6 +149,26 @@ describe("random interval effects", () => {
     expect(fit.sigmaReml / fit.sigma).toBeCloseTo(Math.sqrt(n / (n - 2)), 3);
   });
 
+  test("σ by restricted likelihood does not change when a constant is added to a covariate", () => {
+    // The determinant of the information changes by a factor that is free of σ; its diagonal alone would not.
+    const n = 12;
+    const frame = plainFrame(n);
+    const [x, e] = [normals(n, 6), normals(n, 7)];
+    const rates = x.map((value, t) => inverseLogit(0.6 - 0.4 * value + 0.6 * e[t]));
+    const sigmaWith = (shift: number) =>
+      fitRandomInterval(
+        {
+          data: [expected(n, 40, rates, 0.6)],
+          frame,
+          recapture: constantRecapture(frame),
+          covariates: [{ name: "x", values: x.map((value) => value + shift) }],
+        },
+        [0],
+      ).sigmaReml;
+    expect(sigmaWith(0)).toBeGreaterThan(0.1);
+    expect(sigmaWith(3)).toBeCloseTo(sigmaWith(0), 5);
+  });
+
   test("no neighbour of the maximum is higher, and it does not depend on where the search began", () => {
     for (let seed = 0; seed < 12; seed++) {
       const problem = drawnProblem(9, 1 + (seed % 2), seed, 30, 0.6);
