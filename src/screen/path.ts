@@ -89,10 +89,14 @@ interface Point {
   readonly x: Float64Array;
 }
 
+/** On the logit scale, in one step of the path. */
+const FARTHEST = 2;
+
 /**
  * Where the path will be at λ: each coefficient by the polynomial in λ through up to three solutions, the last first (between
  * coefficients that enter or leave the path is smooth, for a quadratic likelihood straight). Only as many are used as a
- * penalised coefficient has kept its sign in; one that was 0, or would cross 0, stays where it was last.
+ * penalised coefficient has kept its sign in; one that was 0, or would cross 0, stays where it was last, and so does one that
+ * would jump: a coefficient without an optimum (a rate at its bound) stops anywhere, and a polynomial through that leads nowhere.
  */
 function startAt(lambda: number, behind: readonly Point[], weights: Float64Array): Float64Array {
   const last = behind[0].x;
@@ -106,7 +110,7 @@ function startAt(lambda: number, behind: readonly Point[], weights: Float64Array
     const by = shares[count - 1];
     let to = 0;
     for (let i = 0; i < count; i++) to += by[i] * behind[i].x[k];
-    if (!penalised || last[k] * to > 0) start[k] = to;
+    if ((!penalised || last[k] * to > 0) && Math.abs(to - last[k]) <= FARTHEST) start[k] = to;
   }
   return start;
 }

@@ -157,6 +157,9 @@ function modelMinimum(
   return minimiseQuadratic({ which, x, gradient, curvature: damped }, penalty, rooms);
 }
 
+/** A step that moves no coordinate farther than this is none. */
+const SHORTEST = 1e-9;
+
 /**
  * The first of the steps 1, ½, ¼ … that lowers the objective enough (Armijo) or, at rounding level, the violation. The new
  * point is written into `into`.
@@ -172,14 +175,18 @@ function lineSearch(
   const m = which.length;
   x.set(from.x);
   let predicted = -from.held;
+  let reach = 0;
   for (let a = 0; a < m; a++) {
+    const move = Math.abs(target[a] - from.x[which[a]]);
+    if (move > reach && move < Number.POSITIVE_INFINITY) reach = move;
     x[which[a]] = target[a];
     predicted += from.gradient[which[a]] * (target[a] - from.x[which[a]]);
   }
   predicted += penalty.value(x);
   // below this, differences of the objective are rounding noise and the optimality conditions decide
   const noise = 1e-13 * (1 + Math.abs(from.objective));
-  for (let step = 1; step > 1e-12; step /= 2) {
+  // where the curvature is next to nothing the target is so far off that a tiny step is still a long way
+  for (let step = 1; step > 1e-12 || step * reach > SHORTEST; step /= 2) {
     if (step < 1)
       for (let a = 0; a < m; a++) {
         const k = which[a];

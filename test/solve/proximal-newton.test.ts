@@ -189,3 +189,28 @@ describe("proximal Newton", () => {
     );
   });
 });
+
+test("a start where the curvature has all but vanished: the way back is found, however far the model's minimum lies", () => {
+  // −log of 3 deaths among 50: f = 47 log(1 + e^−x) + 3 log(1 + e^x), least at log(47/3); at −54.7 its curvature is 8e-23
+  const binomial: Smooth = {
+    dimension: 1,
+    evaluate: ([x], gradient) => {
+      gradient[0] = 3 / (1 + Math.exp(-x)) - 47 / (1 + Math.exp(x));
+      const softplus = (z: number) => Math.max(z, 0) + Math.log1p(Math.exp(-Math.abs(z)));
+      last = x;
+      return 47 * softplus(-x) + 3 * softplus(x);
+    },
+    curvature: (_, out) => {
+      out[0] = 50 / ((1 + Math.exp(-last)) * (1 + Math.exp(last)));
+    },
+  };
+  let last = 0;
+  for (const start of [-54.7, -30, 3, 30]) {
+    const found = proximalNewton(binomial, noPenalty, Float64Array.of(start), {
+      tolerance: 1e-9,
+      iterations: 200,
+    });
+    expect(found.stopped, String(start)).toBe("optimum");
+    expect(found.x[0]).toBeCloseTo(Math.log(47 / 3), 9);
+  }
+});
