@@ -1,6 +1,7 @@
 import { Matrix as Dense, SVD } from "ml-matrix";
 import { unitColumns } from "../collinearity/decomposition.ts";
 import { type Matrix, zeros } from "../data/matrix.ts";
+import { dot } from "../math/products.ts";
 import { quantile7 } from "../math/quantile.ts";
 import type { Random } from "../math/random.ts";
 import type { Components, LoadingIntervals } from "./result.ts";
@@ -85,10 +86,4 @@ export function matchAxes(original: readonly Float64Array[], axes: readonly Floa
     out[j] = cos < 0 ? axes[at].map((value) => -value) : axes[at];
   }
   return out;
-}
-
-function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
-  return sum;
 }

@@ -6,9 +6,13 @@ import { guessPattern } from "./layer-stanza.ts";
 
 /**
  * What the images of a file seem to stand for, by a date in its name (one band) or in its bands' descriptions: a period
- * for each band. Empty if neither holds a date.
+ * for each band. Empty if neither holds a date. `spacing` is what the images beside this one say, if they say anything.
  */
-export function guessDates(path: string, descriptions: readonly string[]): readonly string[] {
+export function guessDates(
+  path: string,
+  descriptions: readonly string[],
+  spacing?: { readonly covers: ImageCover },
+): readonly string[] {
   const inName = guessPattern(stemOf(path));
   const inBands = guessPattern(descriptions[0] ?? "");
   const named = inName !== undefined && descriptions.length === 1;
@@ -19,7 +23,8 @@ export function guessDates(path: string, descriptions: readonly string[]): reado
     const pattern = /\{.*\}/.exec(guess.pattern)?.[0] ?? guess.pattern;
     const date = named ? { name: pattern } : { band: pattern };
     // The stanza's guesses are words of the union, or they would not be pasted.
-    return periodsOf(path, descriptions, { date, covers: guess.covers as ImageCover }).map(periodText);
+    const covers = named && spacing !== undefined ? spacing.covers : (guess.covers as ImageCover);
+    return periodsOf(path, descriptions, { date, covers }).map(periodText);
   } catch (error) {
     if (error instanceof InputError) return [];
     throw error;

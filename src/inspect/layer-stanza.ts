@@ -34,7 +34,7 @@ export function layerStanza(
   descriptions: readonly string[],
   unit: string,
   systemKnown: boolean,
-  spacing?: string,
+  spacing?: { readonly text: string },
 ): string {
   const stem = stemOf(path);
   const folder = path.slice(0, path.lastIndexOf("/") + 1);
@@ -50,7 +50,7 @@ export function layerStanza(
       `    date: { name: ${quote(inName.pattern)} }`,
       spacing === undefined
         ? `    covers: ${inName.covers} # guessed from the name${inName.covers === "day" ? "; composites: 16 days anew each year" : ""}`
-        : `    covers: ${spacing} # guessed from how the files follow each other`,
+        : `    covers: ${spacing.text} # guessed from how the files follow each other`,
     );
   } else if (inBands !== undefined) {
     lines.push(

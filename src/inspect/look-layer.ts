@@ -81,6 +81,7 @@ export async function lookLayer(path: string, files: Files): Promise<LayerLook> 
       const nodata = layer.nodata[band] ?? Number.NaN;
       bands.push({ description, unit, scale, offset, nodata, ...tally.result() });
     }
+    const spacing = guessSpacing(await files.list(likeNamed(path)));
     const where =
       layer.mask === undefined ? "none" : layer.mask.path === path ? "within the file" : "beside the file";
     return {
@@ -106,13 +107,14 @@ export async function lookLayer(path: string, files: Files): Promise<LayerLook> 
       dates: guessDates(
         path,
         layer.bands.map((band) => band.description),
+        spacing,
       ),
       stanza: layerStanza(
         path,
         layer.bands.map((band) => band.description),
         layer.bands[0].unit,
         system !== undefined,
-        guessSpacing(await files.list(likeNamed(path))),
+        spacing,
       ),
     };
   } finally {

@@ -1,4 +1,5 @@
 import { choleskyInPlace, choleskySolve } from "../math/cholesky.ts";
+import { dot } from "../math/products.ts";
 import { weightedL1 } from "../solve/penalty.ts";
 import { proximalNewton } from "../solve/proximal-newton.ts";
 import type { Smooth } from "../solve/smooth.ts";
@@ -149,10 +150,4 @@ function leastSquares(columns: readonly Float64Array[], y: Float64Array): Smooth
         }
     },
   };
-}
-
-function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i] * b[i];
-  return sum;
 }

@@ -84,7 +84,7 @@ function groupLine(group: Group, { style, width, kindWidth, numberWidth }: Layou
 }
 
 function mark(severity: Severity, style: Style): string {
-  if (severity === "accept") return style.good("fine");
+  if (severity === "accept") return style.good("accept");
   return severity === "stop" ? style.alarm("stop") : style.caution("warn");
 }
 

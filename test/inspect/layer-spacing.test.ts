@@ -1,5 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { dayOf, isoDay } from "../../src/data/day.ts";
+import { guessDates } from "../../src/inspect/layer-dates.ts";
 import { guessSpacing } from "../../src/inspect/layer-spacing.ts";
 
 const named = (days: readonly number[]) => days.map((day) => `g_${isoDay(day)}.tif`);
@@ -24,14 +25,21 @@ describe("how long each image of a row counts, by the days in the names", () => 
     [undefined, anew(16, [2003]).slice(0, 3)],
     [undefined, []],
   ])("%s", (expected, days) => {
-    expect(guessSpacing(named(days))).toBe(expected);
+    expect(guessSpacing(named(days))?.text).toBe(expected);
     // in any order, and with some files lost
-    expect(guessSpacing(named(days.toReversed().filter((_, i) => i % 9 !== 4)))).toBe(expected);
+    expect(guessSpacing(named(days.toReversed().filter((_, i) => i % 9 !== 4)))?.text).toBe(expected);
+  });
+
+  test("an image's own period is told by it too", () => {
+    expect(guessDates("g.A2004353.tif", [""], { covers: { days: 16, anew: true } })).toEqual([
+      "2004-12-18 to 2004-12-31",
+    ]);
+    expect(guessDates("g.A2004353.tif", [""])).toEqual(["2004-12-18 to 2004-12-18"]);
   });
 
   test("days of the year in names count as dates; names without a whole date say nothing", () => {
     const names = Array.from({ length: 23 }, (_, k) => `veg.A2004${String(1 + 16 * k).padStart(3, "0")}.tif`);
-    expect(guessSpacing(names)).toBe("16 days anew each year");
+    expect(guessSpacing(names)).toEqual({ covers: { days: 16, anew: true }, text: "16 days anew each year" });
     expect(
       guessSpacing(["g_2003_01.tif", "g_2003_02.tif", "g_2003_03.tif", "g_2003_04.tif"]),
     ).toBeUndefined();

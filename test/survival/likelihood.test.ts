@@ -32,6 +32,9 @@ function frameOf(strata: number, n: number, replicate: number): Frame {
   };
 }
 
+/** Intervals, strata, and a seed. */
+const SIZES = [fc.integer({ min: 1, max: 7 }), fc.integer({ min: 1, max: 3 }), fc.nat(1000)] as const;
+
 function randomCounts(n: number, replicate: number) {
   const random = randomStream(7, "counts", replicate);
   const seen = Array.from({ length: n }, (_, i) =>
@@ -44,49 +47,44 @@ function randomCounts(n: number, replicate: number) {
 describe("likelihood", () => {
   test("gradient and curvature agree with central differences (property)", () => {
     fc.assert(
-      fc.property(
-        fc.integer({ min: 1, max: 7 }),
-        fc.integer({ min: 1, max: 3 }),
-        fc.nat(1000),
-        (n, strata, seed) => {
-          const frame = frameOf(strata, n, seed);
-          const covariates = [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
-          const recapture = [
-            constantRecapture(frame),
-            occasionRecapture(frame),
-            effortRecapture(frame, frame.effort!),
-          ][seed % 3];
-          const design = designOf(frame, covariateSurvival(frame, covariates), recapture);
-          const data = frame.strata.map((_, g) => sufficientStatistics(randomCounts(n, seed + g)));
-          const f = cjsLikelihood(data, design);
-          const x = Float64Array.from(normals(f.dimension, seed + 20));
-          const gradient = new Float64Array(f.dimension);
-          f.evaluate(x, gradient);
-          const which = Int32Array.from({ length: f.dimension }, (_, k) => k);
-          const curvature = new Float64Array(f.dimension ** 2);
-          f.curvature(which, curvature);
-          const up = new Float64Array(f.dimension);
-          const down = new Float64Array(f.dimension);
-          const h = 1e-5;
-          for (let k = 0; k < f.dimension; k++) {
-            const at = x[k];
-            x[k] = at + h;
-            const high = f.evaluate(x, up);
-            x[k] = at - h;
-            const low = f.evaluate(x, down);
-            x[k] = at;
-            expect(Math.abs((high - low) / (2 * h) - gradient[k])).toBeLessThan(
-              1e-6 * (1 + Math.abs(gradient[k])),
+      fc.property(...SIZES, (n, strata, seed) => {
+        const frame = frameOf(strata, n, seed);
+        const covariates = [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
+        const recapture = [
+          constantRecapture(frame),
+          occasionRecapture(frame),
+          effortRecapture(frame, frame.effort!),
+        ][seed % 3];
+        const design = designOf(frame, covariateSurvival(frame, covariates), recapture);
+        const data = frame.strata.map((_, g) => sufficientStatistics(randomCounts(n, seed + g)));
+        const f = cjsLikelihood(data, design);
+        const x = Float64Array.from(normals(f.dimension, seed + 20));
+        const gradient = new Float64Array(f.dimension);
+        f.evaluate(x, gradient);
+        const which = Int32Array.from({ length: f.dimension }, (_, k) => k);
+        const curvature = new Float64Array(f.dimension ** 2);
+        f.curvature(which, curvature);
+        const up = new Float64Array(f.dimension);
+        const down = new Float64Array(f.dimension);
+        const h = 1e-5;
+        for (let k = 0; k < f.dimension; k++) {
+          const at = x[k];
+          x[k] = at + h;
+          const high = f.evaluate(x, up);
+          x[k] = at - h;
+          const low = f.evaluate(x, down);
+          x[k] = at;
+          expect(Math.abs((high - low) / (2 * h) - gradient[k])).toBeLessThan(
+            1e-6 * (1 + Math.abs(gradient[k])),
+          );
+          for (let j = 0; j < f.dimension; j++) {
+            const difference = (up[j] - down[j]) / (2 * h);
+            expect(Math.abs(difference - curvature[k * f.dimension + j])).toBeLessThan(
+              1e-6 * (1 + Math.abs(difference)),
             );
-            for (let j = 0; j < f.dimension; j++) {
-              const difference = (up[j] - down[j]) / (2 * h);
-              expect(Math.abs(difference - curvature[k * f.dimension + j])).toBeLessThan(
-                1e-6 * (1 + Math.abs(difference)),
-              );
-            }
           }
-        },
-      ),
+        }
+      }),
       { numRuns: 60 },
     );
   });
@@ -235,92 +233,82 @@ describe("with everybody seen, recapture known to be 1", () => {
 
   test("value, gradient and information are those of a binomial regression in closed form (property)", () => {
     fc.assert(
-      fc.property(
-        fc.integer({ min: 1, max: 7 }),
-        fc.integer({ min: 1, max: 3 }),
-        fc.nat(1000),
-        (n, g, seed) => {
-          const frame = { ...frameOf(g, n, seed), lengths: new Float64Array(n).fill(1) };
-          const covariates = [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
-          const design = designOf(frame, covariateSurvival(frame, covariates), known);
-          const drawn = frame.strata.map((_, i) => binomial(n, 10 * seed + i));
-          const f = cjsLikelihood(
-            drawn.map((one) => one.data),
-            design,
-          );
-          const d = f.dimension;
-          const x = normals(d, seed + 20);
-          const gradient = new Float64Array(d);
-          const value = f.evaluate(x, gradient);
-          const information = new Float64Array(d * d);
-          f.curvature(
-            Int32Array.from({ length: d }, (_, k) => k),
-            information,
-          );
-          // −log L = Σ N log(1 + e^η) − yη; its gradient Xᵀ(Ns − y) and XᵀDX, D = N s(1 − s) (McCullagh & Nelder 1989, §4.4)
-          const { columns } = design.survival;
-          const [slope, curve] = [new Float64Array(d), new Float64Array(d * d)];
-          let expected = 0;
-          for (let r = 0; r < g * n; r++) {
-            const { alive, released } = drawn[Math.floor(r / n)];
-            const [y, N] = [alive[r % n], released[r % n]];
-            const eta = columns.reduce((sum, column, k) => sum + column[r] * x[k], 0);
-            const s = 1 / (1 + Math.exp(-eta));
-            expected += N * Math.log1p(Math.exp(eta)) - y * eta;
-            for (let i = 0; i < d; i++) {
-              slope[i] += columns[i][r] * (N * s - y);
-              for (let j = 0; j < d; j++) curve[i * d + j] += N * s * (1 - s) * columns[i][r] * columns[j][r];
-            }
+      fc.property(...SIZES, (n, g, seed) => {
+        const frame = { ...frameOf(g, n, seed), lengths: new Float64Array(n).fill(1) };
+        const covariates = [0, 1].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
+        const design = designOf(frame, covariateSurvival(frame, covariates), known);
+        const drawn = frame.strata.map((_, i) => binomial(n, 10 * seed + i));
+        const f = cjsLikelihood(
+          drawn.map((one) => one.data),
+          design,
+        );
+        const d = f.dimension;
+        const x = normals(d, seed + 20);
+        const gradient = new Float64Array(d);
+        const value = f.evaluate(x, gradient);
+        const information = new Float64Array(d * d);
+        f.curvature(
+          Int32Array.from({ length: d }, (_, k) => k),
+          information,
+        );
+        // −log L = Σ N log(1 + e^η) − yη; its gradient Xᵀ(Ns − y) and XᵀDX, D = N s(1 − s) (McCullagh & Nelder 1989, §4.4)
+        const { columns } = design.survival;
+        const [slope, curve] = [new Float64Array(d), new Float64Array(d * d)];
+        let expected = 0;
+        for (let r = 0; r < g * n; r++) {
+          const { alive, released } = drawn[Math.floor(r / n)];
+          const [y, N] = [alive[r % n], released[r % n]];
+          const eta = columns.reduce((sum, column, k) => sum + column[r] * x[k], 0);
+          const s = 1 / (1 + Math.exp(-eta));
+          expected += N * Math.log1p(Math.exp(eta)) - y * eta;
+          for (let i = 0; i < d; i++) {
+            slope[i] += columns[i][r] * (N * s - y);
+            for (let j = 0; j < d; j++) curve[i * d + j] += N * s * (1 - s) * columns[i][r] * columns[j][r];
           }
-          const scale = 1 + Math.abs(expected);
-          expect(Math.abs(value - expected)).toBeLessThan(1e-12 * scale);
-          for (let i = 0; i < d; i++) expect(Math.abs(gradient[i] - slope[i])).toBeLessThan(1e-11 * scale);
-          for (let i = 0; i < d * d; i++)
-            expect(Math.abs(information[i] - curve[i])).toBeLessThan(1e-11 * scale);
-        },
-      ),
+        }
+        const scale = 1 + Math.abs(expected);
+        expect(Math.abs(value - expected)).toBeLessThan(1e-12 * scale);
+        for (let i = 0; i < d; i++) expect(Math.abs(gradient[i] - slope[i])).toBeLessThan(1e-11 * scale);
+        for (let i = 0; i < d * d; i++)
+          expect(Math.abs(information[i] - curve[i])).toBeLessThan(1e-11 * scale);
+      }),
       { numRuns: 100 },
     );
   });
 
   test("the information agrees with differences of the gradient at any lengths, on any working set (property)", () => {
     fc.assert(
-      fc.property(
-        fc.integer({ min: 1, max: 7 }),
-        fc.integer({ min: 1, max: 3 }),
-        fc.nat(1000),
-        (n, g, seed) => {
-          const frame = frameOf(g, n, seed);
-          const covariates = [0, 1, 2].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
-          const design = designOf(frame, covariateSurvival(frame, covariates), known);
-          const f = cjsLikelihood(
-            frame.strata.map((_, i) => binomial(n, 10 * seed + i).data),
-            design,
-          );
-          const d = f.dimension;
-          const x = normals(d, seed + 20);
-          const which = Int32Array.from({ length: d }, (_, k) => k).filter(
-            (k) => (seed >> k) % 2 === 0 || k === 0,
-          );
-          const m = which.length;
-          const out = new Float64Array(m * m);
-          f.evaluate(x, new Float64Array(d));
-          f.curvature(which, out);
-          const h = 1e-5;
-          which.forEach((k, i) => {
-            const [up, down] = [Float64Array.from(x), Float64Array.from(x)];
-            const [above, below] = [new Float64Array(d), new Float64Array(d)];
-            up[k] += h;
-            down[k] -= h;
-            f.evaluate(up, above);
-            f.evaluate(down, below);
-            which.forEach((l, j) => {
-              const difference = (above[l] - below[l]) / (2 * h);
-              expect(Math.abs(out[i * m + j] - difference)).toBeLessThan(1e-6 * (1 + Math.abs(difference)));
-            });
+      fc.property(...SIZES, (n, g, seed) => {
+        const frame = frameOf(g, n, seed);
+        const covariates = [0, 1, 2].map((k) => ({ name: `x${k}`, values: normals(n, seed + 10 + k) }));
+        const design = designOf(frame, covariateSurvival(frame, covariates), known);
+        const f = cjsLikelihood(
+          frame.strata.map((_, i) => binomial(n, 10 * seed + i).data),
+          design,
+        );
+        const d = f.dimension;
+        const x = normals(d, seed + 20);
+        const which = Int32Array.from({ length: d }, (_, k) => k).filter(
+          (k) => (seed >> k) % 2 === 0 || k === 0,
+        );
+        const m = which.length;
+        const out = new Float64Array(m * m);
+        f.evaluate(x, new Float64Array(d));
+        f.curvature(which, out);
+        const h = 1e-5;
+        which.forEach((k, i) => {
+          const [up, down] = [Float64Array.from(x), Float64Array.from(x)];
+          const [above, below] = [new Float64Array(d), new Float64Array(d)];
+          up[k] += h;
+          down[k] -= h;
+          f.evaluate(up, above);
+          f.evaluate(down, below);
+          which.forEach((l, j) => {
+            const difference = (above[l] - below[l]) / (2 * h);
+            expect(Math.abs(out[i * m + j] - difference)).toBeLessThan(1e-6 * (1 + Math.abs(difference)));
           });
-        },
-      ),
+        });
+      }),
       { numRuns: 100 },
     );
   });

@@ -100,7 +100,7 @@ describe("findings", () => {
     expect(lines[4]).toBe("      a.csv:3: 1 day");
     expect(lines.filter((line) => line.includes("what to do: fill it"))).toHaveLength(1);
     expect(lines.join(" ").replace(/ +/g, " ")).toContain(long);
-    expect(lines.slice(-2)).toEqual(["fine  gap  1", "      2 days"]);
+    expect(lines.slice(-2)).toEqual(["accept  gap  1", "      2 days"]);
     for (const line of lines) expect(widthOf(line)).toBeLessThanOrEqual(80);
   });
 
