@@ -1,6 +1,7 @@
 import type { DuckDBConnection } from "@duckdb/node-api";
-import { parse } from "csv-parse/sync";
+import { CsvError, parse } from "csv-parse/sync";
 import type { Files } from "../effects/effects.ts";
+import { InputError } from "../errors.ts";
 import { literal, pathLiteral } from "./database.ts";
 import { BLANKS, type Dialect, decodeText, sniffDialect, splitLine } from "./dialect.ts";
 import { lineOfByte, physicalLines } from "./lines.ts";
@@ -171,7 +172,7 @@ async function loadDecoded(
   columns: RawColumns,
 ): Promise<LoadedTable> {
   const text = decodeText(await readWhole(files, file), dialect.encoding).replace(/^\uFEFF/, "");
-  return loadRecords(database, file, dialect, columns, recordsOf(text, dialect));
+  return loadRecords(database, file, dialect, columns, recordsOf(text, file, dialect));
 }
 
 interface TextRecord {
@@ -179,7 +180,7 @@ interface TextRecord {
   readonly line: number;
 }
 
-function recordsOf(text: string, dialect: Dialect): readonly TextRecord[] {
+function recordsOf(text: string, file: string, dialect: Dialect): readonly TextRecord[] {
   const { delimiter, skip, comment } = dialect;
   const remark = (first: string) => comment !== undefined && first.trimStart().startsWith(comment);
   if (delimiter === BLANKS)
@@ -188,18 +189,37 @@ function recordsOf(text: string, dialect: Dialect): readonly TextRecord[] {
       return [{ cells: splitLine(line, delimiter), line: i + 1 }];
     });
   const records: TextRecord[] = [];
-  parse(text, {
-    delimiter,
-    from_line: skip + 1,
-    skip_empty_lines: true,
-    relax_column_count: true,
-    on_record: (cells: string[], context) => {
-      // `context.lines` counts to the record's last line, so a quoted line break is taken off again.
-      const breaks = cells.reduce((sum, cell) => sum + cell.split(/\r\n|\n|\r/).length - 1, 0);
-      if (!remark(cells[0])) records.push({ cells, line: context.lines - breaks });
-      return null;
-    },
-  });
+  try {
+    parse(text, {
+      delimiter,
+      from_line: skip + 1,
+      skip_empty_lines: true,
+      relax_column_count: true,
+      // a mark within a cell is a letter, as the database's reader has it
+      relax_quotes: true,
+      on_record: (cells: string[], context) => {
+        // `context.lines` counts to the record's last line, so a quoted line break is taken off again.
+        const breaks = cells.reduce((sum, cell) => sum + cell.split(/\r\n|\n|\r/).length - 1, 0);
+        if (!remark(cells[0])) records.push({ cells, line: context.lines - breaks });
+        return null;
+      },
+    });
+  } catch (error) {
+    if (!(error instanceof CsvError)) throw error;
+    throw new InputError(
+      {
+        name: "table.malformed",
+        expected: "quotation marks in pairs",
+        found:
+          error.code === "CSV_QUOTE_NOT_CLOSED"
+            ? "a quotation mark that is never closed, here or below"
+            : `a slip: ${error.message}`,
+        where: { file, line: (records.at(-1)?.line ?? skip) + 1 },
+        remedy: "close it, or take it away",
+      },
+      error,
+    );
+  }
   return records;
 }
 

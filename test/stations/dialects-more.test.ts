@@ -150,6 +150,34 @@ const CASES: readonly Case[] = [
     findings: [],
   },
   {
+    name: "a quotation mark within a cell, the same in UTF-8",
+    files: { "a.csv": 'site,day,rain\nÄsch,2001-01-01,1\nÄsch"4,2001-01-02\nÄsch,2001-01-03,3\n' },
+    rows: ["Äsch 2001-01-01 1", "Äsch 2001-01-03 3"],
+    findings: ['bad-value a.csv:3 1 Äsch"4,2001-01-02', "gap a.csv:2 1 2001-01-02"],
+  },
+  {
+    name: "a quotation mark within a cell, the same in Latin-1",
+    files: {
+      "a.csv": iconv.encode(
+        'site,day,rain\nÄsch,2001-01-01,1\nÄsch"4,2001-01-02\nÄsch,2001-01-03,3\n',
+        "latin1",
+      ),
+    },
+    rows: ["Äsch 2001-01-01 1", "Äsch 2001-01-03 3"],
+    findings: ['bad-value a.csv:3 1 Äsch"4,2001-01-02', "gap a.csv:2 1 2001-01-02"],
+  },
+  {
+    name: "a quotation mark that is never closed, in Latin-1",
+    files: {
+      "a.csv": iconv.encode(
+        'site,day,rain\nÄsch,2001-01-01,1\n"Äsch,2001-01-02,2\nÄsch,2001-01-03,3\n',
+        "latin1",
+      ),
+    },
+    error:
+      "a.csv:3: expected quotation marks in pairs, found a quotation mark that is never closed, here or below; close it, or take it away",
+  },
+  {
     name: "no comment, though a station's name begins with the mark",
     files: { "a.csv": "site,day,rain\n#1,2001-01-01,1\n#1,2001-01-02,2\n" },
     options: long({ table: { comment: "none" } }),
