@@ -1,5 +1,6 @@
 import { addMonths, civil, type Day, dayOf } from "../data/day.ts";
 import type { Period } from "../data/period.ts";
+import { countText } from "../data/words.ts";
 import type { Completeness } from "./options.ts";
 import { cut, type Slice } from "./slice.ts";
 import type { Family } from "./statistic.ts";
@@ -40,10 +41,6 @@ function shareText(covered: number, due: number): string {
   return String(Math.floor((covered / due) * 1000) / 1000);
 }
 
-function days(count: number): string {
-  return count === 1 ? "1 day" : `${count} days`;
-}
-
 function isMonthStart(day: Day): boolean {
   return civil(day).day === 1;
 }
@@ -70,7 +67,7 @@ function badMonth(slice: Slice, rule: MonthRule): string | undefined {
     const missing = due - covered;
     const { year, month } = civil(part.start);
     const name = `${monthName(month)} ${year}`;
-    if (covered === 0) return `${name}: none of ${days(due)} covered`;
+    if (covered === 0) return `${name}: none of ${countText(due, "day")} covered`;
     if (missing >= rule.missing)
       return `${name}: ${missing} of ${due} days missing (${rule.missing} or more)`;
     if (longestGap >= rule.inARow)
@@ -83,7 +80,9 @@ function judgeShare(slice: Slice, share: number, scaled: boolean): Verdict {
   const { covered, due } = slice;
   // Cross-multiplied, with a slack far below one day, so that 0.95 of 120 days is 114 days and not 115.
   if (covered < share * due - 1e-9)
-    return fail(`${shareText(covered, due)} of ${days(due)} covered (a share of ${share} needed)`);
+    return fail(
+      `${shareText(covered, due)} of ${countText(due, "day")} covered (a share of ${share} needed)`,
+    );
   return pass(scaled ? due / covered : 1);
 }
 
@@ -108,19 +107,23 @@ export function judge(
 ): Verdict {
   const { due, covered, longestGap } = slice;
   const missing = due - covered;
-  if (slice.observed === 0) return fail(`none of ${days(due)} covered`);
+  if (slice.observed === 0) return fail(`none of ${countText(due, "day")} covered`);
   if (family === "daily") {
     if (!slice.daily) return fail("needs daily values, found longer ones");
     if (rule.type === "share" && allowed === undefined) return judgeShare(slice, rule.share, false);
     if (missing > (allowed ?? 0))
-      return fail(`${missing} of ${days(due)} missing (${allowed === undefined ? "none" : allowed} allowed)`);
+      return fail(
+        `${missing} of ${countText(due, "day")} missing (${allowed === undefined ? "none" : allowed} allowed)`,
+      );
     return pass();
   }
   if (missing === 0) return pass();
   if (rule.type === "share") return judgeShare(slice, rule.share, family === "sum");
-  if (family === "sum") return fail(`${missing} of ${days(due)} missing (a sum needs all days)`);
+  if (family === "sum") return fail(`${missing} of ${countText(due, "day")} missing (a sum needs all days)`);
   if (!slice.daily)
-    return fail(`${missing} of ${days(due)} missing (values longer than a day must cover the window)`);
+    return fail(
+      `${missing} of ${countText(due, "day")} missing (values longer than a day must cover the window)`,
+    );
   const month = MONTH_RULES[rule.type];
   if (byMonths || isWholeMonths(slice.period)) {
     const bad = badMonth(slice, month);

@@ -1,3 +1,4 @@
+import { intervalWords } from "../data/occasion.ts";
 import { loadPipeline } from "../pipeline/load.ts";
 import { type Plan, planRun } from "../pipeline/plan.ts";
 import { findingLines, wholeFindingLines } from "../terminal/findings.ts";
@@ -41,7 +42,7 @@ export async function checkCommand(
   const captures = plan.ingested.captures;
   return [
     style.strong(loaded.spec.study.title),
-    `${plan.ingested.occasions.length} occasions, ${plan.ingested.intervals.length} intervals` +
+    `${plan.ingested.occasions.length} occasions, ${intervalWords(plan.ingested.occasions.length - 1, plan.ingested.intervals.length)}` +
       (captures === undefined
         ? ", no captures: only the covariate set is built"
         : `, ${captures.counts.length === 1 ? "1 stratum" : `${captures.counts.length} strata`}`),

@@ -91,7 +91,7 @@ function sections(done: Executed): SummarySection[] {
   const { study, ingested } = done;
   const captures = ingested.captures;
   const read: [string, string][] = [
-    ["intervals", String(study.intervals.length)],
+    ["intervals", intervalCounts(ingested.occasions.length - 1, study.intervals.length)],
     ["covariates", `${study.matrix.names.length} in the matrix, ${study.leftOut.length} left out`],
   ];
   if (captures !== undefined && Number.isFinite(captures.animals))
@@ -112,6 +112,11 @@ function sections(done: Executed): SummarySection[] {
   if (study.screened !== undefined)
     out.push({ title: "found", rows: foundRows(study.screened, study.comparison?.verdict) });
   return out;
+}
+
+/** `20`; where some are split into years, `19, cut into 20 years`. */
+function intervalCounts(between: number, parts: number): string {
+  return parts === between ? String(between) : `${between}, cut into ${parts} years`;
 }
 
 /** The answer in lines short enough for a terminal; the page has the sentences. */

@@ -1,3 +1,4 @@
+import { intervalWords } from "../data/occasion.ts";
 import { listWords } from "../data/words.ts";
 import type { ScreenResult } from "../screen/screen.ts";
 import type { Agreement } from "./agreement.ts";
@@ -67,10 +68,9 @@ function gradeOf(screened: ScreenResult): Grade {
  * Whether more circular shifts of the years do as well than one of twenty (of n where there are fewer intervals): shifts keep
  * the memory of covariates and survival, so a choice that memory alone brings about is reached by others of them.
  */
-function runsOn({ names, byYears, intervalFit, shifts }: ScreenResult): boolean {
+function runsOn({ names, byYears, intervals, shifts }: ScreenResult): boolean {
   if (shifts === undefined || (names.length === 1 && byYears.names.length === 1)) return false;
-  const intervals = new Set(intervalFit.survival.map((one) => one.interval)).size;
-  return shifts > Math.max(0.05, 1 / intervals) + 1e-9;
+  return shifts > Math.max(0.05, 1 / intervals.parts) + 1e-9;
 }
 
 function unsettled({ randomIntervals }: ScreenResult): boolean {
@@ -102,8 +102,7 @@ export function verdict(screened: ScreenResult, agreed: Agreement): Verdict {
 
 function headline(screened: ScreenResult, grade: Grade): string {
   const { byYears, permutation } = screened;
-  const strata = new Set(screened.intervalFit.survival.map((one) => one.stratum)).size;
-  const years = `${screened.intervalFit.survival.length / strata} intervals`;
+  const years = intervalWords(screened.intervals.between, screened.intervals.parts);
   if (byYears.names.length === 0)
     return `Counting years, no covariate stands: over ${years}, none of the ${screened.names.length} candidates accounts for the differences in apparent annual survival better than chance would.`;
   const chosen = chosenWords(screened);

@@ -1,5 +1,6 @@
 import { type CsvError, parse } from "csv-parse/sync";
 import { InputError } from "../errors.ts";
+import { countText } from "./words.ts";
 
 /** A small table of text cells with the true line of every row. For large station files see the stations room. */
 export interface TextTable {
@@ -43,12 +44,11 @@ export function readCsv(text: string, file: string): TextTable {
     const { code, lines: told, record, message } = error as CsvError;
     // The library finds an open quote at the file's end; it stands in the record after the last good one.
     const at = code === "CSV_QUOTE_NOT_CLOSED" || typeof told !== "number" ? line + 1 : told;
-    const cells = (count: number) => (count === 1 ? "1 cell" : `${count} cells`);
     const found =
       code === "CSV_QUOTE_NOT_CLOSED"
         ? "a quotation mark that is never closed, here or below"
         : code === "CSV_RECORD_INCONSISTENT_FIELDS_LENGTH" && Array.isArray(record)
-          ? `${cells(record.length)} where the header has ${rows[0].cells.length}`
+          ? `${countText(record.length, "cell")} where the header has ${rows[0].cells.length}`
           : `a slip: ${message}`;
     throw new InputError(
       {

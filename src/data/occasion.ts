@@ -1,4 +1,5 @@
 import type { Day } from "./day.ts";
+import { countText } from "./words.ts";
 
 /** A sampling occasion: first and last day, both included. */
 export interface Occasion {
@@ -22,4 +23,10 @@ export interface Interval {
   readonly end: Day;
   /** Length Δ in years. */
   readonly length: number;
+}
+
+/** `20 intervals`; where some are split into years, `19 intervals, cut into 20 years`. */
+export function intervalWords(between: number, parts: number): string {
+  const intervals = countText(between, "interval");
+  return parts === between ? intervals : `${intervals}, cut into ${countText(parts, "year")}`;
 }

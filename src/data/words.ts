@@ -5,6 +5,11 @@ export function listWords(names: readonly string[]): string {
   return `${names.slice(0, -1).join(", ")} and ${names[names.length - 1]}`;
 }
 
+/** `1 day`, `3 days`. */
+export function countText(n: number, noun: string): string {
+  return `${n} ${noun}${n === 1 ? "" : "s"}`;
+}
+
 /** Above this an inflation or condition number says only that nothing is left to tell apart. */
 const MILLION = 1e6;
 

@@ -93,6 +93,7 @@ function facts(input: ReportInput, cast: Cast): Html {
   const fact = (text: string, rest: string) => html`<li><b>${text}</b>${rest}</li>`;
   const first = input.occasions[0];
   const last = input.occasions[input.occasions.length - 1];
+  const byStratum = input.matrix.byStratum?.length ?? 0;
   return html`<ul class="facts">${[
     first !== undefined && last !== undefined
       ? fact(counted(input.occasions.length, "occasion"), `, ${first.name} to ${last.name}`)
@@ -100,7 +101,7 @@ function facts(input: ReportInput, cast: Cast): Html {
     Number.isFinite(input.animals) ? fact(counted(input.animals, "animal"), "") : html``,
     screened !== undefined ? fact(counted(screened.releases, "release"), "") : html``,
     fact(
-      `${whole(input.matrix.names.length)} of ${counted(cast.members.length, "covariate")}`,
+      `${whole(input.matrix.names.length + byStratum)} of ${counted(cast.members.length, "covariate")}`,
       ` in the matrix: ${listWords(cast.themes.map((one) => one.name))}`,
     ),
   ]}</ul>`;

@@ -43,6 +43,8 @@ export interface RefittedSet {
 export interface ScreenResult {
   readonly options: ScreenOptions;
   readonly names: readonly string[];
+  /** Intervals between occasions, and the parts with a survival of their own: as many, or more where some are split into years. */
+  readonly intervals: { readonly between: number; readonly parts: number };
   readonly sampleSize: number;
   readonly releases: number;
   readonly constantFit: Fit;
@@ -165,6 +167,7 @@ export async function screen(
   const result: ScreenResult = {
     options,
     names,
+    intervals: { between: occasionIntervals(problem.frame), parts: problem.frame.intervals },
     sampleSize: setting.sampleSize,
     releases: totalReleases(problem.data),
     constantFit,

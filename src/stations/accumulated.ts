@@ -1,5 +1,6 @@
 import { isoDay } from "../data/day.ts";
-import { countText, type DraftFinding } from "./block.ts";
+import { countText } from "../data/words.ts";
+import type { DraftFinding } from "./block.ts";
 import type { AccumulatedRule } from "./options.ts";
 
 /** A total over more days than this is not spread but dropped: it says too little of each. Common practice, no source. */

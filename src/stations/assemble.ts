@@ -1,11 +1,11 @@
 import { isoDay } from "../data/day.ts";
 import type { Series } from "../data/series.ts";
+import { countText } from "../data/words.ts";
 import { InputError } from "../errors.ts";
 import { settleAccumulated } from "./accumulated.ts";
 import {
   type Block,
   type Cover,
-  countText,
   type DraftFinding,
   NO_DAY,
   placeOf,

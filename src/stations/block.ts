@@ -87,8 +87,3 @@ export async function placeFindings(
     return { ...finding, where: line === undefined ? where : { ...where, line } };
   });
 }
-
-/** `1 day`, `3 days`. */
-export function countText(n: number, noun: string): string {
-  return `${n} ${noun}${n === 1 ? "" : "s"}`;
-}

@@ -1,6 +1,7 @@
 import { isoDay } from "../data/day.ts";
+import { countText } from "../data/words.ts";
 import { refOf, type TracedSeries } from "./assemble.ts";
-import { countText, type DraftFinding } from "./block.ts";
+import type { DraftFinding } from "./block.ts";
 import { convertUnit, isTemperature } from "./units.ts";
 
 /**

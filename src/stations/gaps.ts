@@ -1,7 +1,8 @@
 import { isoDay } from "../data/day.ts";
 import { periodText } from "../data/period.ts";
+import { countText } from "../data/words.ts";
 import { refOf, type TracedSeries } from "./assemble.ts";
-import { countText, type DraftFinding } from "./block.ts";
+import type { DraftFinding } from "./block.ts";
 import { periodsBetween } from "./dates.ts";
 
 /** A run of missing periods between two observations, [start, end). */
@@ -54,7 +55,7 @@ export function gapFindings(traced: TracedSeries): readonly DraftFinding[] {
   const longest = gaps.reduce((best, gap) => (gap.missing > best.missing ? gap : best));
   const missing = gaps.reduce((sum, gap) => sum + gap.missing, 0);
   const last = series.values.findLastIndex((value) => !Number.isNaN(value));
-  const runs = gaps.length === 1 ? "1 run" : `${gaps.length} runs`;
+  const runs = countText(gaps.length, "run");
   const span = periodText({ start: series.starts[first], end: series.ends[last] });
   return [
     {

@@ -1,5 +1,6 @@
 import type { Site } from "../data/series.ts";
-import { type Block, countText, type DraftFinding, NO_DAY, type RowRef } from "./block.ts";
+import { countText } from "../data/words.ts";
+import { type Block, type DraftFinding, NO_DAY, type RowRef } from "./block.ts";
 
 /** Station ids of the records that the list does not hold, and rows without any id; one finding each. */
 export function unknownStations(

@@ -1,5 +1,6 @@
 import type { Site } from "../data/series.ts";
-import { countText, type DraftFinding, type RowRef } from "./block.ts";
+import { countText } from "../data/words.ts";
+import type { DraftFinding, RowRef } from "./block.ts";
 
 /** Degrees by which coordinates must differ (about 100 m) to be another place; less is rounding. */
 const SAME_PLACE = 0.001;

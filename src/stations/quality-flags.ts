@@ -1,4 +1,5 @@
-import { countText, type DraftFinding, NO_DAY } from "./block.ts";
+import { countText } from "../data/words.ts";
+import { type DraftFinding, NO_DAY } from "./block.ts";
 import type { SeriesColumn } from "./options.ts";
 import type { CodedColumn } from "./read-columns.ts";
 

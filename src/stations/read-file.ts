@@ -1,9 +1,9 @@
 import type { DuckDBConnection } from "@duckdb/node-api";
+import { countText } from "../data/words.ts";
 import type { Files } from "../effects/effects.ts";
 import { InputError } from "../errors.ts";
 import {
   type Block,
-  countText,
   type DraftFinding,
   NO_DAY,
   type Source,

@@ -1,6 +1,7 @@
 import { isoDay } from "../data/day.ts";
 import type { ValueKind } from "../data/series.ts";
-import { type Block, countText, type DraftFinding, NO_DAY, type RowRef, stationAt } from "./block.ts";
+import { countText } from "../data/words.ts";
+import { type Block, type DraftFinding, NO_DAY, type RowRef, stationAt } from "./block.ts";
 import { suspectUnit } from "./suspect-unit.ts";
 import { convertUnit, isTemperature, sameDimension } from "./units.ts";
 

@@ -39,8 +39,7 @@ export async function readReadyMade(
     if (t < 0)
       throw cellError(table, row, key, {
         name: "study.unknown-interval",
-        expected: `the name of an interval, from ${quoted(intervals[0])} to ${quoted(intervals.at(-1))}`,
-        remedy: "name the interval by its two occasions, or take the row out",
+        ...intervalAdvice(cells[key], intervals),
       });
     if (before !== undefined)
       throw cellError(table, row, key, {
@@ -75,6 +74,21 @@ export async function readReadyMade(
       values: values[k],
     })),
     findings,
+  };
+}
+
+/** What to write instead. An interval that is split into years is not one of them, but its years are. */
+function intervalAdvice(found: string, intervals: readonly Interval[]) {
+  const years = intervals.filter((one) => one.name.startsWith(`${found}, year `));
+  if (found !== "" && years.length > 0)
+    return {
+      expected: `a row for each of its years: ${years.map(quoted).join(" and ")}`,
+      remedy:
+        "survival.split cuts this interval into years; name each year so and give it a value of its own",
+    };
+  return {
+    expected: `the name of an interval, from ${quoted(intervals[0])} to ${quoted(intervals.at(-1))}`,
+    remedy: "name the interval by its two occasions, or take the row out",
   };
 }
 

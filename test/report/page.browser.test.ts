@@ -19,6 +19,10 @@ const FOCUSED = `(() => {
   return one.tagName + " " + (one.getAttribute("href") || "") + " " + getComputedStyle(one).outlineStyle;
 })()`;
 const AXE = readFileSync(createRequire(import.meta.url).resolve("axe-core/axe.min.js"), "utf8");
+/** Milliseconds that a busy machine may take for one step; a page that does not answer at all still ends the test. */
+const SLOWEST = 120_000;
+/** Asks again until the page has drawn what a key or the pointer brought about. */
+const settled = <T>(ask: () => Promise<T>) => expect.poll(ask, { timeout: SLOWEST });
 /** Markup, the end of a script, and a mark that turns the direction of writing. */
 const HOSTILE = `<img src=x onerror="document.title='broken in'"></script>\u202e`;
 
@@ -70,6 +74,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
 
   async function open(width: number, where = address, script = true): Promise<Page> {
     const context = await browser.newContext({ viewport: { width, height: 900 }, javaScriptEnabled: script });
+    context.setDefaultTimeout(SLOWEST);
     const page = await context.newPage();
     page.on("console", (message) => said.push(message.text()));
     page.on("pageerror", (error) => said.push(error.message));
@@ -92,7 +97,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     const first = page.locator("#inputs td .cov[role=button]").first();
     await first.focus();
     const index = await first.getAttribute("data-covariate");
-    expect(await page.locator("body.lit").count()).toBe(1);
+    await settled(() => page.locator("body.lit").count()).toBe(1);
     const lit = await page.locator(`[data-covariate="${index}"].on`).count();
     expect(lit).toBe(await page.locator(`[data-covariate="${index}"]`).count());
     expect(
@@ -103,11 +108,11 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
         .count(),
     ).toBeGreaterThan(1);
     await page.keyboard.press("Enter");
-    expect(await first.getAttribute("aria-pressed")).toBe("true");
+    await settled(() => first.getAttribute("aria-pressed")).toBe("true");
     await page.locator("h1").hover();
     expect(await page.locator("body.lit").count()).toBe(1);
     await page.keyboard.press("Escape");
-    expect(await page.locator("body.lit").count()).toBe(0);
+    await settled(() => page.locator("body.lit").count()).toBe(0);
     await page.context().close();
   });
 
@@ -116,6 +121,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     const name = page.locator("#inputs td .cov[role=button]").first();
     const index = await name.getAttribute("data-covariate");
     await name.hover();
+    await settled(() => page.locator("body.lit").count()).toBe(1);
     for (const place of ["coefficient-paths", "covariate-values", "observed-series", "time-ribbon", "map"]) {
       const lit = page.locator(
         `#figure-${place} [data-covariate="${index}"].on, #figure-${place} [data-covariates~="${index}"].on`,
@@ -143,10 +149,10 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     expect(await seen()).toEqual([true, false, false]);
     await page.locator("#survival fieldset input").first().focus();
     await page.keyboard.press("ArrowRight");
-    expect(await seen()).toEqual([false, true, true]);
+    await settled(seen).toEqual([false, true, true]);
     expect(await page.locator("#screen fieldset input[value=animals]").isChecked()).toBe(true);
     await page.emulateMedia({ media: "print" });
-    expect(await seen()).toEqual([true, true, true]);
+    await settled(seen).toEqual([true, true, true]);
     expect(await page.locator("fieldset").first().isVisible()).toBe(false);
     expect(await page.locator("#figure-correlation-detrended").isVisible()).toBe(true);
     await page.context().close();
@@ -172,12 +178,12 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     const before = await page.locator(".walk output").textContent();
     await range.focus();
     await page.keyboard.press("Home");
-    expect(await page.locator(".walk output").textContent()).toContain("no covariate stands");
+    await settled(() => page.locator(".walk output").textContent()).toContain("no covariate stands");
     expect(before).toContain("(chosen)");
     expect(await page.locator(".walk .stands").count()).toBe(0);
     const flat = await page.locator(".walk svg[role=img] path").last().getAttribute("d");
     await page.keyboard.press("End");
-    expect(await page.locator(".walk .stands").count()).toBeGreaterThan(2);
+    await settled(() => page.locator(".walk .stands").count()).toBeGreaterThan(2);
     expect(await page.locator(".walk svg[role=img] path").last().getAttribute("d")).not.toBe(flat);
     expect(await page.locator(".walk svg[role=img]").first().getAttribute("aria-label")).toMatch(
       /from 0?\.?\d+ to 0?\.?\d+/,
@@ -187,10 +193,10 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
       await page.locator("#figure-criterion [stroke-dasharray='3 3']").getAttribute("transform"),
     ).toMatch(/^translate\(700,/);
     await page.getByLabel("Show", { exact: false }).and(page.locator("select")).selectOption("duplicate");
-    expect(await page.locator(".findings > details:visible").count()).toBe(1);
+    await settled(() => page.locator(".findings > details:visible").count()).toBe(1);
     await page.getByLabel("Show", { exact: false }).and(page.locator("select")).selectOption("");
     await page.getByLabel("Severity").selectOption("accept");
-    expect(await page.locator(".findings .severity.warn:visible").count()).toBe(0);
+    await settled(() => page.locator(".findings .severity.warn:visible").count()).toBe(0);
     expect(await page.locator("#findings output").textContent()).toBe(
       `${await page.locator(".findings .severity.accept").count()} shown`,
     );
@@ -204,7 +210,9 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
     );
     await page.locator("#record summary").nth(1).click();
     await page.locator("#record button.copy").first().click();
-    const rows = (await page.evaluate<string>("document.body.dataset.copied")).trim().split("\r\n");
+    const copied = () => page.evaluate<string | undefined>("document.body.dataset.copied");
+    await settled(copied).toBeTypeOf("string");
+    const rows = (await copied())?.trim().split("\r\n") ?? [];
     expect(rows).toHaveLength(21);
     const cells = rows[1].split(",");
     expect(cells[1]).toMatch(/^-?\d+\.\d{6,}$/);
@@ -214,13 +222,14 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
   test.each([
     ["light", 1400],
     ["dark", 420],
-  ] as const)("axe finds nothing, %s at %d pixels", { timeout: 240_000 }, async (colorScheme, width) => {
+  ] as const)("axe finds nothing, %s at %d pixels", async (colorScheme, width) => {
     const context = await browser.newContext({
       viewport: { width, height: 900 },
       colorScheme,
       // only so that the checker itself can be put into the page
       bypassCSP: true,
     });
+    context.setDefaultTimeout(SLOWEST);
     const page = await context.newPage();
     await page.goto(address);
     await page.evaluate(

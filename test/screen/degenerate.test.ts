@@ -179,9 +179,9 @@ describe("degenerate data through the screen", () => {
     }
   });
 
+  // Minutes before the starts were kept sparse; the limit below only stops a hang.
   test("300 covariates over 20 intervals: certified, at most as many at a time as there are intervals", async () => {
     const { problem } = drawStudy(9, { intervals: 20, covariates: 1, marked: 30, residual: 0.1 }, [-0.8]);
-    const before = performance.now();
     const { result } = await screened(
       problem.data,
       [...problem.covariates, ...columns(20, 299)],
@@ -193,7 +193,5 @@ describe("degenerate data through the screen", () => {
     expect(Math.max(...result.path.steps.map((step) => step.active.length))).toBeLessThan(20);
     expect(result.byYears.names.length).toBeLessThanOrEqual(6);
     expect(result.starts.agree).toBeGreaterThan(0);
-    // minutes before the starts were kept sparse; no measure of speed, only that it ends
-    expect(performance.now() - before).toBeLessThan(60_000);
   }, 300_000);
 });

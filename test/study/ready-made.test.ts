@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import { intervalsBetween } from "../../src/study/occasions.ts";
 import { readReadyMade } from "../../src/study/ready-made.ts";
+import { splitIntervals } from "../../src/study/split-years.ts";
 import { errorOf, inMemory, lines, yearly } from "./support.ts";
 
 const INTERVALS = intervalsBetween(yearly(4), "exact");
@@ -62,5 +63,26 @@ describe("ready-made values", () => {
     ],
   ])("%s", async (name, rows, message) => {
     expect(await errorOf(read(HEAD, rows))).toEqual({ name, message });
+  });
+
+  test("an interval that is split into years stands year by year, and a row of the whole says how", async () => {
+    const years = splitIntervals(intervalsBetween(yearly(4).toSpliced(1, 1), "whole years")).years;
+    const of = (...rows: readonly string[]) =>
+      readReadyMade(
+        { file: "v.csv", interval: "interval", columns: { flood: { unit: "1" } } },
+        years,
+        inMemory({ "v.csv": lines("interval,flood", ...rows) }),
+      );
+    const { columns } = await of(
+      '"2001 to 2003, year 1 of 2",1',
+      '"2001 to 2003, year 2 of 2",2',
+      "2003 to 2004,3",
+    );
+    expect(columns[0].values).toEqual(Float64Array.of(1, 2, 3));
+    expect(await errorOf(of("2001 to 2003,1"))).toEqual({
+      name: "study.unknown-interval",
+      message:
+        'v.csv:2:1 (interval): expected a row for each of its years: "2001 to 2003, year 1 of 2" and "2001 to 2003, year 2 of 2", found "2001 to 2003"; survival.split cuts this interval into years; name each year so and give it a value of its own',
+    });
   });
 });

@@ -4,7 +4,8 @@
 import { spawn } from "node:child_process";
 import { mkdtempSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
-import { join } from "node:path";
+import { join, relative } from "node:path";
+import { stripVTControlCharacters } from "node:util";
 
 const ZONES = ["UTC", "America/Edmonton", "Pacific/Chatham"];
 /** Tests of whole runs, processes, signals and the browser: slow, and the zone reaches them through the same code as the rest. */
@@ -33,6 +34,25 @@ let passed = 0;
 let failed = 0;
 let skipped = 0;
 let broken = false;
+/** What failed, told once more at the very end: of a long log often only its last lines are kept. */
+const failures = [];
+
+/** Each failed test, or file that could not be loaded, with the first lines of its message. */
+function failuresOf(zone, result) {
+  const whatFailed = (path, name, message) => {
+    const told = stripVTControlCharacters(message ?? "")
+      .split("\n")
+      .slice(0, 6)
+      .join("\n  ");
+    return `${zone}  ${relative(process.cwd(), path)}  ${name}\n  ${told}`;
+  };
+  return result.testResults.flatMap((file) => {
+    const tests = file.assertionResults.filter(({ status }) => status === "failed");
+    if (tests.length === 0 && file.status === "failed")
+      return [whatFailed(file.name, "(the file)", file.message)];
+    return tests.map((one) => whatFailed(file.name, one.fullName, one.failureMessages[0]));
+  });
+}
 
 for (const [i, zone] of ZONES.entries()) {
   const report = join(folder, `${i}.json`);
@@ -56,10 +76,12 @@ for (const [i, zone] of ZONES.entries()) {
     passed += result.numPassedTests;
     failed += result.numFailedTests;
     skipped += result.numPendingTests;
+    failures.push(...failuresOf(zone, result));
   } catch {
     broken = true;
   }
 }
 rmSync(folder, { recursive: true, force: true });
+for (const failure of failures) console.log(`\n${failure}`);
 console.log(`\n${passed} passed, ${failed} failed, ${skipped} skipped`);
 process.exitCode = broken || failed > 0 || passed === 0 ? 1 : 0;

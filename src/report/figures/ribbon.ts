@@ -1,4 +1,5 @@
 import type { IntervalCovariate } from "../../aggregate/result.ts";
+import { intervalWords } from "../../data/occasion.ts";
 import { periodText } from "../../data/period.ts";
 import { listWords } from "../../data/words.ts";
 import type { Cast } from "../cast.ts";
@@ -33,14 +34,15 @@ export function ribbon(input: ReportInput, cast: Cast, size: Size): Figure | und
     band(input, axis, bandY),
     rows.map((row, r) => rowOf(input, cast, axis, row, rowsY + r * ROW)),
   ].map((piece) => html`${piece.map((one) => one as Html | undefined)}`);
-  const says = `${counted(input.occasions.length, "occasion")}, ${counted(input.intervals.length, "interval")} from ${input.occasions[0]?.name ?? "the first"} to ${input.occasions.at(-1)?.name ?? "the last"}, ${counted(rows.length, "row")} of windows for ${counted(input.covariates.length, "covariate")}${catchWords(input)}`;
+  const says = `${counted(input.occasions.length, "occasion")}, ${intervalWords(input.occasions.length - 1, input.intervals.length)} from ${input.occasions[0]?.name ?? "the first"} to ${input.occasions.at(-1)?.name ?? "the last"}, ${counted(rows.length, "row")} of windows for ${counted(input.covariates.length, "covariate")}${catchWords(input)}`;
+  const split = input.intervals.length > input.occasions.length - 1;
   const rest = axis.dated
     ? "Each row shows, within each interval, the days a covariate looks at; neighbours that overlap are set one above the other. A hollow bar is a window whose value is missing; a lone marker is a value that came ready-made, without a window."
     : "The occasions carry no dates, so they stand in their order and windows cannot be drawn: a marker says that the interval has a value, a cross that it has none.";
   return {
     name: "time-ribbon",
     title: "The time ribbon",
-    caption: `${input.caught.length > 0 ? "Above: animals caught at each occasion, newly marked (solid) and seen again (open). " : ""}The band is the run of intervals, each from one occasion to the next. ${rest}${derived(cast, input)}`,
+    caption: `${input.caught.length > 0 ? "Above: animals caught at each occasion, newly marked (solid) and seen again (open). " : ""}The band is the run of intervals, each from one occasion to the next${split ? ", longer ones cut into years" : ""}. ${rest}${derived(cast, input)}`,
     svg: drawing(size.width, height, "The time ribbon", says, body),
   };
 }

@@ -1,4 +1,5 @@
 import { isoDay } from "../../data/day.ts";
+import { intervalWords } from "../../data/occasion.ts";
 import type { Cast } from "../cast.ts";
 import { unitText } from "../cast.ts";
 import type { Figure } from "../figure.ts";
@@ -26,7 +27,7 @@ export function timeSection(input: ReportInput, figures: readonly Figure[]): Sec
   return {
     id: "time",
     title: "Time",
-    body: html`<p>${counted(input.occasions.length, "occasion")} with ${counted(input.intervals.length, "interval")} between them, ${equal}.${dates} Survival is always per year.</p>${figureBlock(figures, "time-ribbon")}`,
+    body: html`<p>${counted(input.occasions.length, "occasion")} and between them ${intervalWords(input.occasions.length - 1, input.intervals.length)}, ${equal}.${dates} Survival is always per year.</p>${figureBlock(figures, "time-ribbon")}`,
   };
 }
 
@@ -52,6 +53,7 @@ export function whereSection(input: ReportInput, figures: readonly Figure[]): Se
 /** Every candidate with its definition and range; the index by which a covariate is found everywhere. */
 export function inputsSection(input: ReportInput, cast: Cast, figures: readonly Figure[]): Section {
   const entered = new Set(input.matrix.names);
+  const byStratum = input.matrix.byStratum?.length ?? 0;
   const rows = cast.members.map((member) => {
     const apart = input.matrix.byStratum?.find((one) => one.recipe.name === member.name);
     const partOf = input.matrix.byStratum?.find((one) => one.parts.includes(member.name));
@@ -89,7 +91,7 @@ export function inputsSection(input: ReportInput, cast: Cast, figures: readonly 
   return {
     id: "inputs",
     title: "What went in",
-    body: html`<p>${counted(cast.members.length, "candidate covariate")} in ${counted(cast.themes.length, "theme")}; ${counted(entered.size, "one", "of them")} ${entered.size === 1 ? "stands" : "stand"} in the matrix, ${counted(input.leftOut.length, "was", "were")} left out.${windows.length > 0 && ` Of ${windows.length} windows ${full} (${percent(full / windows.length)}) were observed in full.`}</p>
+    body: html`<p>${counted(cast.members.length, "candidate covariate")} in ${counted(cast.themes.length, "theme")}; ${counted(entered.size, "one", "of them")} ${entered.size === 1 ? "stands" : "stand"} in the matrix${byStratum > 0 && `, ${counted(byStratum, "is", "are")} put together from others by stratum`}, ${counted(input.leftOut.length, "was", "were")} left out.${windows.length > 0 && ` Of ${windows.length} windows ${full} (${percent(full / windows.length)}) were observed in full.`}</p>
 <ul class="themes">${cast.themes.map((theme) => html`<li><span class="cov">${themeMark(theme)}${theme.name}</span></li>`)}</ul>
 ${grid(cast, "The candidates", [{ text: "covariate" }, { text: "theme" }, { text: "definition", look: "w" }, { text: "unit" }, { text: "intervals with a value", look: "n" }, { text: "mean", look: "n" }, { text: "range", look: "n" }, { text: "in the matrix", look: "w" }], rows)}
 ${figureBlock(figures, "covariate-values")}${figureBlock(figures, "observed-series")}${figureBlock(figures, "completeness")}${qualityBlock(input, cast)}`,
