@@ -1,4 +1,5 @@
 import { isAbsolute, relative, resolve } from "node:path";
+import { intervalWords } from "../data/occasion.ts";
 import { listWords } from "../data/words.ts";
 import { InputError } from "../errors.ts";
 import { loadPipeline } from "../pipeline/load.ts";
@@ -68,7 +69,7 @@ function sectionsOf(done: Simulated): SummarySection[] {
         ["acts", listWords(acts)],
         [
           "design",
-          `${done.intervals.length} intervals, ${done.animals} animals marked, ${design.covariates.length === 1 ? "1 candidate" : `${design.covariates.length} candidates`}, recapture ${done.recapture}`,
+          `${intervalWords(done.between, done.intervals.length)}, ${done.animals} animals marked, ${design.covariates.length === 1 ? "1 candidate" : `${design.covariates.length} candidates`}, recapture ${done.recapture}`,
         ],
         ["residual sd", `${Number(detection.residual.toPrecision(2))} on the logit, ${from}`],
       ],

@@ -9,10 +9,14 @@ import { redactPipeline } from "../publish/redact.ts";
 import { withRecord } from "../publish/run-record.ts";
 import { tableFiles } from "../publish/table-files.ts";
 import { type Detection, detect } from "../simulate/detect.ts";
-import { ownDirections, type ResidualEstimate, residualEstimate } from "../simulate/residual.ts";
+import {
+  ownDirections,
+  type ResidualEstimate,
+  residualEstimable,
+  residualEstimate,
+} from "../simulate/residual.ts";
 import { detectionSentences } from "../simulate/says.ts";
 import { type StudyDesign, studyDesign } from "../simulate/study-design.ts";
-import type { SurvivalOptions } from "../survival/options.ts";
 import { detectionTable, simulatedDesignTable } from "../tables/detection-tables.ts";
 import { stampAt } from "./effects/files.ts";
 import { nodeDisk, nodeEffects } from "./effects.ts";
@@ -53,13 +57,15 @@ export interface Simulated {
   readonly animals: number;
   readonly recapture: string;
   readonly intervals: readonly Interval[];
+  /** Intervals between occasions: as many, or fewer where some are split into years. */
+  readonly between: number;
   readonly folder: string;
   readonly seconds: number;
 }
 
 /**
  * What a study can detect: reads and prepares it as a run does, up to the screen as posed, then draws studies from its
- * design and publishes what the procedure made of them. Throws `simulate.no-captures`, `simulate.no-drawing`,
+ * design and publishes what the procedure made of them. Throws `simulate.no-captures`, `simulate.residual-unknown`,
  * `simulate.unknown-covariate`, `simulate.same-folder` and what the stages throw.
  */
 export async function simulate(
@@ -72,8 +78,6 @@ export async function simulate(
   const folder = options.folder ?? `${loaded.outputFolder}-simulated`;
   if (loaded.spec.captures === undefined) throw noCaptures(loaded);
   if (disk.resolve(folder) === disk.resolve(loaded.outputFolder)) throw sameFolder(folder);
-  const undrawn = undrawable(loaded.spec.survival);
-  if (undrawn !== undefined) throw noDrawing(loaded, undrawn);
   const world = nodeEffects({ ...options, dataFolder: loaded.dataFolder });
   const inputs = recording(world.files, stampAt);
   const effects = { ...world, files: inputs.files };
@@ -86,6 +90,7 @@ export async function simulate(
     const posed = poseScreen(spec, run.ingested, run.study.matrix);
     if (posed === undefined) throw noCaptures(loaded);
     const named = positionsOf(request.covariates, posed);
+    if (request.residual === undefined && !residualEstimable(posed.problem)) throw noResidual(loaded);
     const estimated =
       request.residual === undefined
         ? residualEstimate(posed.problem, named, posed.recapture.intervalFit)
@@ -113,6 +118,7 @@ export async function simulate(
       animals: design.strata.reduce((sum, one) => one.marked.reduce((total, m) => total + m, sum), 0),
       recapture: posed.recapture.chosen,
       intervals,
+      between: run.ingested.occasions.length - 1,
       folder,
       seconds: (world.clock.now() - began) / 1000,
     };
@@ -124,13 +130,6 @@ export async function simulate(
   } finally {
     output.close();
   }
-}
-
-/** What in a survival part no studies can be drawn with yet, by its key. */
-function undrawable({ sinceMarking, split, byStratum }: SurvivalOptions): string | undefined {
-  if (sinceMarking === "first interval apart") return "time since marking";
-  if (split === "years") return "split";
-  return byStratum === undefined ? undefined : "covariates by stratum";
 }
 
 function positionsOf(names: readonly string[], { problem }: Posed): readonly number[] {
@@ -203,13 +202,14 @@ function noCaptures({ file }: Loaded): InputError {
   });
 }
 
-function noDrawing({ file, positions }: Loaded, key: string): InputError {
+function noResidual({ file, spec, positions }: Loaded): InputError {
+  const key = spec.survival.byStratum === undefined ? "split" : "covariates by stratum";
   return new InputError({
-    name: "simulate.no-drawing",
-    expected: "a survival part with one value per interval, the same from an animal's first interval on",
+    name: "simulate.residual-unknown",
+    expected: "the sd of what no covariate tells between years, which captures do not tell in this design",
     found: key,
     where: { file, ...(positions(["survival", key]) ?? {}), cell: `survival > ${key}` },
-    remedy: `simulate a copy of the pipeline without ${key}; what it finds then holds for that simpler model`,
+    remedy: "state it with --residual, for example 0, 0.3 and 0.5 in turn",
   });
 }
 

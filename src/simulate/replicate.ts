@@ -3,10 +3,10 @@ import type { ScreenOptions } from "../screen/options.ts";
 import { designWith, type ScreenProblem } from "../screen/problem.ts";
 import { type ProcedureSetting, runProcedure } from "../screen/procedure.ts";
 import { sampleSizeOf } from "../screen/screen.ts";
-import { intervalSurvival } from "../survival/design.ts";
+import { closedYears, intervalSurvival, occasionIntervals } from "../survival/design.ts";
 import { fitModel } from "../survival/fit.ts";
 import { designOf } from "../survival/recapture-choice.ts";
-import { drawCaptures } from "./draw.ts";
+import { drawStrata } from "./draw.ts";
 import { perSd, type StudyDesign } from "./study-design.ts";
 
 /** What is true in a simulated world. */
@@ -48,22 +48,29 @@ export function simulateReplicates(chunk: ReplicateChunk): Replicate[] {
 }
 
 /**
- * Captures of one replicate: with ε_t ~ N(0, σ²/Δ_t) shared by the strata and x in sd,
+ * Captures of one replicate: with ε_t ~ N(0, σ²/Δ_t) shared by the strata and x in sd (a value per interval, or per
+ * stratum and interval; the years of a split interval count as intervals),
  *
- *     logit s_gt = baseline_gt + Σ_k β_k x_kt + ε_t,   φ_gt = s_gt^Δ_t.
+ *     logit s_gt = baseline_gt + Σ_k β_k x_kgt + ε_t,   φ_gt = s_gt^Δ_t.
  */
 export function drawStudy(design: StudyDesign, scenario: Scenario, random: Random): ScreenProblem {
   const { frame, recapture, covariates, strata } = design;
-  const shift = frame.lengths.map((length) => (scenario.residual * random.normal()) / Math.sqrt(length));
+  const n = frame.intervals;
+  const rows = n * strata.length;
+  const between = frame.lengths.map((length) => (scenario.residual * random.normal()) / Math.sqrt(length));
+  const shift = Float64Array.from({ length: rows }, (_, r) => between[r % n]);
   for (const { covariate, perSd: effect } of scenario.effects)
-    perSd(covariates[covariate].values).forEach((x, t) => {
-      shift[t] += effect * x;
+    perSd(covariates[covariate].values).forEach((x, i, { length }) => {
+      // a value per interval holds in all strata
+      if (length === rows) shift[i] += effect * x;
+      else for (let r = i; r < rows; r += length) shift[r] += effect * x;
     });
-  const data = strata.map(({ stratum, marked, baseline, recapture: seen }) => {
-    const survival = baseline.map((logit, t) => (1 + Math.exp(-logit - shift[t])) ** -frame.lengths[t]);
-    return drawCaptures({ stratum, marked, survival, recapture: seen }, random);
-  });
-  return { data, frame, recapture, covariates };
+  const truths = strata.map(({ baseline, recapture: seen, ...one }, g) => ({
+    ...one,
+    survival: baseline.map((logit, t) => (1 + Math.exp(-logit - shift[g * n + t])) ** -frame.lengths[t]),
+    recapture: seen,
+  }));
+  return { data: drawStrata(truths, random, closedYears(frame)), frame, recapture, covariates };
 }
 
 /** The whole procedure on drawn captures, under the recapture part that the study chose. */
@@ -76,7 +83,7 @@ export function screenedStudy(
   const interval = fitModel(data, designOf(frame, intervalSurvival(frame), recapture));
   const animals = design.strata.reduce((sum, one) => one.marked.reduce((total, m) => total + m, sum), 0);
   const setting: ProcedureSetting = {
-    intervals: frame.intervals,
+    intervals: occasionIntervals(frame),
     covariates: problem.covariates.length,
     interval: { minus2LogL: interval.minus2LogL, parameters: interval.parameters },
     constantParameters: fitModel(data, designWith(problem, [])).parameters,

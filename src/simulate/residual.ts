@@ -14,6 +14,11 @@ export interface ResidualEstimate {
   readonly df: number;
 }
 
+/** Whether the estimate is to be had: one survival per interval, in which captures tell every year from the others. */
+export function residualEstimable({ frame }: ScreenProblem): boolean {
+  return frame.yearsOf === undefined && frame.groups === undefined;
+}
+
 /**
  * A simple estimate of the residual variation between years, by moments from ĉ between years. With the named
  * covariates in the model ν = r_t − r_cov degrees of freedom are left between years. D_cov − D_t is there about the sum of

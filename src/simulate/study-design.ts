@@ -13,6 +13,8 @@ export interface StratumDesign {
   readonly baseline: Float64Array;
   /** Recapture at the occasion that closes each interval, n. */
   readonly recapture: Float64Array;
+  /** Place of the stratum of later intervals, where this one is that of the first interval after marking. */
+  readonly becomes?: number;
 }
 
 /** What a study brings with it, whatever its captures came to: what replicates of it are drawn from. */
@@ -41,21 +43,23 @@ export function studyDesign(problem: ScreenProblem): StudyDesign {
     frame,
     recapture,
     covariates,
-    strata: data.map((one, g) => stratumDesign(one, g, frame.intervals, fit, recapture)),
+    strata: data.map((one, g) => stratumDesign(one, g, problem, fit)),
   };
 }
 
 function stratumDesign(
   data: SufficientStatistics,
   g: number,
-  n: number,
+  { data: all, frame, recapture }: ScreenProblem,
   fit: Fit,
-  recapture: StudyDesign["recapture"],
 ): StratumDesign {
+  const n = frame.intervals;
   const rows = Array.from({ length: n }, (_, t) => g * n + t);
   return {
     stratum: data.stratum,
-    marked: newlyMarked(data),
+    // with time since marking nobody is marked into the stratum of later intervals
+    marked: all.some((one) => one.becomes === g) ? new Float64Array(n) : newlyMarked(data, frame.yearsOf),
+    ...(data.becomes === undefined ? {} : { becomes: data.becomes }),
     baseline: Float64Array.from(rows, (row) => {
       const s = inside(fit.survival[row].value);
       return Math.log(s / (1 - s));
@@ -69,9 +73,15 @@ function stratumDesign(
 /**
  * Newly marked and released at each occasion, from the counts: those released less those seen there, which were marked
  * before. R_t − B_{t−1} = A_t − A_{t−1} + U_t in the notation of `SufficientStatistics`. Losses on recapture make it
- * smaller, but never negative.
+ * smaller, but never negative. The stratum of the first interval after marking holds the newly marked alone: R_t = A_t + U_t,
+ * with `yearsOf` in the first year of the interval.
  */
-export function newlyMarked({ alive, lastSeen }: SufficientStatistics): Float64Array {
+export function newlyMarked(
+  { alive, lastSeen, becomes }: SufficientStatistics,
+  yearsOf?: Int32Array,
+): Float64Array {
+  const begins = (t: number) => yearsOf === undefined || t === 0 || yearsOf[t] !== yearsOf[t - 1];
+  if (becomes !== undefined) return alive.map((a, t) => (begins(t) ? a + lastSeen[t] : 0));
   return alive.map((a, t) => Math.max(0, a - (t === 0 ? 0 : alive[t - 1]) + lastSeen[t]));
 }
 

@@ -135,14 +135,32 @@ describe("simulate", () => {
   });
 
   test.each([
-    ["since-marking", "time since marking"],
-    ["split-years", "split"],
-    ["own-covariates", "covariates by stratum"],
-  ])("no studies are drawn in the design of %s: refused before any work", async (name, key) => {
+    ["since-marking", "ice", 8],
+    ["split-years", "storms", 10],
+    ["own-covariates", "storms", 24],
+  ])("studies are drawn in the design of %s too", async (name, covariate, rows) => {
     const other = temporaryFolder();
     const design = pipelineIn(other.path, `test/cases/${name}/pipeline.yaml`);
-    await expect(simulateCommand(design, asked, terminal)).rejects.toMatchObject({
-      facts: { name: "simulate.no-drawing", found: key, where: { line: expect.any(Number) } },
+    const request = { ...asked, covariates: [covariate], residual: 0.2, replicates: 4 };
+    await simulateCommand(design, { ...request, output: join(other.path, "drawn") }, terminal);
+    expect(readRows(join(other.path, "drawn/tables/detection.csv")).length).toBe(4);
+    // strata (twice as many with time since marking) times intervals, or years where one is split
+    const drawn = readRows(join(other.path, "drawn/tables/simulated-design.csv"));
+    expect(drawn.length).toBe(rows);
+    expect(drawn.every((one) => Number(one.survival) > 0 && Number(one.survival) < 1)).toBe(true);
+    other.remove();
+  });
+
+  test.each([
+    ["split-years", "split"],
+    ["own-covariates", "covariates by stratum"],
+  ])("what the captures of %s do not tell between years is to be stated", async (name, key) => {
+    const other = temporaryFolder();
+    const design = pipelineIn(other.path, `test/cases/${name}/pipeline.yaml`);
+    await expect(
+      simulateCommand(design, { ...asked, covariates: ["storms"], residual: undefined }, terminal),
+    ).rejects.toMatchObject({
+      facts: { name: "simulate.residual-unknown", found: key, where: { line: expect.any(Number) } },
     });
     expect(readdirSync(other.path)).toEqual([expect.any(String)]);
     other.remove();
