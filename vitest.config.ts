@@ -5,6 +5,7 @@ export default defineConfig({
   // most of the time.
   test: {
     include: ["test/**/*.test.ts"],
+    setupFiles: ["test/support/property-seed.ts"],
     testTimeout: 300_000,
     hookTimeout: 300_000,
     pool: "forks",
