@@ -66,10 +66,43 @@ describe("steps of proximal Newton", () => {
     expect(solution.iterations).toBeGreaterThanOrEqual(4);
   });
 
-  test("the start stays as it was given", () => {
+  test("the start stays as it was given, over one step and over many", () => {
     const start = Float64Array.of(2, -1);
     proximalNewton(parabolas([5, 5]), weightedL1(1, Float64Array.of(1, 1)), start, OPTIONS);
     expect(Array.from(start)).toEqual([2, -1]);
+    const far = Float64Array.of(3, -3);
+    // cosh x − 2x: f″ = f + 2x, several steps from 3 and from −3
+    const curve = separable(
+      2,
+      (x) => Math.cosh(x) - 2 * x,
+      (x) => Math.sinh(x) - 2,
+      Math.cosh,
+    );
+    const solution = proximalNewton(curve, noPenalty, far, OPTIONS);
+    expect(solution.iterations).toBeGreaterThan(3);
+    expect(Array.from(far)).toEqual([3, -3]);
+    for (const x of solution.x) expect(x).toBeCloseTo(Math.asinh(2), 12);
+  });
+
+  test("where the start is the optimum nothing is stepped", () => {
+    const target = parabolas([5, -2]);
+    const solution = proximalNewton(target, noPenalty, Float64Array.of(5, -2), OPTIONS);
+    expect(solution).toMatchObject({ stopped: "optimum", iterations: 0, violation: 0 });
+    expect(target.values.length).toBe(1);
+  });
+
+  test("a slope that does not belong to its function is told by the reason of the stop, at the start", () => {
+    const lying = separable(
+      2,
+      (x) => (x - 5) ** 2 / 2,
+      (x) => 5 - x,
+      () => 1,
+    );
+    const solution = proximalNewton(lying, noPenalty, Float64Array.of(1, 2), OPTIONS);
+    expect(solution.stopped).toBe("no lower point");
+    expect(Array.from(solution.x)).toEqual([1, 2]);
+    expect(solution.smooth).toBe(12.5);
+    expect(solution.violation).toBe(4);
   });
 
   test("an optimum in the last step that is allowed counts; one step less is too few", () => {
