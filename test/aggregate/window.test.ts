@@ -65,6 +65,14 @@ describe("seasons", () => {
     expect(periodText(seasonEnding(JUN_TO_AUG, 2004) ?? { start: 0, end: 0 })).toBe(
       "2004-06-01 to 2004-08-31",
     );
+    // its last day is the year's own
+    const autumn = {
+      type: "season",
+      from: { month: 9, day: 1 },
+      to: { month: 12, day: 31 },
+      lag: 0,
+    } as const;
+    expect(periodText(seasonEnding(autumn, 2004) ?? { start: 0, end: 0 })).toBe("2004-09-01 to 2004-12-31");
     expect(seasonEnding({ type: "interval", lag: 0 }, 2004)).toBeUndefined();
   });
 
