@@ -178,7 +178,7 @@ describe("one covariate over all intervals", () => {
     const { covariate } = aggregateCovariate(rain, long);
     const [first, second] = numbers(rain);
     expect(covariate.values[0].value).toBeCloseTo((first + second) / 2, 12);
-    expect(covariate.values[0]).toMatchObject({ years: 2, daysDue: 240 });
+    expect(covariate.values[0]).toMatchObject({ years: 2, daysDue: 240, daysCovered: 240 });
     expect(covariate.values[0].periods).toHaveLength(2);
     // A whole interval of 2.5 years: the sum per year is the sum divided by 2.5.
     const whole = { ...rain, window: { type: "interval", lag: 0 } } as const;
