@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { tQuantile } from "../../src/math/distributions.ts";
 import { mean } from "../../src/math/quantile.ts";
 import { randomStream } from "../../src/math/random.ts";
 import { drawCaptures } from "../../src/simulate/draw.ts";
@@ -225,6 +226,11 @@ describe("random interval effects", () => {
     expect(other.coefficients[2].estimate).toBeCloseTo(one.coefficients[1].estimate, 5);
     expect(other.coefficients[1].estimate).toBeCloseTo(one.coefficients[2].estimate / 10, 5);
     expect(other.coefficients[2].high).toBeCloseTo(one.coefficients[1].high, 5);
+    // on either side of the estimate alike, Student's t: two covariates and a mean spend 3 of the intervals
+    for (const { estimate, se, low, high } of one.coefficients) {
+      expect(high - estimate).toBeCloseTo(tQuantile(0.975, n - 3) * se, 10);
+      expect(estimate - low).toBeCloseTo(high - estimate, 10);
+    }
   });
 
   test("truth comes back on average, and σ by maximum likelihood falls short of it (60 data sets)", () => {
