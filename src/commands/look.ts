@@ -113,11 +113,13 @@ function netcdfLines(look: NetcdfLook, { style }: Terminal): Lines {
     style.strong(`${plain(look.path)}  ${look.format}, ${look.bytes} bytes`),
     ...look.variables.flatMap((one) => {
       const [west, south, east, north] = one.bounds;
+      const [across, down] = one.pixelMetres;
       return [
         style.strong(`${plain(one.name)}${one.title === "" ? "" : `  ${plain(one.title)}`}`),
         `  values   ${one.type}${one.unit === "" ? "" : ` in ${plain(one.unit)}`}; scale ${one.scale}, offset ${one.offset}; ${one.dimensions}; ${one.storage}`,
         `  dates    ${one.dates}${one.methods === "" ? "" : `; ${plain(one.methods)}`}`,
         `  system   ${plain(one.system)}; ${short(west)} to ${short(east)} °E, ${short(south)} to ${short(north)} °N`,
+        `  pixel    ${short(across)} × ${short(down)} m in the middle`,
         `  first    missing ${(100 * one.missingShare).toFixed(2)} %; ${short(one.least)} to ${short(one.greatest)}, mean ${short(one.mean)}`,
         ...one.notes.map((note) => `  note     ${plain(note)}`),
       ];

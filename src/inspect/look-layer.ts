@@ -1,13 +1,13 @@
 import type { Files } from "../effects/effects.ts";
 import { CoveyError } from "../errors.ts";
 import { stemOf } from "../layers/dates.ts";
-import { type Grid, toSystem } from "../layers/grid.ts";
 import { describeLayer, type Layer } from "../layers/layer.ts";
 import { boundsOf } from "../layers/overview.ts";
 import { scanBand } from "../layers/scan.ts";
 import { findSideFiles, sideList } from "../layers/side.ts";
 import { resolveSystem, type System } from "../layers/system.ts";
 import { valueRule } from "../layers/values.ts";
+import { groundSize } from "./ground-size.ts";
 import { guessDates } from "./layer-dates.ts";
 import { guessSpacing } from "./layer-spacing.ts";
 import { guessPattern, layerStanza } from "./layer-stanza.ts";
@@ -138,24 +138,4 @@ function trySystem(layer: Layer): System | string {
     if (error instanceof CoveyError) return `unknown (${error.facts.found})`;
     throw error;
   }
-}
-
-const RADIANS = Math.PI / 180;
-
-/**
- * Size of the middle pixel by the radii of curvature of WGS 84 at its latitude: M = a (1 − e²) / w³ along the
- * meridian and N cos φ = a cos φ / w along the parallel, w = √(1 − e² sin² φ).
- */
-function groundSize(grid: Grid, system: System): readonly [number, number] {
-  const [column, row] = [Math.floor(grid.width / 2), Math.floor(grid.height / 2)];
-  const at = (c: number, r: number) => system.toLonLat(...toSystem(grid.affine, c, r));
-  const [corner, east, south] = [at(column, row), at(column + 1, row), at(column, row + 1)];
-  const sine = Math.sin(corner[1] * RADIANS);
-  const e2 = 0.0066943799901413;
-  const w = Math.sqrt(1 - e2 * sine * sine);
-  const perLat = ((6378137 * (1 - e2)) / w ** 3) * RADIANS;
-  const perLon = ((6378137 * Math.cos(corner[1] * RADIANS)) / w) * RADIANS;
-  const length = (to: readonly [number, number]) =>
-    Math.hypot((to[0] - corner[0]) * perLon, (to[1] - corner[1]) * perLat);
-  return [length(east), length(south)];
 }

@@ -10,6 +10,7 @@ import { isNetcdf, openNetcdf } from "../layers/netcdf/open.ts";
 import { packingOf, unpacker } from "../layers/netcdf/packing.ts";
 import { pixelsOf } from "../layers/netcdf/pixels.ts";
 import { boundsOf } from "../layers/overview.ts";
+import { groundSize } from "./ground-size.ts";
 import { guessPattern } from "./layer-stanza.ts";
 import { Tally } from "./tally.ts";
 
@@ -28,6 +29,8 @@ export interface VariableLook {
   /** First to last day and how many images, or why there are no dates. */
   readonly dates: string;
   readonly system: string;
+  /** Width and height of the middle pixel on the ground, in metres; NaN if not known. */
+  readonly pixelMetres: readonly [number, number];
   /** West, south, east, north; NaN if not known. */
   readonly bounds: readonly [number, number, number, number];
   /** Of the first image. */
@@ -152,6 +155,7 @@ function lookAt(dataset: Dataset, variable: NcVariable): Told {
         ...base,
         dates,
         system: system.label,
+        pixelMetres: groundSize(layer.grid, system),
         bounds: boundsOf(layer, system),
         ...tally.result(),
         notes: [
@@ -178,6 +182,7 @@ function lookAt(dataset: Dataset, variable: NcVariable): Told {
         ...base,
         dates: "not settled",
         system: "not settled",
+        pixelMetres: [Number.NaN, Number.NaN],
         bounds: [Number.NaN, Number.NaN, Number.NaN, Number.NaN],
         ...nothing,
         notes: [...notes, `expected ${expected}, found ${found}`],

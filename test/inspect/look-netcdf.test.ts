@@ -13,6 +13,11 @@ describe("a look at NetCDF", () => {
     expect(look.variables.map((one) => one.name)).toEqual(["pr", "tas"]);
     expect(look.variables[0].dates).toBe("1999-01-01 to 1999-12-31, 12 images");
     expect(look.variables[0].bounds).toEqual([-85, 33, -74.875, 37.125]);
+    // an eighth of a degree at 35° N, where a degree is 110,941 m along the meridian and 91,288 m along the parallel (WGS 84,
+    // from memory)
+    const [across, down] = look.variables[0].pixelMetres;
+    expect(across / (91288 / 8)).toBeCloseTo(1, 3);
+    expect(down / (110941 / 8)).toBeCloseTo(1, 3);
     expect(look.stanza).toContain('    variable: "pr"\n    date: { axis: time }\n');
   });
   test("what must be chosen is shown with the first choice in the stanza", async () => {
