@@ -4,8 +4,8 @@ import type { System } from "../layers/system.ts";
 const RADIANS = Math.PI / 180;
 
 /**
- * Width and height of the middle pixel on the ground in metres, by the radii of curvature of WGS 84 at its latitude: M = a (1 − e²) / w³ along the
- * meridian and N cos φ = a cos φ / w along the parallel, w = √(1 − e² sin² φ).
+ * Width and height of the middle pixel on the ground in metres, by the radii of curvature of WGS 84 at its latitude:
+ * M = a (1 − e²) / w³ along the meridian and N cos φ = a cos φ / w along the parallel, w = √(1 − e² sin² φ).
  */
 export function groundSize(grid: Grid, system: System): readonly [number, number] {
   const [column, row] = [Math.floor(grid.width / 2), Math.floor(grid.height / 2)];

@@ -7,7 +7,7 @@ import { closedYears, intervalSurvival, occasionIntervals } from "../survival/de
 import { fitModel } from "../survival/fit.ts";
 import { designOf } from "../survival/recapture-choice.ts";
 import { drawStrata } from "./draw.ts";
-import { perSd, type StudyDesign } from "./study-design.ts";
+import { actingPerSd, type StudyDesign } from "./study-design.ts";
 
 /** What is true in a simulated world. */
 export interface Scenario {
@@ -60,7 +60,7 @@ export function drawStudy(design: StudyDesign, scenario: Scenario, random: Rando
   const between = frame.lengths.map((length) => (scenario.residual * random.normal()) / Math.sqrt(length));
   const shift = Float64Array.from({ length: rows }, (_, r) => between[r % n]);
   for (const { covariate, perSd: effect } of scenario.effects)
-    perSd(covariates[covariate].values).forEach((x, i, { length }) => {
+    actingPerSd(design, covariates[covariate].values).forEach((x, i, { length }) => {
       // a value per interval holds in all strata
       if (length === rows) shift[i] += effect * x;
       else for (let r = i; r < rows; r += length) shift[r] += effect * x;

@@ -90,3 +90,17 @@ export function perSd(values: Float64Array): Float64Array {
   const [centre, sd] = [mean(values), sampleSd(values)];
   return values.map((value) => (value - centre) / sd);
 }
+
+/**
+ * The same where a covariate has a value per row and survival differs in the first interval after marking: mean and sd are those of
+ * the rows of later intervals, in which every covariate acts; one that acts in no first interval is 0, its mean, there.
+ */
+export function actingPerSd({ strata, frame }: StudyDesign, values: Float64Array): Float64Array {
+  const first = (r: number) => strata[Math.floor(r / frame.intervals)].becomes !== undefined;
+  if (values.length === frame.intervals || !strata.some((one) => one.becomes !== undefined))
+    return perSd(values);
+  const later = values.filter((_, r) => !first(r));
+  const [centre, sd] = [mean(later), sampleSd(later)];
+  const onLaterAlone = values.every((value, r) => !first(r) || value === 0);
+  return values.map((value, r) => (onLaterAlone && first(r) ? 0 : (value - centre) / sd));
+}

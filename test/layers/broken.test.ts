@@ -176,7 +176,7 @@ describe("truncated, corrupt and lying files end in an InputError that names the
     expect(await errorName(bytes)).toBe(name);
   });
 
-  test("all of them together take less than 300 MB of a process of their own", () => {
+  test("all of them together take less than 300 MB of a process of their own", { timeout: 60_000 }, () => {
     const folder = mkdtempSync(join(tmpdir(), "covey-broken-"));
     try {
       cases.forEach(([, bytes], i) => {

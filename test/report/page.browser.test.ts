@@ -222,7 +222,7 @@ describe.runIf(FOUND !== undefined)("the page in a browser", () => {
   test.each([
     ["light", 1400],
     ["dark", 420],
-  ] as const)("axe finds nothing, %s at %d pixels", async (colorScheme, width) => {
+  ] as const)("axe finds nothing, %s at %d pixels", { timeout: 240_000 }, async (colorScheme, width) => {
     const context = await browser.newContext({
       viewport: { width, height: 900 },
       colorScheme,

@@ -2,7 +2,7 @@ import { expect, test } from "vitest";
 import { randomStream } from "../../src/math/random.ts";
 import { drawCaptures, drawStrata } from "../../src/simulate/draw.ts";
 import { drawStudy } from "../../src/simulate/replicate.ts";
-import { newlyMarked, studyDesign } from "../../src/simulate/study-design.ts";
+import { actingPerSd, newlyMarked, perSd, studyDesign } from "../../src/simulate/study-design.ts";
 import {
   constantRecapture,
   covariateSurvival,
@@ -10,7 +10,7 @@ import {
   type NamedColumn,
 } from "../../src/survival/design.ts";
 import { fitModel } from "../../src/survival/fit.ts";
-import { markingFrame } from "../../src/survival/marking-frame.ts";
+import { markingFrame, onLaterIntervals } from "../../src/survival/marking-frame.ts";
 import { designOf } from "../../src/survival/recapture-choice.ts";
 import { splitStatistics } from "../../src/survival/split-statistics.ts";
 import type { SufficientStatistics } from "../../src/survival/statistics.ts";
@@ -147,4 +147,23 @@ test("the design of a study with time since marking marks into the first interva
   const again = drawStudy({ ...problem, strata }, { effects: [], residual: 0 }, stream());
   expect(again.data.map((one) => one.becomes)).toEqual([undefined, 0]);
   expect(newlyMarked(again.data[1])).toEqual(MARKED);
+});
+
+test("an effect is per sd over intervals, also of a covariate that acts on later intervals alone", () => {
+  const frame = markingFrame(bare);
+  const x = Float64Array.of(3, 5, 4, 8, 6, 7);
+  const strata = [undefined, 0].map((becomes, g) => ({
+    stratum: frame.strata[g],
+    marked: MARKED,
+    baseline: all(0),
+    recapture: all(1),
+    ...(becomes === undefined ? {} : { becomes }),
+  }));
+  const world = { frame, recapture: { known: 1 }, covariates: [], strata };
+  const expected = Array.from(perSd(x));
+  const later = onLaterIntervals(frame, { name: "x", values: x }).values;
+  expect(Array.from(actingPerSd(world, later))).toEqual([...expected, ...all(0)]);
+  expect(Array.from(actingPerSd(world, x))).toEqual(expected);
+  const both = Float64Array.of(...x, ...x);
+  expect(Array.from(actingPerSd(world, both))).toEqual([...expected, ...expected]);
 });
